@@ -1,0 +1,56 @@
+// Package acquire runs a capture: it opens the devices, holds the
+// conversation with each (identity, start, watchdog, restart, reopening) and
+// writes every line and host event into one recording, in one order. Start
+// with Run.
+//
+// Deliberately absent: serial ports (callers pass a Dial), pairs, stress. The
+// words of the wire are package protocol's.
+package acquire
+
+import (
+	"context"
+	"io"
+	"time"
+
+	"tautramp/acquire/recording"
+)
+
+// Clock is the host's time, passed in so that a rehearsal can run faster than
+// the wall and a test by hand.
+type Clock interface {
+	// Now is the monotonic time since the clock was made, in clock seconds.
+	Now() time.Duration
+	// Wall is the wall clock now, in clock seconds from the clock's start.
+	Wall() time.Time
+	// Sleep waits d clock seconds, or returns the context's error.
+	Sleep(ctx context.Context, d time.Duration) error
+	// Factor is clock seconds per real second.
+	Factor() float64
+}
+
+// Dial opens one device afresh. It is called again after a loss. Read blocks
+// until a byte, the own Close or a loss; each is a different error.
+type Dial func(ctx context.Context) (io.ReadWriteCloser, error)
+
+// Device is one board: its port's name for people, and how to open it.
+type Device struct {
+	Name string
+	Dial Dial
+}
+
+// Config is one capture.
+type Config struct {
+	Devices []Device
+	Clock   Clock
+	Out     *recording.Writer
+	// OnEntry sees every entry in file order, from one goroutine, after it is
+	// written. The events it returns are written next. It may be nil.
+	OnEntry func(recording.Entry) []recording.Event
+	// Operator carries marks and the like; nil when nobody can press a key.
+	Operator <-chan recording.Event
+
+	BootWait    time.Duration // wait for a board to boot after opening; 0 means 2.5 s
+	AnswerWait  time.Duration // wait for an answer before asking again; 0 means 1 s
+	SilentAfter time.Duration // no line for this long raises Silent; 0 means 3 s
+	GiveUpAfter time.Duration // a lost port not back after this ends the capture; 0 means 20 s
+}

@@ -1,0 +1,94 @@
+// Package pairing turns a recording into pairs: each device's ticks onto one
+// host timeline, each channel's counts into SI readings, and two channels of
+// different rates into (setting, extension) pairs. Start with FromRecording;
+// Live does the same as lines come in, causally.
+//
+// Pure: no clock, no files. Deliberately absent: any idea of loading or
+// unloading, friction or stress.
+package pairing
+
+import "tautramp/protocol"
+
+// Reading is one sample in SI on the host timeline.
+type Reading struct {
+	T      float64 // s since the recording's start
+	Value  float64 // SI; meaningless unless Status is protocol.Good
+	Status protocol.Status
+	Part   int // clock segment of its device; readings of two parts are not comparable in time
+}
+
+// Channel is one channel's declaration and its readings in time order.
+type Channel struct {
+	Device   int
+	Spec     protocol.Chan
+	CountSI  float64 // least count in SI: the width of the interval a reading stands for
+	Readings []Reading
+}
+
+// Pair is one reading of the extension with the setting at the same instant.
+type Pair struct {
+	T          float64 // s since the recording's start
+	Setting    float64 // SI: Pa, N.m, rad or m as the channel's quantity says
+	Extension  float64 // m, as indicated: no zero subtracted
+	SettingStd float64 // standard uncertainty from the time error, SI
+	Part       int     // pairs of different parts have a gap between them
+}
+
+// Mark is something the operator said, on the host timeline.
+type Mark struct {
+	T    float64 // s
+	Kind MarkKind
+	Text string
+}
+
+// MarkKind is the kind of a mark.
+type MarkKind string
+
+// The kinds of mark.
+const (
+	Button   MarkKind = "button" // push button or foot switch pressed
+	Operator MarkKind = "mark"   // key or page button
+	Zero     MarkKind = "zero"   // the operator says the band is slack
+)
+
+// ClockFit is one segment of a device's clock mapped to the host timeline:
+// t = Offset + Rate * tick (unwrapped within the segment).
+type ClockFit struct {
+	Device    int
+	Part      int
+	FirstTick uint64  // unwrapped
+	LastTick  uint64  // unwrapped
+	Offset    float64 // s
+	Rate      float64 // s per tick
+	OffsetStd float64 // s, standard uncertainty of a mapped instant against the other device
+	RatePPM   float64 // measured rate against the nominal one, parts per million
+	Points    int
+	Method    string // "receive times, lower envelope" or "ticks alone"
+}
+
+// Counters is what went missing on the way, by device.
+type Counters struct {
+	Device     int
+	Lines      int    // good lines
+	Samples    int    // Val records
+	Lost       int    // numbers missing from the sequence
+	DeviceSaid uint32 // lines the device says it dropped
+	Rejected   int    // lines refused by the scanner
+	Restarts   int
+}
+
+// Set is everything later rooms may know of a recording.
+type Set struct {
+	Setting   Channel // readings of the channel chosen as setting
+	Extension Channel
+	Others    []Channel // temperature and the like
+	Pairs     []Pair
+	Marks     []Mark
+	Clocks    []ClockFit
+	Counters  []Counters
+	Plan      Plan
+	Warnings  []string
+}
+
+// Plan mirrors the recording's plan, so that the analysis needs no recording.
+type Plan struct{ Exercise, Ramps int }
