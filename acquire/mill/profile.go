@@ -5,19 +5,20 @@
 // Deliberately absent: files (callers pass bytes) and anything measured.
 package mill
 
-// Profile is one mill.toml.
+// Profile is one mill.toml. A field's key in the file is its name in lower case
+// with underscores, unless its comment names another.
 type Profile struct {
-	Mill        Mill         `toml:"mill"`
-	Tensioners  []Tensioner  `toml:"tensioner"`
-	Bands       []Band       `toml:"band"`
-	Rig         Rig          `toml:"rig"`
-	Instruments []Instrument `toml:"instrument"`
+	Mill        Mill
+	Tensioners  []Tensioner // [[tensioner]]
+	Bands       []Band      // [[band]]
+	Rig         Rig
+	Instruments []Instrument // [[instrument]]
 }
 
 // Mill is whose tensioners these are.
 type Mill struct {
-	Name       string `toml:"name"`
-	ServicedBy string `toml:"serviced_by"`
+	Name       string
+	ServicedBy string
 }
 
 // SetBy is the quantity that a tensioner is set by.
@@ -42,49 +43,53 @@ const (
 
 // Tensioner is one strain system of one mill.
 type Tensioner struct {
-	Name         string     `toml:"name"`
-	SetBy        SetBy      `toml:"set_by"`
-	SettingLimit Setting    `toml:"setting_limit"` // mandatory; the maker's, or lower
-	Cylinders    int        `toml:"cylinders"`     // N, pressure-set
-	Bore         Length     `toml:"bore"`          // of one cylinder
-	TravelRatio  float64    `toml:"travel_ratio"`  // R = cylinder travel / wheel travel; 0 means 1
-	LiftedWeight Force      `toml:"lifted_weight"` // W; optional
-	Hold         Hold       `toml:"hold"`          // optional
-	Rehearsal    *Rehearsal `toml:"rehearsal"`     // what the simulated rig pretends; never read by the analysis
+	Name         string
+	SetBy        SetBy
+	SettingLimit Setting    // mandatory; the maker's, or lower
+	Cylinders    int        // N, pressure-set
+	Bore         Length     // of one cylinder
+	TravelRatio  float64    // R = cylinder travel / wheel travel; 0 means 1
+	LiftedWeight Force      // W; optional
+	Hold         Hold       // optional
+	Note         string     // for the report
+	Rehearsal    *Rehearsal // what the simulated rig pretends; never read by the analysis
 }
 
-// Rehearsal is the hidden truth of a simulated tensioner.
+// Rehearsal is the hidden truth of a simulated tensioner. Band and target
+// come from the profile.
 type Rehearsal struct {
-	FrictionConstant     Force   `toml:"friction_constant"`     // F0
-	FrictionProportional float64 `toml:"friction_proportional"` // mu
-	Weight               Force   `toml:"weight"`                // W
-	BandLoop             Length  `toml:"band_loop"`             // length of the band
+	FrictionConstant     Force   // F0
+	FrictionProportional float64 // mu
+	Weight               Force   // W
+	BandLoop             Length  // length of the band
 }
 
 // Band is one band section.
 type Band struct {
-	Name       string   `toml:"name"`
-	Thickness  Length   `toml:"thickness"`
-	NetWidth   Length   `toml:"net_width"`           // back to gullet bottom
-	GrossWidth Length   `toml:"gross_width"`         // back to tooth tip; optional, a check on NetWidth
-	Target     Pressure `toml:"target"`              // band stress wanted; the user's or the maker's
-	Modulus    Pressure `toml:"modulus"`             // Young's modulus E
-	ModulusStd float64  `toml:"modulus_uncertainty"` // relative standard uncertainty; 0 means 0.01
+	Name       string
+	Thickness  Length
+	NetWidth   Length   // back to gullet bottom
+	GrossWidth Length   // back to tooth tip; optional, a check on NetWidth
+	Target     Pressure // band stress wanted; the user's or the maker's
+	Modulus    Pressure // Young's modulus E
+	ModulusStd float64  // modulus_uncertainty: relative, standard; 0 means 0.01
+	Note       string   // for the report
 }
 
 // Rig is the extensometer on the band.
 type Rig struct {
-	GaugeLength    Length `toml:"gauge_length"`
-	GaugeLengthStd Length `toml:"gauge_length_uncertainty"` // standard; 0 means 0.25 % of GaugeLength
-	Material       string `toml:"material"`                 // of the bar; text for the report
-	Faces          int    `toml:"faces"`                    // faces measured, 1 or 2; 0 means 1
+	GaugeLength    Length
+	GaugeLengthStd Length // gauge_length_uncertainty: standard; 0 means 0.25 % of GaugeLength
+	Material       string // of the bar; text for the report
+	Faces          int    // faces measured, 1 or 2; 0 means 1
+	Note           string // place and face on the band, for the report
 }
 
 // Instrument is one sensor or gauge as certified.
 type Instrument struct {
-	Name     string  `toml:"name"`
-	Serial   string  `toml:"serial"`
-	Measures string  `toml:"measures"` // "setting" or "extension"
-	Limit    Setting `toml:"limit"`    // largest error by its certificate or class; standard uncertainty = limit / sqrt 3
-	Due      string  `toml:"due"`      // next check, YYYY-MM-DD
+	Name     string
+	Serial   string
+	Measures string  // "setting" or "extension"
+	Limit    Setting // largest error by its certificate or class; standard uncertainty = limit / sqrt 3
+	Due      string  // next check, YYYY-MM-DD
 }

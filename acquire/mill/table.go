@@ -1,0 +1,247 @@
+package mill
+
+import (
+	"errors"
+	"fmt"
+	"maps"
+	"math"
+	"slices"
+	"sort"
+	"strconv"
+	"strings"
+	"time"
+)
+
+// ProfileError is one thing wrong in a mill.toml. Parse joins all that it
+// finds, in the order of their lines.
+type ProfileError struct {
+	Line    int    // 1-based; 0 when the fault is in no line, such as a missing table
+	Key     string // such as "tensioner.bore"; "" when no key is at fault
+	Problem string
+	Hint    string // what to do about it; may be empty
+}
+
+func (e *ProfileError) Error() string {
+	var b strings.Builder
+	if e.Line > 0 {
+		fmt.Fprintf(&b, "line %d: ", e.Line)
+	}
+	if e.Key != "" {
+		fmt.Fprintf(&b, "%s: ", e.Key)
+	}
+	b.WriteString(e.Problem)
+	if e.Hint != "" {
+		fmt.Fprintf(&b, "; %s", e.Hint)
+	}
+	return b.String()
+}
+
+// faults collects what is wrong, with the lines to say where.
+type faults struct {
+	lines map[string]int
+	found []*ProfileError
+}
+
+// add notes a fault at a path such as "tensioner.0.bore". The hint may be "".
+func (f *faults) add(path, hint, problem string, args ...any) {
+	f.found = append(f.found, &ProfileError{
+		Line:    lineOf(f.lines, path),
+		Key:     withoutNumbers(path),
+		Problem: fmt.Sprintf(problem, args...),
+		Hint:    hint,
+	})
+}
+
+// err joins the faults in line order; nil when there are none.
+func (f *faults) err() error {
+	sort.SliceStable(f.found, func(i, k int) bool { return f.found[i].Line < f.found[k].Line })
+	errs := make([]error, len(f.found))
+	for i, e := range f.found {
+		errs[i] = e
+	}
+	return errors.Join(errs...)
+}
+
+// withoutNumbers drops the numbers of array tables: people know the line.
+func withoutNumbers(path string) string {
+	parts := strings.Split(path, ".")
+	kept := parts[:0]
+	for _, p := range parts {
+		if _, err := strconv.Atoi(p); err != nil {
+			kept = append(kept, p)
+		}
+	}
+	return strings.Join(kept, ".")
+}
+
+// table is one TOML table being read. Each getter takes one key; rest refuses
+// those that none took. A getter of an absent key gives the zero value.
+type table struct {
+	faults *faults
+	path   string
+	values map[string]any
+	known  []string
+}
+
+func (t *table) at(key string) string { return join(t.path, key) }
+
+func (t *table) take(key string) (any, bool) {
+	t.known = append(t.known, key)
+	v, ok := t.values[key]
+	return v, ok
+}
+
+func (t *table) has(key string) bool { _, ok := t.values[key]; return ok }
+
+// text takes a string.
+func (t *table) text(key string) string {
+	v, ok := t.take(key)
+	if !ok {
+		return ""
+	}
+	s, ok := v.(string)
+	if !ok {
+		t.faults.add(t.at(key), `put the text between quote marks`, "%s is not text", kind(v))
+	}
+	return strings.TrimSpace(s)
+}
+
+// need takes a string that must not be empty.
+func (t *table) need(key, hint string) string {
+	s := t.text(key)
+	if _, isText := t.values[key].(string); s == "" && (isText || !t.has(key)) {
+		t.faults.add(t.at(key), hint, "missing")
+	}
+	return s
+}
+
+// number takes a bare number within the limits.
+func (t *table) number(key string, low, high float64) float64 {
+	v, ok := t.take(key)
+	if !ok {
+		return 0
+	}
+	n, ok := v.(float64)
+	if i, isInt := v.(int64); isInt {
+		n, ok = float64(i), true
+	}
+	switch {
+	case !ok:
+		t.faults.add(t.at(key), "this one is a plain number without a unit or quote marks", "%s is not a number", kind(v))
+	case !(n >= low && n <= high) || math.IsInf(n, 0):
+		t.faults.add(t.at(key), fmt.Sprintf("it must lie between %g and %g", low, high), "%g is impossible", n)
+	default:
+		return n
+	}
+	return 0
+}
+
+// whole takes a whole number within the limits.
+func (t *table) whole(key string, low, high int) int {
+	n := t.number(key, float64(low), float64(high))
+	if n != math.Trunc(n) {
+		t.faults.add(t.at(key), "", "%g is not a whole number", n)
+		return 0
+	}
+	return int(n)
+}
+
+// quantity takes a quantity above zero; zero and less are impossible for all
+// that a mill.toml holds, with one exception: see orZero.
+func (t *table) quantity(key string, dims ...Dim) Quantity {
+	q := t.orZero(key, dims...)
+	if q.Given() && q.SI == 0 {
+		t.faults.add(t.at(key), "leave the line out if it is not known", "%q must be more than zero", q.Entered)
+		return Quantity{}
+	}
+	return q
+}
+
+// orZero takes a quantity of zero or more.
+func (t *table) orZero(key string, dims ...Dim) Quantity {
+	v, ok := t.take(key)
+	if !ok {
+		return Quantity{}
+	}
+	text, ok := v.(string)
+	if !ok {
+		hint := fmt.Sprintf("write the number with its unit between quote marks: %s", unitNames(dims))
+		t.faults.add(t.at(key), hint, "%s has no unit", kind(v))
+		return Quantity{}
+	}
+	q, err := ParseQuantity(text, dims...)
+	var bad *QuantityError
+	if errors.As(err, &bad) {
+		t.faults.add(t.at(key), bad.Hint, "%q: %s", bad.Text, bad.Problem)
+		return Quantity{}
+	}
+	if q.SI < 0 {
+		t.faults.add(t.at(key), "check the sign", "%q must not be negative", q.Entered)
+		return Quantity{}
+	}
+	return q
+}
+
+// needQuantity takes a quantity above zero that must be there.
+func (t *table) needQuantity(key, hint string, dims ...Dim) Quantity {
+	if !t.has(key) {
+		t.faults.add(t.at(key), hint, "missing")
+	}
+	return t.quantity(key, dims...)
+}
+
+// date takes a day, as text or as TOML's own date.
+func (t *table) date(key string) string {
+	v, ok := t.take(key)
+	if !ok {
+		return ""
+	}
+	if day, isTime := v.(time.Time); isTime {
+		return day.Format(time.DateOnly)
+	}
+	s, _ := v.(string)
+	if _, err := time.Parse(time.DateOnly, strings.TrimSpace(s)); err != nil {
+		t.faults.add(t.at(key), `write year-month-day, such as "2027-03-31"`, "%s is not a date", kind(v))
+		return ""
+	}
+	return strings.TrimSpace(s)
+}
+
+// oneOf takes one of the words; absent gives "".
+func oneOf[T ~string](t *table, key string, words ...T) T {
+	s := T(t.text(key))
+	if s == "" {
+		return ""
+	}
+	list := make([]string, len(words))
+	for i, w := range words {
+		if s == w {
+			return s
+		}
+		list[i] = string(w)
+	}
+	t.faults.add(t.at(key), "write one of: "+strings.Join(list, ", "), "%q is not known", s)
+	return ""
+}
+
+// rest refuses the keys that no getter took.
+func (t *table) rest() {
+	for _, key := range slices.Sorted(maps.Keys(t.values)) {
+		if !slices.Contains(t.known, key) {
+			t.faults.add(t.at(key), nearest(key, t.known), "unknown key")
+		}
+	}
+}
+
+// kind names a value for a message.
+func kind(v any) string {
+	switch v := v.(type) {
+	case string:
+		return strconv.Quote(v)
+	case map[string]any, []map[string]any:
+		return "a table"
+	case []any:
+		return "a list"
+	}
+	return fmt.Sprint(v)
+}
