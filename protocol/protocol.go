@@ -157,7 +157,7 @@ type Note struct{ Text string }
 // Unknown is a well-formed line whose record word this version does not know.
 type Unknown struct {
 	Word string
-	Body string
+	Body string // the whole body, Word included
 }
 
 func (Here) word() string      { return "here" }
