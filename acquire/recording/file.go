@@ -58,7 +58,7 @@ func ReadFile(path string) (*Recording, error) {
 	if err != nil {
 		return nil, fmt.Errorf("read a recording: %w", err)
 	}
-	rec, err := parse(data)
+	rec, err := readAll(data)
 	if err != nil {
 		return rec, fmt.Errorf("%s: %w", path, err)
 	}

@@ -8,6 +8,8 @@ import (
 	"math"
 	"strconv"
 	"time"
+
+	"tautramp/acquire/mill"
 )
 
 const (
@@ -62,6 +64,14 @@ func checkHeader(h Header) error {
 		return errors.New("its plan has fewer than no cycles")
 	}
 	return nil
+}
+
+func parseProfile(text []byte) (*mill.Profile, error) {
+	p, err := mill.Parse(text)
+	if err != nil {
+		return nil, fmt.Errorf("the profile inside the recording is refused: %w", err)
+	}
+	return p, nil
 }
 
 // isSeal reports whether text is a check sum as the file writes it.

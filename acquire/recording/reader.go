@@ -31,14 +31,25 @@ func (e *CorruptError) Error() string {
 }
 
 // Read reads a whole recording into memory and checks every seal. Wire lines
-// share one buffer. With a *CorruptError the recording's intact prefix is
-// returned beside it; a torn file is no error.
+// share one buffer. A torn file is no error. With a *CorruptError the intact
+// prefix is returned beside it, and so is the recording when its profile is
+// refused by mill.Parse: Header.Parsed is nil then.
 func Read(r io.Reader) (*Recording, error) {
 	data, err := io.ReadAll(r)
 	if err != nil {
 		return nil, fmt.Errorf("read a recording: %w", err)
 	}
-	return parse(data)
+	return readAll(data)
+}
+
+func readAll(data []byte) (*Recording, error) {
+	rec, err := parse(data)
+	if rec == nil || len(rec.Header.Profile) == 0 {
+		return rec, err
+	}
+	profile, bad := parseProfile(rec.Header.Profile)
+	rec.Header.Parsed = profile
+	return rec, errors.Join(err, bad)
 }
 
 // reader walks through the bytes of a file, seal by seal.
@@ -57,29 +68,28 @@ func parse(data []byte) (*Recording, error) {
 		return nil, err
 	}
 	r := &reader{data: data, sum: sha256.New(), rec: &Recording{}}
-	for {
-		more, err := r.next()
-		if err != nil {
-			return r.damaged(err)
-		}
-		if !more {
-			break
-		}
-	}
-	if r.block == 0 {
+	err := r.walk()
+	if err == nil && r.block == 0 {
 		return nil, fmt.Errorf("%w: %w", ErrNotRecording, ErrNoHeader)
 	}
-	if r.rec.Outcome == "" {
+	r.rec.TailBytes = int64(len(data) - r.pos)
+	if err != nil {
+		r.rec.Outcome = Corrupt
+		err = &CorruptError{Offset: int64(r.pos), Reason: err.Error()}
+	} else if r.rec.Outcome == "" {
 		r.rec.Outcome = Torn
-		r.rec.TailBytes = int64(len(data) - r.pos)
 	}
-	return r.rec, nil
+	return r.rec, err
 }
 
-func (r *reader) damaged(err error) (*Recording, error) {
-	r.rec.Outcome = Corrupt
-	r.rec.TailBytes = int64(len(r.data) - r.pos)
-	return r.rec, &CorruptError{Offset: int64(r.pos), Reason: err.Error()}
+// walk takes block after block to the end of what is whole.
+func (r *reader) walk() error {
+	for {
+		more, err := r.next()
+		if err != nil || !more {
+			return err
+		}
+	}
 }
 
 func checkMagic(data []byte) error {

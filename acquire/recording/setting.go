@@ -14,12 +14,11 @@ func (h Header) SettingQuantity() (protocol.Quantity, error) {
 	if h.Parsed == nil {
 		return "", errors.New("find what the tensioner is set by: the profile was not read")
 	}
-	for _, t := range h.Parsed.Tensioners {
-		if t.Name == h.Tensioner || (h.Tensioner == "" && len(h.Parsed.Tensioners) == 1) {
-			return quantityOf(t.SetBy)
-		}
+	t, err := h.Parsed.FindTensioner(h.Tensioner)
+	if err != nil {
+		return "", fmt.Errorf("find what the tensioner is set by: %w", err)
 	}
-	return "", fmt.Errorf("the profile has no tensioner %q", h.Tensioner)
+	return quantityOf(t.SetBy)
 }
 
 func quantityOf(by mill.SetBy) (protocol.Quantity, error) {

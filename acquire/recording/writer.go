@@ -29,10 +29,9 @@ const (
 // Writer writes one recording. It is for one goroutine. The first error of the
 // file stays: every later call returns it, and nothing more is written.
 type Writer struct {
-	f       File
-	every   time.Duration
-	live    bool // events carry a time
-	devices int
+	f      File
+	header Header
+	every  time.Duration
 
 	line    []byte // scratch
 	buf     []byte // not yet handed to the file
@@ -45,11 +44,15 @@ type Writer struct {
 	closed  bool
 }
 
-// NewWriter writes and seals the header, and syncs it. every is the recording
-// time between seals; 0 means SyncInterval of real time. The Writer owns f from
-// here, also when an error is returned: then f is closed.
+// NewWriter writes and seals the header, and syncs it; a profile that could
+// not be read back is refused. every is the recording time between seals; 0
+// means SyncInterval of real time. The Writer owns f from here, also when an
+// error is returned: then f is closed.
 func NewWriter(f File, h Header, every time.Duration) (*Writer, error) {
 	block, err := appendHeader(nil, h)
+	if err == nil {
+		h.Parsed, err = parseProfile(h.Profile)
+	}
 	if err != nil {
 		return nil, errors.Join(err, f.Close())
 	}
@@ -57,8 +60,7 @@ func NewWriter(f File, h Header, every time.Duration) (*Writer, error) {
 		every = time.Duration(float64(SyncInterval) * h.ClockFactor)
 	}
 	w := &Writer{
-		f: f, every: every, live: h.Source == Live, devices: len(h.Devices),
-		sum: sha256.New(),
+		f: f, header: h, every: every, sum: sha256.New(),
 	}
 	w.add(block)
 	if err := w.seal(); err != nil {
@@ -67,13 +69,16 @@ func NewWriter(f File, h Header, every time.Duration) (*Writer, error) {
 	return w, nil
 }
 
+// Header is what the file says at its top, with Parsed filled in.
+func (w *Writer) Header() Header { return w.header }
+
 // Write adds one entry. It reaches the disk with the next seal. An entry that
 // cannot be written down is refused and does no harm.
 func (w *Writer) Write(e Entry) error {
 	if err := w.usable(); err != nil {
 		return err
 	}
-	if err := checkEntry(e, w.devices); err != nil {
+	if err := checkEntry(e, len(w.header.Devices)); err != nil {
 		return err
 	}
 	w.line = appendEntry(w.line[:0], e)
@@ -148,7 +153,7 @@ func WallEntry(at time.Duration, wall time.Time) Entry {
 
 func (w *Writer) wallEntry(at time.Duration, wall time.Time) Entry {
 	e := WallEntry(max(at, 0), wall)
-	e.HasAt = w.live
+	e.HasAt = w.header.Source == Live
 	return e
 }
 
