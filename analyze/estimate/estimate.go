@@ -4,6 +4,8 @@
 // Pure. Deliberately absent: units and anything about bands or tensioners.
 package estimate
 
+import "math"
+
 // Estimate is a value with its uncertainty and its origin. The zero value is
 // unknown: it has no Method, and Known reports false.
 type Estimate struct {
@@ -15,11 +17,54 @@ type Estimate struct {
 	Why    string  // why it is unknown, when it is
 }
 
-// Line is a straight line y = A + B x with the covariance of its coefficients.
-type Line struct {
-	A, B              float64
-	VarA, VarB, CovAB float64
-	ResidualSD        float64 // sqrt(sum r^2 / DoF)
-	DoF               float64
-	N                 int
+// Unknown is an estimate that could not be made. why says in plain words what
+// is missing.
+func Unknown(why string) Estimate { return Estimate{Value: math.NaN(), Why: why} }
+
+// Exact is a value without uncertainty, such as a definition.
+func Exact(value float64, method string) Estimate {
+	return Estimate{Value: value, DoF: math.Inf(1), Method: method}
+}
+
+// Known reports whether there is a value.
+func (e Estimate) Known() bool { return e.Method != "" }
+
+// Std is the combined standard uncertainty, the root sum of squares of Random
+// and System; NaN when the value is unknown.
+func (e Estimate) Std() float64 {
+	if !e.Known() {
+		return math.NaN()
+	}
+	return math.Hypot(e.Random, e.System)
+}
+
+// Interval95 holds the true value with 95 % confidence: Student's t at the
+// effective degrees of freedom of Random and System together (JCGM 100 G.4,
+// System taken as known well). NaN when the value is unknown.
+func (e Estimate) Interval95() (lo, hi float64) {
+	dof := EffectiveDoF([]Component{{Std: e.Random, DoF: e.DoF}, {Std: e.System, DoF: math.Inf(1)}})
+	return e.interval(e.Std(), dof)
+}
+
+// RandomInterval95 is the interval from scatter alone. NaN when the value is
+// unknown.
+func (e Estimate) RandomInterval95() (lo, hi float64) { return e.interval(e.Random, e.DoF) }
+
+func (e Estimate) interval(std, dof float64) (lo, hi float64) {
+	if !e.Known() {
+		return math.NaN(), math.NaN()
+	}
+	if std == 0 {
+		return e.Value, e.Value
+	}
+	half := Student95(dof) * std
+	return e.Value - half, e.Value + half
+}
+
+// Scale is the estimate times an exact factor, its uncertainties with it.
+func (e Estimate) Scale(by float64) Estimate {
+	e.Value *= by
+	e.Random *= math.Abs(by)
+	e.System *= math.Abs(by)
+	return e
 }

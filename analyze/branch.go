@@ -1,0 +1,60 @@
+package analyze
+
+import "tautramp/analyze/estimate"
+
+// Direction is the way the setting moves.
+type Direction string
+
+// The two directions.
+const (
+	Rising  Direction = "rising"
+	Falling Direction = "falling"
+)
+
+// Branch is all fitted cycles together: stress = Stress0 + Slope * setting.
+type Branch struct {
+	Direction Direction
+	Stress0   estimate.Estimate // Pa
+	Slope     estimate.Estimate // Pa per SI unit of setting
+	LowSI     float64           // captured range of setting
+	HighSI    float64
+	LowPa     float64 // captured range of stress
+	HighPa    float64
+	Cycles    int
+}
+
+// stressFigure is the band stress at a setting: (A + B p - zero) E / L.
+func stressFigure(d Direction, settingSI float64) figure {
+	return func(r ramp, k constants) float64 {
+		l := r.line(d)
+		return (l.A + l.B*settingSI - r.zeroM) * k.paPerM()
+	}
+}
+
+// settingFigure is the setting at a band stress.
+func settingFigure(d Direction, stressPa float64) figure {
+	return func(r ramp, k constants) float64 {
+		l := r.line(d)
+		return (r.zeroM + stressPa/k.paPerM() - l.A) / l.B
+	}
+}
+
+func (r *Result) branch(d Direction) Branch {
+	if d == Falling {
+		return r.Falling
+	}
+	return r.Rising
+}
+
+// StressAt is the band stress on a branch at a setting, Pa. Errors:
+// *OutOfRangeError outside the captured settings, ErrNoZero.
+func (r *Result) StressAt(d Direction, settingSI float64) (estimate.Estimate, error) {
+	b := r.branch(d)
+	if !(settingSI >= b.LowSI && settingSI <= b.HighSI) {
+		return estimate.Estimate{}, &OutOfRangeError{settingSI, b.LowSI, b.HighSI, "setting, " + string(d)}
+	}
+	if !r.work.zeroKnown() {
+		return estimate.Estimate{}, ErrNoZero
+	}
+	return r.work.combine(stressFigure(d, settingSI), onCurve, "not finite"), nil
+}

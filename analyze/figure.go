@@ -1,0 +1,111 @@
+package analyze
+
+import (
+	"math"
+
+	"tautramp/analyze/estimate"
+)
+
+// ramp is what one fitted cycle says: the extension on the setting, rising and
+// falling, and the extension at zero tension that both share.
+type ramp struct {
+	rising, falling estimate.Line
+	zeroM           float64 // NaN: not known
+	zeroVar         float64 // of scatter, m2
+}
+
+func (r ramp) line(d Direction) estimate.Line {
+	if d == Falling {
+		return r.falling
+	}
+	return r.rising
+}
+
+// constants turn a ramp into stress and force.
+type constants struct{ modulusPa, gaugeM, areaM2 float64 }
+
+// paPerM is the band stress of one metre of stretch: E / L.
+func (k constants) paPerM() float64 { return k.modulusPa / k.gaugeM }
+
+// pullPerM is the wheel pull of one metre of stretch over both spans, N/m:
+// F = 2 sigma A_b.
+func (k constants) pullPerM() float64 { return 2 * k.areaM2 * k.paPerM() }
+
+// figure computes one number from one ramp; NaN where it cannot.
+type figure func(r ramp, k constants) float64
+
+// combine is a figure over all fitted ramps. Scatter is the ramps' own, with
+// what one ramp's line leaves open as its floor; what repeats is found by
+// moving each source of doubt up and down by its standard uncertainty and
+// seeing how far the figure follows (JCGM 100, 5.1.3 note 2).
+func (w *work) combine(f figure, use sourceKind, why string) estimate.Estimate {
+	values, vars := make([]float64, len(w.ramps)), make([]float64, len(w.ramps))
+	dof := 0.0
+	for i, r := range w.ramps {
+		values[i] = f(r, w.k)
+		vars[i] = withinVar(f, r, w.k)
+		dof += math.Min(r.rising.DoF, r.falling.DoF)
+	}
+	e := estimate.OverRamps(values, vars, dof)
+	if !e.Known() || math.IsNaN(e.Value) || math.IsInf(e.Value, 0) {
+		return estimate.Unknown(why)
+	}
+	var parts []estimate.Component
+	for _, s := range w.sources {
+		if s.kind&use != 0 {
+			parts = append(parts, estimate.Component{Std: w.follow(f, s), DoF: math.Inf(1)})
+		}
+	}
+	e.System = estimate.RootSum(parts)
+	return e
+}
+
+// follow is how far a figure, as the mean of the ramps, moves with one standard
+// uncertainty of a source.
+func (w *work) follow(f figure, s source) float64 {
+	moved := 0.0
+	for _, r := range w.ramps {
+		up, kUp := s.move(r, w.k, +1)
+		down, kDown := s.move(r, w.k, -1)
+		moved += (f(up, kUp) - f(down, kDown)) / 2
+	}
+	return math.Abs(moved) / float64(len(w.ramps))
+}
+
+// withinVar is the variance that one ramp's own scatter gives a figure. Each
+// line is moved along its two independent directions: as a whole at the centre
+// of its points, and in slope about that centre.
+func withinVar(f figure, r ramp, k constants) float64 {
+	sum := 0.0
+	add := func(move func(r *ramp, sign float64)) {
+		up, down := r, r
+		move(&up, +1)
+		move(&down, -1)
+		half := (f(up, k) - f(down, k)) / 2
+		sum += half * half
+	}
+	add(func(r *ramp, sign float64) { r.rising = lifted(r.rising, sign) })
+	add(func(r *ramp, sign float64) { r.rising = tilted(r.rising, sign) })
+	add(func(r *ramp, sign float64) { r.falling = lifted(r.falling, sign) })
+	add(func(r *ramp, sign float64) { r.falling = tilted(r.falling, sign) })
+	if r.zeroVar > 0 {
+		add(func(r *ramp, sign float64) { r.zeroM += sign * math.Sqrt(r.zeroVar) })
+	}
+	return sum
+}
+
+func lifted(l estimate.Line, sign float64) estimate.Line {
+	if l.VarB > 0 {
+		l.A += sign * math.Sqrt(math.Max(0, l.VarA-l.CovAB*l.CovAB/l.VarB))
+	}
+	return l
+}
+
+func tilted(l estimate.Line, sign float64) estimate.Line {
+	if l.VarB > 0 {
+		by := sign * math.Sqrt(l.VarB)
+		l.B += by
+		l.A += by * l.CovAB / l.VarB
+	}
+	return l
+}
