@@ -9,10 +9,13 @@ package acquire
 
 import (
 	"context"
+	"errors"
+	"fmt"
 	"io"
 	"time"
 
 	"tautramp/acquire/recording"
+	"tautramp/protocol"
 )
 
 // Clock is the host's time, passed in so that a rehearsal can run faster than
@@ -28,8 +31,10 @@ type Clock interface {
 	Factor() float64
 }
 
-// Dial opens one device afresh. It is called again after a loss. Read blocks
-// until a byte, the own Close or a loss; each is a different error.
+// Dial opens one device afresh; ctx is for the opening alone. It is called
+// again after a loss. Read blocks
+// until a byte, the own Close or a loss. Any error of Read before the own Close
+// counts as a loss, and the connection is closed at once.
 type Dial func(ctx context.Context) (io.ReadWriteCloser, error)
 
 // Device is one board: its port's name for people, and how to open it.
@@ -40,11 +45,13 @@ type Device struct {
 
 // Config is one capture.
 type Config struct {
-	Devices []Device
+	Devices []Device // as many as the recording's header names, in its order
 	Clock   Clock
-	Out     *recording.Writer
+	Out     *recording.Writer // the caller closes it after Run has returned
 	// OnEntry sees every entry in file order, from one goroutine, after it is
-	// written. The events it returns are written next. It may be nil.
+	// written, and may keep it. The events it returns are written next, and it
+	// sees those too. While it works the capture waits: the lines stay in the
+	// operating system's buffers. It may be nil.
 	OnEntry func(recording.Entry) []recording.Event
 	// Operator carries marks and the like; nil when nobody can press a key.
 	Operator <-chan recording.Event
@@ -53,4 +60,30 @@ type Config struct {
 	AnswerWait  time.Duration // wait for an answer before asking again; 0 means 1 s
 	SilentAfter time.Duration // no line for this long raises Silent; 0 means 3 s
 	GiveUpAfter time.Duration // a lost port not back after this ends the capture; 0 means 20 s
+	EchoEvery   time.Duration // a time echo is asked for this often; 0 means 30 s
+}
+
+// check fills in the defaults and says what the setting's channel measures.
+func (c *Config) check() (setting protocol.Quantity, err error) {
+	if c.Clock == nil || c.Out == nil {
+		return "", errors.New("start a capture: it needs a clock and a recording")
+	}
+	if n := len(c.Out.Header().Devices); len(c.Devices) == 0 || len(c.Devices) != n {
+		return "", fmt.Errorf("start a capture: %d devices, but the recording names %d", len(c.Devices), n)
+	}
+	if setting, err = c.Out.Header().SettingQuantity(); err != nil {
+		return "", fmt.Errorf("start a capture: %w", err)
+	}
+	for wait, usual := range map[*time.Duration]time.Duration{
+		&c.BootWait:    2500 * time.Millisecond,
+		&c.AnswerWait:  time.Second,
+		&c.SilentAfter: 3 * time.Second,
+		&c.GiveUpAfter: 20 * time.Second,
+		&c.EchoEvery:   30 * time.Second,
+	} {
+		if *wait <= 0 {
+			*wait = usual
+		}
+	}
+	return setting, nil
 }

@@ -1,0 +1,72 @@
+package acquire
+
+import (
+	"fmt"
+	"slices"
+	"sync"
+
+	"tautramp/protocol"
+)
+
+// gate keeps the first "run" back until every device has said who it is, so
+// that no device records a ramp that another one misses. It opens once.
+type gate struct {
+	open chan struct{}
+
+	mu      sync.Mutex
+	present [][]protocol.Chan // by device; nil: not identified, or lost again
+	opened  bool
+	setting protocol.Quantity
+}
+
+func newGate(devices int, setting protocol.Quantity) *gate {
+	return &gate{
+		open: make(chan struct{}), present: make([][]protocol.Chan, devices), setting: setting,
+	}
+}
+
+// arrive says that a device is identified. The one that completes the set
+// checks that together they measure what a calibration needs.
+func (g *gate) arrive(device int, channels []protocol.Chan) error {
+	g.mu.Lock()
+	defer g.mu.Unlock()
+	if g.opened {
+		return nil
+	}
+	g.present[device] = append([]protocol.Chan{}, channels...)
+	for _, p := range g.present {
+		if p == nil {
+			return nil
+		}
+	}
+	all := slices.Concat(g.present...)
+	for _, want := range []protocol.Quantity{g.setting, protocol.Extension} {
+		if !slices.ContainsFunc(all, func(c protocol.Chan) bool { return c.Quantity == want }) {
+			return fmt.Errorf("%w: no channel measures %s; the devices declare %s", ErrNotOurs, want, namesOf(all))
+		}
+	}
+	g.opened = true
+	close(g.open)
+	return nil
+}
+
+// leave says that a device is lost before the gate has opened.
+func (g *gate) leave(device int) {
+	g.mu.Lock()
+	defer g.mu.Unlock()
+	g.present[device] = nil
+}
+
+func namesOf(channels []protocol.Chan) string {
+	if len(channels) == 0 {
+		return "none"
+	}
+	text := ""
+	for i, c := range channels {
+		if i > 0 {
+			text += ", "
+		}
+		text += string(c.Quantity)
+	}
+	return text
+}
