@@ -20,8 +20,8 @@ type Reading struct {
 // Channel is one channel's declaration and its readings in time order.
 type Channel struct {
 	Device   int
-	Spec     protocol.Chan
-	CountSI  float64 // least count in SI: the width of the interval a reading stands for
+	Spec     protocol.Chan // as declared last
+	CountSI  float64       // least count in SI: the width of the interval a reading stands for
 	Readings []Reading
 }
 
@@ -54,27 +54,39 @@ const (
 // ClockFit is one segment of a device's clock mapped to the host timeline:
 // t = Offset + Rate * tick (unwrapped within the segment).
 type ClockFit struct {
-	Device    int
-	Part      int
-	FirstTick uint64  // unwrapped
-	LastTick  uint64  // unwrapped
-	Offset    float64 // s
-	Rate      float64 // s per tick
-	OffsetStd float64 // s, standard uncertainty of a mapped instant against the other device
-	RatePPM   float64 // measured rate against the nominal one, parts per million
-	Points    int
-	Method    string // "receive times, lower envelope" or "ticks alone"
+	Device     int
+	Part       int
+	FirstTick  uint64  // unwrapped
+	LastTick   uint64  // unwrapped
+	Offset     float64 // s
+	Rate       float64 // s per tick
+	OffsetStd  float64 // s, standard uncertainty of a mapped instant against the other device
+	RatePPM    float64 // measured rate of the device's clock against the nominal one, parts per million; 0 when nominal
+	RateStdPPM float64 // its standard uncertainty
+	Points     int     // lines with a tick and a receive time
+	Method     string  // MethodEnvelope, MethodNominal or MethodTicks
 }
+
+// How a segment of a clock was mapped.
+const (
+	MethodEnvelope = "receive times, lower envelope"
+	MethodNominal  = "receive times, smallest delay at the nominal rate" // too short for a rate of its own
+	MethodTicks    = "ticks alone"                                       // no receive times
+)
 
 // Counters is what went missing on the way, by device.
 type Counters struct {
 	Device     int
 	Lines      int    // good lines
 	Samples    int    // Val records
-	Lost       int    // numbers missing from the sequence
-	DeviceSaid uint32 // lines the device says it dropped
+	Lost       int    // numbers missing from the sequence, modulo 65,536 per gap; refused lines are among them
+	DeviceSaid uint32 // lines the device says it dropped, all boots together
 	Rejected   int    // lines refused by the scanner
 	Restarts   int
+	Backward   int // samples refused: not later than the channel's last one
+	Saturated  int // samples at or beyond the end of the range
+	Missing    int // samples without a reading: no sensor, or its fault
+	Undeclared int // samples of a channel that was never declared
 }
 
 // Set is everything later rooms may know of a recording.
@@ -86,6 +98,7 @@ type Set struct {
 	Marks     []Mark
 	Clocks    []ClockFit
 	Counters  []Counters
+	Unpaired  int // good extension readings without a setting at their instant
 	Plan      Plan
 	Warnings  []string
 }
