@@ -1,0 +1,72 @@
+package estimate
+
+import "math"
+
+// StraightAbove is the x from which on y follows one straight line to the end
+// of the data: seating, slack or a rounded reversal at the low end is left out.
+// A broken stick is fitted, and what lies below its break is cut off, as long
+// as the two lines differ by more than chance, allowing for serial dependence
+// (a penalty of 3 ln n on the gain in log likelihood), and by more than 0.2 %
+// of the range of y at the low end. ok is false when less than the upper third
+// of the range would be left, which is no straight line.
+//
+// x and y are in the order in which they were read. Errors as FitStick.
+func StraightAbove(x, y []float64) (from float64, ok bool, err error) {
+	const (
+		worthCutting = 0.002
+		leastLeft    = 1.0 / 3
+		mostCuts     = 12
+	)
+	if err := checkPoints(x, y, nil); err != nil {
+		return 0, false, err
+	}
+	low, high := Quantile(x, 0), Quantile(x, 1)
+	rangeY := Quantile(y, 1) - Quantile(y, 0)
+	from = low
+	for range mostCuts {
+		s, err := FitStick(x, y)
+		if err != nil {
+			return from, from > low, err
+		}
+		gap := math.Abs(s.Left(from) - s.Right(from))
+		if gap < worthCutting*rangeY || !s.betterThanLine(x, y) {
+			return from, true, nil
+		}
+		if (high-s.Break)/(high-low) < leastLeft {
+			return from, false, nil
+		}
+		from = s.Break
+		x, y = above(x, y, from)
+	}
+	return from, false, nil
+}
+
+// betterThanLine reports whether the stick's gain over one line is beyond
+// chance.
+func (s Stick) betterThanLine(x, y []float64) bool {
+	l, err := FitLine(x, y)
+	if err != nil {
+		return false
+	}
+	rest := make([]float64, len(x))
+	for i := range x {
+		at := s.Left(x[i])
+		if x[i] > s.Break {
+			at = s.Right(x[i])
+		}
+		rest[i] = y[i] - at
+	}
+	n := float64(len(x)) / Dependence(rest)
+	one := l.ResidualSD * l.ResidualSD * l.DoF
+	gain := n / 2 * math.Log(one/s.RSS)
+	return gain > 3*math.Log(math.Max(n, 3))
+}
+
+func above(x, y []float64, from float64) (ax, ay []float64) {
+	for i := range x {
+		if x[i] >= from {
+			ax, ay = append(ax, x[i]), append(ay, y[i])
+		}
+	}
+	return ax, ay
+}
