@@ -18,15 +18,16 @@ type fields struct {
 	err *SyntaxError
 }
 
-// cut splits a body. An empty field or too many of them is a wrong shape.
+// cut splits a body whose first field is not empty. An empty field or too many
+// of them is a wrong shape.
 func cut(body []byte, clause string) fields {
 	var f fields
+	if bytes.Contains(body, []byte("  ")) || body[len(body)-1] == ' ' {
+		f.fail(BadShape, "2.7", "an empty field: one space between fields, none at the end")
+		return f
+	}
 	for {
 		field, rest, more := bytes.Cut(body, []byte{' '})
-		if len(field) == 0 {
-			f.fail(BadShape, "2.7", "field %d is empty: one space between fields, none at the end", f.n+1)
-			return f
-		}
 		if f.n == maxFields {
 			f.fail(BadShape, clause, "more than %d fields", maxFields)
 			return f
