@@ -1,0 +1,229 @@
+package simrig
+
+import (
+	"errors"
+	"fmt"
+	"math"
+
+	"tautramp/acquire/mill"
+)
+
+// The classes of profile that no rig can be built from, and of drive that it
+// will not follow.
+var (
+	ErrNoRehearsal = errors.New("the tensioner has no rehearsal table")
+	ErrNotPressure = errors.New("the rehearsal rig knows only tensioners set by pressure")
+	ErrOverLimit   = errors.New("the drive goes past the tensioner's setting limit")
+)
+
+// Config is one rehearsal: what is pretended, what the operator does, and the
+// boards that measure it. Only Profile must be given.
+type Config struct {
+	Profile   *mill.Profile
+	Tensioner string // "" means the only one
+	Band      string // "" means the only one
+	Seed      uint64 // of all noise and arbitrary offsets
+
+	Law        Law
+	AreaFactor float64 // true A* / geometry's; 0 means 1
+	SlackM     float64 // travel between the wheel's stop and the taut band; 0 means 3 mm
+	SlackTimeS float64 // s that the pump takes over it; 0 means 8
+	Stretch    Stretch
+	Drive      Drive
+
+	Pressure    Sensor // default: 50 a second, 0.05 psi counts, 1 psi of noise, to 1,500 psi
+	Indicator   Sensor // default: 10 a second, 0.00005 in counts, 0.1 um of noise, +-0.5 in
+	Temperature Sensor // default: 1 a second, 0.1 degC counts
+	Thermometer bool   // fit the temperature sensor, on the first board
+
+	Boards   []BoardSpec // one: all sensors; two: pressure on the first, indicator on the second. nil means one
+	Load     int         // above 0: lines a second of each board, spread over its sensors
+	StrangeS float64     // s between lines of record types that version 1 has not; 0 means 7, negative none
+	Presses  []Press
+}
+
+// BoardSpec is one board.
+type BoardSpec struct {
+	TickHz      uint32  // 0 means 1,000,000
+	TickPPM     float64 // by how much its clock runs fast, parts per million
+	StartTick   uint32  // tick at power-on; 0 means an arbitrary one by the seed
+	Boots       uint32  // boots before the first
+	NoBootID    bool    // no memory to count boots in
+	ResetOnOpen bool    // boots again each time its port is opened after the first
+	QueueBytes  int     // bytes that may wait for the line; 0 means 262,144
+}
+
+// Press is one press of a push button.
+type Press struct {
+	Board int     // index
+	ID    byte    // '1' to '9'; 0 means '1'
+	AtS   float64 // s after the start of the drive
+	HoldS float64 // s until it is let go; 0 means 0.2
+}
+
+// rehearsal is a configuration with everything filled in.
+type rehearsal struct {
+	Config           // filled in
+	given     Config // as it came
+	tensioner mill.Tensioner
+	band      mill.Band
+	plant     plant
+	gauge     gauge
+	truth     Truth
+}
+
+// resolve fills in what was left to default, and refuses what cannot be.
+func resolve(c Config) (rehearsal, error) {
+	r := rehearsal{Config: c, given: c}
+	for _, step := range []func() error{r.find, r.mechanics, r.operator, r.pump, r.layout} {
+		if err := step(); err != nil {
+			return rehearsal{}, err
+		}
+	}
+	return r, nil
+}
+
+func (r *rehearsal) find() (err error) {
+	if r.Profile == nil {
+		return fmt.Errorf("%w: no profile given", ErrConfig)
+	}
+	if r.tensioner, err = r.Profile.FindTensioner(r.Tensioner); err != nil {
+		return err
+	}
+	if r.band, err = r.Profile.FindBand(r.Band); err != nil {
+		return err
+	}
+	name := r.tensioner.Name
+	if r.tensioner.SetBy != mill.SetByPressure {
+		return fmt.Errorf("%w: %s is set by %s; name another tensioner", ErrNotPressure, name, r.tensioner.SetBy)
+	}
+	if r.tensioner.Rehearsal == nil {
+		return fmt.Errorf("%w: add [tensioner.rehearsal] below %s in mill.toml", ErrNoRehearsal, name)
+	}
+	return nil
+}
+
+// mechanics makes the plant and what is true of it. The band is two straight
+// halves of its loop side by side, each stretched by the wheel's travel:
+// F = 2 sigma A_b and x = (sigma/E) loop/2.
+func (r *rehearsal) mechanics() error {
+	hidden := r.tensioner.Rehearsal
+	area := r.tensioner.GeometryAreaM2() * orElse(r.AreaFactor, 1)
+	net, loop, modulus := r.band.NetAreaM2(), hidden.BandLoop.SI, r.band.Modulus.SI
+	length := r.Profile.Rig.GaugeLength.SI
+	for _, must := range []struct {
+		name string
+		si   float64
+	}{
+		{"cylinder area", area}, {"net section of the band", net}, {"length of the band", loop},
+		{"modulus of the band", modulus}, {"gauge length", length},
+	} {
+		if !(must.si > 0) || math.IsInf(must.si, 0) {
+			return fmt.Errorf("%w: %s with %s: the %s is %g; give it in mill.toml", ErrConfig, r.tensioner.Name, r.band.Name, must.name, must.si)
+		}
+	}
+	friction, err := r.Law.newBristle(hidden.FrictionConstant.SI, hidden.FrictionProportional)
+	if err != nil {
+		return err
+	}
+	r.plant = plant{
+		areaM2:   area,
+		weightN:  hidden.Weight.SI,
+		bandNM:   4 * modulus * net / loop,
+		slackM:   orElse(r.SlackM, 3e-3),
+		friction: friction,
+	}
+	r.gauge = newGauge(r.Stretch, length, modulus, net)
+	r.truth = Truth{
+		F0N: friction.f0N, Mu: friction.mu, WeightN: hidden.Weight.SI, AreaM2: area,
+		ModulusPa: modulus, GaugeM: length, NetAreaM2: net,
+	}
+	return nil
+}
+
+// operator fills in the drive.
+func (r *rehearsal) operator() error {
+	d, limit := &r.Drive, r.tensioner.SettingLimit.SI
+	d.TopPa = orElse(d.TopPa, r.defaultTopPa(limit))
+	d.ExercisePa = min(d.TopPa, orElse(d.ExercisePa, r.truth.RisingPa(r.band.Target.SI/2)))
+	d.LowPa = orElse(d.LowPa, max(0, 0.6*r.truth.LiftFallingPa()))
+	d.RatePaS = orElse(d.RatePaS, d.TopPa/107.5)
+	if limit > 0 && d.TopPa > limit {
+		return fmt.Errorf("%w: top %.0f kPa, limit of %s %.0f kPa", ErrOverLimit, d.TopPa/1e3, r.tensioner.Name, limit/1e3)
+	}
+	if !(d.LowPa >= 0) || !(d.TopPa > d.LowPa) || !(d.ExercisePa > d.LowPa) || !(d.RatePaS > 0) || math.IsInf(d.TopPa, 0) {
+		return fmt.Errorf("%w: a drive from %.0f to %.0f kPa at %.1f kPa/s", ErrConfig, d.LowPa/1e3, d.TopPa/1e3, d.RatePaS/1e3)
+	}
+	_, err := newDriver(*d)
+	return err
+}
+
+// defaultTopPa is well past the band's target, to the nearest 10 psi, and
+// within the limit.
+func (r *rehearsal) defaultTopPa(limit float64) float64 {
+	const tenPsi = 68947.57293168361 // Pa
+	if r.band.Target.SI <= 0 {
+		return 0.85 * limit
+	}
+	top := math.Round(r.truth.RisingPa(1.22*r.band.Target.SI)/tenPsi) * tenPsi
+	if limit > 0 {
+		top = min(top, limit)
+	}
+	return top
+}
+
+// pump sizes the pump so that the wheel crosses the slack at a walk while it
+// never holds back the ramp, and the drag so that neither shows: 0.02 % of the
+// top pull at the slack's speed, and far less on the ramp.
+func (r *rehearsal) pump() error {
+	p, d := &r.plant, r.Drive
+	time := orElse(r.SlackTimeS, 8)
+	if !(p.slackM > 0) || !(time > 0) {
+		return fmt.Errorf("%w: a slack of %g m crossed in %g s", ErrConfig, p.slackM, time)
+	}
+	ramp := d.RatePaS * p.areaM2 / p.bandNM
+	speed := max(p.slackM/time, 10*ramp)
+	p.flowM3S = p.areaM2 * speed
+	p.oilM3Pa = 0.1 * p.flowM3S / d.RatePaS
+	p.dragNsM = 2e-4 * p.areaM2 * d.TopPa / speed
+	return nil
+}
+
+// layout fills in boards and sensors.
+func (r *rehearsal) layout() error {
+	if len(r.Boards) == 0 {
+		r.Boards = []BoardSpec{{}}
+	}
+	if len(r.Boards) > 2 {
+		return fmt.Errorf("%w: %d boards; one or two", ErrConfig, len(r.Boards))
+	}
+	r.Boards = append([]BoardSpec(nil), r.Boards...)
+	for i := range r.Boards {
+		if err := r.Boards[i].fill(r.Seed, i); err != nil {
+			return err
+		}
+	}
+	for i, p := range r.Presses {
+		if p.Board < 0 || p.Board >= len(r.Boards) || p.ID != 0 && (p.ID < '1' || p.ID > '9') {
+			return fmt.Errorf("%w: press %d is of button %q on board %d", ErrConfig, i, p.ID, p.Board)
+		}
+	}
+	r.StrangeS = orNone(r.StrangeS, 7)
+	return r.sensors()
+}
+
+func (s *BoardSpec) fill(seed uint64, index int) error {
+	if s.TickHz == 0 {
+		s.TickHz = 1_000_000
+	}
+	if s.TickHz < 1000 || s.TickHz > 1_000_000 || math.Abs(s.TickPPM) > 1e5 {
+		return fmt.Errorf("%w: board %d ticks at %d Hz %+g ppm; 1,000 to 1,000,000 Hz", ErrConfig, index, s.TickHz, s.TickPPM)
+	}
+	if s.StartTick == 0 {
+		s.StartTick = newRand(seed, streamTick, index).Uint32()
+	}
+	if s.QueueBytes <= 0 {
+		s.QueueBytes = 1 << 18
+	}
+	return nil
+}

@@ -1,0 +1,128 @@
+package simrig
+
+import (
+	"encoding/json"
+	"errors"
+	"math"
+	"os"
+	"testing"
+)
+
+// frictionVectors is testdata/friction.json; its SOURCES.md says where from.
+type frictionVectors struct {
+	Dahl struct {
+		Sigma, Fc float64
+		Loading   struct{ X, F []float64 } `json:"loading_from_rest"`
+		Reversal  struct {
+			Back []float64 `json:"distance_back"`
+			F    []float64
+		} `json:"reversal_from_plus_Fc"`
+		Zero float64 `json:"zero_crossing_distance"`
+	} `json:"dahl_n1"`
+	Stop struct {
+		R       float64
+		U, Stop []float64
+	}
+	Stribeck struct {
+		Fc, Fs, Vs, Sigma2 float64
+		V, F               []float64
+	}
+}
+
+func readVectors(t *testing.T) frictionVectors {
+	t.Helper()
+	text, err := os.ReadFile("testdata/friction.json")
+	if err != nil {
+		t.Fatal(err)
+	}
+	var v frictionVectors
+	if err := json.Unmarshal(text, &v); err != nil {
+		t.Fatal(err)
+	}
+	return v
+}
+
+func mustBristle(t *testing.T, l Law, f0N, mu float64) bristle {
+	t.Helper()
+	b, err := l.newBristle(f0N, mu)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return b
+}
+
+// slide moves a contact in steps that are small beside its presliding travel.
+func slide(b *bristle, dist, lengthM float64) {
+	n := math.Ceil(math.Abs(dist) / (lengthM / 500))
+	for range int(n) {
+		b.move(dist/n, 1)
+	}
+}
+
+func near(t *testing.T, what string, got, want, tolerance float64) {
+	t.Helper()
+	if !(math.Abs(got-want) <= tolerance) {
+		t.Errorf("%s: got %.12g, want %.12g within %.2g", what, got, want, tolerance)
+	}
+}
+
+func TestDahlFollowsThePublishedCurve(t *testing.T) {
+	v := readVectors(t).Dahl
+	length := v.Fc / v.Sigma
+	force := func(b *bristle) float64 { return b.levelN(0) * b.strain }
+	for i, x := range v.Loading.X {
+		b := mustBristle(t, Law{PreslidingM: length}, v.Fc, 0)
+		slide(&b, x, length)
+		near(t, "loading from rest", force(&b), v.Loading.F[i], 1e-5*v.Fc)
+	}
+	for i, back := range v.Reversal.Back {
+		b := mustBristle(t, Law{PreslidingM: length}, v.Fc, 0)
+		b.strain = 1
+		slide(&b, -back, length)
+		near(t, "after a reversal", force(&b), v.Reversal.F[i], 1e-5*v.Fc)
+	}
+	b := mustBristle(t, Law{PreslidingM: length}, v.Fc, 0)
+	b.strain = 1
+	slide(&b, -v.Zero, length)
+	near(t, "zero crossing", force(&b), 0, 1e-5*v.Fc)
+}
+
+func TestElastoplasticIsTheStopOperator(t *testing.T) {
+	v := readVectors(t).Stop
+	b := mustBristle(t, Law{Kind: Elastoplastic, PreslidingM: v.R}, v.R, 0)
+	for i := 1; i < len(v.U); i++ {
+		slide(&b, v.U[i]-v.U[i-1], v.R)
+		near(t, "stop", b.levelN(0)*b.strain, v.Stop[i], 1e-9)
+	}
+}
+
+func TestStribeckLevelFollowsThePublishedCurve(t *testing.T) {
+	v := readVectors(t).Stribeck
+	for i, speed := range v.V {
+		b := mustBristle(t, Law{Kind: Stribeck, StaticRatio: v.Fs / v.Fc, StribeckMS: v.Vs, MemoryS: 1e-9}, v.Fc, 0)
+		b.strain = 1
+		b.move(speed, 1)
+		near(t, "level and viscous part", b.levelN(0)+v.Sigma2*speed, v.F[i], 1e-8)
+	}
+}
+
+func TestLevelIsConstantPlusShareOfTheLoad(t *testing.T) {
+	const f0, mu, load = 900.0, 0.05, 20000.0
+	for kind, want := range map[LawKind]float64{
+		"": 1900, Dahl: 1900, Elastoplastic: 1900, Stribeck: 1.15 * 1900, ConstantOnly: 900, ProportionalOnly: 1000,
+	} {
+		b := mustBristle(t, Law{Kind: kind}, f0, mu)
+		near(t, "level of law "+string(kind), b.levelN(load), want, 1e-9)
+	}
+}
+
+func TestNonsenseLawsAreRefused(t *testing.T) {
+	for _, l := range []Law{
+		{Kind: "sticky"}, {PreslidingM: -1}, {Exponent: -1},
+		{Kind: Stribeck, StaticRatio: 0.5}, {Kind: Stribeck, StribeckMS: -1},
+	} {
+		if _, err := l.newBristle(1, 0); !errors.Is(err, ErrConfig) {
+			t.Errorf("%+v: got error %v, want ErrConfig", l, err)
+		}
+	}
+}

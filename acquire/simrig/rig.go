@@ -1,0 +1,156 @@
+// Package simrig is a simulated rig: a pressure-set tensioner, its band and
+// the sensors on it, integrated over time, and boards that speak the device
+// side of the wire. Start with New; then Serve each of the Boards, or WriteLog
+// for the text of a memory card.
+//
+// The physics is a force balance and a friction state, stepped in time.
+// Deliberately absent: any closed form of the two branches, any splitter or
+// estimator, and ports (callers bring streams). What was planted goes to
+// tests, by Truth, and never on the wire.
+package simrig
+
+import (
+	"errors"
+	"fmt"
+	"io"
+	"math"
+	"sync"
+)
+
+// Rig is one simulated rig. Its methods may be called from any goroutine.
+type Rig struct {
+	conf   rehearsal
+	boards []*Board
+	done   chan struct{}
+
+	mu     sync.Mutex // guards all below and the boards' state
+	world  world
+	closed bool // done is closed
+}
+
+// New builds a rig at rest. Its errors are ErrConfig, ErrNoRehearsal,
+// ErrNotPressure, ErrOverLimit and mill.ErrUnknownName.
+func New(c Config) (*Rig, error) {
+	conf, err := resolve(c)
+	if err != nil {
+		return nil, err
+	}
+	r := &Rig{conf: conf, done: make(chan struct{}), world: newWorld(conf)}
+	for i := range conf.Boards {
+		b, err := newBoard(r, i)
+		if err != nil {
+			return nil, err
+		}
+		r.boards = append(r.boards, b)
+	}
+	return r, nil
+}
+
+// Boards are the rig's boards, one or two.
+func (r *Rig) Boards() []*Board { return append([]*Board(nil), r.boards...) }
+
+// Truth is what was planted.
+func (r *Rig) Truth() Truth { return r.conf.truth }
+
+// Done is closed when the drive has ended. The boards stream on at rest.
+func (r *Rig) Done() <-chan struct{} { return r.done }
+
+// boardRuns starts the drive once every board is running.
+func (r *Rig) boardRuns(s float64) {
+	for _, b := range r.boards {
+		if !b.running {
+			return
+		}
+	}
+	if r.world.drive != nil && !(r.conf.Drive.Repeat && r.world.drive.over()) {
+		return
+	}
+	r.world.start(s)
+	for _, b := range r.boards {
+		b.plan(s)
+	}
+}
+
+// advance brings rig and boards to an instant: every task that falls due on
+// the way is fired in its turn. An instant in the past changes nothing.
+func (r *Rig) advance(toS float64) {
+	for {
+		var first *task
+		for _, b := range r.boards {
+			if t := b.next(); t != nil && (first == nil || t.dueS < first.dueS) {
+				first = t
+			}
+		}
+		if first == nil || first.dueS > toS {
+			break
+		}
+		r.world.advance(first.dueS)
+		first.dueS = first.fire(r.world.at(first.dueS))
+	}
+	r.world.advance(toS)
+	if d := r.world.drive; d != nil && d.over() && !r.closed {
+		r.closed = true
+		close(r.done)
+	}
+}
+
+// logTailS is how long a log goes on after its drive has ended, s.
+const logTailS = 2
+
+// WriteLog runs the whole drive flat out, without a clock, and writes what one
+// board would have put on a memory card. The rig itself is left as it is, so
+// the same text comes each time. A rig of two boards or with a drive that
+// never ends has no such log: ErrConfig.
+func (r *Rig) WriteLog(w io.Writer) error {
+	if len(r.boards) != 1 || r.conf.Drive.Shape == Still {
+		return fmt.Errorf("%w: a log needs one board and a drive that ends", ErrConfig)
+	}
+	fresh, err := New(r.conf.given)
+	if err != nil {
+		return err
+	}
+	b := fresh.boards[0]
+	b.plugged = true
+	b.bootLogging(0)
+	end := math.Inf(1)
+	for s := 0.0; s < end; s++ {
+		fresh.advance(s)
+		if math.IsInf(end, 1) && fresh.world.drive.over() {
+			end = s + logTailS
+		}
+		if _, err := w.Write(b.take(nil)); err != nil {
+			return fmt.Errorf("writing the log: %w", err)
+		}
+	}
+	return nil
+}
+
+// Moment is one instant of what really happened, for tests.
+type Moment struct {
+	T          float64 // s into the drive
+	PressurePa float64
+	PullN      float64 // F, both spans
+	ExtensionM float64 // between the clamps, true
+	TravelM    float64 // of the wheel; 0 where the band is just taut
+}
+
+// Trace runs the drive flat out and tells what really happened, every so many
+// seconds. It takes nothing from the boards.
+func (r *Rig) Trace(everyS float64) ([]Moment, error) {
+	if !(everyS >= stepS) || r.conf.Drive.Shape == Still {
+		return nil, fmt.Errorf("%w: a trace every %g s of drive shape %q", ErrConfig, everyS, r.conf.Drive.Shape)
+	}
+	w := newWorld(r.conf)
+	w.start(0)
+	var list []Moment
+	for i := 0; !w.drive.over(); i++ {
+		t := float64(i) * everyS
+		w.advance(t)
+		v := w.at(t)
+		list = append(list, Moment{v.driveS, v.pressurePa, w.wheel.pullN(), v.extensionM, w.wheel.travelM})
+	}
+	return list, nil
+}
+
+// ErrPlugged is a board that is being served already.
+var ErrPlugged = errors.New("the board is connected already")

@@ -1,0 +1,109 @@
+package simrig
+
+import (
+	"fmt"
+	"math"
+
+	"tautramp/acquire/mill"
+	"tautramp/protocol"
+)
+
+const (
+	psiPa = 6894.757293168361
+	inchM = 0.0254
+	iceK  = 273.15
+)
+
+// sensors fills in what each sensor is by default, and plants the arbitrary
+// zero of the indicator's display.
+func (r *rehearsal) sensors() error {
+	r.Pressure.fill(Sensor{
+		Count: Count{"[psi]", 5, -2}, PerSecond: 50, LowSI: -20 * psiPa, HighSI: 1500 * psiPa,
+		NoiseSI: psiPa, Serial: r.serialOf(mill.MeasuresSetting, mill.DimPressure),
+	})
+	r.Indicator.fill(Sensor{
+		Count: Count{"[in_i]", 5, -5}, PerSecond: 10, LowSI: -0.5 * inchM, HighSI: 0.5 * inchM,
+		NoiseSI: 1e-7, WindowS: 0.05, Serial: r.serialOf(mill.MeasuresExtension, mill.DimLength),
+	})
+	r.Temperature.fill(Sensor{
+		Count: Count{"Cel", 1, -1}, PerSecond: 1, LowSI: iceK - 40, HighSI: iceK + 85, NoiseSI: 0.03,
+	})
+	r.Pressure.WindowS, r.Temperature.WindowS = 0, 0
+	r.Indicator.OffsetSI += 2e-4 + 4e-4*newRand(r.Seed, streamZero, 0).Float64()
+	r.truth.ZeroM, r.truth.ZeroPa = r.Indicator.OffsetSI, r.Pressure.OffsetSI
+	for _, s := range []*Sensor{&r.Pressure, &r.Indicator, &r.Temperature} {
+		if s.PerSecond > 1000 || !(s.PerSecond > 0) || s.Span <= 0 {
+			return fmt.Errorf("%w: a sensor with %g samples a second and span %g; up to 1000, above 0", ErrConfig, s.PerSecond, s.Span)
+		}
+	}
+	return nil
+}
+
+// fill takes from d what s leaves to default.
+func (s *Sensor) fill(d Sensor) {
+	if s.Count == (Count{}) {
+		s.Count = d.Count
+	}
+	if s.LowSI == 0 && s.HighSI == 0 {
+		s.LowSI, s.HighSI = d.LowSI, d.HighSI
+	}
+	if s.Shows == "" {
+		s.Shows = protocol.ShowsRounded
+	}
+	if s.Serial == "" {
+		s.Serial = d.Serial
+	}
+	s.PerSecond = orElse(s.PerSecond, d.PerSecond)
+	s.NoiseSI = orNone(s.NoiseSI, d.NoiseSI)
+	s.WindowS = orNone(s.WindowS, d.WindowS)
+	s.Span = orElse(s.Span, 1)
+}
+
+// serialOf is the serial number of the profile's instrument, where it has one
+// that the wire can carry.
+func (r *rehearsal) serialOf(measures string, dim mill.Dim) string {
+	i, _ := r.Profile.FindInstrument(measures, dim, "")
+	probe := protocol.Here{Version: 1, Model: model, Serial: i.Serial, TickHz: 1, Cause: protocol.CauseAsked}
+	if _, err := protocol.Append(nil, probe); err != nil {
+		return ""
+	}
+	return i.Serial
+}
+
+// channels makes the channels of one board, in the order of their letters.
+func (r *rehearsal) channels(board int) ([]*channel, error) {
+	var list []*channel
+	add := func(index int, q protocol.Quantity, s Sensor, value, sum func(view) float64) {
+		c := &channel{Sensor: s, value: value, sum: sum, rng: newRand(r.Seed, streamNoise, index)}
+		c.spec = protocol.Chan{ID: byte('a' + len(list)), Quantity: q, Unit: s.Count.Unit,
+			Mantissa: s.Count.Mantissa, Exponent: s.Count.Exponent, Res: 1}
+		c.prepare()
+		list = append(list, c)
+	}
+	last := len(r.Boards) - 1
+	if board == 0 {
+		add(0, protocol.Pressure, r.Pressure, func(v view) float64 { return v.pressurePa }, nil)
+	}
+	if board == last {
+		sum := func(v view) float64 { return v.extensionSum }
+		add(1, protocol.Extension, r.Indicator, func(v view) float64 { return v.extensionM }, sum)
+	}
+	if board == 0 && r.Thermometer {
+		add(2, protocol.Temperature, r.Temperature, func(v view) float64 { return v.temperatureK }, nil)
+	}
+	if r.Load > 1000*len(list) {
+		return nil, fmt.Errorf("%w: a load of %d lines a second; board %d makes %d at most", ErrConfig, r.Load, board, 1000*len(list))
+	}
+	for _, c := range list {
+		perSecond := c.PerSecond
+		if r.Load > 0 {
+			perSecond = float64(r.Load) / float64(len(list))
+		}
+		c.builtPeriod = uint32(math.Round(float64(r.Boards[board].TickHz) / perSecond))
+		c.spec.Period = c.builtPeriod
+		if _, err := protocol.Append(nil, c.spec); err != nil {
+			return nil, fmt.Errorf("%w: the sensor for %s: %w", ErrConfig, c.spec.Quantity, err)
+		}
+	}
+	return list, nil
+}
