@@ -150,10 +150,12 @@ func (in *intake) joiner(c choice) *joiner {
 // std is the standard uncertainty of an instant in one part of a device's time,
 // s; of the current one where older ones are not kept.
 func (d *device) std(part int) float64 {
+	seg := d.seg
 	if part < len(d.segments) {
-		return d.segments[part].line().std
+		seg = d.segments[part]
 	}
-	return d.seg.line().std
+	instant, _ := seg.stds()
+	return instant
 }
 
 // join makes one pair of each good reading of the extension that has a setting.

@@ -40,13 +40,18 @@ func turnsUp(a, b, c point) bool {
 	return (b.y-a.y)*(c.x-a.x) < (c.y-a.y)*(b.x-a.x)
 }
 
-// thin leaves out every second inner point, in place.
+// thin leaves out, in place, the points that crowd: at most half of hullMax
+// stay, spread over the whole span.
 func thin(s hull) hull {
+	last := s[len(s)-1]
+	apart := (last.x - s[0].x) / (hullMax / 2)
 	keep := s[:1]
-	for i := 2; i < len(s)-1; i += 2 {
-		keep = append(keep, s[i])
+	for _, p := range s[1 : len(s)-1] {
+		if p.x >= keep[len(keep)-1].x+apart {
+			keep = append(keep, p)
+		}
 	}
-	return append(keep, s[len(s)-1])
+	return append(keep, last)
 }
 
 // under returns the line y = a + b x under all points that is closest to them

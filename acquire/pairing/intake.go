@@ -42,10 +42,6 @@ type source struct {
 	channel byte
 }
 
-func (a source) before(b source) bool {
-	return a.device < b.device || a.device == b.device && a.channel < b.channel
-}
-
 // intake reads the entries of a recording, one after the other.
 type intake struct {
 	devices []device

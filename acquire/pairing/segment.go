@@ -16,8 +16,8 @@ const (
 	// disorderS is how much older than the line before it a line's tick may be
 	// (SPEC 4.3); older still, the device's counter has started afresh.
 	disorderS = 1.0
-	// youngS is how long ago a counter found by its going back may have started
-	// where no receive times prove it: an old stretch of a log may repeat.
+	// youngS is how long a counter that went back may have run, beside the time
+	// without a line: boards boot in seconds.
 	youngS = 30.0
 	// promptS is how late a line may be and still count as not queued.
 	promptS = 0.5
@@ -50,7 +50,9 @@ type segment struct {
 	late   float64 // s, how much above that the last line was
 
 	cached clockLine
-	fresh  bool
+	fresh  bool       // cached is of all points so far
+	doubts [2]float64 // what stds returns
+	judged bool       // doubts is of all points so far
 }
 
 // breakKind is what ended a segment without anyone saying so.
@@ -63,19 +65,22 @@ const (
 )
 
 func (s *segment) broken(t stamp) breakKind {
-	forwardS := s.forwardS(t)
-	if forwardS < -disorderS {
-		if t.hasAt || float64(t.tick) < youngS*s.hz {
-			return rebooted
-		}
-		return noBreak
+	known, silentS := t.hasAt && s.hasAt, 0.0
+	if known {
+		silentS = (t.at - s.lastAt).Seconds()
 	}
-	// Lines that waited in a queue also come closer together than they were
-	// made; but then the line before was late.
-	if t.hasAt && s.hasAt && s.late < promptS && forwardS-(t.at-s.lastAt).Seconds() > pauseS {
+	forwardS := s.forwardS(t)
+	switch {
+	case forwardS < -disorderS && float64(t.tick) < (silentS+youngS)*s.hz:
+		return rebooted
+	case forwardS < -disorderS && known:
+		return slept // for over half a wrap
+	case known && s.late < promptS && forwardS-silentS > pauseS:
+		// Lines that waited in a queue also come closer together than they were
+		// made; but then the line before was late.
 		return slept
 	}
-	return noBreak
+	return noBreak // an old stretch of a log may repeat: its samples are refused
 }
 
 // forwardS is how far a tick is ahead of the last one, in nominal seconds.
@@ -109,17 +114,17 @@ func (s *segment) take(t stamp) int64 {
 		s.least = behind
 	}
 	s.late = behind - s.least
-	s.lastAt, s.hasAt, s.fresh = t.at, true, false
+	s.lastAt, s.hasAt, s.fresh, s.judged = t.at, true, false, false
 	return tick
 }
 
 // line is the clock's mapping as known by now; x counts from the first tick.
 func (s *segment) line() clockLine {
 	if !s.hasAt {
-		return clockLine{a: s.anchor, b: 1 / s.hz, rateStd: nominalRateStd, method: MethodTicks}
+		return clockLine{a: s.anchor, b: 1 / s.hz, method: MethodTicks}
 	}
 	if !s.fresh {
-		s.cached, s.fresh = s.env.line(s.hz, s.factor), true
+		s.cached, s.fresh = s.env.line(s.hz), true
 	}
 	return s.cached
 }
@@ -130,12 +135,27 @@ func (s *segment) at(tick int64) float64 {
 	return l.a + l.b*float64(tick-s.first)
 }
 
+// stds are the standard uncertainties of an instant, s, and of the rate,
+// relative. Ticks alone are compared with no other device's: the instant then
+// has none.
+func (s *segment) stds() (instant, rate float64) {
+	if !s.hasAt {
+		return 0, nominalRateStd
+	}
+	if !s.judged {
+		s.doubts[0], s.doubts[1] = s.env.stds(s.line(), s.hz, s.factor)
+		s.judged = true
+	}
+	return s.doubts[0], s.doubts[1]
+}
+
 // fit is the mapping as the result states it.
 func (s *segment) fit() ClockFit {
 	l := s.line()
+	instant, rate := s.stds()
 	f := ClockFit{Device: s.device, Part: s.part, FirstTick: uint64(s.first), LastTick: uint64(s.last),
-		Offset: l.a - l.b*float64(s.first), Rate: l.b, OffsetStd: l.std,
-		RateStdPPM: l.rateStd * 1e6, Points: s.env.n, Method: l.method}
+		Offset: l.a - l.b*float64(s.first), Rate: l.b, OffsetStd: instant,
+		RateStdPPM: rate * 1e6, Points: s.env.whole.n, Method: l.method}
 	if l.method == MethodEnvelope {
 		f.RatePPM = (1/(l.b*s.hz) - 1) * 1e6
 	}
