@@ -1,6 +1,9 @@
 package protocol
 
-import "bytes"
+import (
+	"bytes"
+	"strings"
+)
 
 // maxFields is more than the fields that a line of MaxLine bytes can hold and
 // still be of a known shape: 8 of a chan and 16 of the shortest unknown keys.
@@ -131,7 +134,7 @@ func (f *fields) oneOf(text []byte, clause string, list ...string) string {
 	if i := index(list, text); i >= 0 {
 		return list[i]
 	}
-	f.fail(BadWord, clause, "%q is not one of %q", text, list)
+	f.fail(BadWord, clause, "%q is not one of: %s", text, strings.Join(list, ", "))
 	return ""
 }
 

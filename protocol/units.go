@@ -67,8 +67,8 @@ func units() [28]Unit {
 }
 
 // ToSI is the SI value of a count (SPEC 6.3), or NaN when the channel's unit is
-// not in the table, which Parse never lets through. The decimal scale is
-// applied exactly: only the unit's factor rounds.
+// not in the table, which Parse never lets through. The scale rounds once, the
+// factor once.
 func ToSI(c Chan, count int32) float64 {
 	u, ok := unitOf(c)
 	if !ok {
@@ -88,16 +88,18 @@ func LeastSI(c Chan) float64 {
 }
 
 func unitOf(c Chan) (Unit, bool) {
-	for _, u := range units() {
-		if u.Code == c.Unit && u.Quantity == c.Quantity {
-			return u, true
+	table := units()
+	for i := range table {
+		if u := &table[i]; u.Code == c.Unit && u.Quantity == c.Quantity {
+			return *u, true
 		}
 	}
 	return Unit{}, false
 }
 
-// scaled is counts*mantissa*10^exponent. Both factors are below 2^53, so a
-// negative exponent divides once by an exact power and rounds once.
+// scaled is counts*mantissa*10^exponent, rounded once: the product of the whole
+// numbers is below 2^53 for every channel that Parse lets through, and so is
+// the power of ten, so a negative exponent divides two exact numbers.
 func scaled(c Chan, counts int64) float64 {
 	power := 1.0
 	for range max(c.Exponent, -c.Exponent) {
