@@ -18,7 +18,7 @@ type Branch struct {
 	Slope     estimate.Estimate // Pa per SI unit of setting
 	LowSI     float64           // captured range of setting
 	HighSI    float64
-	LowPa     float64 // captured range of stress
+	LowPa     float64 // captured range of stress; NaN where the zero is unknown
 	HighPa    float64
 	Cycles    int
 }
@@ -46,15 +46,27 @@ func (r *Result) branch(d Direction) Branch {
 	return r.Rising
 }
 
-// StressAt is the band stress on a branch at a setting, Pa. Errors:
-// *OutOfRangeError outside the captured settings, ErrNoZero.
+// StressAt is the band stress on a branch at a setting, Pa: the mean of the
+// ramps at that setting, so that the doubt of intercept and slope enters with
+// its correlation. Errors: *OutOfRangeError outside the captured settings,
+// ErrNoZero, ErrNoCycle for a result that Analyze did not make.
 func (r *Result) StressAt(d Direction, settingSI float64) (estimate.Estimate, error) {
+	if err := r.usable(); err != nil {
+		return estimate.Estimate{}, err
+	}
 	b := r.branch(d)
 	if !(settingSI >= b.LowSI && settingSI <= b.HighSI) {
 		return estimate.Estimate{}, &OutOfRangeError{settingSI, b.LowSI, b.HighSI, "setting, " + string(d)}
 	}
-	if !r.work.zeroKnown() {
-		return estimate.Estimate{}, ErrNoZero
+	return r.work.combine(stressFigure(d, settingSI), onePoint, "not a finite number"), nil
+}
+
+func (r *Result) usable() error {
+	switch {
+	case r.work == nil || len(r.work.ramps) == 0:
+		return ErrNoCycle
+	case !r.work.zeroKnown():
+		return ErrNoZero
 	}
-	return r.work.combine(stressFigure(d, settingSI), onCurve, "not finite"), nil
+	return nil
 }

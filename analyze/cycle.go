@@ -1,6 +1,11 @@
 package analyze
 
-import "tautramp/analyze/estimate"
+import (
+	"fmt"
+	"math"
+
+	"tautramp/analyze/estimate"
+)
 
 // Role says whether a cycle is fitted.
 type Role string
@@ -29,10 +34,115 @@ type Cycle struct {
 }
 
 // Fit is one branch of one cycle: extension = Line.A + Line.B * setting, SI.
-// Points is 0 where the branch could not be fitted.
+// Points is 0 where the branch was not fitted.
 type Fit struct {
 	Line   estimate.Line
 	LowSI  float64 // range of setting fitted
 	HighSI float64
 	Points int
+}
+
+const (
+	// A rise below this share of the largest is no cycle: wiggles, strokes with
+	// sag, a staircase. Judgement.
+	cycleShare = 0.15
+	// A cycle whose fall is a smaller share of its rise is not closed. Judgement.
+	closedShare = 0.75
+)
+
+// deadBand is above the noise from peak to peak, 2 s sqrt(2 ln N) for normal
+// noise, and above what is no cycle.
+func (w *work) deadBand() float64 {
+	low, high := estimate.Quantile(w.p, 0.001), estimate.Quantile(w.p, 0.999)
+	noise := math.Max(estimate.Noise(w.p), w.setup.CountSI/math.Sqrt(12))
+	return math.Max(2*noise*math.Sqrt(2*math.Log(float64(len(w.p)))), cycleShare*(high-low))
+}
+
+// findCycles cuts the pairs into rises and falls at the turning points of the
+// setting and says which of them are exercise.
+func (w *work) findCycles() error {
+	turns := Turning(w.p, w.deadBand())
+	for i := 1; i < len(turns); i++ {
+		first, peak := turns[i-1], turns[i]
+		if w.p[peak] <= w.p[first] {
+			continue
+		}
+		c := Cycle{Role: Incomplete, First: first, Peak: peak, Last: len(w.p) - 1, TopSI: w.p[peak]}
+		if i+1 < len(turns) {
+			c.Last = turns[i+1]
+			if w.p[peak]-w.p[c.Last] >= closedShare*(w.p[peak]-w.p[first]) {
+				c.Role = Ramp
+			}
+		}
+		w.res.Cycles = append(w.res.Cycles, c)
+	}
+	closed := w.assignRoles()
+	switch {
+	case len(w.res.Cycles) == 0:
+		return fmt.Errorf("analyze: the setting never rises clear of its noise: %w", ErrNoCycle)
+	case closed == 0:
+		return fmt.Errorf("analyze: the setting rises but does not come down again: %w", ErrNoCycle)
+	case len(w.fitted) == 0:
+		return fmt.Errorf("analyze: the only closed cycles are for exercise; ramp once more: %w", ErrNoCycle)
+	}
+	w.chooseWindow()
+	return nil
+}
+
+// assignRoles makes the first closed cycles exercise, as planned, and returns
+// how many are closed. Without a plan the first of several is taken for
+// exercise.
+func (w *work) assignRoles() (closed int) {
+	for _, c := range w.res.Cycles {
+		if c.Role == Ramp {
+			closed++
+		}
+	}
+	exercise := w.set.Plan.Exercise
+	if w.set.Plan.Exercise == 0 && w.set.Plan.Ramps == 0 && closed > 1 {
+		exercise = 1
+		w.warn("assumed-exercise", "No plan was recorded: the first cycle is taken for exercise and not fitted.")
+	}
+	for i := range w.res.Cycles {
+		c := &w.res.Cycles[i]
+		switch {
+		case c.Role != Ramp:
+		case exercise > 0:
+			c.Role = Exercise
+			exercise--
+		default:
+			w.fitted = append(w.fitted, i)
+		}
+	}
+	return closed
+}
+
+// chooseWindow smooths for the mean rate of the fitted rises.
+func (w *work) chooseWindow() {
+	var rates []float64
+	for _, i := range w.fitted {
+		c := w.res.Cycles[i]
+		rates = append(rates, w.meanRate(c))
+	}
+	w.rate = estimate.Median(rates)
+	w.trace.smoothFor(w.rate)
+}
+
+// meanRate is a cycle's rise over the time it took, rests left out: the middle
+// half of the rise.
+func (w *work) meanRate(c Cycle) float64 {
+	low, span := w.p[c.First], c.TopSI-w.p[c.First]
+	from, to := c.First, c.Peak
+	for i := c.First; i <= c.Peak; i++ {
+		if w.p[i] <= low+span/4 {
+			from = i
+		}
+		if w.p[i] <= low+span*3/4 {
+			to = i
+		}
+	}
+	if w.t[to] <= w.t[from] {
+		return 0
+	}
+	return (w.p[to] - w.p[from]) / (w.t[to] - w.t[from])
 }

@@ -38,7 +38,7 @@ type figure func(r ramp, k constants) float64
 // what one ramp's line leaves open as its floor; what repeats is found by
 // moving each source of doubt up and down by its standard uncertainty and
 // seeing how far the figure follows (JCGM 100, 5.1.3 note 2).
-func (w *work) combine(f figure, use sourceKind, why string) estimate.Estimate {
+func (w *work) combine(f figure, of scope, why string) estimate.Estimate {
 	values, vars := make([]float64, len(w.ramps)), make([]float64, len(w.ramps))
 	dof := 0.0
 	for i, r := range w.ramps {
@@ -52,7 +52,7 @@ func (w *work) combine(f figure, use sourceKind, why string) estimate.Estimate {
 	}
 	var parts []estimate.Component
 	for _, s := range w.sources {
-		if s.kind&use != 0 {
+		if of == wholeLoop || !s.wholeOnly {
 			parts = append(parts, estimate.Component{Std: w.follow(f, s), DoF: math.Inf(1)})
 		}
 	}

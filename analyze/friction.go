@@ -1,6 +1,8 @@
 package analyze
 
 import (
+	"math"
+
 	"tautramp/acquire/mill"
 	"tautramp/analyze/estimate"
 )
@@ -16,29 +18,59 @@ type Friction struct {
 	LoopJ     estimate.Estimate // energy lost in one cycle; unknown without the travel of the cylinders
 }
 
-// WidthAt is the half-width of the loop at one stress.
-type WidthAt struct {
-	StressPa float64           // NaN where the zero is unknown
-	RisingSI float64           // setting on the rising branch at that stretch
-	HalfSI   estimate.Estimate // setting units
+// balance is one ramp as setting on wheel pull, p = k F + a, both ways.
+type balance struct{ kUp, kDown, aUp, aDown float64 }
+
+func balanceOf(r ramp, k constants) balance {
+	n := k.pullPerM()
+	return balance{
+		kUp: 1 / (r.rising.B * n), kDown: 1 / (r.falling.B * n),
+		aUp:   (r.zeroM - r.rising.A) / r.rising.B,
+		aDown: (r.zeroM - r.falling.A) / r.falling.B,
+	}
 }
 
-// Grade is the verdict on the half-width at the working setting.
-type Grade string
+// mu = (k_up - k_dn) / (k_up + k_dn).
+func (b balance) mu() float64 { return (b.kUp - b.kDown) / (b.kUp + b.kDown) }
 
-// The grades. The zero value is inconclusive.
-const (
-	Inconclusive Grade = ""
-	Good         Grade = "good"
-	Watch        Grade = "watch"
-	Service      Grade = "service"
-)
+// areaM2 is A* = 2 / (k_up + k_dn).
+func (b balance) areaM2() float64 { return 2 / (b.kUp + b.kDown) }
 
-// RunningBand is the one-sided band in which the stress may wander after the
-// tensioner was set to the target's setting.
-type RunningBand struct {
-	AfterRisingPa  [2]estimate.Estimate // lowest and highest change from target: +0 and more
-	AfterFallingPa [2]estimate.Estimate // down and -0
-	MiddlePa       estimate.Estimate    // where vibration brings it, pressure maintained
-	Hold           mill.Hold            // as the profile states; "" = not stated, both cases apply
+// weightN is W = A* (a_up + a_dn) / 2.
+func (b balance) weightN() float64 { return b.areaM2() * (b.aUp + b.aDown) / 2 }
+
+// f0MuWN is F0 + mu W = A* (a_up - a_dn) / 2.
+func (b balance) f0MuWN() float64 { return b.areaM2() * (b.aUp - b.aDown) / 2 }
+
+// f0N is F0 = A* [(a_up - a_dn)/2 - mu (a_up + a_dn)/2]: a wrong zero moves
+// a_up and a_dn in proportion to k_up and k_dn, which leaves it as it is.
+func (b balance) f0N() float64 { return b.f0MuWN() - b.mu()*b.weightN() }
+
+// friction works out the force balance of a pressure-set tensioner.
+func (w *work) friction() {
+	f := &w.res.Friction
+	f.LoopJ = estimate.Unknown("the travel of the wheel was not measured")
+	if w.setup.Tensioner.SetBy != mill.SetByPressure && w.setup.Tensioner.SetBy != "" {
+		no := estimate.Unknown("worked out for tensioners set by pressure only")
+		f.F0N, f.Mu, f.WeightN, f.AreaM2, f.AreaRatio, f.F0MuWN = no, no, no, no, no, no
+		return
+	}
+	of := func(g func(balance) float64) figure {
+		return func(r ramp, k constants) float64 { return g(balanceOf(r, k)) }
+	}
+	const noZero = "the zero is not known"
+	f.Mu = w.combine(of(balance.mu), wholeLoop, "not a finite number")
+	f.AreaM2 = w.combine(of(balance.areaM2), wholeLoop, "not a finite number")
+	f.WeightN = w.combine(of(balance.weightN), wholeLoop, noZero)
+	f.F0MuWN = w.combine(of(balance.f0MuWN), wholeLoop, noZero)
+	f.F0N = w.combine(func(r ramp, k constants) float64 {
+		if math.IsNaN(r.zeroM) { // any extension serves
+			r.zeroM = r.rising.A
+		}
+		return balanceOf(r, k).f0N()
+	}, wholeLoop, "not a finite number")
+	f.AreaRatio = estimate.Unknown("the cylinders' bore is not given")
+	if w.setup.GeometryM2 > 0 {
+		f.AreaRatio = f.AreaM2.Scale(1 / w.setup.GeometryM2)
+	}
 }

@@ -6,96 +6,106 @@ import (
 	"tautramp/analyze/estimate"
 )
 
-// sourceKind says which figures a source of doubt touches.
-type sourceKind int
+// scope says what a figure is made of.
+type scope int
 
 const (
-	// onCurve touches figures at one setting, stress or load.
-	onCurve sourceKind = 1 << iota
-	// onSlope touches slopes and what is made of them.
-	onSlope
+	onePoint  scope = iota // one setting, stress or load on one branch
+	wholeLoop              // slopes, or both branches against each other
 )
 
 // source is one cause of doubt that repeats from ramp to ramp.
 type source struct {
-	name string
-	from string
-	kind sourceKind
-	move func(r ramp, k constants, sign float64) (ramp, constants)
+	name      string
+	from      string
+	wholeOnly bool // only touches figures made of the whole loop
+	forces    bool // only touches forces and areas
+	move      func(r ramp, k constants, sign float64) (ramp, constants)
 }
 
-// systematics lists what repeats. An instrument's error is taken as one shift
-// where a figure belongs to one point of its scale, and as a change of gain
-// over the captured range besides where a figure is made of a slope. The
-// section counts for forces only: stress comes from stretch.
+// An indicator's own reversal is taken for at most this share of its limit of
+// error. Judgement, after bench limits of 3 um for error and 2 um for
+// reversal.
+const reversalOfLimit = 2.0 / 3
+
+// systematics lists what repeats. An instrument's error is one shift where a
+// figure belongs to one point of its scale; where a figure is made of the
+// whole loop, its gain may be off besides, by as much from end to end of the
+// captured range, and an indicator reads rising and falling apart.
 func (w *work) systematics() []source {
 	s := w.setup
 	lowSI, highSI, spanM := w.reach()
-	midSI, spanSI := (lowSI+highSI)/2, highSI-lowSI
-	both := onCurve | onSlope
-	settingFrom := "limit of the instrument / sqrt 3"
+	middle, spanSI := (lowSI+highSI)/2, highSI-lowSI
+	limit := "limit of its error / sqrt 3"
 	return []source{
-		{"modulus of the steel", s.ModulusPa.Method, both, func(r ramp, k constants, sign float64) (ramp, constants) {
+		{name: "modulus of the steel", from: s.ModulusPa.Method, move: func(r ramp, k constants, sign float64) (ramp, constants) {
 			k.modulusPa += sign * s.ModulusPa.System
 			return r, k
 		}},
-		{"gauge length", s.GaugeM.Method, both, func(r ramp, k constants, sign float64) (ramp, constants) {
+		{name: "gauge length", from: s.GaugeM.Method, move: func(r ramp, k constants, sign float64) (ramp, constants) {
 			k.gaugeM += sign * s.GaugeM.System
 			return r, k
 		}},
-		{"thickness and net width", "assumed", both, func(r ramp, k constants, sign float64) (ramp, constants) {
+		{name: "thickness and net width", from: "assumed 1 %", forces: true, move: func(r ramp, k constants, sign float64) (ramp, constants) {
 			k.areaM2 *= 1 + sign*s.SectionRelStd
 			return r, k
 		}},
-		{"extension instrument", settingFrom, both, func(r ramp, k constants, sign float64) (ramp, constants) {
-			return moveLines(r, func(l estimate.Line, _ Direction) estimate.Line {
-				l.A += sign * s.ExtensionSd
-				return l
-			}), k
-		}},
-		{"extension instrument, gain", settingFrom, onSlope, func(r ramp, k constants, sign float64) (ramp, constants) {
-			gain := sign * math.Sqrt2 * s.ExtensionSd / spanM
-			return moveLines(r, func(l estimate.Line, _ Direction) estimate.Line {
-				mid := l.A + l.B*midSI
-				l.B *= 1 + gain
-				l.A = mid - l.B*midSI
-				return l
-			}), k
-		}},
-		{"setting instrument", settingFrom, both, func(r ramp, k constants, sign float64) (ramp, constants) {
-			return moveLines(r, func(l estimate.Line, _ Direction) estimate.Line {
-				l.A += l.B * sign * s.SettingStd
-				return l
-			}), k
-		}},
-		{"setting instrument, gain", settingFrom, onSlope, func(r ramp, k constants, sign float64) (ramp, constants) {
-			gain := sign * math.Sqrt2 * s.SettingStd / spanSI
-			return moveLines(r, func(l estimate.Line, _ Direction) estimate.Line {
-				mid := l.A + l.B*midSI
-				l.B *= 1 + gain
-				l.A = mid - l.B*midSI
-				return l
-			}), k
-		}},
-		{"zero", w.zeroFrom, both, func(r ramp, k constants, sign float64) (ramp, constants) {
+		{name: "extension instrument", from: limit, move: shiftExtension(s.ExtensionSd, false)},
+		{name: "extension instrument, gain", from: limit, wholeOnly: true, move: turnLines(math.Sqrt2*s.ExtensionSd/spanM, middle)},
+		{name: "extension instrument, its own reversal", from: "assumed 2/3 of " + limit, wholeOnly: true,
+			move: shiftExtension(reversalOfLimit*s.ExtensionSd/2, true)},
+		{name: "setting instrument", from: limit, move: shiftSetting(s.SettingStd, false)},
+		{name: "setting instrument, gain", from: limit, wholeOnly: true, move: turnLines(math.Sqrt2*s.SettingStd/spanSI, middle)},
+		{name: "zero", from: w.zeroDoubt(), move: func(r ramp, k constants, sign float64) (ramp, constants) {
 			r.zeroM += sign * w.zeroStd
 			return r, k
 		}},
-		{"time alignment", "time error of the pairs x rate", both, func(r ramp, k constants, sign float64) (ramp, constants) {
-			return moveLines(r, func(l estimate.Line, d Direction) estimate.Line {
-				shift := sign * w.timeStd
-				if d == Falling {
-					shift = -shift
-				}
-				l.A += l.B * shift
-				return l
-			}), k
-		}},
+		{name: "time alignment", from: "time between the channels x rate of the setting", move: shiftSetting(w.timeStd, true)},
 	}
 }
 
-func moveLines(r ramp, move func(estimate.Line, Direction) estimate.Line) ramp {
-	r.rising = move(r.rising, Rising)
-	r.falling = move(r.falling, Falling)
-	return r
+func (w *work) zeroDoubt() string { return "least count of the extension, at the " + w.zeroFrom }
+
+type mover func(r ramp, k constants, sign float64) (ramp, constants)
+
+// shiftExtension moves the lines by std in extension, the falling one the
+// other way where apart is set.
+func shiftExtension(std float64, apart bool) mover {
+	return lineMover(func(l estimate.Line, d Direction, sign float64) estimate.Line {
+		l.A += sign * std * side(d, apart)
+		return l
+	})
+}
+
+// shiftSetting moves the lines by std in setting.
+func shiftSetting(std float64, apart bool) mover {
+	return lineMover(func(l estimate.Line, d Direction, sign float64) estimate.Line {
+		l.A += l.B * sign * std * side(d, apart)
+		return l
+	})
+}
+
+// turnLines changes the slopes by a share, about a setting.
+func turnLines(share, aboutSI float64) mover {
+	return lineMover(func(l estimate.Line, _ Direction, sign float64) estimate.Line {
+		by := l.B * sign * share
+		l.B += by
+		l.A -= by * aboutSI
+		return l
+	})
+}
+
+func side(d Direction, apart bool) float64 {
+	if apart && d == Falling {
+		return -1
+	}
+	return 1
+}
+
+func lineMover(move func(l estimate.Line, d Direction, sign float64) estimate.Line) mover {
+	return func(r ramp, k constants, sign float64) (ramp, constants) {
+		r.rising = move(r.rising, Rising, sign)
+		r.falling = move(r.falling, Falling, sign)
+		return r, k
+	}
 }

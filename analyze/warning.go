@@ -1,7 +1,125 @@
 package analyze
 
+import (
+	"fmt"
+	"math"
+
+	"tautramp/protocol"
+)
+
 // Warning is something the reader must know beside the figures.
 type Warning struct {
 	Code string // stable word for machines
 	Text string
+}
+
+func (w *work) warn(code, text string) {
+	w.res.Warnings = append(w.res.Warnings, Warning{code, text})
+}
+
+const (
+	// A ramp faster than this share of its top a second. Ramps of 1 to 5 minutes
+	// are asked for. Judgement.
+	fastShare = 0.02
+	// An effective area further than this from geometry's. Judgement.
+	areaOff = 0.05
+)
+
+// warnings says what the figures do not: what was assumed, missing, or out of
+// the ordinary. Their order is fixed.
+func (w *work) warnings() {
+	for _, check := range []func(){
+		w.warnRamps, w.warnInstruments, w.warnZero, w.warnTarget, w.warnShape, w.warnPace, w.warnArea,
+	} {
+		check()
+	}
+}
+
+func (w *work) warnRamps() {
+	switch n := len(w.ramps); n {
+	case 1:
+		w.warn("one-cycle", "One ramp only: how well the next setting repeats is not known. Ramp at least three times.")
+	case 2:
+		w.warn("two-cycles", "Two ramps only: the intervals are wide because two say little about the next. Ramp three times.")
+	}
+	for i, c := range w.res.Cycles {
+		if c.Role == Incomplete {
+			w.warn("incomplete-cycle", fmt.Sprintf("Cycle %d did not come down again and is not fitted.", i+1))
+		}
+	}
+}
+
+func (w *work) warnInstruments() {
+	if w.setup.SettingStd == 0 {
+		w.warn("no-setting-instrument", "The profile gives no limit of error for the instrument that shows the setting: its error is in no interval.")
+	}
+	if w.setup.ExtensionSd == 0 {
+		w.warn("no-extension-instrument", "The profile gives no limit of error for the instrument that shows the stretch: its error is in no interval.")
+	}
+	if w.setup.Rig.Faces < 2 {
+		w.warn("one-face", "Stretch was measured on one face only: curl of the band shows as stretch and is in no interval. Measure the other face too.")
+	}
+	if s := w.set.Extension.Spec.Shows; s != protocol.ShowsRounded && s != protocol.ShowsTruncated {
+		w.warn("display-unknown", "The stretch indicator does not say whether it rounds or cuts off its last digit: half a count is added to the doubt of the zero.")
+	}
+}
+
+func (w *work) warnZero() {
+	if !w.zeroKnown() {
+		w.warn("zero-unknown", "The stretch of the slack band was not recorded: no band stress can be given, nor a setting for the target. Let the band go slack before and after each ramp, or mark the zero on the slack band.")
+		return
+	}
+	for _, i := range w.fitted {
+		if !w.lulls[i].level.Known() && !w.lulls[i+1].level.Known() && w.res.Cycles[i].ZeroFrom == slackBand {
+			w.warn("zero-borrowed", fmt.Sprintf("The band was not slack before or after cycle %d: the zero of another cycle stands in.", i+1))
+		}
+	}
+}
+
+func (w *work) warnTarget() {
+	if w.setup.TargetPa <= 0 {
+		w.warn("no-target", "No target is given: no setting is worked out for one.")
+		return
+	}
+	if _, ok := w.res.TargetError().(*OutOfRangeError); ok {
+		w.warn("target-out-of-range", "The target lies outside the captured range on one branch or both. Ramp further past it, never past the maker's limit.")
+	}
+	if at := w.res.AtRising.SettingSI; w.setup.LimitSI > 0 && at.Known() && at.Value > w.setup.LimitSI {
+		w.warn("target-over-limit", "The setting for the target lies above the tensioner's limit: do not set it.")
+	}
+}
+
+func (w *work) warnShape() {
+	for _, i := range w.fitted {
+		if w.legs[i].curved {
+			w.warn("branch-curved", fmt.Sprintf("Cycle %d is not straight over most of its range: only its straightest part is fitted.", i+1))
+		}
+		c := w.res.Cycles[i]
+		for k := c.First + 1; k <= c.Last; k++ {
+			if w.set.Pairs[k].Part != w.set.Pairs[k-1].Part {
+				w.warn("gap", fmt.Sprintf("Cycle %d has a gap in its readings.", i+1))
+				break
+			}
+		}
+	}
+}
+
+func (w *work) warnPace() {
+	for _, i := range w.fitted {
+		c := w.res.Cycles[i]
+		if w.meanRate(c) > fastShare*c.TopSI {
+			w.warn("too-fast", fmt.Sprintf("Cycle %d was ramped faster than 2 %% of its top a second: lag between the instruments opens the loop.", i+1))
+		}
+	}
+}
+
+func (w *work) warnArea() {
+	r := w.res.Friction.AreaRatio
+	if !r.Known() {
+		return
+	}
+	lo, hi := r.Interval95()
+	if math.Abs(r.Value-1) > areaOff && (lo > 1 || hi < 1) {
+		w.warn("area-off", fmt.Sprintf("The area that works is %.2f of what bore, cylinders and travel ratio give: check them, the gauge and the section. Band stress does not depend on them.", r.Value))
+	}
 }

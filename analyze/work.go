@@ -13,16 +13,25 @@ type work struct {
 	res     *Result
 	setup   Setup
 	set     *pairing.Set
-	t, p, e []float64 // pairs: s, setting SI, extension m
+	t, p, e []float64 // of the pairs: s, setting SI, extension m
+	trace   *trace
+	noiseM  float64 // standard deviation of one extension reading, m
+	rate    float64 // of the fitted rises, mean, SI/s
 
-	ramps    []ramp
-	k        constants
+	legs   []legs // parallel to the cycles
+	lulls  []lull // low ends: before the first top, between tops, after the last
+	slack  []bool // pairs taken with a slack band
+	ramps  []ramp // of the fitted cycles
+	fitted []int  // their indexes
+	k      constants
+
 	sources  []source
-	zeroStd  float64 // m, what repeats
+	zeroStd  float64 // m, of the zero, what repeats
 	zeroFrom string
-	timeStd  float64 // SI of setting
+	timeStd  float64 // of the setting, SI, from the time between the channels
 }
 
+// leastPairs is fewer than any real ramp has.
 const leastPairs = 20
 
 func newWork(set *pairing.Set, s Setup) (*work, error) {
@@ -34,73 +43,43 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 		return nil, fmt.Errorf("analyze: %d pairs where %d are needed: %w", n, leastPairs, ErrTooFewPairs)
 	}
 	w := &work{setup: s, set: set, res: &Result{Setup: s}}
-	w.k = constants{s.ModulusPa.Value, s.GaugeM.Value, s.NetAreaM2}
-	for _, q := range set.Pairs {
+	w.res.work = w
+	for i, q := range set.Pairs {
+		if !finite(q.T) || !finite(q.Setting) || !finite(q.Extension) {
+			return nil, fmt.Errorf("analyze: pair %d: %w", i, estimate.ErrBadValue)
+		}
+		if i > 0 && q.T < w.t[i-1] {
+			return nil, fmt.Errorf("analyze: pair %d is earlier than the one before it: %w", i, estimate.ErrBadValue)
+		}
 		w.t, w.p, w.e = append(w.t, q.T), append(w.p, q.Setting), append(w.e, q.Extension)
 	}
+	w.k = constants{s.ModulusPa.Value, s.GaugeM.Value, s.NetAreaM2}
+	w.trace = newTrace(set, s.CountSI)
+	w.noiseM = math.Max(estimate.Noise(w.e), s.CountM/math.Sqrt(12))
+	w.slack = make([]bool, len(w.t))
 	return w, nil
 }
 
-func (w *work) zeroKnown() bool { return w.zeroFrom != "" }
-
-func (w *work) findCycles() error {
-	lo, hi := estimate.Quantile(w.p, 0), estimate.Quantile(w.p, 1)
-	turns := Turning(w.p, 0.15*(hi-lo))
-	for i := 1; i < len(turns); i++ {
-		if w.p[turns[i]] > w.p[turns[i-1]] {
-			c := Cycle{Role: Incomplete, First: turns[i-1], Peak: turns[i], Last: len(w.p) - 1, TopSI: w.p[turns[i]]}
-			if i+1 < len(turns) {
-				c.Role, c.Last = Ramp, turns[i+1]
-			}
-			w.res.Cycles = append(w.res.Cycles, c)
-		}
+// pick is the values of v at the indexes.
+func pick(v []float64, at []int) []float64 {
+	out := make([]float64, len(at))
+	for k, i := range at {
+		out[k] = v[i]
 	}
-	if len(w.res.Cycles) == 0 {
-		return fmt.Errorf("analyze: %w", ErrNoCycle)
-	}
-	return nil
+	return out
 }
 
-func (w *work) fitCycles() {
-	for i := range w.res.Cycles {
-		c := &w.res.Cycles[i]
-		if c.Role != Ramp {
-			continue
-		}
-		low := w.p[c.First]
-		span := c.TopSI - low
-		c.Rising = w.fit(c.First, c.Peak, low+0.3*span, c.TopSI)
-		c.Falling = w.fit(c.Peak, c.Last, low+0.2*span, low+0.75*span)
-		w.ramps = append(w.ramps, ramp{rising: c.Rising.Line, falling: c.Falling.Line, zeroM: math.NaN()})
+// grouped averages neighbours so that at most so many points are left.
+func grouped(v []float64, most int) []float64 {
+	size := (len(v) + most - 1) / most
+	if size <= 1 {
+		return v
 	}
-}
-
-func (w *work) fit(first, last int, low, high float64) Fit {
-	var x, y []float64
-	for i := first; i <= last; i++ {
-		if w.p[i] >= low && w.p[i] <= high {
-			x, y = append(x, w.p[i]), append(y, w.e[i])
-		}
+	var out []float64
+	for len(v) > 0 {
+		n := min(size, len(v))
+		mean, _ := estimate.Mean(v[:n])
+		out, v = append(out, mean), v[n:]
 	}
-	l, err := estimate.FitLine(x, y)
-	if err != nil {
-		return Fit{}
-	}
-	return Fit{l, low, high, len(x)}
-}
-
-func (w *work) findZeros() {}
-
-func (w *work) reach() (lowSI, highSI, spanM float64) {
-	return 0, w.p[w.res.Cycles[0].Peak], 1e-4
-}
-
-func (w *work) pool() error {
-	if len(w.ramps) == 0 {
-		return fmt.Errorf("analyze: %w", ErrNoCycle)
-	}
-	w.sources = w.systematics()
-	w.res.work = w
-	w.res.Rising.Direction, w.res.Falling.Direction = Rising, Falling
-	return nil
+	return out
 }

@@ -21,7 +21,10 @@ type Stick struct {
 // exact: in each gap between neighbouring x the two lines are free and must
 // meet inside the gap, and else the break lies on a point. Needs six points
 // and four different x. Errors: ErrTooFew, ErrNoSpread, ErrBadValue.
-func FitStick(x, y []float64) (Stick, error) {
+func FitStick(x, y []float64) (Stick, error) { return fitStickBelow(x, y, math.Inf(1)) }
+
+// fitStickBelow searches breaks up to a limit only.
+func fitStickBelow(x, y []float64, limit float64) (Stick, error) {
 	if err := checkPoints(x, y, nil); err != nil {
 		return Stick{}, err
 	}
@@ -30,7 +33,7 @@ func FitStick(x, y []float64) (Stick, error) {
 	}
 	s := newStickSums(x, y)
 	best, found := Stick{RSS: math.Inf(1)}, false
-	for i := 2; i+2 <= len(s.x); i++ { // the first i points left of the break
+	for i := 2; i+2 <= len(s.x) && s.x[i-1]+s.mx <= limit; i++ { // the first i points left of the break
 		for _, try := range []func(int) (Stick, bool){s.inGap, s.onPoint} {
 			if c, ok := try(i); ok && c.RSS < best.RSS {
 				best, found = c, true

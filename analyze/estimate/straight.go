@@ -1,14 +1,17 @@
 package estimate
 
-import "math"
+import (
+	"errors"
+	"math"
+)
 
 // StraightAbove is the x from which on y follows one straight line to the end
 // of the data: seating, slack or a rounded reversal at the low end is left out.
 // A broken stick is fitted, and what lies below its break is cut off, as long
 // as the two lines differ by more than chance, allowing for serial dependence
 // (a penalty of 3 ln n on the gain in log likelihood), and by more than 0.2 %
-// of the range of y at the low end. ok is false when less than the upper third
-// of the range would be left, which is no straight line.
+// of the range of y at the low end. At least the upper third of the range is
+// kept; ok is false when what is kept is still bent.
 //
 // x and y are in the order in which they were read. Errors as FitStick.
 func StraightAbove(x, y []float64) (from float64, ok bool, err error) {
@@ -20,25 +23,40 @@ func StraightAbove(x, y []float64) (from float64, ok bool, err error) {
 	if err := checkPoints(x, y, nil); err != nil {
 		return 0, false, err
 	}
-	low, high := Quantile(x, 0), Quantile(x, 1)
+	from = Quantile(x, 0)
+	highest := Quantile(x, 1) - leastLeft*(Quantile(x, 1)-from)
 	rangeY := Quantile(y, 1) - Quantile(y, 0)
-	from = low
-	for range mostCuts {
-		s, err := FitStick(x, y)
+	for cuts := 0; ; cuts++ {
+		s, err := fitStickBelow(x, y, highest)
+		if errors.Is(err, ErrNoSpread) && cuts > 0 {
+			return from, false, nil // no room for a further break
+		}
 		if err != nil {
-			return from, from > low, err
+			return from, cuts > 0, err
 		}
 		gap := math.Abs(s.Left(from) - s.Right(from))
 		if gap < worthCutting*rangeY || !s.betterThanLine(x, y) {
-			return from, true, nil
+			return from, !Bent(x, y), nil
 		}
-		if (high-s.Break)/(high-low) < leastLeft {
+		if cuts == mostCuts {
 			return from, false, nil
 		}
 		from = s.Break
 		x, y = above(x, y, from)
 	}
-	return from, false, nil
+}
+
+// Bent reports whether points that pass for a line are bent beyond chance: a
+// broken stick leaves its chord by more than 0.5 % of the range of y.
+func Bent(x, y []float64) bool {
+	const bendShare = 0.005
+	s, err := FitStick(x, y)
+	if err != nil {
+		return false
+	}
+	low, high := Quantile(x, 0), Quantile(x, 1)
+	leaves := math.Abs(s.BR-s.BL) * (s.Break - low) * (high - s.Break) / (high - low)
+	return leaves > bendShare*(Quantile(y, 1)-Quantile(y, 0)) && s.betterThanLine(x, y)
 }
 
 // betterThanLine reports whether the stick's gain over one line is beyond

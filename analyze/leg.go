@@ -1,0 +1,196 @@
+package analyze
+
+import (
+	"math"
+
+	"tautramp/analyze/estimate"
+)
+
+// legs is the two branches of one cycle: the pairs that may lie on them, and
+// where they are straight.
+type legs struct {
+	rise, fall  []bool  // pairs First..Peak and Peak..Last that lead the setting
+	seatEndSI   float64 // rising branch is straight above
+	seatEndM    float64 // extension there; the falling branch is straight above it too
+	fallSeatSI  float64 // falling branch is straight above
+	foundKneeSI float64 // and below, as found in the data
+	kneeSI      float64 // and below, as fitted
+	curved      bool    // a line was fitted to what is bent
+	ok          bool    // both branches have a line
+}
+
+const (
+	// A line needs so many pairs and this share of the cycle's rise. Judgement.
+	leastPoints = 8
+	leastShare  = 0.2
+	// Points on which the straight part is looked for; more are averaged.
+	mostPoints = 300
+	// The fall of the setting at the top that is left out, in reversal lengths:
+	// presliding rounds the knee. Judgement.
+	reversalShare = 1.5
+)
+
+// fitCycles finds the branches of every closed cycle and fits their lines. An
+// exercise cycle's lines only tell its phases: they enter no figure. Seating
+// belongs to band and rig, so all cycles share where it ends: each is searched
+// alone, and then all are fitted above the same setting.
+func (w *work) fitCycles() {
+	w.legs = make([]legs, len(w.res.Cycles))
+	for i := range w.res.Cycles {
+		c, l := &w.res.Cycles[i], &w.legs[i]
+		l.rise = w.trace.leading(w.t[c.First], w.t[c.First:c.Peak+1], +1)
+		l.fall = w.trace.leading(w.t[c.Peak], w.t[c.Peak:c.Last+1], -1)
+		l.ok = w.searchRising(c, l) && c.Role != Incomplete && w.searchFalling(c, l)
+	}
+	if seat, ok := w.commonSeat(); ok {
+		for i := range w.res.Cycles {
+			w.seatAbove(&w.res.Cycles[i], &w.legs[i], seat)
+		}
+	}
+}
+
+// commonSeat is the rising setting above which the band is seated: the upper
+// quartile of what both branches of the fitted cycles say.
+func (w *work) commonSeat() (seatSI float64, ok bool) {
+	var seats []float64
+	for _, i := range w.fitted {
+		if c, l := w.res.Cycles[i], w.legs[i]; l.ok {
+			e, _ := c.Falling.Line.At(l.fallSeatSI)
+			across, _ := c.Rising.Line.InverseAt(e)
+			seats = append(seats, l.seatEndSI, across)
+		}
+	}
+	return estimate.Quantile(seats, 0.75), len(seats) > 0
+}
+
+// seatAbove fits a cycle again above a rising setting, where enough is left of
+// it.
+func (w *work) seatAbove(c *Cycle, l *legs, seatSI float64) {
+	was, wasL := *c, *l
+	if !w.fitRising(c, l, seatSI) || l.ok && !w.fitFalling(c, l) {
+		*c, *l = was, wasL
+	}
+}
+
+// leaders is the pair indexes of a leg that pass.
+func leaders(first int, leads []bool, pass func(i int) bool) []int {
+	var at []int
+	for k, yes := range leads {
+		if yes && pass(first+k) {
+			at = append(at, first+k)
+		}
+	}
+	return at
+}
+
+// searchRising finds where the rising branch is straight, the band seated, and
+// fits it from there to the top.
+func (w *work) searchRising(c *Cycle, l *legs) bool {
+	l.kneeSI = math.Inf(-1)
+	at := leaders(c.First, l.rise, func(int) bool { return true })
+	from, err := w.straightAbove(at, +1)
+	if err != nil {
+		return false
+	}
+	return w.fitRising(c, l, from)
+}
+
+func (w *work) fitRising(c *Cycle, l *legs, fromSI float64) bool {
+	fit, ok := w.fitPairs(c, leaders(c.First, l.rise, func(i int) bool { return w.p[i] >= fromSI }))
+	if !ok {
+		return false
+	}
+	c.Rising, c.SeatingEndSI, l.seatEndSI = fit, fromSI, fromSI
+	l.seatEndM, _ = fit.Line.At(fromSI)
+	return true
+}
+
+// searchFalling finds the knee of the reversal at the top, and where the
+// branch leaves its straight part at the bottom.
+func (w *work) searchFalling(c *Cycle, l *legs) bool {
+	at := leaders(c.Peak, l.fall, func(i int) bool { return w.e[i] >= l.seatEndM })
+	from, err := w.straightAbove(at, -1)
+	if err != nil {
+		return false
+	}
+	l.foundKneeSI = -from
+	below := leaders(c.Peak, l.fall, func(i int) bool { return w.e[i] >= l.seatEndM && w.p[i] <= l.foundKneeSI })
+	if l.fallSeatSI, err = w.straightAbove(below, +1); err != nil {
+		return false
+	}
+	return w.fitFalling(c, l)
+}
+
+// straightAbove looks for the straight part of pairs, from the low end of their
+// settings for sign +1 and from the high end for -1.
+func (w *work) straightAbove(at []int, sign float64) (from float64, err error) {
+	p := pick(w.p, at)
+	for i := range p {
+		p[i] *= sign
+	}
+	from, _, err = estimate.StraightAbove(grouped(p, mostPoints), grouped(pick(w.e, at), mostPoints))
+	return from, err
+}
+
+// bent is whether the pairs that a line was fitted to are bent.
+func (w *work) bent(at []int) bool {
+	return estimate.Bent(grouped(pick(w.p, at), mostPoints), grouped(pick(w.e, at), mostPoints))
+}
+
+// fitFalling leaves out the reversal at the top and the seating at the bottom:
+// the knee that was found, and then the one that the reversal length of the
+// line gives.
+func (w *work) fitFalling(c *Cycle, l *legs) bool {
+	l.kneeSI = l.foundKneeSI
+	for pass := 0; ; pass++ {
+		fit, ok := w.fitPairs(c, leaders(c.Peak, l.fall, func(i int) bool { return w.onFalling(l, i) }))
+		if !ok {
+			return false
+		}
+		c.Falling = fit
+		c.ReversalSI = w.reversal(c)
+		if pass == 2 {
+			return true
+		}
+		l.kneeSI = math.Min(l.foundKneeSI, w.topSI(c)-reversalShare*c.ReversalSI.Value)
+	}
+}
+
+// onFalling is whether a pair lies within the straight part of the falling
+// branch.
+func (w *work) onFalling(l *legs, i int) bool {
+	return w.e[i] >= l.seatEndM && w.p[i] >= l.fallSeatSI && w.p[i] <= l.kneeSI
+}
+
+// topSI is the highest setting of a cycle, its noise smoothed.
+func (w *work) topSI(c *Cycle) float64 {
+	return w.trace.smooth(w.t[c.Peak])
+}
+
+// reversal is the fall of the setting at the top before the extension follows:
+// from the top to where the falling line has the top's extension.
+func (w *work) reversal(c *Cycle) estimate.Estimate {
+	top := w.topSI(c)
+	eTop, stdTop := c.Rising.Line.At(top)
+	knee, std := c.Falling.Line.Inverse(eTop, stdTop)
+	return estimate.Estimate{
+		Value: top - knee, Random: math.Hypot(std, w.trace.doubt(w.trace.windowS)),
+		DoF: math.Min(c.Rising.Line.DoF, c.Falling.Line.DoF), Method: "from the top to the falling line at the top's extension",
+	}
+}
+
+func (w *work) fitPairs(c *Cycle, at []int) (Fit, bool) {
+	p := pick(w.p, at)
+	if len(p) < leastPoints {
+		return Fit{}, false
+	}
+	low, high := estimate.Quantile(p, 0), estimate.Quantile(p, 1)
+	if high-low < leastShare*(c.TopSI-w.p[c.First]) {
+		return Fit{}, false
+	}
+	l, err := estimate.FitSerial(p, pick(w.e, at))
+	if err != nil || !(l.B > 0) {
+		return Fit{}, false
+	}
+	return Fit{Line: l, LowSI: low, HighSI: high, Points: len(p)}, true
+}

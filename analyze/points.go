@@ -1,0 +1,94 @@
+package analyze
+
+import (
+	"math"
+
+	"tautramp/analyze/estimate"
+)
+
+// markPoints says of every pair what the tensioner was doing, and which line
+// it helped to fit.
+func (w *work) markPoints() {
+	w.res.Points = make([]Point, len(w.t))
+	for i := range w.res.Points {
+		w.res.Points[i] = Point{
+			T: w.t[i], SettingSI: w.p[i], ExtensionM: w.e[i],
+			Cycle: -1, Phase: w.idle(i), Stress: math.NaN(),
+		}
+	}
+	for n := range w.res.Cycles {
+		c := &w.res.Cycles[n]
+		var rates []float64
+		for i := c.First; i <= c.Last; i++ {
+			pt := &w.res.Points[i]
+			pt.Cycle = n
+			w.place(pt, i, c, &w.legs[n])
+			if c.Zero.Known() {
+				pt.Stress = (w.e[i] - c.Zero.Value) * w.k.paPerM()
+			}
+			if pt.Phase == Loading || pt.Phase == Unloading {
+				rates = append(rates, math.Abs(w.trace.gain(w.t[i], w.trace.windowS))/w.trace.windowS)
+			}
+		}
+		c.RateSI = estimate.Median(rates)
+	}
+	for _, n := range w.fitted {
+		w.markFitted(&w.res.Cycles[n], &w.legs[n])
+	}
+}
+
+// place is the phase of one pair of a cycle.
+func (w *work) place(pt *Point, i int, c *Cycle, l *legs) {
+	switch {
+	case w.slack[i]:
+	case i < c.Peak && l.rise[i-c.First] && !w.still(i):
+		pt.Phase = Loading
+		if c.Rising.Points == 0 || w.p[i] < l.seatEndSI {
+			pt.Phase = Seating
+		}
+	case i >= c.Peak && l.fall[i-c.Peak] && !w.still(i):
+		switch {
+		case !l.ok || w.p[i] > l.kneeSI:
+			pt.Phase = Inside
+		case !w.onFalling(l, i):
+			pt.Phase = Seating
+		default:
+			pt.Phase = Unloading
+		}
+	}
+}
+
+// idle is the phase of a pair that leads neither branch.
+func (w *work) idle(i int) PhaseKind {
+	switch still := w.still(i); {
+	case w.slack[i] && still:
+		return Resting
+	case w.slack[i]:
+		return SlackLift
+	case still:
+		return Holding
+	}
+	return Inside
+}
+
+// still reports whether the setting rests about a pair: it moves by less than
+// a tenth of what the ramps' rate would give, or than noise.
+func (w *work) still(i int) bool {
+	window := math.Max(w.trace.windowS, 0.5)
+	moved := math.Abs(w.trace.gain(w.t[i], window))
+	if math.IsNaN(moved) {
+		return true
+	}
+	return moved < math.Max(2*math.Sqrt2*w.trace.doubt(window), 0.1*w.rate*window)
+}
+
+func (w *work) markFitted(c *Cycle, l *legs) {
+	mark := func(at []int) {
+		l.curved = l.curved || w.bent(at)
+		for _, i := range at {
+			w.res.Points[i].Fitted = true
+		}
+	}
+	mark(leaders(c.First, l.rise, func(i int) bool { return w.p[i] >= l.seatEndSI }))
+	mark(leaders(c.Peak, l.fall, func(i int) bool { return w.onFalling(l, i) }))
+}

@@ -1,0 +1,105 @@
+package analyze
+
+import (
+	"fmt"
+	"math"
+	"slices"
+
+	"tautramp/analyze/estimate"
+)
+
+// pool puts the fitted ramps together into branches and figures.
+func (w *work) pool() error {
+	w.keepRamps()
+	if len(w.ramps) == 0 {
+		return fmt.Errorf("analyze: no closed cycle has two straight branches: %w", ErrNoCycle)
+	}
+	w.markPoints()
+	w.timeStd = w.medianTimeStd()
+	w.res.Rising.Direction, w.res.Falling.Direction = Rising, Falling
+	w.captured(&w.res.Rising)
+	w.captured(&w.res.Falling)
+	w.sources = w.systematics()
+	w.branch(&w.res.Rising)
+	w.branch(&w.res.Falling)
+	w.friction()
+	w.widths()
+	w.aim()
+	w.running()
+	w.warnings()
+	return nil
+}
+
+// keepRamps keeps the cycles that have both lines.
+func (w *work) keepRamps() {
+	planned := w.fitted
+	w.fitted = nil
+	for _, i := range planned {
+		c := w.res.Cycles[i]
+		if !w.legs[i].ok {
+			w.warn("branch-not-fitted", fmt.Sprintf("Cycle %d has no straight stretch on both branches and is not fitted.", i+1))
+			continue
+		}
+		r := ramp{rising: c.Rising.Line, falling: c.Falling.Line, zeroM: math.NaN()}
+		if c.Zero.Known() {
+			r.zeroM, r.zeroVar = c.Zero.Value, c.Zero.Random*c.Zero.Random
+			w.zeroFrom = c.ZeroFrom
+		}
+		w.ramps, w.fitted = append(w.ramps, r), append(w.fitted, i)
+	}
+	if !slices.ContainsFunc(w.ramps, func(r ramp) bool { return math.IsNaN(r.zeroM) }) {
+		return
+	}
+	w.zeroFrom = ""
+}
+
+func (w *work) zeroKnown() bool { return w.zeroFrom != "" }
+
+func (w *work) medianTimeStd() float64 {
+	var all []float64
+	for i, pt := range w.res.Points {
+		if pt.Fitted {
+			all = append(all, w.set.Pairs[i].SettingStd)
+		}
+	}
+	return estimate.Median(all)
+}
+
+// captured is the range of setting that at least two ramps cover, or the only
+// one.
+func (w *work) captured(b *Branch) {
+	var low, high []float64
+	for _, i := range w.fitted {
+		f := w.res.Cycles[i].Rising
+		if b.Direction == Falling {
+			f = w.res.Cycles[i].Falling
+		}
+		low, high = append(low, f.LowSI), append(high, f.HighSI)
+	}
+	slices.Sort(low)
+	slices.Sort(high)
+	second := min(1, len(low)-1)
+	b.LowSI, b.HighSI = low[second], high[len(high)-1-second]
+	b.Cycles = len(w.ramps)
+}
+
+// branch is the line of all ramps together.
+func (w *work) branch(b *Branch) {
+	why := "the zero is not known"
+	d := b.Direction
+	b.Slope = w.combine(func(r ramp, k constants) float64 { return r.line(d).B * k.paPerM() }, wholeLoop, "no ramp gives a slope")
+	b.Stress0 = w.combine(func(r ramp, k constants) float64 { return (r.line(d).A - r.zeroM) * k.paPerM() }, wholeLoop, why)
+	b.LowPa, b.HighPa = math.NaN(), math.NaN()
+	if w.zeroKnown() {
+		b.LowPa = w.combine(stressFigure(d, b.LowSI), onePoint, why).Value
+		b.HighPa = w.combine(stressFigure(d, b.HighSI), onePoint, why).Value
+	}
+}
+
+// reach is the captured range of both branches: of setting, and of extension.
+func (w *work) reach() (lowSI, highSI, spanM float64) {
+	lowSI = math.Min(w.res.Rising.LowSI, w.res.Falling.LowSI)
+	highSI = math.Max(w.res.Rising.HighSI, w.res.Falling.HighSI)
+	line := w.ramps[0].rising
+	return lowSI, highSI, line.B * (w.res.Rising.HighSI - w.res.Rising.LowSI)
+}

@@ -1,0 +1,63 @@
+package analyze
+
+import (
+	"tautramp/acquire/mill"
+	"tautramp/analyze/estimate"
+)
+
+// RunningBand is the one-sided band in which the stress may wander after the
+// tensioner was set to the target's setting, the pressure being maintained.
+type RunningBand struct {
+	AfterRisingPa  [2]estimate.Estimate // lowest and highest change from target: +0 and more
+	AfterFallingPa [2]estimate.Estimate // down and -0
+	MiddlePa       estimate.Estimate    // where vibration brings it, pressure maintained
+	Hold           mill.Hold            // as the profile states; "" = not stated, both cases apply
+}
+
+// running works out the band. At the setting reached by rising, friction holds
+// any stress between the rising branch, which is the target, and the falling
+// one above it; at the setting reached by falling, any between the falling
+// branch and the rising one below it. Vibration works toward the middle of the
+// loop.
+func (w *work) running() {
+	b := &w.res.Running
+	b.Hold = w.setup.Tensioner.Hold
+	none := estimate.Exact(0, "friction works one way")
+	set := func(all estimate.Estimate) {
+		b.AfterRisingPa, b.AfterFallingPa, b.MiddlePa = [2]estimate.Estimate{none, all}, [2]estimate.Estimate{all, none}, all
+	}
+	if !w.res.AtRising.SettingSI.Known() || !w.res.AtFalling.SettingSI.Known() {
+		set(estimate.Unknown("the target's settings on both branches are needed"))
+		return
+	}
+	target := w.setup.TargetPa
+	other := func(from, to Direction) estimate.Estimate {
+		at := settingFigure(from, target)
+		return w.combine(func(r ramp, k constants) float64 {
+			return stressFigure(to, at(r, k))(r, k) - target
+		}, wholeLoop, "not a finite number")
+	}
+	b.AfterRisingPa = [2]estimate.Estimate{none, w.within(other(Rising, Falling))}
+	b.AfterFallingPa = [2]estimate.Estimate{other(Falling, Rising), none}
+	b.MiddlePa = w.combine(func(r ramp, k constants) float64 {
+		return middleStress(r, k, settingFigure(Rising, target)(r, k))
+	}, wholeLoop, "not a finite number")
+}
+
+// within refuses a stress above all that were captured: nothing is
+// extrapolated beyond the top of the ramps.
+func (w *work) within(change estimate.Estimate) estimate.Estimate {
+	if w.setup.TargetPa+change.Value > w.res.Rising.HighPa {
+		return estimate.Unknown("it lies above the top of the ramps")
+	}
+	return change
+}
+
+// middleStress is the stress whose two settings, rising and falling, have the
+// given one for their mean: the friction-free line.
+func middleStress(r ramp, k constants, settingSI float64) float64 {
+	up, down := r.rising, r.falling
+	// setting = ((e - A_up)/B_up + (e - A_dn)/B_dn) / 2
+	e := (2*settingSI + up.A/up.B + down.A/down.B) / (1/up.B + 1/down.B)
+	return (e - r.zeroM) * k.paPerM()
+}

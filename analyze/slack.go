@@ -1,0 +1,170 @@
+package analyze
+
+import (
+	"math"
+
+	"tautramp/analyze/estimate"
+)
+
+// lull is the low end between two tops, or before the first, or after the
+// last: where the band may have gone slack.
+type lull struct {
+	first, last int               // pairs searched
+	level       estimate.Estimate // m, extension of the slack band; unknown where it stayed taut
+	t           float64           // s, middle of the slack
+}
+
+// stillM is how far readings of a still extension stray from each other's
+// middle: the neighbouring count, and noise.
+func (w *work) stillM() float64 { return 1.01*w.setup.CountM + 3*w.noiseM }
+
+// findLulls looks for the slack band at every low end.
+func (w *work) findLulls() {
+	from := 0
+	for _, c := range w.res.Cycles {
+		w.lulls = append(w.lulls, w.lull(from, c.Peak))
+		from = c.Peak
+	}
+	w.lulls = append(w.lulls, w.lull(from, len(w.t)-1))
+	w.confirmFirst()
+}
+
+// run is a stretch of pairs about the lowest extension of a lull in which the
+// extension stands still.
+type run struct {
+	first, last int
+	level       float64
+	inSI        float64 // setting at which the extension came to rest; NaN at the record's start
+	outSI       float64 // setting at which it left; NaN at the record's end
+	lowSI       float64 // lowest setting in between
+}
+
+// lull decides whether the band went slack. A still extension alone does not
+// say so: friction holds a taut band still as well while the setting turns
+// round. But friction holds it no further than the reversal length, and never
+// while the setting goes on falling. So the band was slack where the setting
+// fell on, beyond noise and count, after the extension had come to rest; or
+// where it moved further, from its lowest to where the extension left, than a
+// reversal takes.
+func (w *work) lull(first, last int) lull {
+	l := lull{first: first, last: last, level: estimate.Unknown("the band was not slack, or not seen to be")}
+	r, ok := w.stillRun(first, last)
+	if !ok {
+		return l
+	}
+	slope, reversal, ok := w.loopAt(r.level)
+	if !ok {
+		return l
+	}
+	blur := w.stillM()/slope + 3*w.trace.noise
+	fellOn := r.inSI-r.lowSI > 2*blur
+	beyond := r.outSI-r.lowSI > 1.25*reversal+2*blur
+	if !fellOn && !beyond {
+		return l
+	}
+	w.takeLevel(&l, r, 2*blur)
+	return l
+}
+
+// stillRun finds the run about the lowest extension.
+func (w *work) stillRun(first, last int) (run, bool) {
+	smooth := make([]float64, last-first+1)
+	lowest := 0
+	for k := range smooth {
+		i := first + k
+		smooth[k] = estimate.Median(w.e[max(first, i-2) : min(last, i+2)+1])
+		if smooth[k] < smooth[lowest] {
+			lowest = k
+		}
+	}
+	still := func(k int) bool { return k >= 0 && k < len(smooth) && smooth[k]-smooth[lowest] <= w.stillM() }
+	a, b := lowest, lowest
+	for still(a - 1) {
+		a--
+	}
+	for still(b + 1) {
+		b++
+	}
+	if b-a+1 < leastPoints {
+		return run{}, false
+	}
+	r := run{first: first + a, last: first + b, level: smooth[lowest], inSI: math.NaN(), outSI: math.NaN()}
+	r.lowSI = math.Inf(1)
+	for i := r.first; i <= r.last; i++ {
+		r.lowSI = math.Min(r.lowSI, w.trace.smooth(w.t[i]))
+	}
+	if r.first > first {
+		r.inSI = w.trace.smooth(w.t[r.first])
+	}
+	if r.last < last {
+		r.outSI = w.trace.smooth(w.t[r.last])
+	}
+	return r, true
+}
+
+// loopAt is the falling branch's slope (m per SI of setting) and the reversal
+// length at an extension, medians of the cycles that have lines.
+func (w *work) loopAt(eM float64) (slope, reversal float64, ok bool) {
+	var slopes, reversals []float64
+	for i, c := range w.res.Cycles {
+		if !w.legs[i].ok {
+			continue
+		}
+		up, _ := c.Rising.Line.InverseAt(eM)
+		down, _ := c.Falling.Line.InverseAt(eM)
+		slopes = append(slopes, c.Falling.Line.B)
+		reversals = append(reversals, math.Max(0, up-down))
+	}
+	return estimate.Median(slopes), estimate.Median(reversals), len(slopes) > 0
+}
+
+// takeLevel is the slack extension: the mean of the middle half of the readings
+// taken clear of both ends of the run. What the count leaves open repeats, so
+// it is not in it.
+func (w *work) takeLevel(l *lull, r run, clearSI float64) {
+	var e []float64
+	for i := r.first; i <= r.last; i++ {
+		p := w.trace.smooth(w.t[i])
+		if p > r.inSI-clearSI && i < (r.first+r.last)/2 || p > r.outSI-clearSI && i >= (r.first+r.last)/2 {
+			continue
+		}
+		w.slack[i] = true
+		e = append(e, w.e[i])
+	}
+	if len(e) < 3 {
+		return
+	}
+	low, high := estimate.Quantile(e, 0.25), estimate.Quantile(e, 0.75)
+	var middle []float64
+	for _, v := range e {
+		if v >= low && v <= high {
+			middle = append(middle, v)
+		}
+	}
+	mean, _ := estimate.Mean(middle)
+	_, sd := estimate.Mean(e)
+	n := math.Max(1, float64(len(e))/estimate.Dependence(e))
+	l.level = estimate.Estimate{Value: mean, Random: sd / math.Sqrt(n), DoF: math.Max(1, n-1), Method: "still extension of the slack band"}
+	l.t = (w.t[r.first] + w.t[r.last]) / 2
+}
+
+// confirmFirst takes the start of the record for slack where its still
+// extension agrees with that of a later slack band: nothing before it says
+// whether the setting had come down to it.
+func (w *work) confirmFirst() {
+	first := &w.lulls[0]
+	if first.level.Known() {
+		return
+	}
+	r, ok := w.stillRun(first.first, first.last)
+	if !ok || r.first > first.first {
+		return
+	}
+	for _, l := range w.lulls[1:] {
+		if l.level.Known() && math.Abs(l.level.Value-r.level) <= w.stillM() {
+			slope, _, _ := w.loopAt(r.level)
+			w.takeLevel(first, r, 2*(w.stillM()/slope+3*w.trace.noise))
+			return
+		}
+	}
+}

@@ -1,0 +1,225 @@
+package analyze
+
+import (
+	"math"
+	"math/rand/v2"
+	"testing"
+
+	"tautramp/acquire/mill"
+	"tautramp/acquire/pairing"
+	"tautramp/protocol"
+)
+
+const (
+	psi  = 6894.757293168361 // Pa, from the definitions of inch, pound and g0
+	lbf  = 4.4482216152605   // N, exact
+	inch = 0.0254            // m, exact
+)
+
+// bench is a quasi-static tensioner with its measuring rig: friction holds the
+// load anywhere between the two branches of the force balance
+// p A* = S(1 +/- mu) +/- F0, S = F + W, F = 2 sigma A_b.
+type bench struct {
+	f0N, mu, weightN, areaM2 float64
+	netM2, modulusPa, gaugeM float64
+	zeroM                    float64 // indicated with a slack band
+	toePa                    float64 // stress held back while the band seats, at most
+	countM, noiseM           float64
+	countSI, noiseSI         float64
+	settingHz, extensionHz   float64
+	lagS                     float64 // by which the extension is late
+	loadN                    float64 // S now; starts at nothing
+	shows                    protocol.Shows
+	plan                     pairing.Plan
+	rng                      *rand.Rand
+}
+
+// newBench is T-1 with QW-6.
+func newBench(seed uint64) *bench {
+	return &bench{
+		f0N: 210 * lbf, mu: 0.045, weightN: 820 * lbf,
+		areaM2: 2 * math.Pi / 4 * 2.5 * 2.5 * inch * inch,
+		netM2:  0.058 * 5.25 * inch * inch, modulusPa: 29e6 * psi, gaugeM: 20 * inch,
+		zeroM: 3.1e-4, toePa: 55 * psi,
+		countM: 0.00005 * inch, noiseM: 1e-7, countSI: 0.05 * psi, noiseSI: 1 * psi,
+		settingHz: 50, extensionHz: 10, shows: protocol.ShowsRounded,
+		plan: pairing.Plan{Exercise: 1, Ramps: 3},
+		rng:  rand.New(rand.NewPCG(seed, 0x7a)),
+	}
+}
+
+// settle lets the load follow the pressure as far as friction allows, and
+// returns the extension as it truly is.
+func (b *bench) settle(pPa float64) float64 {
+	q := pPa * b.areaM2
+	b.loadN = math.Min(math.Max(b.loadN, (q-b.f0N)/(1+b.mu)), (q+b.f0N)/(1-b.mu))
+	stress := math.Max(0, b.loadN-b.weightN) / (2 * b.netM2)
+	u := stress / (400 * psi)
+	return b.zeroM + b.gaugeM/b.modulusPa*(stress-b.toePa*u*math.Exp(1-u))
+}
+
+func round(v, count float64) float64 {
+	if count == 0 {
+		return v
+	}
+	return math.Round(v/count) * count
+}
+
+// path is a setting over time, Pa.
+type path struct {
+	t, p []float64
+}
+
+const pathStepS = 0.01
+
+func (h *path) now() float64 {
+	if len(h.p) == 0 {
+		return 0
+	}
+	return h.p[len(h.p)-1]
+}
+
+func (h *path) add(p float64) {
+	h.t, h.p = append(h.t, float64(len(h.t))*pathStepS), append(h.p, p)
+}
+
+func (h *path) hold(s float64) {
+	for range int(s / pathStepS) {
+		h.add(h.now())
+	}
+}
+
+func (h *path) to(p, perS float64) {
+	for math.Abs(p-h.now()) > perS*pathStepS {
+		h.add(h.now() + math.Copysign(perS*pathStepS, p-h.now()))
+	}
+	h.add(p)
+}
+
+// strokes is a hand pump: each stroke of 0.6 s is followed by 1.4 s in which
+// the pressure sags by a share of itself.
+func (h *path) strokes(p, perStroke, sag float64) {
+	for peak := h.now(); peak < p; {
+		peak = math.Min(p, peak+perStroke)
+		h.to(peak, (peak-h.now())/0.6+1)
+		for i := 0; i < 140; i++ {
+			h.add(peak * (1 - sag*(1-math.Exp(-float64(i)/35))))
+		}
+	}
+	h.to(p, perStroke)
+}
+
+func (h *path) stairs(p float64, steps int, perS, holdS float64) {
+	from := h.now()
+	for i := 1; i <= steps; i++ {
+		h.to(from+(p-from)*float64(i)/float64(steps), perS)
+		h.hold(holdS)
+	}
+}
+
+// shape is how the pressure is brought up to the top; it comes down smoothly,
+// or in steps.
+type shape string
+
+const (
+	smooth shape = "smooth"
+	pumped shape = "strokes with 1 % sag"
+	stairs shape = "stairs"
+)
+
+// cycles is a whole visit from low to top, psi; the first only to half.
+func cycles(s shape, n int, low, top float64) *path {
+	h := &path{}
+	h.add(low * psi)
+	h.hold(5)
+	for i := range n {
+		high := top
+		if i == 0 && n > 1 {
+			high = low + 0.6*(top-low)
+		}
+		switch s {
+		case pumped:
+			h.strokes(high*psi, 16*psi, 0.01)
+		case stairs:
+			h.stairs(high*psi, 8, 8*psi, 6)
+		default:
+			h.to(high*psi, 8*psi)
+		}
+		h.hold(5)
+		if s == stairs {
+			h.stairs(low*psi, 8, 8*psi, 6)
+		} else {
+			h.to(low*psi, 8*psi)
+		}
+		h.hold(5)
+	}
+	return h
+}
+
+// measure runs a path through the bench and pairs what it shows.
+func (b *bench) measure(h *path) *pairing.Set {
+	truth := make([]float64, len(h.p))
+	for i, p := range h.p {
+		truth[i] = b.settle(p)
+	}
+	set := &pairing.Set{
+		Setting:   pairing.Channel{CountSI: b.countSI, Spec: protocol.Chan{Quantity: protocol.Pressure}},
+		Extension: pairing.Channel{CountSI: b.countM, Spec: protocol.Chan{Quantity: protocol.Extension, Shows: b.shows}},
+		Plan:      b.plan,
+	}
+	each := max(1, int(1/(b.settingHz*pathStepS)))
+	for i := 0; i < len(h.p); i += each {
+		v := round(h.p[i]+b.noiseSI*b.rng.NormFloat64(), b.countSI)
+		set.Setting.Readings = append(set.Setting.Readings, pairing.Reading{T: h.t[i], Value: v, Status: protocol.Good})
+	}
+	slow := int(1 / (b.extensionHz * pathStepS))
+	late := int(b.lagS / pathStepS)
+	for i := slow / 2; i < len(h.p); i += slow {
+		k := i / each
+		if k+1 >= len(set.Setting.Readings) {
+			break
+		}
+		lo, hi := set.Setting.Readings[k], set.Setting.Readings[k+1]
+		p := lo.Value + (hi.Value-lo.Value)*(h.t[i]-lo.T)/(hi.T-lo.T)
+		e := round(truth[max(0, i-late)]+b.noiseM*b.rng.NormFloat64(), b.countM)
+		set.Pairs = append(set.Pairs, pairing.Pair{T: h.t[i], Setting: p, Extension: e, SettingStd: 1e-4 * 8 * psi})
+	}
+	return set
+}
+
+// truths.
+func (b *bench) settingAt(d Direction, stressPa float64) float64 {
+	s, sign := 2*stressPa*b.netM2+b.weightN, 1.0
+	if d == Falling {
+		sign = -1
+	}
+	return (s*(1+sign*b.mu) + sign*b.f0N) / b.areaM2
+}
+
+func (b *bench) stressAt(d Direction, settingPa float64) float64 {
+	sign := 1.0
+	if d == Falling {
+		sign = -1
+	}
+	s := (settingPa*b.areaM2 - sign*b.f0N) / (1 + sign*b.mu)
+	return (s - b.weightN) / (2 * b.netM2)
+}
+
+// profile is the example mill.
+func profile(t testing.TB) *mill.Profile {
+	t.Helper()
+	p, err := mill.Parse(mill.Example())
+	if err != nil {
+		t.Fatal(err)
+	}
+	return p
+}
+
+func analyzed(t testing.TB, set *pairing.Set) *Result {
+	t.Helper()
+	r, err := Analyze(Input{Profile: profile(t), Tensioner: "T-1", Band: "QW-6", Set: set})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return r
+}

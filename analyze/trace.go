@@ -1,0 +1,119 @@
+package analyze
+
+import (
+	"math"
+	"sort"
+
+	"tautramp/acquire/pairing"
+	"tautramp/analyze/estimate"
+)
+
+// trace is the setting over time, as finely as it was sampled, with means over
+// windows of time. Windows follow the clock and not the number of readings: a
+// stroke of a hand pump lasts as long however often it is sampled.
+type trace struct {
+	t, p    []float64 // s, SI
+	sum     []float64 // of the first i values of p, less base
+	base    float64
+	noise   float64 // standard deviation of one value
+	stepS   float64 // median time between values
+	windowS float64 // over which the setting is smoothed
+}
+
+// newTrace takes the setting's own readings, or the pairs where there are no
+// more readings than pairs.
+func newTrace(set *pairing.Set, countSI float64) *trace {
+	tr := &trace{}
+	if len(set.Setting.Readings) > len(set.Pairs) {
+		for _, r := range set.Setting.Readings {
+			if r.Status.Ok() && finite(r.T) && finite(r.Value) {
+				tr.t, tr.p = append(tr.t, r.T), append(tr.p, r.Value)
+			}
+		}
+	}
+	if len(tr.t) < len(set.Pairs) {
+		tr.t, tr.p = nil, nil
+		for _, q := range set.Pairs {
+			tr.t, tr.p = append(tr.t, q.T), append(tr.p, q.Setting)
+		}
+	}
+	tr.base = tr.p[0]
+	tr.sum = make([]float64, len(tr.p)+1)
+	steps := make([]float64, 0, len(tr.t))
+	for i, p := range tr.p {
+		tr.sum[i+1] = tr.sum[i] + p - tr.base
+		if i > 0 {
+			steps = append(steps, tr.t[i]-tr.t[i-1])
+		}
+	}
+	tr.stepS = estimate.Median(steps)
+	tr.noise = math.Max(estimate.Noise(tr.p), countSI/math.Sqrt(12))
+	return tr
+}
+
+func finite(v float64) bool { return !math.IsNaN(v) && !math.IsInf(v, 0) }
+
+// smoothFor chooses the window for ramps of about the given rate, SI/s: over
+// it the setting rises by about four times the noise that is left of it, so
+// that rising is told from resting, and no longer than that.
+func (tr *trace) smoothFor(rate float64) {
+	const longest = 3.0 // s
+	w := longest
+	if rate > 0 {
+		w = math.Pow(4*tr.noise*math.Sqrt(tr.stepS)/rate, 2.0/3)
+	}
+	tr.windowS = math.Min(longest, math.Max(w, 1.01*tr.stepS))
+}
+
+// at is the index of the last value at or before t; -1 before the first.
+func (tr *trace) at(t float64) int {
+	return sort.Search(len(tr.t), func(i int) bool { return tr.t[i] > t }) - 1
+}
+
+// mean is the mean over the times from a to b, both included; NaN where there
+// is no value.
+func (tr *trace) mean(a, b float64) float64 {
+	i := sort.Search(len(tr.t), func(i int) bool { return tr.t[i] >= a })
+	j := tr.at(b) + 1
+	if j <= i {
+		return math.NaN()
+	}
+	return tr.base + (tr.sum[j]-tr.sum[i])/float64(j-i)
+}
+
+// smooth is the setting about t.
+func (tr *trace) smooth(t float64) float64 {
+	return tr.mean(t-tr.windowS/2, t+tr.windowS/2)
+}
+
+// gain is how much the setting changes about t: the mean over the window after
+// it less the mean over the window before it. NaN at the ends.
+func (tr *trace) gain(t, window float64) float64 {
+	const apart = 1e-9 // s; t itself belongs to neither side
+	return tr.mean(t+apart, t+window) - tr.mean(t-window, t-apart)
+}
+
+// doubt is the standard deviation of a mean over a window.
+func (tr *trace) doubt(window float64) float64 {
+	return tr.noise * math.Sqrt(math.Min(1, tr.stepS/window))
+}
+
+// leading says, for each of the given times in order, whether the smoothed
+// setting is at its extreme so far since the time from, within its noise, and
+// moving on: at its highest and rising for sign +1, at its lowest and falling
+// for -1. Anything else lies inside the loop: after a stroke the pressure sags
+// while friction holds the band.
+func (tr *trace) leading(from float64, times []float64, sign float64) []bool {
+	still := 2 * math.Sqrt2 * tr.doubt(tr.windowS)
+	tolerance := 3 * tr.doubt(tr.windowS)
+	out := make([]bool, len(times))
+	best := math.Inf(-1)
+	next := max(0, tr.at(from))
+	for k, t := range times {
+		for ; next < len(tr.t) && tr.t[next] <= t; next++ {
+			best = math.Max(best, sign*tr.smooth(tr.t[next]))
+		}
+		out[k] = sign*tr.smooth(t) >= best-tolerance && sign*tr.gain(t, tr.windowS) > still
+	}
+	return out
+}
