@@ -69,6 +69,7 @@ type rehearsal struct {
 	band      mill.Band
 	plant     plant
 	gauge     gauge
+	driver    driver // at the start of its drive
 	truth     Truth
 }
 
@@ -145,7 +146,7 @@ func (r *rehearsal) mechanics() error {
 func (r *rehearsal) operator() error {
 	d, limit := &r.Drive, r.tensioner.SettingLimit.SI
 	d.TopPa = orElse(d.TopPa, r.defaultTopPa(limit))
-	d.ExercisePa = min(d.TopPa, orElse(d.ExercisePa, r.truth.RisingPa(r.band.Target.SI/2)))
+	d.ExercisePa = min(d.TopPa, orElse(d.ExercisePa, r.defaultExercisePa()))
 	d.LowPa = orElse(d.LowPa, max(0, 0.6*r.truth.LiftFallingPa()))
 	d.RatePaS = orElse(d.RatePaS, d.TopPa/107.5)
 	if limit > 0 && d.TopPa > limit {
@@ -154,26 +155,37 @@ func (r *rehearsal) operator() error {
 	if !(d.LowPa >= 0) || !(d.TopPa > d.LowPa) || !(d.ExercisePa > d.LowPa) || !(d.RatePaS > 0) || math.IsInf(d.TopPa, 0) {
 		return fmt.Errorf("%w: a drive from %.0f to %.0f kPa at %.1f kPa/s", ErrConfig, d.LowPa/1e3, d.TopPa/1e3, d.RatePaS/1e3)
 	}
-	_, err := newDriver(*d)
+	var err error
+	r.driver, err = newDriver(*d)
 	return err
 }
 
+// defaultExercisePa is the setting for half of the band's target, or halfway
+// up where no target is given.
+func (r *rehearsal) defaultExercisePa() float64 {
+	if r.band.Target.SI <= 0 {
+		return (r.truth.LiftRisingPa() + r.Drive.TopPa) / 2
+	}
+	return r.truth.RisingPa(r.band.Target.SI / 2)
+}
+
 // defaultTopPa is well past the band's target, to the nearest 10 psi, and
-// within the limit.
+// clear of the limit by more than the noise.
 func (r *rehearsal) defaultTopPa(limit float64) float64 {
 	const tenPsi = 68947.57293168361 // Pa
 	if r.band.Target.SI <= 0 {
-		return 0.85 * limit
+		return 0.9 * limit
 	}
 	top := math.Round(r.truth.RisingPa(1.22*r.band.Target.SI)/tenPsi) * tenPsi
 	if limit > 0 {
-		top = min(top, limit)
+		top = min(top, 0.95*limit)
 	}
 	return top
 }
 
 // pump sizes the pump so that the wheel crosses the slack at a walk while it
-// never holds back the ramp, and the drag so that neither shows: 0.02 % of the
+// never holds back the ramp, the oil so stiff that a stroke soon makes good a
+// sag, and the drag so that neither shows: 0.02 % of the
 // top pull at the slack's speed, and far less on the ramp.
 func (r *rehearsal) pump() error {
 	p, d := &r.plant, r.Drive
@@ -184,7 +196,7 @@ func (r *rehearsal) pump() error {
 	ramp := d.RatePaS * p.areaM2 / p.bandNM
 	speed := max(p.slackM/time, 10*ramp)
 	p.flowM3S = p.areaM2 * speed
-	p.oilM3Pa = 0.1 * p.flowM3S / d.RatePaS
+	p.oilM3Pa = 0.03 * p.flowM3S / d.RatePaS
 	p.dragNsM = 2e-4 * p.areaM2 * d.TopPa / speed
 	return nil
 }

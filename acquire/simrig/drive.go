@@ -22,7 +22,7 @@ func Shapes() []Shape { return []Shape{Smooth, Strokes, Stairs, Still} }
 // Drive is what the pretended operator does. Pressures are gauge, in Pa.
 type Drive struct {
 	Shape   Shape   // "" means Smooth
-	TopPa   float64 // top of the ramps; 0 means 1.22 times the band's target, or the limit if lower
+	TopPa   float64 // top of the ramps; 0 means that of 1.22 times the band's target, or 0.95 of the limit if lower
 	LowPa   float64 // low end, where the band is slack; 0 means 0.6 of the falling slack lift
 	RatePaS float64 // Pa/s; 0 means TopPa in 107.5 s
 
@@ -66,8 +66,8 @@ type driver struct {
 // strokePart is the part of a stroke's time in which the pump presses.
 const strokePart = 0.3
 
-func newDriver(d Drive) (*driver, error) {
-	r := &driver{sag: orNone(d.SagPart, 0.01), strokeS: orElse(d.StrokeS, 2), begunS: math.NaN()}
+func newDriver(d Drive) (driver, error) {
+	r := driver{sag: orNone(d.SagPart, 0.01), strokeS: orElse(d.StrokeS, 2), begunS: math.NaN()}
 	r.wait(orNone(d.RestS, 10))
 	if d.Shape == Still {
 		r.wait(math.Inf(1))
@@ -75,12 +75,12 @@ func newDriver(d Drive) (*driver, error) {
 	}
 	for range cycles(d.Exercise, 1) {
 		if err := r.cycle(d, d.ExercisePa); err != nil {
-			return nil, err
+			return driver{}, err
 		}
 	}
 	for range cycles(d.Ramps, 3) {
 		if err := r.cycle(d, d.TopPa); err != nil {
-			return nil, err
+			return driver{}, err
 		}
 	}
 	return r, nil
@@ -100,7 +100,7 @@ func (r *driver) cycle(d Drive, topPa float64) error {
 	switch d.Shape {
 	case Smooth, "":
 	case Strokes:
-		if r.sag >= 0.5 || !(r.strokeS > 0) {
+		if r.sag > 0.1 || !(r.strokeS > 0) {
 			return fmt.Errorf("%w: a sag of %g of the pressure every %g s is no hand pump", ErrConfig, r.sag, r.strokeS)
 		}
 	case Stairs:

@@ -10,7 +10,6 @@
 package simrig
 
 import (
-	"errors"
 	"fmt"
 	"io"
 	"math"
@@ -151,6 +150,3 @@ func (r *Rig) Trace(everyS float64) ([]Moment, error) {
 	}
 	return list, nil
 }
-
-// ErrPlugged is a board that is being served already.
-var ErrPlugged = errors.New("the board is connected already")

@@ -25,11 +25,15 @@ const (
 	longNap  = 20 * time.Millisecond
 )
 
-// ErrLineGone is a connection that ended from the other side.
-var ErrLineGone = errors.New("the line to the board is gone")
+// What ends a Serve.
+var (
+	ErrLineGone = errors.New("the line to the board is gone") // from the other side
+	ErrPlugged  = errors.New("the board is connected already")
+)
 
 // Serve connects the board to a line until the context is done (nil) or the
-// line goes (ErrLineGone), and closes the line. All boards of a rig take the
+// line goes (ErrLineGone), and closes the line. Another Serve at the same time
+// is ErrPlugged. All boards of a rig take the
 // same clock. The board boots when it is served the first time; served again
 // it goes on as it was, its lines of the meantime dropped and counted, or
 // boots if it resets on opening.

@@ -41,9 +41,9 @@ func (w *wheel) loadN() float64 { return w.pullN() + w.weightN }
 //
 //	drag v = p A* - S(x) - friction
 //
-// with inertia left out (a 400 kg wheel at these speeds needs less than a
-// millinewton). It is stiff, so the step is linearly implicit in x and, where
-// the pump gives all it can, in p as well:
+// with inertia left out: a wheel of 400 kg takes under a newton where it moves
+// off, and nothing on a steady ramp. It is stiff, so the step is linearly
+// implicit in x and, where the pump gives all it can, in p as well:
 //
 //	dp/dt = (flow - A* v) / give
 func (w *wheel) step(ratePaS, dt float64) {

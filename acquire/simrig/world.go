@@ -21,8 +21,8 @@ func newWorld(conf rehearsal) world {
 
 // start begins the drive. Until then nothing moves.
 func (w *world) start(s float64) {
-	w.drive, _ = newDriver(w.conf.Drive) // resolve has tried it
-	w.startS = s
+	d := w.conf.driver
+	w.drive, w.startS = &d, s
 }
 
 // advance steps until time s is reached or just passed.
