@@ -4,47 +4,27 @@ import (
 	"errors"
 	"fmt"
 	"io"
-	"sync"
+	"os"
 	"sync/atomic"
 	"time"
 )
 
-// stream is what a conn puts the contract around.
-type stream struct {
-	io.ReadWriteCloser
-	name    string        // for messages
-	timeout time.Duration // of one Write
-
-	// pollEvery, when above zero, promises that Read returns at least that often
-	// with (0, nil). Close then waits for the reader before it closes: a file
-	// descriptor must not be closed under a system call, or the next file that
-	// gets its number is read instead.
-	pollEvery time.Duration
-
-	// discardOut throws away what is written but not yet sent, to release a
-	// blocked Write; nil when Close releases it.
-	discardOut func()
-}
-
-// Wrap puts the contract of Open around any stream whose Close releases its
-// Read and Write, such as one end of a net.Pipe.
-func Wrap(rwc io.ReadWriteCloser, name string, o Options) io.ReadWriteCloser {
-	return newConn(stream{ReadWriteCloser: rwc, name: name, timeout: o.withDefaults().WriteTimeout})
-}
-
 // conn keeps the contract of Open on top of a stream that need not.
 type conn struct {
-	s       stream
-	slot    chan struct{} // holds one token: the right to write
-	end     chan struct{} // closed when the conn has ended
-	ending  sync.Once
-	cause   error      // why it ended; read only after end is closed
-	reading sync.Mutex // held while s.Read runs
+	s      stream
+	reader chan struct{} // holds one token: the right to be in s.Read
+	writer chan struct{} // holds one token: the right to be in s.Write
+	ending atomic.Bool
+	end    chan struct{} // closed when the conn has ended
+	cause  error         // why it ended; read only after end is closed
 }
 
+// newConn uses channels where locks would do, so that tests may run it on a
+// clock of their own.
 func newConn(s stream) *conn {
-	c := &conn{s: s, slot: make(chan struct{}, 1), end: make(chan struct{})}
-	c.slot <- struct{}{}
+	c := &conn{s: s, reader: make(chan struct{}, 1), writer: make(chan struct{}, 1), end: make(chan struct{})}
+	c.reader <- struct{}{}
+	c.writer <- struct{}{}
 	return c
 }
 
@@ -53,21 +33,35 @@ func (c *conn) Read(p []byte) (int, error) {
 	if len(p) == 0 { // the serial library takes the empty read for a closed port
 		return 0, fmt.Errorf("reading %s: %w", c.s.name, io.ErrShortBuffer)
 	}
-	c.reading.Lock()
+	select {
+	case <-c.reader:
+	case <-c.end:
+		return 0, c.cause
+	}
+	n, err := c.readSome(p)
+	c.reader <- struct{}{}
+	if err != nil {
+		c.lose(err)
+	}
+	if n == 0 {
+		return 0, c.cause
+	}
+	return n, nil
+}
+
+// readSome reads until there is something to give; nothing and no error is the
+// end. It drops an error beside bytes: that comes again with the next Read.
+func (c *conn) readSome(p []byte) (int, error) {
 	for !c.ended() {
 		n, err := c.s.Read(p)
-		if n > 0 { // an error beside it comes again with the next Read
-			c.reading.Unlock()
+		if n > 0 {
 			return n, nil
 		}
 		if err != nil {
-			c.reading.Unlock()
-			c.lose(err)
-			return 0, c.cause
+			return 0, err
 		}
 	}
-	c.reading.Unlock()
-	return 0, c.cause
+	return 0, nil
 }
 
 // Write writes all of p or fails within the timeout.
@@ -75,39 +69,46 @@ func (c *conn) Write(p []byte) (int, error) {
 	timer := time.NewTimer(c.s.timeout)
 	defer timer.Stop()
 	select {
-	case <-c.slot:
+	case <-c.writer:
 	case <-c.end:
 		return 0, c.cause
 	case <-timer.C:
 		return 0, c.stuck()
 	}
 	if c.ended() {
-		c.slot <- struct{}{}
+		c.writer <- struct{}{}
 		return 0, c.cause
 	}
 	w := &write{rest: append([]byte(nil), p...), done: make(chan error, 1)}
 	go func() { // the system call may block for ever: it gets a goroutine and bytes of its own
 		w.done <- w.run(c)
-		c.slot <- struct{}{}
+		c.writer <- struct{}{}
 	}()
 	select {
 	case err := <-w.done:
-		if err != nil && !errors.Is(err, errAbandoned) {
-			c.lose(err)
-		}
-		if err != nil {
-			return int(w.n.Load()), c.cause
-		}
-		return len(p), nil
+		return int(w.n.Load()), c.written(err)
 	case <-c.end:
 		return int(w.n.Load()), c.cause
 	case <-timer.C:
 		w.abandoned.Store(true)
-		if c.s.discardOut != nil {
-			c.s.discardOut()
+		if c.s.releaseWrite != nil {
+			c.s.releaseWrite()
 		}
 		return int(w.n.Load()), c.stuck()
 	}
+}
+
+// written explains how a write came back by itself.
+func (c *conn) written(err error) error {
+	switch {
+	case err == nil:
+		return nil
+	case errors.Is(err, os.ErrDeadlineExceeded):
+		return c.stuck()
+	case !errors.Is(err, errAbandoned):
+		c.lose(err)
+	}
+	return c.cause
 }
 
 // errAbandoned ends a write whose caller no longer waits.
@@ -143,19 +144,22 @@ func (w *write) run(c *conn) error {
 	return nil
 }
 
+// stuck is a Write out of time, unless the conn has ended meanwhile.
 func (c *conn) stuck() error {
+	if c.ended() {
+		return c.cause
+	}
 	return fmt.Errorf("writing to %s: %w for %v; is the right board on it, and does it run?", c.s.name, ErrStuck, c.s.timeout)
 }
 
 // Close ends the conn as the caller's own doing.
 func (c *conn) Close() error {
-	var err error
-	c.ending.Do(func() {
-		c.cause = fmt.Errorf("%s: %w", c.s.name, ErrClosed)
-		close(c.end)
-		err = c.release()
-	})
-	return err
+	if c.ending.Swap(true) {
+		return nil
+	}
+	c.cause = fmt.Errorf("%s: %w", c.s.name, ErrClosed)
+	close(c.end)
+	return c.release()
 }
 
 // lose ends the conn as a loss, whatever the stream's error says: unplugging
@@ -163,12 +167,13 @@ func (c *conn) Close() error {
 // stream is closed at once: as long as it is held, a board that is plugged in
 // again comes back under another name.
 func (c *conn) lose(why error) {
-	c.ending.Do(func() {
-		c.cause = lossError(c.s.name, why)
-		close(c.end)
-		_ = c.release() // of a stream that is gone: its error says nothing new
-	})
-	<-c.end
+	if c.ending.Swap(true) {
+		<-c.end
+		return
+	}
+	c.cause = lossError(c.s.name, why)
+	close(c.end)
+	_ = c.release() // of a stream that is gone: its error says nothing new
 }
 
 func lossError(name string, why error) error {
@@ -181,27 +186,25 @@ func lossError(name string, why error) error {
 // release lets go of the stream once no Read and, within reason, no Write is in
 // it.
 func (c *conn) release() error {
-	if c.s.discardOut != nil {
+	if c.s.releaseWrite != nil {
 		c.freeWriter()
 	}
 	if c.s.pollEvery > 0 {
-		c.reading.Lock()
-		defer c.reading.Unlock()
+		<-c.reader // kept: nobody shall read any more
 	}
 	return c.s.Close()
 }
 
-// freeWriter discards output until the writer has come back. A driver that will
-// not let go keeps its goroutine; the caller of Write does not wait for it.
+// freeWriter waits until the writer has come back. A driver that will not let go
+// keeps its goroutine; the caller of Write does not wait for it.
 func (c *conn) freeWriter() {
 	for range 20 {
 		select {
-		case <-c.slot: // kept: nobody shall write any more
+		case <-c.writer: // kept: nobody shall write any more
 			return
-		default:
+		case <-time.After(5 * time.Millisecond):
+			c.s.releaseWrite()
 		}
-		c.s.discardOut()
-		time.Sleep(5 * time.Millisecond)
 	}
 }
 

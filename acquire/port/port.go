@@ -16,7 +16,9 @@ import (
 	"time"
 )
 
-// How a port fails. Every error of this package but io.EOF wraps one of them.
+// How a port fails. Every error of this package wraps one of them, but for
+// io.EOF at the end of a replay, io.ErrShortBuffer for a Read of no bytes, and
+// the context's own.
 var (
 	ErrBadName    = errors.New("not the name of a port")
 	ErrNotFound   = errors.New("port not found")

@@ -19,70 +19,76 @@ func openSerial(ctx context.Context, name string, o Options) (io.ReadWriteCloser
 	if err := ctx.Err(); err != nil {
 		return nil, fmt.Errorf("opening %s: %w", name, err)
 	}
-	hold, err := prepare(name)
+	h, err := prepare(name)
 	if err != nil {
 		return nil, err
 	}
 	// InitialStatusBits stays nil, which means DTR and RTS on: a pseudo-terminal
-	// has no such lines and refuses to have them set.
+	// has no such lines and refuses to have them set. DTR going up restarts many
+	// boards; the conversation waits for their boot line.
 	p, err := serial.Open(name, &serial.Mode{BaudRate: o.Baud})
 	if err != nil {
-		return nil, errors.Join(openError(name, err), hold.Close())
+		return nil, errors.Join(openError(name, err), h.Close())
 	}
 	// Set once, before the first Read: setting it later races with Read. With no
 	// time limit at all, only closing the descriptor would end a Read.
 	if err := p.SetReadTimeout(pollEvery); err != nil {
-		return nil, errors.Join(openError(name, err), p.Close(), hold.Close())
+		return nil, errors.Join(openError(name, err), p.Close(), h.Close())
 	}
+	w, release := h.writer(p, o.WriteTimeout)
 	return newConn(stream{
-		ReadWriteCloser: held{p, hold},
-		name:            name,
-		timeout:         o.WriteTimeout,
-		pollEvery:       pollEvery,
-		// The library's Close does not release a Write that the driver blocks.
-		discardOut: func() { _ = p.ResetOutputBuffer() }, // fails only when the port is gone
+		Reader:       p,
+		Writer:       w,
+		Closer:       both{p, h},
+		releaseWrite: release,
+		pollEvery:    pollEvery,
+		name:         name,
+		timeout:      o.WriteTimeout,
 	}), nil
 }
 
-// held is a serial port with what prepare holds for it.
-type held struct {
-	serial.Port
-	hold io.Closer
-}
+// both closes the port, then what prepare holds for it.
+type both struct{ port, hold io.Closer }
 
-func (h held) Close() error { return errors.Join(h.Port.Close(), h.hold.Close()) }
+func (b both) Close() error { return errors.Join(b.port.Close(), b.hold.Close()) }
+
+// byLibrary writes through the serial library, whose Write blocks in the driver.
+// Its Close does not end that, but throwing away what is not sent yet does.
+func byLibrary(p serial.Port) (w io.Writer, release func()) {
+	return p, func() { _ = p.ResetOutputBuffer() } // fails only when the port is gone, which ends the Write too
+}
 
 // openError puts the library's error into our classes. Its PortError has no
 // Unwrap, and some failures come as raw system errors.
 func openError(name string, err error) error {
-	class, hint := classify(err)
+	hint, class := classify(err)
 	var lib *serial.PortError
 	if errors.As(err, &lib) {
 		switch lib.Code() {
 		case serial.PortBusy:
-			class, hint = ErrBusy, busyHint
+			hint, class = busyHint, ErrBusy
 		case serial.PortNotFound:
-			class, hint = ErrNotFound, missingHint
+			hint, class = missingHint, ErrNotFound
 		case serial.PermissionDenied:
-			class, hint = ErrDenied, deniedHint
+			hint, class = deniedHint, ErrDenied
 		case serial.InvalidSerialPort:
-			class, hint = ErrBadName, notSerialHint
+			hint, class = notSerialHint, ErrBadName
 		}
 	}
 	return fmt.Errorf("opening %s: %w (%w); %s", name, class, err, hint)
 }
 
 // classify sorts a raw system error.
-func classify(err error) (class error, hint string) {
+func classify(err error) (hint string, class error) {
 	switch {
 	case errors.Is(err, fs.ErrNotExist) || isNoDevice(err):
-		return ErrNotFound, missingHint
+		return missingHint, ErrNotFound
 	case errors.Is(err, fs.ErrPermission):
-		return ErrDenied, deniedHint
+		return deniedHint, ErrDenied
 	case isBusy(err):
-		return ErrBusy, busyHint
+		return busyHint, ErrBusy
 	}
-	return ErrBadName, notSerialHint
+	return notSerialHint, ErrBadName
 }
 
 const (
