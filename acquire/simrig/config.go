@@ -8,12 +8,10 @@ import (
 	"tautramp/acquire/mill"
 )
 
-// The classes of profile that no rig can be built from, and of drive that it
-// will not follow.
+// Why a profile or a drive is refused, beside ErrConfig.
 var (
-	ErrNoRehearsal = errors.New("the tensioner has no rehearsal table")
-	ErrNotPressure = errors.New("the rehearsal rig knows only tensioners set by pressure")
-	ErrOverLimit   = errors.New("the drive goes past the tensioner's setting limit")
+	ErrNotRehearsable = errors.New("this tensioner cannot be rehearsed") // not set by pressure, or no rehearsal table
+	ErrOverLimit      = errors.New("the drive goes past the tensioner's setting limit")
 )
 
 // Config is one rehearsal: what is pretended, what the operator does, and the
@@ -96,10 +94,10 @@ func (r *rehearsal) find() (err error) {
 	}
 	name := r.tensioner.Name
 	if r.tensioner.SetBy != mill.SetByPressure {
-		return fmt.Errorf("%w: %s is set by %s; name another tensioner", ErrNotPressure, name, r.tensioner.SetBy)
+		return fmt.Errorf("%w: %s is set by %s, the rehearsal rig knows pressure only; name another", ErrNotRehearsable, name, r.tensioner.SetBy)
 	}
 	if r.tensioner.Rehearsal == nil {
-		return fmt.Errorf("%w: add [tensioner.rehearsal] below %s in mill.toml", ErrNoRehearsal, name)
+		return fmt.Errorf("%w: add a [tensioner.rehearsal] table below %s in mill.toml", ErrNotRehearsable, name)
 	}
 	return nil
 }

@@ -27,8 +27,8 @@ type Rig struct {
 	closed bool // done is closed
 }
 
-// New builds a rig at rest. Its errors are ErrConfig, ErrNoRehearsal,
-// ErrNotPressure, ErrOverLimit and mill.ErrUnknownName.
+// New builds a rig at rest. Its errors are ErrConfig, ErrNotRehearsable,
+// ErrOverLimit and mill.ErrUnknownName.
 func New(c Config) (*Rig, error) {
 	conf, err := resolve(c)
 	if err != nil {

@@ -134,10 +134,10 @@ func TestRigRefusesWhatItCannotBe(t *testing.T) {
 		says   string
 	}{
 		"no profile":       {Config{}, ErrConfig, "no profile"},
-		"torque-set":       {with(func(c *Config) { c.Tensioner = "T-2" }), ErrNotPressure, "T-2"},
+		"torque-set":       {with(func(c *Config) { c.Tensioner = "T-2" }), ErrNotRehearsable, "T-2"},
 		"unknown name":     {with(func(c *Config) { c.Tensioner = "T-9" }), mill.ErrUnknownName, "T-9"},
 		"unknown band":     {with(func(c *Config) { c.Band = "QZ" }), mill.ErrUnknownName, "QZ"},
-		"no table":         {Config{Profile: noTable, Tensioner: "T-1", Band: "QW-6"}, ErrNoRehearsal, "[tensioner.rehearsal]"},
+		"no table":         {Config{Profile: noTable, Tensioner: "T-1", Band: "QW-6"}, ErrNotRehearsable, "[tensioner.rehearsal]"},
 		"no loop":          {Config{Profile: noLoop, Tensioner: "T-1", Band: "QW-6"}, ErrConfig, "length of the band"},
 		"no thickness":     {Config{Profile: thin, Tensioner: "T-1", Band: "QW-6"}, ErrConfig, "net section"},
 		"over the limit":   {with(func(c *Config) { c.Drive.TopPa = 951 * psiPa }), ErrOverLimit, "limit"},

@@ -1,15 +1,21 @@
 package simrig
 
-import (
-	"tautramp/protocol"
-)
+import "tautramp/protocol"
 
-// answerRoom is kept in the queue for answers, which are never dropped.
-const answerRoom = 4096
+// Room kept in the queue: for beats, so that a full one still tells what it
+// drops, and beyond it for answers, which are never dropped.
+const (
+	beatRoom   = 2048
+	answerRoom = 2 * beatRoom
+)
 
 // numbered queues a numbered line, or drops it whole and counts it.
 func (b *Board) numbered(r protocol.Record) {
-	if !b.queue(r, b.spec.QueueBytes) && b.dropped < 1<<32-1 {
+	limit := b.spec.QueueBytes
+	if _, beat := r.(protocol.Beat); beat {
+		limit += beatRoom
+	}
+	if !b.queue(r, limit) && b.dropped < 1<<32-1 {
 		b.dropped++
 	}
 }
