@@ -8,12 +8,10 @@ import (
 	"tautramp/acquire/port/porttest"
 )
 
-func options() port.Options { return port.Options{WriteTimeout: porttest.WriteTimeout} }
-
 func TestContractOnPseudoTerminal(t *testing.T) {
-	porttest.Check(t, func(t *testing.T) porttest.Ends {
+	porttest.Check(t, func(t *testing.T, o port.Options) porttest.Ends {
 		pair := newPair(t)
-		host, err := port.Open(t.Context(), pair.Path, options())
+		host, err := port.Open(t.Context(), pair.Path, o)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -22,12 +20,12 @@ func TestContractOnPseudoTerminal(t *testing.T) {
 }
 
 func TestContractOnTCP(t *testing.T) {
-	porttest.Check(t, func(t *testing.T) porttest.Ends {
+	porttest.Check(t, func(t *testing.T, o port.Options) porttest.Ends {
 		listener, err := net.Listen("tcp", "127.0.0.1:0")
 		if err != nil {
 			t.Fatal(err)
 		}
-		host, err := port.Open(t.Context(), "tcp://"+listener.Addr().String(), options())
+		host, err := port.Open(t.Context(), "tcp://"+listener.Addr().String(), o)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -43,9 +41,9 @@ func TestContractOnTCP(t *testing.T) {
 }
 
 func TestContractInMemory(t *testing.T) {
-	porttest.Check(t, func(t *testing.T) porttest.Ends {
+	porttest.Check(t, func(_ *testing.T, o port.Options) porttest.Ends {
 		near, far := net.Pipe()
-		return porttest.Ends{Host: port.Wrap(near, "memory", options()), Board: far, Unplug: far.Close}
+		return porttest.Ends{Host: port.Wrap(near, "memory", o), Board: far, Unplug: far.Close}
 	})
 }
 

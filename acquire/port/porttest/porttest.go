@@ -18,10 +18,6 @@ import (
 	"tautramp/acquire/port"
 )
 
-// WriteTimeout is the timeout of one Write with which Check wants its ends
-// opened.
-const WriteTimeout = 100 * time.Millisecond
-
 // tooMuch is more bytes than any line keeps under way.
 const tooMuch = 8 << 20
 
@@ -36,27 +32,28 @@ type Ends struct {
 // Check runs the contract, each point on a line freshly opened. It takes a call
 // that is not back after ten seconds for one that hangs: far more than any needs
 // on a busy machine.
-func Check(t *testing.T, open func(t *testing.T) Ends) {
+func Check(t *testing.T, open func(t *testing.T, o port.Options) Ends) {
 	t.Helper()
 	points := []struct {
-		name  string
-		check func(e Ends) error
+		name         string
+		check        func(e Ends) error
+		writeTimeout time.Duration
 	}{
-		{"bytes pass both ways", bothWays},
-		{"a read waits for the first byte", readWaits},
-		{"a read of no bytes is an error", emptyRead},
-		{"an own close releases a read", closeReleasesRead},
-		{"an own close releases a write", closeReleasesWrite},
-		{"closing again is no error", closeAgain},
-		{"an unplug ends a read", unplugEndsRead},
-		{"a write that nobody takes runs out of time", writeRunsOut},
-		{"a megabyte arrives whole at the host", megabyteIn},
-		{"a megabyte arrives whole at the board", megabyteOut},
+		{"bytes pass both ways", bothWays, time.Minute},
+		{"a read waits for the first byte", readWaits, time.Minute},
+		{"a read of no bytes is an error", emptyRead, time.Minute},
+		{"an own close releases a read", closeReleasesRead, time.Minute},
+		{"an own close releases a write", closeReleasesWrite, time.Minute},
+		{"closing again is no error", closeAgain, time.Minute},
+		{"an unplug ends a read", unplugEndsRead, time.Minute},
+		{"a write that nobody takes runs out of time", writeRunsOut, 100 * time.Millisecond},
+		{"a megabyte arrives whole at the host", megabyteIn, time.Minute},
+		{"a megabyte arrives whole at the board", megabyteOut, time.Minute},
 	}
 	for _, p := range points {
 		t.Run(p.name, func(t *testing.T) {
 			before := runtime.NumGoroutine()
-			e := open(t)
+			e := open(t, port.Options{WriteTimeout: p.writeTimeout})
 			if err := p.check(e); err != nil {
 				t.Error(err)
 			}
@@ -121,7 +118,7 @@ func closeReleasesRead(e Ends) error {
 
 func closeReleasesWrite(e Ends) error {
 	write := start(func() (int, error) { return e.Host.Write(make([]byte, tooMuch)) })
-	if r, ok := write.within(WriteTimeout / 2); ok {
+	if r, ok := write.within(50 * time.Millisecond); ok {
 		return fmt.Errorf("8 MB that nobody read were written: %d, %v", r.n, r.err)
 	}
 	if err := e.Host.Close(); err != nil {
