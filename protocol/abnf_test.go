@@ -149,7 +149,11 @@ func (g *grammar) element() ends {
 		b, _ := strconv.ParseUint(high, 16, 8)
 		return span(byte(a), byte(b))
 	case strings.Contains(tok, `"`):
-		return literal(strings.Trim(strings.TrimPrefix(tok, "%s"), `"`))
+		same := func(a, b string) bool { return a == b }
+		if tok[0] == '"' {
+			same = strings.EqualFold // RFC 5234 2.3: letters of either case
+		}
+		return literal(strings.Trim(strings.TrimPrefix(tok, "%s"), `"`), same)
 	}
 	return func(text string, at int) []int {
 		rule := g.rules[tok]
@@ -190,9 +194,9 @@ func span(low, high byte) ends {
 	}
 }
 
-func literal(want string) ends {
+func literal(want string, same func(a, b string) bool) ends {
 	return func(text string, at int) []int {
-		if strings.HasPrefix(text[at:], want) {
+		if end := at + len(want); end <= len(text) && same(text[at:end], want) {
 			return []int{at + len(want)}
 		}
 		return nil
