@@ -81,7 +81,8 @@ func (in *intake) foretell(entries []recording.Entry) {
 // than the one before it, which only clocks of two parts can make, is left out.
 func (in *intake) channel(from source, samples map[source][]sample) Channel {
 	spec := in.spec(from)
-	c := Channel{Device: from.device, Spec: *spec, CountSI: protocol.LeastSI(*spec)}
+	c := Channel{Device: from.device, Spec: *spec, CountSI: protocol.LeastSI(*spec),
+		PeriodS: float64(spec.Period) / float64(in.devices[from.device].here.TickHz)}
 	c.Readings = make([]Reading, 0, len(samples[from]))
 	last := math.Inf(-1)
 	for _, s := range samples[from] {

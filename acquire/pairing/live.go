@@ -156,3 +156,12 @@ func (l *Live) Latest() (setting, extension Reading) { return l.latest[0], l.lat
 
 // Counters is what went missing so far, by device.
 func (l *Live) Counters() []Counters { return l.in.counters() }
+
+// Channels are the two channels that the pairs are made of, as declared by now
+// and without readings; ok is false before both are declared.
+func (l *Live) Channels() (setting, extension Channel, ok bool) {
+	if l.join == nil {
+		return Channel{}, Channel{}, false
+	}
+	return l.in.channel(l.chosen.setting, nil), l.in.channel(l.chosen.extension, nil), true
+}

@@ -21,6 +21,7 @@ type Reading struct {
 type Channel struct {
 	Device   int
 	Spec     protocol.Chan // as declared last
+	PeriodS  float64       // nominal time from sample to sample
 	CountSI  float64       // least count in SI: the width of the interval a reading stands for
 	Readings []Reading
 }
