@@ -50,6 +50,16 @@ func (g *gate) arrive(device int, channels []protocol.Chan) error {
 	return nil
 }
 
+// passed reports whether the gate is open.
+func (g *gate) passed() bool {
+	select {
+	case <-g.open:
+		return true
+	default:
+		return false
+	}
+}
+
 // leave says that a device is lost before the gate has opened.
 func (g *gate) leave(device int) {
 	g.mu.Lock()

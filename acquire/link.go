@@ -21,20 +21,20 @@ type link struct {
 	asking  asking
 	device  device
 	outage  outage
-	waiting <-chan struct{} // the gate; nil once passed
+	waiting <-chan struct{} // the gate; nil once it was seen open
 }
 
 // outage is the time since a device last ran as it should.
 type outage struct {
 	on    bool
 	since time.Duration
-	wait  time.Duration // before the port is opened again
+	wait  time.Duration // before the next attempt to get it back
 }
 
-// Waits between attempts to open a lost port.
+// Waits between attempts to get a device back.
 const (
-	firstRedial = 100 * time.Millisecond
-	slowRedial  = 2 * time.Second
+	firstRetry = 100 * time.Millisecond
+	slowRetry  = 2 * time.Second
 )
 
 // lostError is a connection that is of no more use.
@@ -116,9 +116,14 @@ func (l *link) pause(ctx context.Context, last error) error {
 		return err
 	}
 	left := l.outage.since + l.s.cfg.GiveUpAfter - l.now()
-	err := l.s.cfg.Clock.Sleep(ctx, min(l.outage.wait, left))
-	l.outage.wait = min(2*l.outage.wait, slowRedial)
-	return err
+	return l.s.cfg.Clock.Sleep(ctx, min(l.backOff(), left))
+}
+
+// backOff is how long to leave the device alone, longer each time.
+func (l *link) backOff() time.Duration {
+	wait := l.outage.wait
+	l.outage.wait = min(2*wait, slowRetry)
+	return wait
 }
 
 // overdue gives the device up when its outage has lasted too long. last is why
@@ -128,7 +133,7 @@ func (l *link) overdue(last error) error {
 	if !l.outage.on || after < l.s.cfg.GiveUpAfter {
 		return nil
 	}
-	why := fmt.Sprintf("not running again %.1f s after it was lost", after.Seconds())
+	why := fmt.Sprintf("not running for %.1f s", after.Seconds())
 	if last != nil {
 		why += ": " + last.Error()
 	}
@@ -152,7 +157,7 @@ func (l *link) lose(err error) {
 func (l *link) startOutage() {
 	l.device.running = false
 	if !l.outage.on {
-		l.outage = outage{on: true, since: l.now(), wait: firstRedial}
+		l.outage = outage{on: true, since: l.now(), wait: firstRetry}
 	}
 }
 

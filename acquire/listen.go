@@ -64,7 +64,7 @@ func (l *link) await(ctx context.Context, until time.Duration, done func() bool)
 		case err := <-l.conn.failed:
 			return &lostError{fmt.Errorf("write to it: %w", err)}
 		case <-l.waiting:
-			l.waiting = nil
+			l.waiting = nil // only to wake up once
 		case <-timed.Done():
 			if ctx.Err() != nil {
 				return ctx.Err()
@@ -153,10 +153,9 @@ func (l *link) here(h protocol.Here) {
 	}
 	d.bootLine = d.bootLine || unasked
 	d.boot, d.hasBoot = h.Boot, h.HasBoot
-	if !unasked {
-		l.asking.here = &h
+	if !unasked && l.asking.verb == protocol.Who {
+		l.asking.here, l.asking.channels, l.asking.done = &h, nil, false
 	}
-	l.asking.channels = nil
 }
 
 func (l *link) restarted(h protocol.Here) {

@@ -166,10 +166,10 @@ func (s *session) onTime() {
 }
 
 // notePause writes an event when the wall clock jumped against the monotonic
-// one since the last look. Two links may be a little out of order: what is
-// older than the last look says nothing.
+// one since the last look. Two links may be a little out of order: what is not
+// newer than the last look says nothing.
 func (s *session) notePause(at time.Duration, wall time.Time) {
-	if at < s.lookedAt {
+	if at <= s.lookedAt {
 		return
 	}
 	skew := wall.Add(-at)

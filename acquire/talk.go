@@ -37,7 +37,25 @@ func (l *link) talk(ctx context.Context) error {
 		if !errors.Is(err, errRestarted) {
 			return err
 		}
-		if err := l.overdue(nil); err != nil {
+		if err := l.settle(ctx); err != nil {
+			return err
+		}
+	}
+}
+
+// settle listens for a while after a device has started again, longer each
+// time, and gives up on one that starts over and over.
+func (l *link) settle(ctx context.Context) error {
+	if err := l.overdue(nil); err != nil {
+		return err
+	}
+	until := l.now() + l.backOff()
+	for {
+		err := l.await(ctx, until, never)
+		if errors.Is(err, errLate) {
+			return nil
+		}
+		if !errors.Is(err, errRestarted) {
 			return err
 		}
 	}
@@ -51,7 +69,7 @@ func (l *link) begin(ctx context.Context) error {
 	if err := l.s.gate.arrive(l.index, l.device.channels); err != nil {
 		return err
 	}
-	if err := l.await(ctx, forever, func() bool { return l.waiting == nil }); err != nil {
+	if err := l.await(ctx, forever, l.s.gate.passed); err != nil {
 		return err
 	}
 	if err := l.ask(ctx, protocol.Run, tries); err != nil {
