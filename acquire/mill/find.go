@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"strings"
+	"time"
 )
 
 // ErrUnknownName is a name that the profile has not, or none where it has
@@ -63,6 +64,12 @@ func (p *Profile) FindInstrument(measures string, d Dim, serial string) (Instrum
 		}
 	}
 	return best, ok
+}
+
+// OverdueOn tells whether the instrument's check was due before the day. An
+// instrument without a due day is not overdue; Cautions says that it has none.
+func (i Instrument) OverdueOn(day time.Time) bool {
+	return i.Due != "" && i.Due < day.Format(time.DateOnly)
 }
 
 // SettingDim is the dimension that the tensioner is set in.

@@ -1,23 +1,17 @@
 package mill
 
-import (
-	"fmt"
-	"strings"
-)
+import "strings"
 
-// nearest is the hint for an unknown word: the known one that it probably
-// means, or all of them.
+// nearest is the known word that an unknown one probably means; "" when none is
+// near.
 func nearest(word string, known []string) string {
-	best, bestAt := len(word)/2+1, -1
-	for i, k := range known {
+	best, guess := len(word)/2+1, ""
+	for _, k := range known {
 		if d := edits(strings.ToLower(word), k); d < best {
-			best, bestAt = d, i
+			best, guess = d, k
 		}
 	}
-	if bestAt >= 0 {
-		return fmt.Sprintf("did you mean %q?", known[bestAt])
-	}
-	return "known here: " + strings.Join(known, ", ")
+	return guess
 }
 
 // edits counts the single-character changes from a to b (Levenshtein distance).

@@ -2,15 +2,23 @@ package mill
 
 import (
 	"errors"
+	"fmt"
 	"strconv"
 	"strings"
 
 	"github.com/BurntSushi/toml"
 )
 
+// largestFile is far beyond any profile, and keeps what is no profile at all
+// from being taken apart.
+const largestFile = 256 << 10
+
 // Parse reads a mill.toml. The error joins one *ProfileError for each fault, in
 // line order.
 func Parse(text []byte) (*Profile, error) {
+	if len(text) > largestFile {
+		return nil, &ProfileError{Problem: fmt.Sprintf("%d bytes is too long for a mill.toml", len(text)), Hint: "is it the right file?"}
+	}
 	root := map[string]any{}
 	if _, err := toml.Decode(string(text), &root); err != nil {
 		return nil, syntaxFault(err)
@@ -51,11 +59,11 @@ func readProfile(t *table) *Profile {
 	for _, e := range t.list("instrument") {
 		p.Instruments = append(p.Instruments, readInstrument(e))
 	}
-	t.rest()
 	t.needTable("mill", "write [mill] with its name")
 	t.needTable("tensioner", "write at least one [[tensioner]]")
 	t.needTable("band", "write at least one [[band]]")
 	t.needTable("rig", "write [rig] with its gauge_length")
+	t.rest()
 	return p
 }
 
@@ -106,7 +114,7 @@ func (t *table) list(key string) []*table {
 
 func (t *table) needTable(key, hint string) {
 	if !t.has(key) {
-		t.faults.add(t.at(key), hint, "missing")
+		t.faults.add(t.at(key), hint, missing)
 	}
 }
 
@@ -125,7 +133,7 @@ func readTensioner(t *table) Tensioner {
 		SetBy: oneOf(t, "set_by", SetByPressure, SetByTorque, SetByTurns, SetBySpring),
 	}
 	if !t.has("set_by") {
-		t.faults.add(t.at("set_by"), "write pressure, torque, turns or spring", "missing")
+		t.faults.add(t.at("set_by"), "write pressure, torque, turns or spring", missing)
 	}
 	s.SettingLimit = Setting{t.settingLimit(s)}
 	s.Cylinders = t.whole("cylinders", 1, 100)
@@ -223,7 +231,7 @@ func readInstrument(t *table) Instrument {
 		Measures: oneOf(t, "measures", MeasuresSetting, MeasuresExtension),
 	}
 	if !t.has("measures") {
-		t.faults.add(t.at("measures"), "write setting or extension", "missing")
+		t.faults.add(t.at("measures"), "write setting or extension", missing)
 	}
 	dims := []Dim{DimLength}
 	if i.Measures != MeasuresExtension {

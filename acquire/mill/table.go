@@ -6,73 +6,14 @@ import (
 	"maps"
 	"math"
 	"slices"
-	"sort"
 	"strconv"
 	"strings"
 	"time"
+	"unicode"
 )
 
-// ProfileError is one thing wrong in a mill.toml. Parse joins all that it
-// finds, in the order of their lines.
-type ProfileError struct {
-	Line    int    // 1-based; 0 when the fault is in no line, such as a missing table
-	Key     string // such as "tensioner.bore"; "" when no key is at fault
-	Problem string
-	Hint    string // what to do about it; may be empty
-}
-
-func (e *ProfileError) Error() string {
-	var b strings.Builder
-	if e.Line > 0 {
-		fmt.Fprintf(&b, "line %d: ", e.Line)
-	}
-	if e.Key != "" {
-		fmt.Fprintf(&b, "%s: ", e.Key)
-	}
-	b.WriteString(e.Problem)
-	if e.Hint != "" {
-		fmt.Fprintf(&b, "; %s", e.Hint)
-	}
-	return b.String()
-}
-
-// faults collects what is wrong, with the lines to say where.
-type faults struct {
-	lines map[string]int
-	found []*ProfileError
-}
-
-// add notes a fault at a path such as "tensioner.0.bore". The hint may be "".
-func (f *faults) add(path, hint, problem string, args ...any) {
-	f.found = append(f.found, &ProfileError{
-		Line:    lineOf(f.lines, path),
-		Key:     withoutNumbers(path),
-		Problem: fmt.Sprintf(problem, args...),
-		Hint:    hint,
-	})
-}
-
-// err joins the faults in line order; nil when there are none.
-func (f *faults) err() error {
-	sort.SliceStable(f.found, func(i, k int) bool { return f.found[i].Line < f.found[k].Line })
-	errs := make([]error, len(f.found))
-	for i, e := range f.found {
-		errs[i] = e
-	}
-	return errors.Join(errs...)
-}
-
-// withoutNumbers drops the numbers of array tables: people know the line.
-func withoutNumbers(path string) string {
-	parts := strings.Split(path, ".")
-	kept := parts[:0]
-	for _, p := range parts {
-		if _, err := strconv.Atoi(p); err != nil {
-			kept = append(kept, p)
-		}
-	}
-	return strings.Join(kept, ".")
-}
+// longestText is the longest name or note in bytes: more would not fit a card.
+const longestText = 200
 
 // table is one TOML table being read. Each getter takes one key; rest refuses
 // those that none took. A getter of an absent key gives the zero value.
@@ -101,7 +42,11 @@ func (t *table) text(key string) string {
 	}
 	s, ok := v.(string)
 	if !ok {
-		t.faults.add(t.at(key), `put the text between quote marks`, "%s is not text", kind(v))
+		t.faults.add(t.at(key), "put the text between quote marks", "%s is not text", kind(v))
+	}
+	if strings.ContainsFunc(s, unicode.IsControl) || len(s) > longestText {
+		t.faults.add(t.at(key), fmt.Sprintf("write one line of at most %d characters", longestText), "too long, or more than one line")
+		return ""
 	}
 	return strings.TrimSpace(s)
 }
@@ -110,7 +55,7 @@ func (t *table) text(key string) string {
 func (t *table) need(key, hint string) string {
 	s := t.text(key)
 	if _, isText := t.values[key].(string); s == "" && (isText || !t.has(key)) {
-		t.faults.add(t.at(key), hint, "missing")
+		t.faults.add(t.at(key), hint, missing)
 	}
 	return s
 }
@@ -185,7 +130,7 @@ func (t *table) orZero(key string, dims ...Dim) Quantity {
 // needQuantity takes a quantity above zero that must be there.
 func (t *table) needQuantity(key, hint string, dims ...Dim) Quantity {
 	if !t.has(key) {
-		t.faults.add(t.at(key), hint, "missing")
+		t.faults.add(t.at(key), hint, missing)
 	}
 	return t.quantity(key, dims...)
 }
@@ -224,12 +169,19 @@ func oneOf[T ~string](t *table, key string, words ...T) T {
 	return ""
 }
 
-// rest refuses the keys that no getter took.
+// rest refuses the keys that no getter took. A key that is only misspelt is not
+// reported as missing as well.
 func (t *table) rest() {
 	for _, key := range slices.Sorted(maps.Keys(t.values)) {
-		if !slices.Contains(t.known, key) {
-			t.faults.add(t.at(key), nearest(key, t.known), "unknown key")
+		if slices.Contains(t.known, key) {
+			continue
 		}
+		hint := "known here: " + strings.Join(t.known, ", ")
+		if guess := nearest(key, t.known); guess != "" {
+			hint = fmt.Sprintf("did you mean %q?", guess)
+			t.faults.notMissing(t.at(guess))
+		}
+		t.faults.add(t.at(key), hint, "unknown key")
 	}
 }
 
