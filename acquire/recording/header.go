@@ -99,8 +99,8 @@ func (p *headerParser) line(line []byte) error {
 		return errors.New("a line of the header has no tag of SPEC 2")
 	}
 	key, text, ok := bytes.Cut(field, []byte{' '})
-	if !ok {
-		return errors.New("a line of the header has no value")
+	if !ok || !isKind(key) {
+		return errors.New("a line of the header is not a key and a value")
 	}
 	value, err := unescape(text)
 	if err != nil {
@@ -134,11 +134,19 @@ func (p *headerParser) set(key, value string) (err error) {
 	case "band":
 		h.Band = value
 	case "exercise":
-		h.Plan.Exercise, err = strconv.Atoi(value)
+		h.Plan.Exercise, err = parseCount(value)
 	case "ramps":
-		h.Plan.Ramps, err = strconv.Atoi(value)
+		h.Plan.Ramps, err = parseCount(value)
 	}
 	return err
+}
+
+func parseCount(value string) (int, error) {
+	n, ok := parseNumber([]byte(value))
+	if !ok || n > math.MaxInt32 {
+		return 0, fmt.Errorf("the header counts %q cycles", value)
+	}
+	return int(n), nil
 }
 
 // header is what the lines said, if they said all.

@@ -2,8 +2,10 @@ package recording
 
 import (
 	"bytes"
+	"crypto/sha256"
 	"errors"
 	"fmt"
+	"hash"
 	"strconv"
 	"time"
 )
@@ -151,3 +153,6 @@ func parseNumber(field []byte) (int64, bool) {
 	}
 	return int64(n), n <= 1<<63-1
 }
+
+// newSum is the check sum of seals and the end record (SPEC 6).
+func newSum() hash.Hash { return sha256.New() }

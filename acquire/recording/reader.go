@@ -67,7 +67,8 @@ func parse(data []byte) (*Recording, error) {
 	if err := checkMagic(data); err != nil {
 		return nil, err
 	}
-	r := &reader{data: data, sum: sha256.New(), rec: &Recording{}}
+	r := &reader{data: data, sum: newSum(), rec: &Recording{}}
+	r.rec.Entries = make([]Entry, 0, bytes.Count(data, []byte{'\n'})) // growing costs more than reading
 	err := r.walk()
 	if err == nil && r.block == 0 {
 		return nil, fmt.Errorf("%w: %w", ErrNotRecording, ErrNoHeader)

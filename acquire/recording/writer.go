@@ -1,7 +1,6 @@
 package recording
 
 import (
-	"crypto/sha256"
 	"encoding/hex"
 	"errors"
 	"fmt"
@@ -60,7 +59,7 @@ func NewWriter(f File, h Header, every time.Duration) (*Writer, error) {
 		every = time.Duration(float64(SyncInterval) * h.ClockFactor)
 	}
 	w := &Writer{
-		f: f, header: h, every: every, sum: sha256.New(),
+		f: f, header: h, every: every, sum: newSum(),
 	}
 	w.add(block)
 	if err := w.seal(); err != nil {
