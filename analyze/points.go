@@ -41,12 +41,12 @@ func (w *work) markPoints() {
 func (w *work) place(pt *Point, i int, c *Cycle, l *legs) {
 	switch {
 	case w.slack[i]:
-	case i < c.Peak && l.rise[i-c.First] && !w.still(i):
+	case i < c.Peak && l.rise[i-c.First]:
 		pt.Phase = Loading
 		if c.Rising.Points == 0 || w.p[i] < l.seatEndSI {
 			pt.Phase = Seating
 		}
-	case i >= c.Peak && l.fall[i-c.Peak] && !w.still(i):
+	case i >= c.Peak && l.fall[i-c.Peak]:
 		switch {
 		case !l.ok || w.p[i] > l.kneeSI:
 			pt.Phase = Inside

@@ -47,10 +47,6 @@ func (w *work) keepRamps() {
 		}
 		w.ramps, w.fitted = append(w.ramps, r), append(w.fitted, i)
 	}
-	if !slices.ContainsFunc(w.ramps, func(r ramp) bool { return math.IsNaN(r.zeroM) }) {
-		return
-	}
-	w.zeroFrom = ""
 }
 
 func (w *work) zeroKnown() bool { return w.zeroFrom != "" }

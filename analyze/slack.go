@@ -14,12 +14,29 @@ type lull struct {
 	t           float64           // s, middle of the slack
 }
 
-// stillM is how far readings of a still extension stray from each other's
-// middle: the neighbouring count, and noise.
+// stillM is how far readings of a still extension may stray: to the
+// neighbouring count, and by noise.
 func (w *work) stillM() float64 { return 1.01*w.setup.CountM + 3*w.noiseM }
+
+// stillNoise is the standard deviation of one extension reading while the
+// setting rests. On a ramp the counts themselves would pass for noise.
+func (w *work) stillNoise() float64 {
+	const enough = 20
+	var steps []float64
+	for i := 1; i < len(w.e); i++ {
+		if w.still(i) && w.still(i-1) {
+			steps = append(steps, w.e[i]-w.e[i-1])
+		}
+	}
+	if len(steps) < enough {
+		return estimate.Noise(w.e)
+	}
+	return estimate.MAD(steps) / math.Sqrt2
+}
 
 // findLulls looks for the slack band at every low end.
 func (w *work) findLulls() {
+	w.noiseM = w.stillNoise()
 	from := 0
 	for _, c := range w.res.Cycles {
 		w.lulls = append(w.lulls, w.lull(from, c.Peak))

@@ -3,6 +3,7 @@ package analyze
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"tautramp/acquire/mill"
@@ -23,12 +24,17 @@ type bench struct {
 	f0N, mu, weightN, areaM2 float64
 	netM2, modulusPa, gaugeM float64
 	zeroM                    float64 // indicated with a slack band
+	slackOffM                float64 // added while it is slack: a zero that lies
 	toePa                    float64 // stress held back while the band seats, at most
 	countM, noiseM           float64
 	countSI, noiseSI         float64
 	settingHz, extensionHz   float64
-	lagS                     float64 // by which the extension is late
-	loadN                    float64 // S now; starts at nothing
+	settingErrSI             [2]float64 // of the transducer at nothing and at 900 psi, straight between
+	extensionErrM            [2]float64 // of the indicator with the band taut, at no load and at 10 ksi
+	reversalM                float64    // by which it reads more while the extension falls
+	wander                   float64    // relative standard deviation of F0 from cycle to cycle
+	loadN                    float64    // S now; starts at nothing
+	falling                  bool       // it last fell
 	shows                    protocol.Shows
 	plan                     pairing.Plan
 	rng                      *rand.Rand
@@ -51,12 +57,26 @@ func newBench(seed uint64) *bench {
 // settle lets the load follow the pressure as far as friction allows, and
 // returns the extension as it truly is.
 func (b *bench) settle(pPa float64) float64 {
-	q := pPa * b.areaM2
+	q, was := pPa*b.areaM2, b.loadN
 	b.loadN = math.Min(math.Max(b.loadN, (q-b.f0N)/(1+b.mu)), (q+b.f0N)/(1-b.mu))
 	stress := math.Max(0, b.loadN-b.weightN) / (2 * b.netM2)
+	if stress == 0 {
+		return b.zeroM + b.slackOffM
+	}
 	u := stress / (400 * psi)
-	return b.zeroM + b.gaugeM/b.modulusPa*(stress-b.toePa*u*math.Exp(1-u))
+	e := b.zeroM + b.gaugeM/b.modulusPa*(stress-b.toePa*u*math.Exp(1-u)) + between(b.extensionErrM, stress/(10000*psi))
+	if b.loadN < was {
+		b.falling = true
+	} else if b.loadN > was {
+		b.falling = false
+	}
+	if b.falling {
+		return e + b.reversalM/2
+	}
+	return e - b.reversalM/2
 }
+
+func between(ends [2]float64, share float64) float64 { return ends[0] + (ends[1]-ends[0])*share }
 
 func round(v, count float64) float64 {
 	if count == 0 {
@@ -67,7 +87,8 @@ func round(v, count float64) float64 {
 
 // path is a setting over time, Pa.
 type path struct {
-	t, p []float64
+	t, p   []float64
+	begins []int // where cycles begin
 }
 
 const pathStepS = 0.01
@@ -133,6 +154,7 @@ func cycles(s shape, n int, low, top float64) *path {
 	h.add(low * psi)
 	h.hold(5)
 	for i := range n {
+		h.begins = append(h.begins, len(h.p))
 		high := top
 		if i == 0 && n > 1 {
 			high = low + 0.6*(top-low)
@@ -159,9 +181,14 @@ func cycles(s shape, n int, low, top float64) *path {
 // measure runs a path through the bench and pairs what it shows.
 func (b *bench) measure(h *path) *pairing.Set {
 	truth := make([]float64, len(h.p))
+	f0N := b.f0N
 	for i, p := range h.p {
+		if slices.Contains(h.begins, i) {
+			b.f0N = f0N * (1 + b.wander*b.rng.NormFloat64())
+		}
 		truth[i] = b.settle(p)
 	}
+	b.f0N = f0N
 	set := &pairing.Set{
 		Setting:   pairing.Channel{CountSI: b.countSI, Spec: protocol.Chan{Quantity: protocol.Pressure}},
 		Extension: pairing.Channel{CountSI: b.countM, Spec: protocol.Chan{Quantity: protocol.Extension, Shows: b.shows}},
@@ -169,11 +196,10 @@ func (b *bench) measure(h *path) *pairing.Set {
 	}
 	each := max(1, int(1/(b.settingHz*pathStepS)))
 	for i := 0; i < len(h.p); i += each {
-		v := round(h.p[i]+b.noiseSI*b.rng.NormFloat64(), b.countSI)
+		v := round(h.p[i]+between(b.settingErrSI, h.p[i]/(900*psi))+b.noiseSI*b.rng.NormFloat64(), b.countSI)
 		set.Setting.Readings = append(set.Setting.Readings, pairing.Reading{T: h.t[i], Value: v, Status: protocol.Good})
 	}
 	slow := int(1 / (b.extensionHz * pathStepS))
-	late := int(b.lagS / pathStepS)
 	for i := slow / 2; i < len(h.p); i += slow {
 		k := i / each
 		if k+1 >= len(set.Setting.Readings) {
@@ -181,28 +207,19 @@ func (b *bench) measure(h *path) *pairing.Set {
 		}
 		lo, hi := set.Setting.Readings[k], set.Setting.Readings[k+1]
 		p := lo.Value + (hi.Value-lo.Value)*(h.t[i]-lo.T)/(hi.T-lo.T)
-		e := round(truth[max(0, i-late)]+b.noiseM*b.rng.NormFloat64(), b.countM)
+		e := round(truth[i]+b.noiseM*b.rng.NormFloat64(), b.countM)
 		set.Pairs = append(set.Pairs, pairing.Pair{T: h.t[i], Setting: p, Extension: e, SettingStd: 1e-4 * 8 * psi})
 	}
 	return set
 }
 
-// truths.
+// settingAt is the true setting of a band stress.
 func (b *bench) settingAt(d Direction, stressPa float64) float64 {
 	s, sign := 2*stressPa*b.netM2+b.weightN, 1.0
 	if d == Falling {
 		sign = -1
 	}
 	return (s*(1+sign*b.mu) + sign*b.f0N) / b.areaM2
-}
-
-func (b *bench) stressAt(d Direction, settingPa float64) float64 {
-	sign := 1.0
-	if d == Falling {
-		sign = -1
-	}
-	s := (settingPa*b.areaM2 - sign*b.f0N) / (1 + sign*b.mu)
-	return (s - b.weightN) / (2 * b.netM2)
 }
 
 // profile is the example mill.

@@ -99,21 +99,21 @@ func (tr *trace) doubt(window float64) float64 {
 }
 
 // leading says, for each of the given times in order, whether the smoothed
-// setting is at its extreme so far since the time from, within its noise, and
-// moving on: at its highest and rising for sign +1, at its lowest and falling
-// for -1. Anything else lies inside the loop: after a stroke the pressure sags
-// while friction holds the band.
+// setting leads: for sign +1 it rises and is above all that it was since the
+// time from, up to one window ago; for -1 it falls and is below. Anything else
+// lies inside the loop: after a stroke the pressure sags while friction holds
+// the band, and the next stroke has to win that back first. The last window is
+// left out so that a steady ramp is not asked to beat its own noise.
 func (tr *trace) leading(from float64, times []float64, sign float64) []bool {
 	still := 2 * math.Sqrt2 * tr.doubt(tr.windowS)
-	tolerance := 3 * tr.doubt(tr.windowS)
 	out := make([]bool, len(times))
 	best := math.Inf(-1)
 	next := max(0, tr.at(from))
 	for k, t := range times {
-		for ; next < len(tr.t) && tr.t[next] <= t; next++ {
+		for ; next < len(tr.t) && tr.t[next] <= t-tr.windowS; next++ {
 			best = math.Max(best, sign*tr.smooth(tr.t[next]))
 		}
-		out[k] = sign*tr.smooth(t) >= best-tolerance && sign*tr.gain(t, tr.windowS) > still
+		out[k] = sign*tr.smooth(t) >= best && sign*tr.gain(t, tr.windowS) > still
 	}
 	return out
 }

@@ -23,13 +23,15 @@ const (
 	fastShare = 0.02
 	// An effective area further than this from geometry's. Judgement.
 	areaOff = 0.05
+	// A zero that moves by more counts than this within a cycle. Judgement.
+	returnCounts = 3
 )
 
 // warnings says what the figures do not: what was assumed, missing, or out of
 // the ordinary. Their order is fixed.
 func (w *work) warnings() {
 	for _, check := range []func(){
-		w.warnRamps, w.warnInstruments, w.warnZero, w.warnTarget, w.warnShape, w.warnPace, w.warnArea,
+		w.warnRamps, w.warnInstruments, w.warnZero, w.warnReturn, w.warnTarget, w.warnShape, w.warnPace, w.warnArea, w.warnWeight,
 	} {
 		check()
 	}
@@ -72,6 +74,16 @@ func (w *work) warnZero() {
 	for _, i := range w.fitted {
 		if !w.lulls[i].level.Known() && !w.lulls[i+1].level.Known() && w.res.Cycles[i].ZeroFrom == slackBand {
 			w.warn("zero-borrowed", fmt.Sprintf("The band was not slack before or after cycle %d: the zero of another cycle stands in.", i+1))
+		}
+	}
+}
+
+// warnReturn tells of a mount that slipped or drifted.
+func (w *work) warnReturn() {
+	for _, i := range w.fitted {
+		r := w.res.Cycles[i].ReturnM
+		if r.Known() && math.Abs(r.Value) > returnCounts*w.setup.CountM+3*w.noiseM {
+			w.warn("mount-moved", fmt.Sprintf("In cycle %d the stretch did not come back to where it began: the rig slipped, crept or warmed. Check the clamps and ramp again.", i+1))
 		}
 	}
 }
@@ -121,5 +133,17 @@ func (w *work) warnArea() {
 	lo, hi := r.Interval95()
 	if math.Abs(r.Value-1) > areaOff && (lo > 1 || hi < 1) {
 		w.warn("area-off", fmt.Sprintf("The area that works is %.2f of what bore, cylinders and travel ratio give: check them, the gauge and the section. Band stress does not depend on them.", r.Value))
+	}
+}
+
+// warnWeight compares the weight that the loop gives with the profile's: a
+// wrong zero lands wholly in it.
+func (w *work) warnWeight() {
+	given, found := w.setup.Tensioner.LiftedWeight, w.res.Friction.WeightN
+	if !given.Given() || !found.Known() {
+		return
+	}
+	if lo, hi := found.Interval95(); given.SI < lo || given.SI > hi {
+		w.warn("weight-off", fmt.Sprintf("The lifted weight that the loop gives is %.2f of the profile's: the zero may be off, or curl of the band shows as stretch. Measure the other face too.", found.Value/given.SI))
 	}
 }

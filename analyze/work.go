@@ -2,7 +2,6 @@ package analyze
 
 import (
 	"fmt"
-	"math"
 
 	"tautramp/acquire/pairing"
 	"tautramp/analyze/estimate"
@@ -55,7 +54,6 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 	}
 	w.k = constants{s.ModulusPa.Value, s.GaugeM.Value, s.NetAreaM2}
 	w.trace = newTrace(set, s.CountSI)
-	w.noiseM = math.Max(estimate.Noise(w.e), s.CountM/math.Sqrt(12))
 	w.slack = make([]bool, len(w.t))
 	return w, nil
 }

@@ -27,28 +27,42 @@ func (w *work) zeroStdM() float64 {
 
 // findZeros gives each cycle its extension at zero tension: one value, shared
 // by both branches, from the slack band before and after it; else from the
-// operator's mark; never from the setting's zero, where weight and friction
-// hold the wheel with the band slack or not.
+// nearest slack band or the operator's mark, which several cycles may share;
+// never from the setting's zero, where weight and friction hold the wheel with
+// the band slack or not.
 func (w *work) findZeros() {
 	w.findLulls()
-	w.zeroStd = w.zeroStdM()
+	shared := 0.0
 	for i := range w.res.Cycles {
 		c := &w.res.Cycles[i]
 		before, after := w.lulls[i].level, w.lulls[i+1].level
 		c.Zero, c.ZeroFrom = betweenZeros(before, after), slackBand
 		c.ReturnM = w.returned(before, after)
-		if !c.Zero.Known() {
-			c.Zero = w.nearestSlack((w.t[c.First] + w.t[c.Last]) / 2)
-		}
-		if !c.Zero.Known() {
-			c.Zero, c.ZeroFrom = w.markedZero(), operatorsMark
-		}
-		if !c.Zero.Known() {
-			c.ZeroFrom = ""
+		if c.Zero.Known() {
 			continue
 		}
-		c.Zero.System = w.zeroStd
+		c.Zero, c.ZeroFrom = w.borrowedZero((w.t[c.First] + w.t[c.Last]) / 2)
+		shared = math.Max(shared, c.Zero.Random)
+		c.Zero.Random, c.Zero.DoF = 0, math.Inf(1)
 	}
+	w.zeroStd = math.Hypot(w.zeroStdM(), shared)
+	for i := range w.res.Cycles {
+		if z := &w.res.Cycles[i].Zero; z.Known() {
+			z.System = w.zeroStd
+		}
+	}
+}
+
+// borrowedZero is the zero for a cycle about the time t that has no slack band
+// of its own.
+func (w *work) borrowedZero(t float64) (zero estimate.Estimate, from string) {
+	if z := w.nearestSlack(t); z.Known() {
+		return z, slackBand
+	}
+	if z := w.markedZero(t); z.Known() {
+		return z, operatorsMark
+	}
+	return estimate.Unknown("the band was never seen slack, and nobody marked the zero"), ""
 }
 
 // betweenZeros is the zero of a cycle between two slack bands. What it drifted
@@ -80,7 +94,7 @@ func (w *work) returned(before, after estimate.Estimate) estimate.Estimate {
 
 // nearestSlack borrows the zero of the slack band nearest in time.
 func (w *work) nearestSlack(t float64) estimate.Estimate {
-	best := estimate.Unknown("the band was never seen slack, and nobody marked the zero")
+	var best estimate.Estimate
 	gap := math.Inf(1)
 	for _, l := range w.lulls {
 		if l.level.Known() && math.Abs(l.t-t) < gap {
@@ -93,27 +107,29 @@ func (w *work) nearestSlack(t float64) estimate.Estimate {
 	return best
 }
 
-// markedZero is the extension about the operator's first zero mark that was
-// made with the extension low: a mark on a loaded band is none.
-func (w *work) markedZero() estimate.Estimate {
+// markedZero is the extension about the operator's zero mark nearest in time
+// that was made with the extension low: a mark on a loaded band is none.
+func (w *work) markedZero(t float64) (zero estimate.Estimate) {
 	const about = 1.0 // s
+	gap := math.Inf(1)
 	for _, m := range w.set.Marks {
-		if m.Kind != pairing.Zero {
+		if m.Kind != pairing.Zero || math.Abs(m.T-t) >= gap {
 			continue
 		}
 		var e []float64
-		for i, t := range w.t {
-			if math.Abs(t-m.T) <= about {
+		for i, at := range w.t {
+			if math.Abs(at-m.T) <= about {
 				e = append(e, w.e[i])
 			}
 		}
 		if len(e) < 3 || estimate.Median(e) > w.lowestSeated() {
 			continue
 		}
+		gap = math.Abs(m.T - t)
 		_, sd := estimate.Mean(e)
-		return estimate.Estimate{Value: estimate.Median(e), Random: sd / math.Sqrt(float64(len(e))), DoF: float64(len(e) - 1), Method: "extension at the operator's zero mark"}
+		zero = estimate.Estimate{Value: estimate.Median(e), Random: sd / math.Sqrt(float64(len(e))), DoF: float64(len(e) - 1), Method: "extension at the operator's zero mark"}
 	}
-	return estimate.Unknown("the band was never seen slack, and nobody marked the zero")
+	return zero
 }
 
 // lowestSeated is the lowest extension at which a band was seated, m.
