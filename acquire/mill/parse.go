@@ -67,57 +67,6 @@ func readProfile(t *table) *Profile {
 	return p
 }
 
-// one takes a table that may stand once.
-func (t *table) one(key string) (*table, bool) {
-	v, ok := t.take(key)
-	if !ok {
-		return nil, false
-	}
-	m, ok := v.(map[string]any)
-	if !ok {
-		t.faults.add(t.at(key), "write it once, as ["+withoutNumbers(t.at(key))+"]", "%s is not one table", kind(v))
-		return nil, false
-	}
-	return &table{faults: t.faults, path: t.at(key), values: m}, true
-}
-
-// list takes a table that may stand several times.
-func (t *table) list(key string) []*table {
-	v, ok := t.take(key)
-	if !ok {
-		return nil
-	}
-	var all []*table
-	add := func(m map[string]any) {
-		path := join(t.at(key), strconv.Itoa(len(all)))
-		all = append(all, &table{faults: t.faults, path: path, values: m})
-	}
-	switch v := v.(type) {
-	case []map[string]any:
-		for _, m := range v {
-			add(m)
-		}
-		return all
-	case []any: // inline tables in a list
-		for _, e := range v {
-			if m, ok := e.(map[string]any); ok {
-				add(m)
-			}
-		}
-		if len(all) == len(v) && len(v) > 0 {
-			return all
-		}
-	}
-	t.faults.add(t.at(key), "write [["+key+"]] with two brackets, once for each", "%s is not a list of tables", kind(v))
-	return nil
-}
-
-func (t *table) needTable(key, hint string) {
-	if !t.has(key) {
-		t.faults.add(t.at(key), hint, missing)
-	}
-}
-
 func readMill(t *table) Mill {
 	defer t.rest()
 	return Mill{

@@ -90,6 +90,25 @@ func TestOpenKeepsTheLineUpOnClose(t *testing.T) {
 	}
 }
 
+// Raw system errors by class; ENOENT for a missing device is the library's own
+// way on Linux.
+func TestSystemErrorsByClass(t *testing.T) {
+	for errno, class := range map[unix.Errno]error{
+		unix.ENOENT: ErrNotFound,
+		unix.ENXIO:  ErrNotFound,
+		unix.EIO:    ErrNotFound,
+		unix.EACCES: ErrDenied,
+		unix.EPERM:  ErrDenied,
+		unix.EBUSY:  ErrBusy,
+		unix.EAGAIN: ErrBusy,
+	} {
+		err := openError("/dev/ttyACM0", errno)
+		if !errors.Is(err, class) || !errors.Is(err, errno) {
+			t.Errorf("%v: got %v", errno, err)
+		}
+	}
+}
+
 // openPair opens a pair at both ends, until the test ends.
 func openPair(t *testing.T) (*Pair, io.ReadWriteCloser) {
 	t.Helper()

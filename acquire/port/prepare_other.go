@@ -38,5 +38,3 @@ func (hold) writer(p serial.Port, _ time.Duration) (w io.Writer, release func())
 func (hold) Close() error { return nil }
 
 func isBusy(error) bool { return false }
-
-func isNoDevice(error) bool { return false }

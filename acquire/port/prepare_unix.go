@@ -81,8 +81,3 @@ func checkDevice(name string) error {
 func isBusy(err error) bool {
 	return errors.Is(err, unix.EBUSY) || errors.Is(err, unix.EWOULDBLOCK)
 }
-
-// isNoDevice tells a device node without a device behind it.
-func isNoDevice(err error) bool {
-	return errors.Is(err, unix.ENXIO) || errors.Is(err, unix.ENODEV)
-}

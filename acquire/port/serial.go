@@ -52,6 +52,9 @@ type both struct{ port, hold io.Closer }
 
 func (b both) Close() error { return errors.Join(b.port.Close(), b.hold.Close()) }
 
+// Nothing here throws away what has come in: on Windows that ends a Read as if
+// the port were closed. Whoever wants to start afresh reads to a line end.
+
 // byLibrary writes through the serial library, whose Write blocks in the driver.
 // Its Close does not end that, but throwing away what is not sent yet does.
 func byLibrary(p serial.Port) (w io.Writer, release func()) {
@@ -78,17 +81,16 @@ func openError(name string, err error) error {
 	return fmt.Errorf("opening %s: %w (%w); %s", name, class, err, hint)
 }
 
-// classify sorts a raw system error.
+// classify sorts a raw system error. What is none of the known ones, such as a
+// bridge that does not answer, comes from a device that is not all there.
 func classify(err error) (hint string, class error) {
 	switch {
-	case errors.Is(err, fs.ErrNotExist) || isNoDevice(err):
-		return missingHint, ErrNotFound
 	case errors.Is(err, fs.ErrPermission):
 		return deniedHint, ErrDenied
 	case isBusy(err):
 		return busyHint, ErrBusy
 	}
-	return notSerialHint, ErrBadName
+	return missingHint, ErrNotFound
 }
 
 const (

@@ -34,6 +34,47 @@ func TestOpenSerialRefusesByClass(t *testing.T) {
 	}
 }
 
+// Opening and closing while bytes pour in, as when a capture is started and
+// stopped again and again.
+func TestCloseUnderTraffic(t *testing.T) {
+	pair := newPair(t)
+	poured := make(chan error, 1)
+	go func() {
+		for {
+			if _, err := pair.Write([]byte("0123456789abcdef\n")); err != nil {
+				poured <- err
+				return
+			}
+		}
+	}()
+	for range 10 {
+		host, err := port.Open(t.Context(), pair.Path, port.Options{})
+		if err != nil {
+			t.Fatal(err)
+		}
+		read := make(chan error, 1)
+		go func() {
+			_, err := io.Copy(io.Discard, host)
+			read <- err
+		}()
+		if _, err := host.Write([]byte("run\n")); err != nil {
+			t.Error(err)
+		}
+		if err := host.Close(); err != nil {
+			t.Error(err)
+		}
+		if err := <-read; !errors.Is(err, port.ErrClosed) {
+			t.Errorf("read: %v", err)
+		}
+	}
+	if err := pair.Unplug(); err != nil {
+		t.Fatal(err)
+	}
+	if err := <-poured; !errors.Is(err, port.ErrGone) {
+		t.Errorf("board's write: %v", err)
+	}
+}
+
 // The exclusive mode of the terminal alone would let root in a second time.
 func TestSecondOpenIsBusyUntilTheFirstCloses(t *testing.T) {
 	pair := newPair(t)
