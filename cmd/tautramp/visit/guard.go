@@ -67,7 +67,7 @@ func (s site) graceOf(start float64) float64 {
 // watch looks at the newest pair of a rise.
 func (g *guard) watch(k *tracker) {
 	c := &k.cycle
-	if k.setting < c.top-max(k.band, sagShare*c.top) {
+	if g.short = false; k.setting < c.top-max(k.band, sagShare*c.top) {
 		return // between two strokes: neither well nor ill
 	}
 	if c.top < g.grace {
@@ -93,7 +93,7 @@ func (g *guard) watch(k *tracker) {
 func (g *guard) falls(k *tracker) bool {
 	c := &k.cycle
 	if !c.moved {
-		return true
+		return c.top > g.grace+g.showsAfter(k.movesM())
 	}
 	from, ok := g.back(c.top - guardWindow*g.site.limit)
 	rise, gain := c.top-from.p, k.stretch-from.e
@@ -106,6 +106,12 @@ func (g *guard) falls(k *tracker) bool {
 		g.own = math.Max(orElse(g.own, 0), gain/rise)
 	}
 	return gain < guardShare*slope*rise-2*k.countM-4*k.noiseM
+}
+
+// showsAfter is how far the setting must go on before a move of the extension
+// by so much can be asked for, with half of the expected slope.
+func (g *guard) showsAfter(moveM float64) float64 {
+	return orElse(moveM/(guardShare*g.expected), liftMargin*g.site.limit)
 }
 
 // back is the oldest point at or above a setting.

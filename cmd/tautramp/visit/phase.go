@@ -8,7 +8,7 @@ import (
 
 const (
 	goalStress = 1.15 // of the target: where a ramp ends
-	goalHalf   = 0.5  // of the target: where the first cycle ends
+	goalHalf   = 0.47 // of the target: where the first cycle ends, near enough to half
 	goalSlack  = 1.15 // of the frictionless setting, where the stress is not known
 	goalLimit  = 0.95 // of the limit: no ramp goes higher
 	holdS      = 5.0
@@ -62,12 +62,18 @@ func (k *tracker) phase() analyze.PhaseKind {
 		return analyze.Unloading
 	case !c.moved:
 		return analyze.SlackLift
-	case k.setting < c.top-k.band:
+	case k.setting < c.top-k.band || k.falling():
 		return analyze.Inside
 	case k.setting < orElse(k.site.lift, 0)+seatingEnd*orElse(k.site.full, k.site.limit):
 		return analyze.Seating
 	}
 	return analyze.Loading
+}
+
+// falling reports that the setting goes down, before its dead band says so.
+func (k *tracker) falling() bool {
+	rate, std := k.rate.slope()
+	return rate+stillDoubts*std < 0
 }
 
 // low reports that the setting is down where a cycle closes.

@@ -179,7 +179,7 @@ func (k *tracker) follow(p pairing.Pair) {
 		k.tryClose()
 	}
 	k.zero.take(k, p)
-	if k.stage == onRise {
+	if k.guard.short = k.guard.short && k.stage == onRise; k.stage == onRise {
 		k.climb(p)
 	}
 	c.topM = max(c.topM, k.stretch)
@@ -264,7 +264,7 @@ func (k *tracker) climb(p pairing.Pair) {
 }
 
 // movesM is a change of the extension that is beyond its count and noise.
-func (k *tracker) movesM() float64 { return 2.5*k.countM + 4*k.noiseM }
+func (k *tracker) movesM() float64 { return 1.5*k.countM + 4*k.noiseM }
 
 func (k *tracker) say(kind recording.EventKind, text string) {
 	k.events = append(k.events, recording.Event{Kind: kind, Text: text})

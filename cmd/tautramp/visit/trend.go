@@ -14,6 +14,9 @@ const trendSlots = 16
 type trend struct {
 	span  float64
 	slots []slot
+
+	rate, std float64 // what slope returns, once judged
+	judged    bool
 }
 
 // slot is a sum of n points that began at from.
@@ -34,13 +37,23 @@ func (s *trend) add(t, x float64) {
 		old++
 	}
 	s.slots = append(s.slots[:copy(s.slots, s.slots[old:])], slot{from: t, t: t, x: x, n: 1})
+	s.judged = false
 }
 
-func (s *trend) reset() { s.slots = s.slots[:0] }
+func (s *trend) reset() { s.slots, s.judged = s.slots[:0], false }
 
 // slope is the rate per second of the straight line through the means, and its
-// standard uncertainty; NaN before half of the span is filled.
+// standard uncertainty; NaN before half of the span is filled. It changes with
+// each new slot.
 func (s *trend) slope() (rate, std float64) {
+	if !s.judged {
+		s.rate, s.std = s.fit()
+		s.judged = true
+	}
+	return s.rate, s.std
+}
+
+func (s *trend) fit() (rate, std float64) {
 	n := len(s.slots)
 	if n < 3 || s.slots[n-1].from-s.slots[0].from < s.span/2 {
 		return math.NaN(), math.NaN()
