@@ -57,7 +57,7 @@ type Role string
 const (
 	RoleStress    Role = "stress"    // psi, MPa
 	RolePressure  Role = "pressure"  // psi, bar
-	RoleTorque    Role = "torque"    // lbf ft, N.m
+	RoleTorque    Role = "torque"    // lbf ft, N m
 	RoleTurns     Role = "turns"     // turn, turn
 	RoleSpring    Role = "spring"    // in, mm
 	RoleExtension Role = "extension" // in, mm
