@@ -114,7 +114,7 @@ func TestBudgetSumsToTheTrueStressAndNamesItsParts(t *testing.T) {
 	}
 	near(t, "root sum of the lines", math.Sqrt(sum), r.AtRising.TrueSI.Std(), 1e-9)
 	for _, name := range []string{"fitted curve", "next ramp against the curve", "modulus of the steel", "gauge length",
-		"extension instrument", "setting instrument", "zero", "time alignment"} {
+		"stretch indicator", "setting gauge", "zero", "time alignment"} {
 		if seen[name].StdSI <= 0 {
 			t.Errorf("no line for %q", name)
 		}
@@ -127,7 +127,7 @@ func TestBudgetSumsToTheTrueStressAndNamesItsParts(t *testing.T) {
 	// 1 % of the modulus is 1 % of the stretch wanted, which takes T-1 from the
 	// slack lift at 108.7 psi to 724.5 psi.
 	near(t, "modulus line, psi", seen["modulus of the steel"].StdSI/psi, 6.158, 0.01)
-	near(t, "setting instrument line, psi", seen["setting instrument"].StdSI/psi, 3.75/math.Sqrt(3), 1e-6)
+	near(t, "setting gauge line, psi", seen["setting gauge"].StdSI/psi, 3.75/math.Sqrt(3), 1e-6)
 }
 
 func TestDoublingTheZerosDoubtChangesOnlyTheZerosLine(t *testing.T) {

@@ -45,7 +45,7 @@ func drawn(seed uint64) *bench {
 func TestIntervalsHoldTheTruth(t *testing.T) {
 	rigs := 100
 	if testing.Short() {
-		rigs = 20
+		rigs = 9
 	}
 	hits := map[string]int{}
 	for seed := range uint64(rigs) {

@@ -12,6 +12,9 @@ var (
 	ErrNoZero      = errors.New("the extension of the slack band is not known")
 )
 
+// noZero says why a figure that needs the zero is unknown.
+const noZero = "the stretch of the slack band is not known"
+
 // OutOfRangeError is a figure asked for outside what was captured; nothing is
 // extrapolated.
 type OutOfRangeError struct {

@@ -58,7 +58,6 @@ func (w *work) friction() {
 	of := func(g func(balance) float64) figure {
 		return func(r ramp, k constants) float64 { return g(balanceOf(r, k)) }
 	}
-	const noZero = "the zero is not known"
 	f.Mu = w.combine(of(balance.mu), wholeLoop, "not a finite number")
 	f.AreaM2 = w.combine(of(balance.areaM2), wholeLoop, "not a finite number")
 	f.WeightN = w.combine(of(balance.weightN), wholeLoop, noZero)

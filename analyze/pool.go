@@ -81,14 +81,13 @@ func (w *work) captured(b *Branch) {
 
 // branch is the line of all ramps together.
 func (w *work) branch(b *Branch) {
-	why := "the zero is not known"
 	d := b.Direction
 	b.Slope = w.combine(func(r ramp, k constants) float64 { return r.line(d).B * k.paPerM() }, wholeLoop, "no ramp gives a slope")
-	b.Stress0 = w.combine(func(r ramp, k constants) float64 { return (r.line(d).A - r.zeroM) * k.paPerM() }, wholeLoop, why)
+	b.Stress0 = w.combine(func(r ramp, k constants) float64 { return (r.line(d).A - r.zeroM) * k.paPerM() }, wholeLoop, noZero)
 	b.LowPa, b.HighPa = math.NaN(), math.NaN()
 	if w.zeroKnown() {
-		b.LowPa = w.combine(stressFigure(d, b.LowSI), onePoint, why).Value
-		b.HighPa = w.combine(stressFigure(d, b.HighSI), onePoint, why).Value
+		b.LowPa = w.combine(stressFigure(d, b.LowSI), onePoint, noZero).Value
+		b.HighPa = w.combine(stressFigure(d, b.HighSI), onePoint, noZero).Value
 	}
 }
 

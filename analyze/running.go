@@ -37,20 +37,24 @@ func (w *work) running() {
 			return stressFigure(to, at(r, k))(r, k) - target
 		}, wholeLoop, "not a finite number")
 	}
-	b.AfterRisingPa = [2]estimate.Estimate{none, w.within(other(Rising, Falling))}
-	b.AfterFallingPa = [2]estimate.Estimate{other(Falling, Rising), none}
-	b.MiddlePa = w.combine(func(r ramp, k constants) float64 {
+	rise, fall := other(Rising, Falling), other(Falling, Rising)
+	rise, fall = w.within(rise, target+rise.Value), w.within(fall, target+fall.Value)
+	b.AfterRisingPa = [2]estimate.Estimate{none, rise}
+	b.AfterFallingPa = [2]estimate.Estimate{fall, none}
+	middle := w.combine(func(r ramp, k constants) float64 {
 		return middleStress(r, k, settingFigure(Rising, target)(r, k))
 	}, wholeLoop, "not a finite number")
+	b.MiddlePa = w.within(middle, middle.Value)
 }
 
-// within refuses a stress above all that were captured: nothing is
-// extrapolated beyond the top of the ramps.
-func (w *work) within(change estimate.Estimate) estimate.Estimate {
-	if w.setup.TargetPa+change.Value > w.res.Rising.HighPa {
-		return estimate.Unknown("it lies above the top of the ramps")
+// within refuses a figure that leads to a stress that the ramps did not go
+// through. The falling line is followed through the reversal at the top, which
+// is left out of its fit but not of the ramps.
+func (w *work) within(figure estimate.Estimate, stressPa float64) estimate.Estimate {
+	if stressPa > w.res.Rising.HighPa || stressPa < w.res.Rising.LowPa {
+		return estimate.Unknown("it lies outside what the ramps went through")
 	}
-	return change
+	return figure
 }
 
 // middleStress is the stress whose two settings, rising and falling, have the

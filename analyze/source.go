@@ -50,12 +50,12 @@ func (w *work) systematics() []source {
 			k.areaM2 *= 1 + sign*s.SectionRelStd
 			return r, k
 		}},
-		{name: "extension instrument", from: limit, move: shiftExtension(s.ExtensionSd, false)},
-		{name: "extension instrument, gain", from: limit, wholeOnly: true, move: turnLines(math.Sqrt2*s.ExtensionSd/spanM, middle)},
-		{name: "extension instrument, its own reversal", from: "assumed 2/3 of " + limit, wholeOnly: true,
+		{name: "stretch indicator", from: limit, move: shiftExtension(s.ExtensionSd, false)},
+		{name: "stretch indicator, gain", from: limit, wholeOnly: true, move: turnLines(math.Sqrt2*s.ExtensionSd/spanM, middle)},
+		{name: "stretch indicator, its own reversal", from: "assumed 2/3 of " + limit, wholeOnly: true,
 			move: shiftExtension(reversalOfLimit*s.ExtensionSd/2, true)},
-		{name: "setting instrument", from: limit, move: shiftSetting(s.SettingStd, false)},
-		{name: "setting instrument, gain", from: limit, wholeOnly: true, move: turnLines(math.Sqrt2*s.SettingStd/spanSI, middle)},
+		{name: "setting gauge", from: limit, move: shiftSetting(s.SettingStd, false)},
+		{name: "setting gauge, gain", from: limit, wholeOnly: true, move: turnLines(math.Sqrt2*s.SettingStd/spanSI, middle)},
 		{name: "zero", from: w.zeroDoubt(), move: func(r ramp, k constants, sign float64) (ramp, constants) {
 			r.zeroM += sign * w.zeroStd
 			return r, k
@@ -64,7 +64,9 @@ func (w *work) systematics() []source {
 	}
 }
 
-func (w *work) zeroDoubt() string { return "least count of the extension, at the " + w.zeroFrom }
+func (w *work) zeroDoubt() string {
+	return "least count of the stretch indicator, at the " + w.zeroFrom
+}
 
 type mover func(r ramp, k constants, sign float64) (ramp, constants)
 

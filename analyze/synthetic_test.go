@@ -91,7 +91,7 @@ type path struct {
 	begins []int // where cycles begin
 }
 
-const pathStepS = 0.01
+const pathStepS = 0.02
 
 func (h *path) now() float64 {
 	if len(h.p) == 0 {
@@ -123,8 +123,8 @@ func (h *path) strokes(p, perStroke, sag float64) {
 	for peak := h.now(); peak < p; {
 		peak = math.Min(p, peak+perStroke)
 		h.to(peak, (peak-h.now())/0.6+1)
-		for i := 0; i < 140; i++ {
-			h.add(peak * (1 - sag*(1-math.Exp(-float64(i)/35))))
+		for i := range 70 {
+			h.add(peak * (1 - sag*(1-math.Exp(-float64(i)/17.5))))
 		}
 	}
 	h.to(p, perStroke)

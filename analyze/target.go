@@ -94,7 +94,7 @@ func (w *work) budget(f figure, t TargetSetting) []Term {
 		lines = append(lines, Term{"next ramp against the curve", w.rampSD(f), float64(n - 1), "A", fmt.Sprintf("scatter of %d ramps", n)})
 	}
 	if w.setup.CountSI > 0 {
-		lines = append(lines, Term{"least count of the setting", w.setup.CountSI / math.Sqrt(12), math.Inf(1), "B", "least count / sqrt 12"})
+		lines = append(lines, Term{"least count of the setting gauge", w.setup.CountSI / math.Sqrt(12), math.Inf(1), "B", "least count / sqrt 12"})
 	}
 	for _, s := range w.sources {
 		if !s.wholeOnly && !s.forces {
@@ -134,7 +134,7 @@ func (w *work) targetOn(d Direction) TargetSetting {
 	case *OutOfRangeError:
 		return unknown("the target lies outside the captured range")
 	}
-	return unknown("the zero is not known")
+	return unknown(noZero)
 }
 
 // TargetError says why the target has no setting on one branch or both: nil, an
