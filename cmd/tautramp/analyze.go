@@ -1,0 +1,63 @@
+package main
+
+import (
+	"context"
+	"errors"
+	"fmt"
+
+	"tautramp/acquire/mill"
+	"tautramp/analyze"
+	"tautramp/analyze/report"
+)
+
+func runAnalyze(_ context.Context, args []string, e env) error {
+	var r resultFlags
+	var schema bool
+	fs := flags("analyze", "FILE.ramp", "Computes the result of a recording again, from its raw lines.", e)
+	r.add(fs)
+	fs.BoolVar(&schema, "schema", false, "print the JSON Schema of --json and stop")
+	if err := parse(fs, args, 0, 1); err != nil {
+		return err
+	}
+	if schema {
+		_, err := e.stdout.Write(report.Schema())
+		return err
+	}
+	if fs.NArg() != 1 {
+		return &usageError{"analyze takes one recording"}
+	}
+	system, target, err := r.check()
+	if err != nil {
+		return err
+	}
+	return analyzeFile(fs.Arg(0), r, system, target, e)
+}
+
+func analyzeFile(path string, r resultFlags, system mill.System, target mill.Pressure, e env) error {
+	if err := refuseSame(path, r.outputs()...); err != nil {
+		return err
+	}
+	res, meta, err := computeResult(path, target)
+	if err != nil {
+		return err
+	}
+	if err := r.write(res, meta, system, e); err != nil {
+		return err
+	}
+	return targetInRange(path, res)
+}
+
+// targetInRange is the error that a written result still has where its target
+// was not captured: the rest of the figures stands.
+func targetInRange(path string, res *analyze.Result) error {
+	if res.Setup.TargetPa == 0 {
+		return nil
+	}
+	for _, d := range []analyze.Direction{analyze.Rising, analyze.Falling} {
+		_, err := res.SettingAt(d, res.Setup.TargetPa)
+		if _, outside := errors.AsType[*analyze.OutOfRangeError](err); outside {
+			return fmt.Errorf("%s, %s: %w", path, d, err)
+		}
+	}
+	return nil
+}

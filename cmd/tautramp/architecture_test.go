@@ -1,0 +1,148 @@
+package main
+
+import (
+	"bytes"
+	"encoding/json"
+	"errors"
+	"go/parser"
+	"go/token"
+	"io"
+	"os/exec"
+	"path/filepath"
+	"slices"
+	"strings"
+	"testing"
+)
+
+// rooms lists what each package may import beside the standard library and
+// its own subfolder of tests. It is the structure of the program: a change
+// here is a change of design, and DEVELOPERS.md says why each arrow exists.
+func rooms() map[string][]string {
+	const (
+		serial = "go.bug.st/serial"
+		sys    = "golang.org/x/sys"
+		toml   = "github.com/BurntSushi/toml"
+		gonum  = "gonum.org/v1/gonum"
+		plot   = "gonum.org/v1/plot"
+	)
+	return map[string][]string{
+		"protocol":              {},
+		"protocol/protocoltest": {"protocol"},
+		"acquire/mill":          {toml},
+		"acquire/recording":     {"protocol", "acquire/mill"},
+		"acquire/pairing":       {"protocol", "acquire/recording"},
+		"acquire/port":          {serial, sys},
+		"acquire/port/porttest": {"acquire/port"},
+		"acquire/simrig":        {"protocol", "acquire/mill"},
+		"acquire":               {"protocol", "acquire/mill", "acquire/recording"},
+		"analyze/estimate":      {gonum},
+		"analyze":               {"acquire/mill", "acquire/pairing", "analyze/estimate"},
+		"analyze/report":        {"acquire/mill", "analyze", "analyze/estimate", gonum, plot},
+		"cmd/tautramp/visit":    {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze", "analyze/estimate"},
+		"cmd/tautramp": {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "acquire/port", "acquire/simrig",
+			"analyze", "analyze/estimate", "analyze/report", "cmd/tautramp/visit", "github.com/spf13/pflag"},
+	}
+}
+
+type goPackage struct {
+	ImportPath string
+	Dir        string
+	Standard   bool
+	Imports    []string
+	GoFiles    []string
+	CgoFiles   []string
+	CFiles     []string
+}
+
+func listPackages(t *testing.T) []goPackage {
+	t.Helper()
+	cmd := exec.Command("go", "list", "-json=ImportPath,Dir,Imports,GoFiles,CgoFiles,CFiles", "tautramp/...")
+	out, err := cmd.Output()
+	if err != nil {
+		t.Fatalf("go list: %v", err)
+	}
+	var packages []goPackage
+	for dec := json.NewDecoder(bytes.NewReader(out)); ; {
+		var p goPackage
+		err := dec.Decode(&p)
+		if errors.Is(err, io.EOF) {
+			return packages
+		}
+		if err != nil {
+			t.Fatal(err)
+		}
+		packages = append(packages, p)
+	}
+}
+
+func TestImportsFollowTheTableOfRooms(t *testing.T) {
+	table := rooms()
+	for _, p := range listPackages(t) {
+		room := strings.TrimPrefix(p.ImportPath, "tautramp/")
+		allowed, ok := table[room]
+		if !ok {
+			t.Errorf("%s is not in the table of rooms", room)
+			continue
+		}
+		for _, imported := range p.Imports {
+			if !allowedImport(imported, allowed) {
+				t.Errorf("%s imports %s", room, imported)
+			}
+		}
+		if len(p.CgoFiles)+len(p.CFiles) > 0 {
+			t.Errorf("%s holds C files, which break a build without cgo", room)
+		}
+	}
+}
+
+// allowedImport is true for the standard library, whose first element has no
+// dot, and for what the table lists.
+func allowedImport(path string, allowed []string) bool {
+	if inside, ok := strings.CutPrefix(path, "tautramp/"); ok {
+		return slices.Contains(allowed, inside)
+	}
+	first, _, _ := strings.Cut(path, "/")
+	if !strings.Contains(first, ".") {
+		return true
+	}
+	return slices.ContainsFunc(allowed, func(a string) bool {
+		return path == a || strings.HasPrefix(path, a+"/")
+	})
+}
+
+// pureRooms compute from what they are given; they may not reach outside.
+func pureRooms() []string {
+	return []string{"protocol", "acquire/pairing", "analyze", "analyze/estimate"}
+}
+
+func TestPureRoomsReachNothingOutside(t *testing.T) {
+	for _, p := range listPackages(t) {
+		room := strings.TrimPrefix(p.ImportPath, "tautramp/")
+		if !slices.Contains(pureRooms(), room) {
+			continue
+		}
+		for _, imported := range p.Imports {
+			if slices.Contains([]string{"os", "net", "os/exec", "math/rand", "math/rand/v2"}, imported) {
+				t.Errorf("%s imports %s", room, imported)
+			}
+		}
+	}
+}
+
+func TestEveryRoomHasOnePackageComment(t *testing.T) {
+	for _, p := range listPackages(t) {
+		comments := 0
+		for _, name := range p.GoFiles {
+			file, err := parser.ParseFile(token.NewFileSet(), filepath.Join(p.Dir, name), nil, parser.PackageClauseOnly|parser.ParseComments)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if file.Doc != nil {
+				comments++
+			}
+		}
+		if comments != 1 {
+			t.Errorf("%s has %d package comments, want 1", p.ImportPath, comments)
+		}
+	}
+}

@@ -1,0 +1,246 @@
+package main
+
+import (
+	"bufio"
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"os"
+	"strings"
+	"time"
+
+	"tautramp/acquire"
+	"tautramp/acquire/mill"
+	"tautramp/acquire/port"
+	"tautramp/acquire/recording"
+	"tautramp/analyze/report"
+	"tautramp/cmd/tautramp/visit"
+)
+
+// syncEveryReal is how much of a visit a killed program may lose.
+const syncEveryReal = 500 * time.Millisecond
+
+// captureOptions is one capture as asked for on the command line.
+type captureOptions struct {
+	profileFlags
+	resultFlags
+	ports     []string
+	baud      int
+	out       string
+	continues string
+	plan      recording.Plan
+	speed     float64
+}
+
+func runCapture(ctx context.Context, args []string, e env) error {
+	var o captureOptions
+	fs := flags("capture", "--port PORT [--port PORT]",
+		"Records a visit: every line of the boards and everything you do, then computes\nthe result. Ramp slowly up, hold, slowly down, rest; it ends by itself.\nKeys, each followed by Enter: z = the band is slack now, m = mark, u = undo the mark.", e)
+	fs.StringArrayVar(&o.ports, "port", nil, "serial port of a board, or tcp://host:port; give it twice for two boards")
+	fs.IntVar(&o.baud, "baud", 115200, "serial speed")
+	fs.StringVar(&o.out, "out", "", "recording to write, ending in .ramp (default: tensioner and time)")
+	fs.StringVar(&o.continues, "continues", "", "an earlier recording of the same visit that this one goes on from")
+	fs.IntVar(&o.plan.Exercise, "exercise", 1, "cycles first that are recorded and never fitted")
+	fs.IntVar(&o.plan.Ramps, "ramps", 3, "cycles to fit; it ends when they are closed (0 = until Ctrl-C)")
+	fs.Float64Var(&o.speed, "speed", 1, "rehearsal only: the simulated rig's clock factor")
+	o.profileFlags.add(fs, "mill.toml", "the mill's profile")
+	o.resultFlags.add(fs)
+	if err := parse(fs, args, 0, 0); err != nil {
+		return err
+	}
+	return o.run(ctx, e)
+}
+
+func (o *captureOptions) run(ctx context.Context, e env) error {
+	system, target, err := o.check()
+	if err != nil {
+		return err
+	}
+	s, err := o.load(e)
+	if err != nil {
+		return err
+	}
+	header, err := o.header(s, e)
+	if err != nil {
+		return err
+	}
+	if err := refuseExisting(o.out); err != nil {
+		return err
+	}
+	if err := printCautions(e); err != nil {
+		return err
+	}
+	alarm, err := record(ctx, recordJob{header: header, path: o.out, devices: o.devices(e), system: system}, e)
+	if err != nil {
+		return err
+	}
+	return finish(o.out, alarm, o.resultFlags, system, target, e)
+}
+
+// finish computes the result of what was recorded, alarm or not, and then says
+// that there was one.
+func finish(path, alarm string, r resultFlags, system mill.System, target mill.Pressure, e env) error {
+	if err := analyzeFile(path, r, system, target, e); err != nil {
+		return err
+	}
+	if alarm != "" {
+		return &alarmError{alarm}
+	}
+	return nil
+}
+
+func (o *captureOptions) check() (mill.System, mill.Pressure, error) {
+	if len(o.ports) == 0 {
+		return "", mill.Pressure{}, &usageError{"capture needs --port; tautramp ports lists what is plugged in"}
+	}
+	if !(o.speed > 0) || o.speed > 1000 {
+		return "", mill.Pressure{}, &usageError{"--speed must be above 0 and at most 1000"}
+	}
+	if o.plan.Exercise < 0 || o.plan.Ramps < 0 {
+		return "", mill.Pressure{}, &usageError{"--exercise and --ramps cannot be negative"}
+	}
+	return o.resultFlags.check()
+}
+
+// header fills in what the wire cannot say, and settles the file's name.
+func (o *captureOptions) header(s site, e env) (recording.Header, error) {
+	now := e.wall()
+	if o.out == "" {
+		o.out = fileWord(s.tensioner.Name) + "-" + now.Format("20060102-150405") + ".ramp"
+	}
+	h := recording.Header{
+		Program: programVersion(), Started: now, Source: recording.Live, ClockFactor: o.speed,
+		Devices: o.ports, Tensioner: s.tensioner.Name, Band: s.band.Name, Plan: o.plan, Profile: s.text, Parsed: s.profile,
+	}
+	if o.continues == "" {
+		return h, nil
+	}
+	before, err := recording.ReadFile(o.continues)
+	if err != nil {
+		return h, fmt.Errorf("--continues: %w", err)
+	}
+	h.Continues = before.Seal
+	return h, nil
+}
+
+// fileWord makes a name fit for a file on every system.
+func fileWord(name string) string {
+	return strings.Map(func(r rune) rune {
+		if r == '-' || r >= '0' && r <= '9' || r >= 'A' && r <= 'Z' || r >= 'a' && r <= 'z' {
+			return r
+		}
+		return '_'
+	}, name)
+}
+
+func (o *captureOptions) devices(e env) []acquire.Device {
+	var devices []acquire.Device
+	for _, name := range o.ports {
+		devices = append(devices, acquire.Device{Name: name, Dial: dialPort(name, o.baud)})
+	}
+	return devices
+}
+
+func dialPort(name string, baud int) acquire.Dial {
+	return func(ctx context.Context) (io.ReadWriteCloser, error) {
+		return port.Open(ctx, name, port.Options{Baud: baud})
+	}
+}
+
+func printCautions(e env) error {
+	for _, line := range report.Cautions() {
+		if _, err := fmt.Fprintf(e.stderr, "CAUTION  %s\n", line); err != nil {
+			return err
+		}
+	}
+	_, err := fmt.Fprintln(e.stderr)
+	return err
+}
+
+// recordJob is what record needs, from capture or from the demo.
+type recordJob struct {
+	header  recording.Header
+	path    string
+	devices []acquire.Device
+	system  mill.System
+	clock   acquire.Clock // nil: a clock of the header's factor
+}
+
+// record runs the visit and closes the recording, whatever happens. It
+// returns the text of the gravest alarm, if there was one.
+func record(ctx context.Context, job recordJob, e env) (alarm string, err error) {
+	if job.clock == nil {
+		job.clock = e.clock(job.header.ClockFactor)
+	}
+	every := time.Duration(float64(syncEveryReal) * job.header.ClockFactor)
+	out, err := recording.Create(job.path, job.header, every)
+	if err != nil {
+		return "", &outputError{err}
+	}
+	keys, stopKeys := operatorKeys(e.stdin)
+	defer stopKeys()
+	screen := newScreen(e, job.header, job.system)
+	summary, err := visit.Run(ctx, visit.Config{
+		Acquire: acquire.Config{Devices: job.devices, Clock: job.clock, Out: out, Operator: keys},
+		Header:  job.header, Plan: job.header.Plan, OnStatus: screen.draw,
+	})
+	closeErr := out.Close(job.clock.Now(), job.clock.Wall())
+	if closeErr != nil {
+		closeErr = &outputError{fmt.Errorf("closing %s: %w", job.path, closeErr)}
+	}
+	if err := errors.Join(err, closeErr); err != nil {
+		return "", keepOrRemove(job.path, summary, err)
+	}
+	screen.end(summary, job.path)
+	return summary.Alarm, nil
+}
+
+// keepOrRemove says where the data are when a capture fails; a recording that
+// holds none is taken away again.
+func keepOrRemove(path string, summary visit.Summary, err error) error {
+	for _, c := range summary.Counters {
+		if c.Lines > 0 {
+			return fmt.Errorf("%w\nwhat was captured is kept: tautramp analyze %s", err, path)
+		}
+	}
+	return errors.Join(err, os.Remove(path))
+}
+
+// operatorKeys turns lines typed on the terminal into host events. The reader
+// of a terminal cannot be interrupted, so its goroutine is left to end with
+// the program; nothing it reads after stop is used.
+func operatorKeys(r io.Reader) (<-chan recording.Event, func()) {
+	if r == nil {
+		return nil, func() {}
+	}
+	events, done := make(chan recording.Event), make(chan struct{})
+	go func() {
+		for lines := bufio.NewScanner(r); lines.Scan(); {
+			event, ok := keyEvent(strings.TrimSpace(lines.Text()))
+			if !ok {
+				continue
+			}
+			select {
+			case events <- event:
+			case <-done:
+				return
+			}
+		}
+	}()
+	return events, func() { close(done) }
+}
+
+func keyEvent(key string) (recording.Event, bool) {
+	switch {
+	case key == "z":
+		return recording.Event{Kind: recording.ZeroMark}, true
+	case key == "u":
+		return recording.Event{Kind: recording.Undo}, true
+	case key == "m":
+		return recording.Event{Kind: recording.Mark}, true
+	case strings.HasPrefix(key, "m "):
+		return recording.Event{Kind: recording.Mark, Text: strings.TrimSpace(key[2:])}, true
+	}
+	return recording.Event{}, false
+}

@@ -1,0 +1,105 @@
+package main
+
+import (
+	"errors"
+
+	"tautramp/acquire"
+	"tautramp/acquire/mill"
+	"tautramp/acquire/pairing"
+	"tautramp/acquire/port"
+	"tautramp/acquire/recording"
+	"tautramp/acquire/simrig"
+	"tautramp/analyze"
+)
+
+// usageError is a command line that cannot be obeyed.
+type usageError struct{ text string }
+
+func (e *usageError) Error() string { return e.text }
+
+// alarmError says that a capture raised an alarm. Its files are whole all the
+// same.
+type alarmError struct{ text string }
+
+func (e *alarmError) Error() string { return "the visit raised an alarm: " + e.text }
+
+// outputError is a result that could not be written.
+type outputError struct{ err error }
+
+func (e *outputError) Error() string { return e.err.Error() }
+func (e *outputError) Unwrap() error { return e.err }
+
+// tornError is a recording whose end is missing.
+type tornError struct{ file string }
+
+func (e *tornError) Error() string {
+	return e.file + ": the end is missing; everything up to the last seal is good"
+}
+
+// exitRow ties one class of error to its exit code.
+type exitRow struct {
+	code int
+	what string // for the help text
+	hint string // the next step, printed under the error
+	is   func(error) bool
+}
+
+// exitTable is the only place where errors meet exit codes. The first row
+// that fits wins; the last one fits everything.
+func exitTable() []exitRow {
+	return []exitRow{
+		{0, "done", "", func(err error) bool { return err == nil }},
+		{2, "the command line cannot be obeyed", "tautramp help lists the commands", as[*usageError]()},
+		{3, "mill.toml has a mistake", "mend the line named above; tautramp profile writes a good example", anyOf(as[*mill.ProfileError](), is(mill.ErrUnknownName), is(simrig.ErrNotRehearsable, simrig.ErrOverLimit, simrig.ErrConfig))},
+		{4, "a port cannot be opened", "tautramp ports lists what is plugged in; close other programs that use it", is(port.ErrNotFound, port.ErrBusy, port.ErrDenied, port.ErrBadName, port.ErrNoTerminal)},
+		{6, "a device does not speak this wire", "check the port, the speed (--baud) and the board's program; protocol/SPEC.md is the wire", is(acquire.ErrNoAnswer, acquire.ErrNotOurs, acquire.ErrRefused)},
+		{5, "a port went away and did not come back", "plug it in and start a new capture; the recording up to here is good", is(acquire.ErrGaveUp, port.ErrGone, port.ErrStuck)},
+		{7, "the file is not a recording", "give the .ramp file that capture or import wrote", is(recording.ErrNotRecording, recording.ErrNoHeader, recording.ErrVersion)},
+		{8, "a recording was altered or damaged", "go back to the original file; figures from a damaged one prove nothing", as[*recording.CorruptError]()},
+		{9, "the recording holds too little to compute a result", "record at least one full rise and fall, with both sensors reading; tautramp check FILE shows what is there", is(analyze.ErrTooFewPairs, analyze.ErrNoCycle, analyze.ErrNoZero, pairing.ErrNoSetting, pairing.ErrNoExtension, pairing.ErrNoTime, pairing.ErrNoPairs)},
+		{10, "the target lies outside what was captured", "ramp up past the target (never past the maker's limit), or give a --target inside the range", as[*analyze.OutOfRangeError]()},
+		{11, "a file cannot be read or written", "check the name, the folder and the free space; nothing was overwritten", anyOf(as[*outputError](), isFileError)},
+		{12, "an alarm was raised during the capture", "stop, release slowly, find the cause before ramping again; the recording is whole", as[*alarmError]()},
+		{13, "a recording has no end", "analyze uses what is sealed; record again if a ramp is missing", as[*tornError]()},
+		{1, "something that should not happen", "please report it with the recording", func(error) bool { return true }},
+	}
+}
+
+func classify(err error) exitRow {
+	table := exitTable()
+	for _, row := range table {
+		if row.is(err) {
+			return row
+		}
+	}
+	return table[len(table)-1]
+}
+
+func is(targets ...error) func(error) bool {
+	return func(err error) bool {
+		for _, target := range targets {
+			if errors.Is(err, target) {
+				return true
+			}
+		}
+		return false
+	}
+}
+
+func as[E error]() func(error) bool {
+	return func(err error) bool {
+		_, ok := errors.AsType[E](err)
+		return ok
+	}
+}
+
+func anyOf(tests ...func(error) bool) func(error) bool {
+	return func(err error) bool {
+		for _, test := range tests {
+			if test(err) {
+				return true
+			}
+		}
+		return false
+	}
+}

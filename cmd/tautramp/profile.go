@@ -1,0 +1,73 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"io"
+	"os"
+
+	"github.com/spf13/pflag"
+
+	"tautramp/acquire/mill"
+)
+
+func runProfile(_ context.Context, args []string, e env) error {
+	fs := flags("profile", "FILE", "Writes an example mill.toml with a comment on every line. Fill in your own mill's figures.", e)
+	if err := parse(fs, args, 1, 1); err != nil {
+		return err
+	}
+	path := fs.Arg(0)
+	if path != "-" {
+		if err := refuseExisting(path); err != nil {
+			return err
+		}
+	}
+	err := writeAside(path, e, func(w io.Writer) error {
+		_, err := w.Write(mill.Example())
+		return err
+	})
+	if err != nil || path == "-" {
+		return err
+	}
+	_, err = fmt.Fprintf(e.stdout, "%s is written: an invented mill. Put your own figures in, then: tautramp check %s\n", path, path)
+	return err
+}
+
+// profileFlags choose a mill, a tensioner and a band.
+type profileFlags struct{ mill, tensioner, band string }
+
+func (p *profileFlags) add(fs *pflag.FlagSet, millDefault, about string) {
+	fs.StringVar(&p.mill, "mill", millDefault, about)
+	fs.StringVar(&p.tensioner, "tensioner", "", "name of the tensioner in mill.toml (needed when there are several)")
+	fs.StringVar(&p.band, "band", "", "name of the band in mill.toml (needed when there are several)")
+}
+
+// site is a profile with one tensioner and one band chosen.
+type site struct {
+	text      []byte
+	profile   *mill.Profile
+	tensioner mill.Tensioner
+	band      mill.Band
+}
+
+func (p *profileFlags) load(e env) (site, error) {
+	s := site{text: mill.Example()}
+	if p.mill != "" {
+		text, err := os.ReadFile(p.mill)
+		if err != nil {
+			return s, fmt.Errorf("no mill profile: %w", err)
+		}
+		s.text = text
+	}
+	var err error
+	if s.profile, err = mill.Parse(s.text); err != nil {
+		return s, fmt.Errorf("%s: %w", p.mill, err)
+	}
+	if s.tensioner, err = s.profile.FindTensioner(p.tensioner); err != nil {
+		return s, fmt.Errorf("--tensioner: %w", err)
+	}
+	if s.band, err = s.profile.FindBand(p.band); err != nil {
+		return s, fmt.Errorf("--band: %w", err)
+	}
+	return s, nil
+}

@@ -1,0 +1,139 @@
+package main
+
+import (
+	"bytes"
+	"fmt"
+	"io"
+	"path/filepath"
+
+	"github.com/spf13/pflag"
+
+	"tautramp/acquire/mill"
+	"tautramp/acquire/pairing"
+	"tautramp/acquire/recording"
+	"tautramp/analyze"
+	"tautramp/analyze/report"
+)
+
+// resultFlags are the ways a result leaves the program; capture and analyze
+// share them, and share computeResult, so that both give the same bytes.
+type resultFlags struct {
+	units  string
+	target string
+	json   string
+	csv    string
+	html   string
+	svg    string
+	png    string
+	plot   string
+}
+
+func (r *resultFlags) add(fs *pflag.FlagSet) {
+	fs.StringVar(&r.units, "units", "us", "units on screen and paper: us or si")
+	fs.StringVar(&r.target, "target", "", "band stress wanted, such as \"9500 psi\" (default: the band's in mill.toml)")
+	fs.StringVar(&r.html, "html", "", "write the report as one web page to this file")
+	fs.StringVar(&r.json, "json", "", "write every figure as JSON, SI units, to this file (- for the screen)")
+	fs.StringVar(&r.csv, "csv", "", "write the table at round settings to this file (- for the screen)")
+	fs.StringVar(&r.svg, "svg", "", "write a plot as SVG to this file")
+	fs.StringVar(&r.png, "png", "", "write a plot as PNG to this file")
+	fs.StringVar(&r.plot, "plot", string(report.PlotLoop), "which plot --svg and --png show: "+plotNames())
+}
+
+func plotNames() string {
+	var b bytes.Buffer
+	for i, p := range report.Plots() {
+		if i > 0 {
+			b.WriteString(", ")
+		}
+		b.WriteString(string(p))
+	}
+	return b.String()
+}
+
+// check refuses what cannot be obeyed before any work is done.
+func (r *resultFlags) check() (mill.System, mill.Pressure, error) {
+	system, err := mill.ParseSystem(r.units)
+	if err != nil {
+		return "", mill.Pressure{}, &usageError{"--units: " + err.Error()}
+	}
+	if !report.Plot(r.plot).Known() {
+		return "", mill.Pressure{}, &usageError{fmt.Sprintf("--plot: %q is none of %s", r.plot, plotNames())}
+	}
+	var target mill.Pressure
+	if r.target != "" {
+		q, err := mill.ParseQuantity(r.target, mill.DimPressure)
+		if err != nil {
+			return "", target, &usageError{"--target: " + err.Error()}
+		}
+		target.Quantity = q
+	}
+	return system, target, nil
+}
+
+func (r *resultFlags) outputs() []string { return []string{r.json, r.csv, r.html, r.svg, r.png} }
+
+// textOnScreen is false where a machine-readable result goes to the screen.
+func (r *resultFlags) textOnScreen() bool { return r.json != "-" && r.csv != "-" }
+
+// computeResult reads a recording file and analyses it. It is the only way to
+// a result in this program.
+func computeResult(path string, target mill.Pressure) (*analyze.Result, report.Meta, error) {
+	rec, err := recording.ReadFile(path)
+	if err != nil {
+		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
+	}
+	set, err := pairing.FromRecording(rec)
+	if err != nil {
+		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
+	}
+	res, err := analyze.Analyze(analyze.Input{
+		Profile: rec.Header.Parsed, Tensioner: rec.Header.Tensioner, Band: rec.Header.Band,
+		Target: target, Set: set,
+	})
+	if err != nil {
+		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
+	}
+	return res, reportMeta(path, rec, set), nil
+}
+
+func reportMeta(path string, rec *recording.Recording, set *pairing.Set) report.Meta {
+	meta := report.Meta{
+		File: filepath.Base(path), Seal: rec.Seal, Outcome: string(rec.Outcome), TailBytes: rec.TailBytes,
+		Program: programVersion(), Recorder: rec.Header.Program,
+		Started: rec.Header.Started, ClockFactor: rec.Header.ClockFactor, Continues: rec.Header.Continues,
+		Notes: append([]string(nil), set.Warnings...),
+	}
+	for _, c := range set.Counters {
+		if c.Lost > 0 || c.Rejected > 0 || c.Restarts > 0 {
+			meta.Notes = append(meta.Notes, fmt.Sprintf("device %d: %d lines lost (%d by its own count), %d refused, %d restarts",
+				c.Device+1, c.Lost, c.DeviceSaid, c.Rejected, c.Restarts))
+		}
+	}
+	return meta
+}
+
+// write puts a result wherever the flags say.
+func (r *resultFlags) write(res *analyze.Result, meta report.Meta, system mill.System, e env) error {
+	plot := report.Plot(r.plot)
+	for _, out := range []struct {
+		path  string
+		write func(io.Writer) error
+	}{
+		{r.json, func(w io.Writer) error { return report.JSON(w, res, meta) }},
+		{r.csv, func(w io.Writer) error { return report.CSV(w, res, meta, system) }},
+		{r.html, func(w io.Writer) error { return report.HTML(w, res, meta, system) }},
+		{r.svg, func(w io.Writer) error { return report.SVG(w, res, plot, system) }},
+		{r.png, func(w io.Writer) error { return report.PNG(w, res, plot, system) }},
+	} {
+		if out.path == "" {
+			continue
+		}
+		if err := writeAside(out.path, e, out.write); err != nil {
+			return err
+		}
+	}
+	if r.textOnScreen() {
+		return report.Text(e.stdout, res, meta, system)
+	}
+	return nil
+}
