@@ -72,6 +72,17 @@ func TestNoPairAcrossAGap(t *testing.T) {
 	near(t, "second setting", set.Pairs[1].Setting, 160*psiPa, 1e-6)
 }
 
+func TestNoPairAcrossTwoParts(t *testing.T) {
+	before, after := Reading{T: 1, Value: 10, Status: protocol.Good}, Reading{T: 1.2, Value: 20, Status: protocol.Good, Part: 1}
+	if v, ok := valueAt(1.1, before, after, 0.5); ok {
+		t.Errorf("%g between a reading before a restart and one after it", v)
+	}
+	after.Part = 0
+	if v, ok := valueAt(1.1, before, after, 0.5); !ok || math.Abs(v-15) > 1e-9 {
+		t.Errorf("%g, %t", v, ok)
+	}
+}
+
 func TestSlowChannelMayHaveWiderGaps(t *testing.T) {
 	b := &board{t: t, hz: 1e6, delayS: noDelay}
 	b.hello(0, protocol.CauseAsked, 1, pressureChan('a', 1_000_000), extensionChan('b', 10000))

@@ -14,6 +14,7 @@ const (
 	underClear  = 0.10 // of the limit: by so much the setting must come down after an under-reading
 	blindS      = 1.5  // without a good reading
 	blindPeriod = 5.0  // or so many sample periods, whichever is longer
+	blindHeldS  = 0.3  // real s that this must last: what waited in a queue comes at once
 	risingS     = 3.0  // the setting counts as rising for so long after it last did
 )
 
@@ -28,6 +29,8 @@ type alarms struct {
 	raw    trend                // of the setting
 	rising float64              // when the setting was last seen to rise; -Inf before
 	seen   [2]seen              // setting, extension
+	factor float64              // clock seconds per real second
+	lackAt float64              // since when readings stay away; NaN while none does
 }
 
 // alarm is one that is on.
@@ -46,7 +49,7 @@ type seen struct {
 }
 
 func newAlarms(s site) *alarms {
-	return &alarms{site: s, on: map[AlarmKind]*alarm{}, first: map[AlarmKind]string{}, raw: trend{span: trendS}, rising: math.Inf(-1),
+	return &alarms{site: s, on: map[AlarmKind]*alarm{}, first: map[AlarmKind]string{}, raw: trend{span: trendS}, rising: math.Inf(-1), factor: 1, lackAt: math.NaN(),
 		seen: [2]seen{{name: "the " + s.words.name, goodAt: math.NaN()}, {name: "the stretch", goodAt: math.NaN()}}}
 }
 
@@ -69,7 +72,7 @@ func (a *alarms) setting(r pairing.Reading, now float64) {
 	if !good {
 		return
 	}
-	a.raw.add(now, r.Value)
+	a.raw.add(r.T, r.Value)
 	if rate, std := a.raw.slope(); rate-stillDoubts*std > stillRate*a.site.limit {
 		a.rising = now
 	}
@@ -94,6 +97,14 @@ func (a *alarms) note(channel int, r pairing.Reading, now float64) {
 // short takes the guard's word that the stretch does not follow.
 func (a *alarms) short(setting float64) { a.raise(UnderReading, setting, a.site.underText()) }
 
+// missing is a channel that cannot be read, or nil: unseen for long enough.
+func (a *alarms) missing(now float64) *seen {
+	if now-a.lackAt >= blindHeldS*a.factor {
+		return a.unseen(now)
+	}
+	return nil // also while nothing lacks: lackAt is not a number then
+}
+
 // unseen is a channel without a good reading for too long, or nil.
 func (a *alarms) unseen(now float64) *seen {
 	for i := range a.seen {
@@ -112,13 +123,15 @@ func (a *alarms) time(now float64) {
 		a.seen[i].goodAt = orElse(a.seen[i].goodAt, now)
 	}
 	s := a.unseen(now)
-	switch {
-	case s == nil:
+	if s == nil {
+		a.lackAt = math.NaN()
 		a.over(Blind, now)
-	case now-a.rising <= risingS+s.patience():
+		return
+	}
+	a.stays(Blind)
+	a.lackAt = orElse(a.lackAt, now)
+	if a.missing(now) != nil && now-a.rising <= risingS+s.patience()+blindHeldS*a.factor {
 		a.raise(Blind, math.NaN(), a.site.blindText(*s))
-	default:
-		a.stays(Blind)
 	}
 }
 

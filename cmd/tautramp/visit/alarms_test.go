@@ -113,7 +113,7 @@ func TestSensorThatVanishesWhileTheSettingRises(t *testing.T) {
 			f.ramp(35, 300, 40, protocol.Good, protocol.Good)
 			f.ramp(300, 308, 1.4, c[0], c[1])
 			f.want(NoAlarm)
-			f.ramp(308, 310, 0.4, c[0], c[1])
+			f.ramp(308, 310, 0.6, c[0], c[1])
 			f.want(Blind)
 			f.ramp(310, 310, 20, c[0], c[1])
 			f.want(Blind)
@@ -131,15 +131,34 @@ func TestLinesThatStopWhileTheSettingRises(t *testing.T) {
 	f.want(NoAlarm)
 	f.now += 1
 	f.a.time(f.now)
+	f.now += 0.5
+	f.a.time(f.now)
 	f.want(Blind)
+}
+
+func TestHostThatStalledIsNotBlind(t *testing.T) {
+	f := newFeeder(t)
+	f.ramp(35, 300, 40, protocol.Good, protocol.Good)
+	f.now += 4 // then all that waited comes at once, the setting first
+	for i := range 200 {
+		at := f.now - 4 + 0.02*float64(i)
+		f.a.setting(pairing.Reading{T: at, Value: (300 + at - 40) * psiPa, Status: protocol.Good}, f.now)
+		f.a.time(f.now)
+	}
+	f.a.extension(pairing.Reading{T: f.now, Status: protocol.Good}, f.now)
+	f.a.time(f.now)
+	f.want(NoAlarm)
+	if len(f.a.raised) != 0 {
+		t.Errorf("raised %q", f.a.raised)
+	}
 }
 
 func TestMissingReadingsAtRestAreNoAlarm(t *testing.T) {
 	f := newFeeder(t)
 	f.ramp(35, 35, 10, protocol.Good, protocol.Absent)
 	f.want(NoAlarm)
-	if c := f.a.unseen(f.now); c == nil || c.name != "the stretch" {
-		t.Errorf("unseen %v", c)
+	if c := f.a.missing(f.now); c == nil || c.name != "the stretch" {
+		t.Errorf("missing %v", c)
 	}
 	f.ramp(35, 60, 4, protocol.Good, protocol.Absent) // and now somebody pumps
 	f.want(Blind)

@@ -64,7 +64,7 @@ func (k *tracker) phase() analyze.PhaseKind {
 		return analyze.SlackLift
 	case k.setting < c.top-k.band || k.falling():
 		return analyze.Inside
-	case k.setting < orElse(k.site.lift, 0)+seatingEnd*orElse(k.site.full, k.site.limit):
+	case c.top < orElse(k.site.lift, 0)+seatingEnd*orElse(k.site.full, k.site.limit):
 		return analyze.Seating
 	}
 	return analyze.Loading

@@ -49,6 +49,9 @@ func TestPlannedCyclesCloseOnceEach(t *testing.T) {
 			if p.count(recording.PlanClosed) != 1 || p.events[len(p.events)-1].Kind != recording.PlanClosed {
 				t.Errorf("events %v", p.events)
 			}
+			if end, _ := s.now(); p.at[len(p.at)-1] < end-8 {
+				t.Errorf("closed at %.0f s, the last ramp ends at %.0f s", p.at[len(p.at)-1], end-8)
+			}
 			if len(p.kinds) != 0 {
 				t.Errorf("alarms %v", p.kinds)
 			}
@@ -185,6 +188,34 @@ func TestHealthyTensionersRaiseNoAlarm(t *testing.T) {
 		if p.k.check.advice != "" {
 			t.Errorf("seed %d: %s", seed, p.k.check.advice)
 		}
+	}
+}
+
+func TestHeavyFrictionRaisesNoAlarmBeforeTheBandMoves(t *testing.T) {
+	for _, c := range []struct {
+		name      string
+		weightLbf float64
+		low       float64 // psi
+		movesPsi  float64 // by p A* = S(1+mu) + F0, from S that the low end holds
+	}{
+		{"slack band under a heavy wheel", 3000, 5, (3000*1.135 + 630) / 9.8175},
+		{"band that never went slack", 820, 120, ((120*9.8175+630)/0.865*1.135 + 630) / 9.8175},
+	} {
+		h := header(t)
+		h.Parsed.Tensioners[0].LiftedWeight.SI = c.weightLbf * lbfN
+		r := t1(1)
+		r.f0N, r.mu, r.weightN = 630*lbfN, 0.135, c.weightLbf*lbfN
+		r.loadN = (c.low*psiPa*areaM2 + r.f0N) / (1 - r.mu)
+		still := 0.0
+		p := play(t, h, r, from(c.low).rest(10).to(860, 8), func(k *tracker, _ *alarms, now float64) {
+			if !k.cycle.moved {
+				still = k.setting / psiPa
+			}
+		})
+		if len(p.kinds) != 0 {
+			t.Errorf("%s: %s at %.0f psi", c.name, p.events[0].Text, p.psi[0])
+		}
+		near(t, c.name+": setting at which the band moves, psi", still, c.movesPsi, 30)
 	}
 }
 

@@ -48,6 +48,7 @@ func newWatch(cfg Config) (*watch, error) {
 	if c := cfg.Acquire.Clock; c != nil {
 		w.factor = c.Factor()
 	}
+	w.alarms.factor = w.factor
 	return w, nil
 }
 
@@ -189,7 +190,7 @@ func (w *watch) status() Status {
 	}
 	if s.Alarm, s.AlarmText = w.alarms.gravest(); s.Alarm != NoAlarm {
 		s.Next = "STOP - " + k.site.words.release
-	} else if c := w.alarms.unseen(w.now.Seconds()); c != nil && k.seen && !k.finished {
+	} else if c := w.alarms.missing(w.now.Seconds()); c != nil && k.seen && !k.finished {
 		s.Next = "wait: there is no reading of " + c.name
 	}
 	return s

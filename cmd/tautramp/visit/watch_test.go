@@ -209,7 +209,7 @@ func TestNoReadingIsSaidBeforePumping(t *testing.T) {
 	entries := lines(t, t1(1), from(35).rest(4))
 	w, _ := run(t, config(t), entries)
 	b := &board{t: t, seq: 5000}
-	for i := range 20 {
+	for i := range 30 {
 		w.entry(b.val(w.now.Seconds()+0.1, 'a', 350+float64(i%2)))
 	}
 	if w.drawn.Next != "wait: there is no reading of the stretch" || w.drawn.Alarm != NoAlarm {
@@ -237,4 +237,18 @@ func TestVisitNeedsAProfile(t *testing.T) {
 	if _, err := Run(t.Context(), cfg); err == nil {
 		t.Error("no error")
 	}
+}
+
+func BenchmarkWatch(b *testing.B) {
+	entries := lines(b, t1(1), cycles(3, 8))
+	for b.Loop() {
+		w, err := newWatch(config(b))
+		if err != nil {
+			b.Fatal(err)
+		}
+		for _, e := range entries {
+			w.entry(e)
+		}
+	}
+	b.ReportMetric(float64(b.Elapsed().Nanoseconds())/float64(b.N*len(entries)), "ns/line")
 }

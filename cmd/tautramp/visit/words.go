@@ -49,10 +49,8 @@ func (k *tracker) next() string {
 		return nextDone
 	case !k.seen:
 		return nextWait
-	case k.stage == onFall:
+	case k.stage == onFall || k.stage == onRise && k.heldEnough():
 		return w.lower + ", all the way until the band is slack, then rest"
-	case k.stage == onRise && k.heldEnough():
-		return w.lower
 	case k.stage == onRise && k.atGoal():
 		return nextHold
 	case k.stage == onRise:
