@@ -30,11 +30,11 @@ type Cycle struct {
 	ReturnM      estimate.Estimate // m, extension at the end of the cycle minus at its start, same setting
 	ReversalSI   estimate.Estimate // fall of setting at the top before the extension follows
 	RateSI       float64           // median |rate of setting| on the branches, SI/s
-	SeatingEndSI float64           // setting above which the rising branch is straight
+	SeatingEndSI float64           // setting above which the rising branch is straight; NaN where it was not found
 }
 
-// Fit is one branch of one cycle: extension = Line.A + Line.B * setting, SI.
-// Points is 0 where the branch was not fitted.
+// Fit is one branch of one fitted cycle: extension = Line.A + Line.B * setting,
+// SI. Points is 0 in a cycle that is not fitted.
 type Fit struct {
 	Line   estimate.Line
 	LowSI  float64 // range of setting fitted

@@ -51,6 +51,11 @@ func TestRolesOfCycles(t *testing.T) {
 			if !warned(r, c.warning) {
 				t.Errorf("no %q among %v", c.warning, r.Warnings)
 			}
+			for i, cycle := range r.Cycles {
+				if fitted := cycle.Rising.Points > 0 || cycle.Falling.Points > 0; fitted != (cycle.Role == Ramp) {
+					t.Errorf("cycle %d is %s, fitted: %v", i, cycle.Role, fitted)
+				}
+			}
 			for i, pt := range r.Points {
 				if pt.Fitted && r.Cycles[pt.Cycle].Role != Ramp {
 					t.Fatalf("pair %d of a cycle that is %s was fitted", i, r.Cycles[pt.Cycle].Role)

@@ -63,13 +63,24 @@ func (w *work) combine(f figure, of scope, why string) estimate.Estimate {
 // follow is how far a figure, as the mean of the ramps, moves with one standard
 // uncertainty of a source.
 func (w *work) follow(f figure, s source) float64 {
-	moved := 0.0
+	moved, size := 0.0, 0.0
 	for _, r := range w.ramps {
 		up, kUp := s.move(r, w.k, +1)
 		down, kDown := s.move(r, w.k, -1)
-		moved += (f(up, kUp) - f(down, kDown)) / 2
+		high, low := f(up, kUp), f(down, kDown)
+		moved += (high - low) / 2
+		size += math.Abs(high) + math.Abs(low)
 	}
-	return math.Abs(moved) / float64(len(w.ramps))
+	return unlessRounding(math.Abs(moved), size) / float64(len(w.ramps))
+}
+
+// unlessRounding is v, or 0 where it is no more than the rounding of figures of
+// that size: what is left then differs from machine to machine.
+func unlessRounding(v, size float64) float64 {
+	if math.Abs(v) <= 1e-12*size {
+		return 0
+	}
+	return v
 }
 
 // withinVar is the variance that one ramp's own scatter gives a figure. Each

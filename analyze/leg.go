@@ -38,6 +38,7 @@ func (w *work) fitCycles() {
 	w.legs = make([]legs, len(w.res.Cycles))
 	for i := range w.res.Cycles {
 		c, l := &w.res.Cycles[i], &w.legs[i]
+		c.SeatingEndSI, c.ReversalSI = math.NaN(), estimate.Unknown("the cycle has no straight stretch on both branches")
 		l.rise = w.trace.leading(w.t[c.First], w.t[c.First:c.Peak+1], +1)
 		l.fall = w.trace.leading(w.t[c.Peak], w.t[c.Peak:c.Last+1], -1)
 		l.ok = w.searchRising(c, l) && c.Role != Incomplete && w.searchFalling(c, l)
@@ -86,7 +87,7 @@ func leaders(first int, leads []bool, pass func(i int) bool) []int {
 // searchRising finds where the rising branch is straight, the band seated, and
 // fits it from there to the top.
 func (w *work) searchRising(c *Cycle, l *legs) bool {
-	l.kneeSI = math.Inf(-1)
+	l.seatEndSI, l.kneeSI = math.Inf(1), math.Inf(-1)
 	at := leaders(c.First, l.rise, func(int) bool { return true })
 	from, err := w.straightAbove(at, +1)
 	if err != nil {

@@ -43,7 +43,7 @@ func (w *work) place(pt *Point, i int, c *Cycle, l *legs) {
 	case w.slack[i]:
 	case i < c.Peak && l.rise[i-c.First]:
 		pt.Phase = Loading
-		if c.Rising.Points == 0 || w.p[i] < l.seatEndSI {
+		if !(w.p[i] >= l.seatEndSI) {
 			pt.Phase = Seating
 		}
 	case i >= c.Peak && l.fall[i-c.Peak]:

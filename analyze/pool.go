@@ -47,6 +47,11 @@ func (w *work) keepRamps() {
 		}
 		w.ramps, w.fitted = append(w.ramps, r), append(w.fitted, i)
 	}
+	for i := range w.res.Cycles {
+		if !slices.Contains(w.fitted, i) {
+			w.res.Cycles[i].Rising, w.res.Cycles[i].Falling = Fit{}, Fit{}
+		}
+	}
 }
 
 func (w *work) zeroKnown() bool { return w.zeroFrom != "" }

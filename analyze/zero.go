@@ -87,7 +87,8 @@ func (w *work) returned(before, after estimate.Estimate) estimate.Estimate {
 		return estimate.Unknown("the band was not slack both before and after the cycle")
 	}
 	return estimate.Estimate{
-		Value: after.Value - before.Value, Random: math.Hypot(before.Random, after.Random),
+		Value:  unlessRounding(after.Value-before.Value, math.Abs(after.Value)+math.Abs(before.Value)),
+		Random: math.Hypot(before.Random, after.Random),
 		System: w.setup.CountM / math.Sqrt(6), DoF: math.Min(before.DoF, after.DoF), Method: "slack band after the cycle less before it",
 	}
 }

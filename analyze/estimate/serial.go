@@ -15,6 +15,7 @@ func Lag1(v []float64) float64 {
 // autocorrelation gives the correlation at a lag; ok is false where the series
 // does not vary.
 func autocorrelation(v []float64) (at func(lag int) float64, ok bool) {
+	const rounding = 1e-14 // relative: equal values have a spread by it
 	mean, _ := Mean(v)
 	all := 0.0
 	for _, x := range v {
@@ -26,7 +27,7 @@ func autocorrelation(v []float64) (at func(lag int) float64, ok bool) {
 			sum += (v[i] - mean) * (v[i-lag] - mean)
 		}
 		return sum / all
-	}, all > 0
+	}, all > rounding*rounding*mean*mean*float64(len(v))
 }
 
 // Dependence is how many neighbouring values of a series tell as much as one
