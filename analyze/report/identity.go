@@ -1,0 +1,127 @@
+package report
+
+import (
+	"fmt"
+	"strconv"
+
+	"tautramp/acquire/mill"
+	"tautramp/analyze"
+)
+
+// rehearsalText says that nothing here was measured on a mill, if so.
+func rehearsalText(m Meta) string {
+	if !m.rehearsed() {
+		return ""
+	}
+	return fmt.Sprintf("REHEARSAL on a scaled clock, %s recorded seconds in one real second: "+
+		"these are no readings of a mill, set no tensioner by them.", plain(m.ClockFactor, 3))
+}
+
+func identity(r *analyze.Result, m Meta, u units) []fact {
+	facts := []fact{
+		{"Mill", named(r.Setup.Mill.Name, notKnown+": the profile names no mill")},
+		{"Serviced by", named(r.Setup.Mill.ServicedBy, notKnown+": the profile does not say")},
+		{"Tensioner", noted(named(r.Setup.Tensioner.Name, "of no name")+", set by "+u.settingIs.noun, r.Setup.Tensioner.Note)},
+		{"Band", noted(bandText(r.Setup.Band, u), r.Setup.Band.Note)},
+		{"Rig", noted(lengthText(r.Setup.Rig.GaugeLength, u.section)+" gauge length", r.Setup.Rig.Note)},
+		{"Measured", startedText(m)},
+		{"Cycles", cyclesText(r)},
+		{"Recording", recordingText(m)},
+		{"Seal", named(m.Seal, notKnown+": the recording has none")},
+		{"Computed by", named(m.Program, notKnown)},
+	}
+	if m.Recorder != "" && m.Recorder != m.Program {
+		facts = append(facts, fact{"Recorded by", clean(m.Recorder, nameLength)})
+	}
+	if m.Continues != "" {
+		facts = append(facts, fact{"Continues", "the recording with seal " + clean(m.Continues, sealLength)})
+	}
+	return facts
+}
+
+// noted puts the profile's remark behind a text.
+func noted(text, note string) string {
+	if note = clean(note, textLength); note != "" {
+		text += "; " + note
+	}
+	return text
+}
+
+func bandText(b mill.Band, u units) string {
+	return fmt.Sprintf("%s, %s net (back to gullet bottom) x %s thick",
+		named(b.Name, "of no name"), lengthText(b.NetWidth, u.section), lengthText(b.Thickness, u.section))
+}
+
+// lengthText is a length of the profile in the report's unit, with the digits
+// that a person would write.
+func lengthText(l mill.Length, u unit) string {
+	if l.SI <= 0 {
+		return notKnown
+	}
+	return u.with(plain(u.show(l.SI), 4))
+}
+
+func startedText(m Meta) string {
+	if m.Started.IsZero() {
+		return notKnown + ": the recording states no time"
+	}
+	return m.Started.Format("2006-01-02 15:04 -07:00")
+}
+
+func cyclesText(r *analyze.Result) string {
+	count := map[analyze.Role]int{}
+	for _, c := range r.Cycles {
+		count[c.Role]++
+	}
+	text := strconv.Itoa(count[analyze.Ramp]) + " fitted"
+	if n := count[analyze.Exercise]; n > 0 {
+		text += fmt.Sprintf(", %d to exercise (not fitted)", n)
+	}
+	if n := count[analyze.Incomplete]; n > 0 {
+		text += fmt.Sprintf(", %d not closed (not fitted)", n)
+	}
+	return text
+}
+
+func recordingText(m Meta) string {
+	name := m.base()
+	if name == "" {
+		name = "name " + notKnown
+	}
+	switch {
+	case m.Outcome == "":
+		return name + ", how it ends is " + notKnown
+	case m.TailBytes > 0:
+		return fmt.Sprintf("%s, %s: the last %d bytes carry no seal and were not used", name, clean(m.Outcome, nameLength), m.TailBytes)
+	}
+	return name + ", " + clean(m.Outcome, nameLength)
+}
+
+// warningTexts are the warnings of the analysis, then the notes of the way.
+func warningTexts(r *analyze.Result, m Meta) []string {
+	var texts []string
+	for _, w := range r.Warnings {
+		texts = append(texts, clean(w.Text, textLength))
+	}
+	for _, n := range m.Notes {
+		texts = append(texts, clean(n, textLength))
+	}
+	return bounded(texts)
+}
+
+// bounded drops repeats and cuts a list that would bury the sheet, and says how
+// much was cut.
+func bounded(texts []string) []string {
+	seen := map[string]bool{"": true}
+	var kept []string
+	for _, t := range texts {
+		if !seen[t] {
+			seen[t] = true
+			kept = append(kept, t)
+		}
+	}
+	if over := len(kept) - listLength; over > 0 {
+		kept = append(kept[:listLength], fmt.Sprintf("and %d more, in the JSON", over))
+	}
+	return kept
+}

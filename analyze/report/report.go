@@ -1,0 +1,37 @@
+// Package report writes a result for people and for machines: Text for a
+// terminal, HTML for one sheet of paper, CSV and JSON for other programs, SVG
+// and PNG of the plots. Every figure comes from analyze; this room only
+// converts units, rounds, words and draws. Same input, same bytes.
+//
+// Deliberately absent: files, clocks, and any formula of the trade. Wording
+// and layout may change; the JSON follows result.schema.json, whose version
+// number changes with it.
+package report
+
+import (
+	"strings"
+	"time"
+)
+
+// Meta is what a report says of the recording and of the program, beside the
+// figures. The zero value of a field means not known, and is printed so.
+type Meta struct {
+	File        string    // name of the recording; folders before it are dropped
+	Seal        string    // last good seal, identifies the data
+	Outcome     string    // "complete", "torn" or "corrupt", as reading the file ended
+	TailBytes   int64     // bytes after the last good seal, not used
+	Program     string    // name and version of the program that computes the result
+	Recorder    string    // name and version of the program that made the recording
+	Started     time.Time // wall clock at the recording's start, with the zone it was written in
+	ClockFactor float64   // recorded seconds per real second; 0 and 1 are real time, anything else is a rehearsal
+	Continues   string    // seal of the file that this one continues
+	Notes       []string  // what went wrong on the way: lost lines, restarts, clocks
+}
+
+// rehearsed tells a recording made on a scaled clock.
+func (m Meta) rehearsed() bool { return m.ClockFactor != 0 && m.ClockFactor != 1 }
+
+// base is the file's name without folders, whichever way they are written.
+func (m Meta) base() string {
+	return clean(m.File[strings.LastIndexAny(m.File, `/\`)+1:], nameLength)
+}

@@ -1,0 +1,60 @@
+package report
+
+import (
+	"strings"
+
+	"tautramp/acquire/mill"
+	"tautramp/analyze"
+	"tautramp/analyze/estimate"
+)
+
+// runningNote keeps the running band apart from the intervals.
+func runningNote() string {
+	return "Friction lets the band stress wander to one side once it is set. This stands beside the intervals and is not added to them."
+}
+
+func runningFacts(r *analyze.Result, u units) []fact {
+	run := r.Running
+	middle := figureOf(run.MiddlePa, u.stress).String()
+	if run.Hold != mill.HoldMaintained {
+		middle += ", where the pressure is kept up"
+	}
+	return []fact{
+		{"Set rising: change", oneSided(run.AfterRisingPa, u.stress)},
+		{"Set falling: change", oneSided(run.AfterFallingPa, u.stress)},
+		{"Vibration brings to", middle},
+		{"Held by", holdText(run.Hold)},
+	}
+}
+
+// oneSided is a change from the target, signs written out: one end is nothing.
+func oneSided(change [2]estimate.Estimate, u unit) string {
+	low, high := figureOf(change[0], u), figureOf(change[1], u)
+	for _, f := range []figure{low, high} {
+		if f.Why != "" {
+			return f.String()
+		}
+	}
+	return "from " + signed(low) + " to " + u.with(signed(high))
+}
+
+func signed(f figure) string {
+	text := f.Value
+	if text != "0" && !strings.HasPrefix(text, "-") {
+		text = "+" + text
+	}
+	if f.PlusMinus != "" {
+		text += " +/- " + f.PlusMinus
+	}
+	return text
+}
+
+func holdText(h mill.Hold) string {
+	switch h {
+	case mill.HoldMaintained:
+		return "pressure kept up (profile)"
+	case mill.HoldLocked:
+		return "a valve that locks the oil in (profile): the band then gains far less, and the gauge falls instead"
+	}
+	return notKnown + ": the profile does not say whether the pressure is kept up or locked in; locked in, the band gains far less, and the gauge falls instead"
+}

@@ -1,0 +1,72 @@
+package report
+
+import (
+	"tautramp/acquire/mill"
+	"tautramp/analyze"
+)
+
+// fact is one line of a report: a label and what is known of it.
+type fact struct{ Label, Value string }
+
+// sheet is a report in words, before it becomes terminal text or paper. Both
+// are made from it, so that they never say different things.
+type sheet struct {
+	Title       string // tensioner and band
+	Rehearsal   string // a warning that stands above everything; "" for a real visit
+	Identity    []fact
+	TargetText  string // "9,500 band psi"
+	Limit       string // of the setting
+	Targets     []aim  // rising, falling
+	Budget      []budgetLine
+	Overshoot   string    // what to do after passing the number
+	Friction    []fact    // friction and half-width
+	Verdict     verdict   // on the half-width
+	Running     []fact    // the one-sided running band
+	RunningNote string    // what it is
+	Branches    []fact    // the two lines
+	Table       roundRows // both branches at round settings
+	Assumptions []fact
+	Warnings    []string
+	Unchecked   []string
+	Cautions    []string
+	Units       units
+}
+
+// newSheet words a result.
+func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
+	u := unitsFor(r.Setup.Tensioner, s)
+	rising := aimOf(r, analyze.Rising, u)
+	return sheet{
+		Title:       titleText(r),
+		Rehearsal:   rehearsalText(m),
+		Identity:    identity(r, m, u),
+		TargetText:  targetText(r, u),
+		Targets:     []aim{rising, aimOf(r, analyze.Falling, u)},
+		Budget:      rising.Budget,
+		Limit:       limitText(r, u),
+		Overshoot:   overshootText(r, u),
+		Friction:    frictionFacts(r, u),
+		Verdict:     verdictOf(r),
+		Running:     runningFacts(r, u),
+		RunningNote: runningNote(),
+		Branches:    []fact{branchFact(analyze.Rising, r.Rising, u), branchFact(analyze.Falling, r.Falling, u)},
+		Table:       rowsOf(r, u),
+		Assumptions: assumptions(r, u),
+		Warnings:    warningTexts(r, m),
+		Unchecked:   unchecked(),
+		Cautions:    Cautions(),
+		Units:       u,
+	}
+}
+
+func titleText(r *analyze.Result) string {
+	return named(r.Setup.Tensioner.Name, "tensioner") + " with band " + named(r.Setup.Band.Name, "of no name")
+}
+
+// named is a name from the profile, or a word where there is none.
+func named(name, otherwise string) string {
+	if name = clean(name, nameLength); name != "" {
+		return name
+	}
+	return otherwise
+}
