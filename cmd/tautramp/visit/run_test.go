@@ -161,6 +161,9 @@ func TestRehearsedSlipOfTheRigStops(t *testing.T) {
 }
 
 func TestRehearsedIndicatorThatFallsOutStops(t *testing.T) {
+	if testing.Short() {
+		t.Skip("the long run; TestSensorThatVanishesWhileTheSettingRises is the short one")
+	}
 	cfg := config(t)
 	cfg.Plan = recording.Plan{Ramps: 1}
 	rig := simrig.Config{Drive: brisk(0), Indicator: simrig.Sensor{AbsentAtS: 25, AbsentForS: 5}}
