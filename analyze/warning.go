@@ -3,8 +3,6 @@ package analyze
 import (
 	"fmt"
 	"math"
-
-	"tautramp/protocol"
 )
 
 // Warning is something the reader must know beside the figures.
@@ -61,7 +59,7 @@ func (w *work) warnInstruments() {
 	if w.setup.Rig.Faces < 2 {
 		w.warn("one-face", "Stretch was measured on one face only: curl of the band shows as stretch and is in no interval. Measure the other face too.")
 	}
-	if s := w.set.Extension.Spec.Shows; s != protocol.ShowsRounded && s != protocol.ShowsTruncated {
+	if !w.set.Extension.CutKnown() {
 		w.warn("display-unknown", "The stretch indicator does not say whether it rounds or cuts off its last digit: half a count is added to the doubt of the zero.")
 	}
 }

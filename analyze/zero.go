@@ -5,7 +5,6 @@ import (
 
 	"tautramp/acquire/pairing"
 	"tautramp/analyze/estimate"
-	"tautramp/protocol"
 )
 
 // The conventions of the zero.
@@ -19,7 +18,7 @@ const (
 // where the display's rounding is not known.
 func (w *work) zeroStdM() float64 {
 	std := w.setup.CountM / math.Sqrt(12)
-	if s := w.set.Extension.Spec.Shows; s != protocol.ShowsRounded && s != protocol.ShowsTruncated {
+	if !w.set.Extension.CutKnown() {
 		std = math.Hypot(std, w.setup.CountM/2/math.Sqrt(3))
 	}
 	return std

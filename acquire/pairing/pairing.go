@@ -106,3 +106,9 @@ type Set struct {
 
 // Plan mirrors the recording's plan, so that the analysis needs no recording.
 type Plan struct{ Exercise, Ramps int }
+
+// CutKnown tells whether the channel's display is known to round or to cut off
+// its last digit. Where it is not, half a count more is in doubt.
+func (c Channel) CutKnown() bool {
+	return c.Spec.Shows == protocol.ShowsRounded || c.Spec.Shows == protocol.ShowsTruncated
+}
