@@ -30,7 +30,7 @@ func CSV(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 		records = append(records, []string{
 			ungrouped(row.Setting), rising, risingHalf, falling, fallingHalf,
 			cellText(named(r.Setup.Tensioner.Name, notKnown)), cellText(named(r.Setup.Band.Name, notKnown)),
-			cellText(named(m.base(), notKnown)), cellText(named(m.Seal, notKnown)),
+			cellText(named(m.base(), notKnown)), cellText(m.seal()),
 		})
 	}
 	return out.WriteAll(records)

@@ -103,7 +103,7 @@ func analysed(t testing.TB, set *pairing.Set) *analyze.Result {
 
 func t1Meta() Meta {
 	return Meta{
-		File: "/home/mill/quillfern-t1.ramp", Seal: "9f2c41d07be853aa16e0c4b2", Outcome: "complete",
+		File: "/home/mill/quillfern-t1.ramp", Seal: "9f2c41d07be853aa16e0c4b25d7718e2c9034fa1b6e85d20f7a3c1984be6d052", Outcome: "complete",
 		Program: "tautramp 0.1", Recorder: "tautramp 0.1", ClockFactor: 1,
 		Started: time.Date(2026, 9, 14, 9, 41, 7, 0, time.FixedZone("", -4*3600)),
 		Notes:   []string{"device 1: 3 lines lost (3 by its own count), 0 refused, 0 restarts"},

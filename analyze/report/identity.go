@@ -27,7 +27,7 @@ func identity(r *analyze.Result, m Meta, u units) []fact {
 		{"Measured", startedText(m)},
 		{"Cycles", cyclesText(r)},
 		{"Recording", recordingText(m)},
-		{"Seal", named(m.Seal, notKnown+": the recording has none")},
+		{"Seal", m.seal()},
 		{"Computed by", named(m.Program, notKnown)},
 	}
 	if m.Recorder != "" && m.Recorder != m.Program {

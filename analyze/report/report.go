@@ -35,3 +35,12 @@ func (m Meta) rehearsed() bool { return m.ClockFactor != 0 && m.ClockFactor != 1
 func (m Meta) base() string {
 	return clean(m.File[strings.LastIndexAny(m.File, `/\`)+1:], nameLength)
 }
+
+// seal is the whole seal, or why there is none: cut short it would not identify
+// the data.
+func (m Meta) seal() string {
+	if s := clean(m.Seal, sealLength); s != "" {
+		return s
+	}
+	return notKnown + ": the recording has none"
+}

@@ -71,7 +71,7 @@ func TestTextSaysWhatMatters(t *testing.T) {
 		"RISING: come up to it from below", "FALLING: come down to it from above", "fitted curve", "next setting", "band's true stress",
 		"Overshot while rising: drop to 5", "never above 950 gauge psi", "service", "F0, constant", "mu, in proportion", "W, lifted weight",
 		"A*, working area", "is not added to them", "Set rising: change from 0 to +1,7", "5.25 in net (back to gullet bottom)", "9,500 band psi",
-		"slack band", "3 fitted, 1 to exercise (not fitted)", "3 lines lost", "NOT CHECKED", "CAUTIONS",
+		t1Meta().Seal[:48], "slack band", "3 fitted, 1 to exercise (not fitted)", "3 lines lost", "NOT CHECKED", "CAUTIONS",
 	} {
 		if !strings.Contains(out, want) {
 			t.Errorf("lacks %q", want)
@@ -150,6 +150,16 @@ func TestCSVIsATable(t *testing.T) {
 					t.Errorf("%s: cell %q", name, cell)
 				}
 			}
+		}
+	}
+}
+
+func TestSealIsNeverCutShort(t *testing.T) {
+	m := t1Meta()
+	for name, write := range writers(mill.US, m) {
+		out := string(written(t, func(b *bytes.Buffer) error { return write(b, t1(t)) }))
+		if has := strings.Contains(strings.Join(strings.Fields(out), ""), m.Seal); !has && slices.Contains([]string{"text", "html", "csv", "json"}, name) {
+			t.Errorf("%s lacks the whole seal", name)
 		}
 	}
 }
