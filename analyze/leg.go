@@ -27,7 +27,7 @@ const (
 	mostPoints = 300
 	// The fall of the setting at the top that is left out, in reversal lengths:
 	// presliding rounds the knee. Judgement.
-	reversalShare = 1.5
+	reversalShare = 1.15
 )
 
 // fitCycles finds the branches of every closed cycle and fits their lines. An

@@ -2,11 +2,9 @@ package main
 
 import (
 	"context"
-	"errors"
 	"fmt"
 
 	"tautramp/acquire/mill"
-	"tautramp/analyze"
 	"tautramp/analyze/report"
 )
 
@@ -44,20 +42,8 @@ func analyzeFile(path string, r resultFlags, system mill.System, target mill.Pre
 	if err := r.write(res, meta, system, e); err != nil {
 		return err
 	}
-	return targetInRange(path, res)
-}
-
-// targetInRange is the error that a written result still has where its target
-// was not captured: the rest of the figures stands.
-func targetInRange(path string, res *analyze.Result) error {
-	if res.Setup.TargetPa == 0 {
-		return nil
-	}
-	for _, d := range []analyze.Direction{analyze.Rising, analyze.Falling} {
-		_, err := res.SettingAt(d, res.Setup.TargetPa)
-		if _, outside := errors.AsType[*analyze.OutOfRangeError](err); outside {
-			return fmt.Errorf("%s, %s: %w", path, d, err)
-		}
+	if err := res.TargetError(); err != nil {
+		return fmt.Errorf("%s: %w", path, err) // written all the same: the rest of the figures stands
 	}
 	return nil
 }
