@@ -11,7 +11,8 @@ const (
 	goalHalf   = 0.47 // of the target: where the first cycle ends, near enough to half
 	goalSlack  = 1.15 // of the frictionless setting, where the stress is not known
 	goalLimit  = 0.95 // of the limit: no ramp goes higher
-	holdS      = 5.0
+	holdS      = 5.0  // how long the top is held
+	holdShows  = 2.0  // s of standing still that are a hold and no pause between two strokes
 	seatingEnd = 0.15 // of the setting for the target, beyond the lift: the toe is over
 
 	paceSlow = 0.0015 // of the limit per s
@@ -48,7 +49,7 @@ func (k *tracker) heldEnough() bool { return k.now-k.heldAt >= holdS }
 // phase is the analysis's word for what goes on.
 func (k *tracker) phase() analyze.PhaseKind {
 	c := &k.cycle
-	still := k.stillS() > 0
+	still := k.stillS() >= holdShows
 	switch {
 	case k.stage == atRest:
 		return analyze.Resting
@@ -70,10 +71,11 @@ func (k *tracker) phase() analyze.PhaseKind {
 	return analyze.Loading
 }
 
-// falling reports that the setting goes down, before its dead band says so.
+// falling reports that the setting goes down, before its dead band says so; over
+// several seconds, so that the sag after a stroke does not.
 func (k *tracker) falling() bool {
-	rate, std := k.rate.slope()
-	return rate+stillDoubts*std < 0
+	rate, _ := k.pace.slope()
+	return rate < -k.doubt(&k.pace)
 }
 
 // low reports that the setting is down where a cycle closes.
@@ -87,7 +89,7 @@ func (k *tracker) paceNow() Pace {
 	rate, _ := k.pace.slope()
 	part := math.Abs(rate) / k.site.limit
 	switch {
-	case k.stage == atRest || k.stillS() > 0 || math.IsNaN(part):
+	case k.stage == atRest || k.stillS() >= holdShows || math.IsNaN(part):
 		return ""
 	case part > paceFast:
 		return TooFast

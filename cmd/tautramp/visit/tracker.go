@@ -187,15 +187,26 @@ func (k *tracker) follow(p pairing.Pair) {
 }
 
 // watchStill notes since when the setting stands still: when its rate is not
-// clear of its own doubt and of a creep.
+// clear of its noise and of a creep.
 func (k *tracker) watchStill(t float64) {
-	rate, std := k.rate.slope()
+	rate, _ := k.rate.slope()
 	switch {
-	case math.IsNaN(rate) || math.Abs(rate) > stillRate*k.site.limit+stillDoubts*std:
+	case math.IsNaN(rate) || math.Abs(rate) > stillRate*k.site.limit+k.doubt(&k.rate):
 		k.stillAt = math.NaN()
 	case math.IsNaN(k.stillAt):
 		k.stillAt = t - trendS/2
 	}
+}
+
+// doubt is two standard uncertainties of a trend's slope, from the noise alone:
+// of a line through n equally spaced points, sd sqrt(12/n) / span. A pump's
+// strokes make no doubt about whether the setting moves.
+func (k *tracker) doubt(of *trend) float64 {
+	n := 1
+	for _, s := range of.slots {
+		n += s.n
+	}
+	return stillDoubts * k.noiseSI * math.Sqrt(12/float64(n)) / of.span
 }
 
 // stillS is for how long the setting has stood still, s.

@@ -102,6 +102,18 @@ func TestPhasesOfAHealthyCycle(t *testing.T) {
 	}
 }
 
+func TestStrokesOfAPumpAreNoHolds(t *testing.T) {
+	changes, last := 0, analyze.PhaseKind("")
+	play(t, header(t), t1(1), from(35).rest(10).strokes(860, 16, 0.01, 2), func(k *tracker, _ *alarms, _ float64) {
+		if p := k.phase(); p != last {
+			changes, last = changes+1, p
+		}
+	})
+	if changes > 6 || last != analyze.Loading {
+		t.Errorf("%d changes of phase in some 50 strokes, at last %q", changes, last)
+	}
+}
+
 func TestStressIsProvisionalAndFromTheSlackBand(t *testing.T) {
 	// domain figure for T-1: 9,500 psi of band stress at 724 psi rising.
 	before, atTarget := 0.0, 0.0
