@@ -183,7 +183,7 @@ func record(ctx context.Context, job recordJob, e env) (alarm string, err error)
 	screen := newScreen(e, job.header, job.system)
 	summary, err := visit.Run(ctx, visit.Config{
 		Acquire: acquire.Config{Devices: job.devices, Clock: job.clock, Out: out, Operator: keys},
-		Header:  job.header, Plan: job.header.Plan, OnStatus: screen.draw,
+		Header:  job.header, Plan: job.header.Plan, Cautions: report.Cautions(), OnStatus: screen.draw,
 	})
 	closeErr := out.Close(job.clock.Now(), job.clock.Wall())
 	if closeErr != nil {

@@ -132,7 +132,7 @@ func (s *screen) show(si float64, role mill.Role, usDecimals int, word string) s
 		}
 		text = fmt.Sprintf("%.*f", decimals, value+0) // +0 turns -0 into 0
 	}
-	return strings.TrimSpace(strings.Join([]string{text, word, unit.Name}, " "))
+	return strings.Join(strings.Fields(text+" "+word+" "+unit.Name), " ")
 }
 
 // end closes the line and says how the visit ended.

@@ -1,0 +1,78 @@
+package main
+
+import (
+	"bytes"
+	"math"
+	"strings"
+	"testing"
+	"time"
+
+	"tautramp/acquire/mill"
+	"tautramp/acquire/recording"
+	"tautramp/cmd/tautramp/visit"
+)
+
+func testScreen(t *testing.T, terminal bool) (*screen, *bytes.Buffer) {
+	t.Helper()
+	profile, err := mill.Parse(mill.Example())
+	if err != nil {
+		t.Fatal(err)
+	}
+	var out bytes.Buffer
+	h := recording.Header{Parsed: profile, Tensioner: "T-1", ClockFactor: 1}
+	return newScreen(env{stderr: &out, terminal: terminal}, h, mill.US), &out
+}
+
+// status is 724 psi, 0.00655 in and 9,500 psi of band stress, the invented
+// mill's working point.
+func status(at time.Duration) visit.Status {
+	return visit.Status{At: at, SettingSI: 724 * psi, StretchM: 0.00655 * 0.0254, StressPa: 9500 * psi, RateSI: 8 * psi, Phase: "loading", Cycle: 2, Planned: 4, Next: "pump up slowly"}
+}
+
+func TestScreenShowsTheFiguresInTheUnitsOfTheUser(t *testing.T) {
+	s, _ := testScreen(t, false)
+	want := "724 gauge psi  stretch 0.00655 in  9500 band psi  8.0 psi/s  loading  cycle 2 of 4"
+	if got := s.figures(status(0)); got != want {
+		t.Errorf("US\n got %q\nwant %q", got, want)
+	}
+	s.system = mill.SI
+	want = "49.92 gauge bar  stretch 0.1664 mm  65.5 band MPa  0.552 bar/s  loading  cycle 2 of 4"
+	if got := s.figures(status(0)); got != want {
+		t.Errorf("SI\n got %q\nwant %q", got, want)
+	}
+}
+
+func TestScreenShowsDashesForWhatIsNotKnown(t *testing.T) {
+	s, _ := testScreen(t, false)
+	now := status(0)
+	now.StressPa = math.NaN()
+	if got := s.figures(now); !strings.Contains(got, "-- band psi") {
+		t.Errorf("got %q", got)
+	}
+}
+
+func TestAnAlarmIsLoudAndStays(t *testing.T) {
+	s, out := testScreen(t, true)
+	s.draw(status(0))
+	now := status(time.Second)
+	now.Alarm, now.AlarmText = visit.OverLimit, "960 psi is over the limit"
+	s.draw(now)
+	text := out.String()
+	if !strings.Contains(text, "\a") || !strings.Contains(text, "*** STOP *** 960 psi is over the limit") {
+		t.Errorf("got %q", text)
+	}
+}
+
+func TestPlainLinesComeNowAndThenButEveryWordOfAdviceComesAtOnce(t *testing.T) {
+	s, out := testScreen(t, false)
+	for at := range 30 {
+		s.draw(status(time.Duration(at) * 100 * time.Millisecond))
+	}
+	now := status(3 * time.Second)
+	now.Next = "hold"
+	s.draw(now)
+	lines := strings.Split(strings.TrimSpace(out.String()), "\n")
+	if len(lines) != 4 || lines[0] != ">> pump up slowly" || lines[3] != ">> hold" {
+		t.Errorf("%d lines:\n%s", len(lines), out.String())
+	}
+}
