@@ -31,6 +31,7 @@ type captureOptions struct {
 	continues string
 	plan      recording.Plan
 	speed     float64
+	patience  time.Duration
 }
 
 func runCapture(ctx context.Context, args []string, e env) error {
@@ -43,6 +44,7 @@ func runCapture(ctx context.Context, args []string, e env) error {
 	fs.StringVar(&o.continues, "continues", "", "an earlier recording of the same visit that this one goes on from")
 	fs.IntVar(&o.plan.Exercise, "exercise", 1, "cycles first that are recorded and never fitted")
 	fs.IntVar(&o.plan.Ramps, "ramps", 3, "cycles to fit; it ends when they are closed (0 = until Ctrl-C)")
+	fs.DurationVar(&o.patience, "patience", 20*time.Second, "how long a port that went away may take to come back")
 	fs.Float64Var(&o.speed, "speed", 1, "rehearsal only: the simulated rig's clock factor")
 	o.profileFlags.add(fs, "mill.toml", "the mill's profile")
 	o.resultFlags.add(fs)
@@ -71,7 +73,7 @@ func (o *captureOptions) run(ctx context.Context, e env) error {
 	if err := printCautions(e); err != nil {
 		return err
 	}
-	alarm, err := record(ctx, recordJob{header: header, path: o.out, devices: o.devices(e), system: system}, e)
+	alarm, err := record(ctx, recordJob{header: header, path: o.out, devices: o.devices(), system: system, patience: o.patience}, e)
 	if err != nil {
 		return err
 	}
@@ -97,8 +99,8 @@ func (o *captureOptions) check() (mill.System, mill.Pressure, error) {
 	if !(o.speed > 0) || o.speed > 1000 {
 		return "", mill.Pressure{}, &usageError{"--speed must be above 0 and at most 1000"}
 	}
-	if o.plan.Exercise < 0 || o.plan.Ramps < 0 {
-		return "", mill.Pressure{}, &usageError{"--exercise and --ramps cannot be negative"}
+	if o.plan.Exercise < 0 || o.plan.Ramps < 0 || o.patience <= 0 {
+		return "", mill.Pressure{}, &usageError{"--exercise, --ramps and --patience cannot be negative"}
 	}
 	return o.resultFlags.check()
 }
@@ -134,7 +136,7 @@ func fileWord(name string) string {
 	}, name)
 }
 
-func (o *captureOptions) devices(e env) []acquire.Device {
+func (o *captureOptions) devices() []acquire.Device {
 	var devices []acquire.Device
 	for _, name := range o.ports {
 		devices = append(devices, acquire.Device{Name: name, Dial: dialPort(name, o.baud)})
@@ -165,6 +167,8 @@ type recordJob struct {
 	devices []acquire.Device
 	system  mill.System
 	clock   acquire.Clock // nil: a clock of the header's factor
+	// patience is the real time that a lost port may take; 0 means acquire's.
+	patience time.Duration
 }
 
 // record runs the visit and closes the recording, whatever happens. It
@@ -182,8 +186,9 @@ func record(ctx context.Context, job recordJob, e env) (alarm string, err error)
 	defer stopKeys()
 	screen := newScreen(e, job.header, job.system)
 	summary, err := visit.Run(ctx, visit.Config{
-		Acquire: acquire.Config{Devices: job.devices, Clock: job.clock, Out: out, Operator: keys},
-		Header:  job.header, Plan: job.header.Plan, Cautions: report.Cautions(), OnStatus: screen.draw,
+		Acquire: acquire.Config{Devices: job.devices, Clock: job.clock, Out: out, Operator: keys,
+			GiveUpAfter: time.Duration(float64(job.patience) * job.header.ClockFactor)},
+		Header: job.header, Plan: job.header.Plan, Cautions: report.Cautions(), OnStatus: screen.draw,
 	})
 	closeErr := out.Close(job.clock.Now(), job.clock.Wall())
 	if closeErr != nil {
