@@ -50,17 +50,40 @@ type Config struct {
 	Out     *recording.Writer // the caller closes it after Run has returned
 	// OnEntry sees every entry in file order, from one goroutine, after it is
 	// written, and may keep it. The events it returns are written next, and it
-	// sees those too. While it works the capture waits: the lines stay in the
+	// sees those too; only the last entry, by Out.Close, it does not see. While it works the capture waits: the lines stay in the
 	// operating system's buffers. It may be nil.
 	OnEntry func(recording.Entry) []recording.Event
 	// Operator carries marks and the like; nil when nobody can press a key.
 	Operator <-chan recording.Event
 
+	// Waits in clock time. In a rehearsal that runs faster than the wall the link
+	// and the scheduler are no faster, so each wait is also at least a little
+	// real time (see leastWaits).
 	BootWait    time.Duration // wait for a board to boot after opening; 0 means 2.5 s
 	AnswerWait  time.Duration // wait for an answer before asking again; 0 means 1 s
 	SilentAfter time.Duration // no line for this long raises Silent; 0 means 3 s
 	GiveUpAfter time.Duration // a lost port not back after this ends the capture; 0 means 20 s
 	EchoEvery   time.Duration // a time echo is asked for this often; 0 means 30 s
+}
+
+// leastWaits fills in the defaults, and lengthens what would be too short for
+// the real link.
+func (c *Config) leastWaits() {
+	for _, w := range []struct {
+		wait        *time.Duration
+		usual, real time.Duration
+	}{
+		{&c.BootWait, 2500 * time.Millisecond, 0},
+		{&c.AnswerWait, time.Second, 250 * time.Millisecond},
+		{&c.SilentAfter, 3 * time.Second, 100 * time.Millisecond},
+		{&c.GiveUpAfter, 20 * time.Second, 2 * time.Second},
+		{&c.EchoEvery, 30 * time.Second, 500 * time.Millisecond},
+	} {
+		if *w.wait <= 0 {
+			*w.wait = w.usual
+		}
+		*w.wait = max(*w.wait, time.Duration(float64(w.real)*c.Clock.Factor()))
+	}
 }
 
 // check fills in the defaults and says what the setting's channel measures.
@@ -74,16 +97,6 @@ func (c *Config) check() (setting protocol.Quantity, err error) {
 	if setting, err = c.Out.Header().SettingQuantity(); err != nil {
 		return "", fmt.Errorf("start a capture: %w", err)
 	}
-	for wait, usual := range map[*time.Duration]time.Duration{
-		&c.BootWait:    2500 * time.Millisecond,
-		&c.AnswerWait:  time.Second,
-		&c.SilentAfter: 3 * time.Second,
-		&c.GiveUpAfter: 20 * time.Second,
-		&c.EchoEvery:   30 * time.Second,
-	} {
-		if *wait <= 0 {
-			*wait = usual
-		}
-	}
+	c.leastWaits()
 	return setting, nil
 }

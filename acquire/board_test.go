@@ -21,6 +21,7 @@ import (
 type board struct {
 	serial   string
 	channels []protocol.Chan
+	noBoot   bool          // it has no memory for a count of boots
 	bootTime time.Duration // after opening, until the boot line; negative: opening does not reset it
 	period   time.Duration // between samples of each channel; 0 means 100 ms
 
@@ -38,6 +39,9 @@ type board struct {
 	dials int
 	boots uint32
 	seen  map[protocol.Verb]int
+
+	asked   time.Time // the command that is not answered yet, or zero
+	crowded int       // commands that came too early after it (wire rule 7.1)
 }
 
 // life is one opening of the board's port.
@@ -133,13 +137,20 @@ func (l *life) serve() {
 // reset starts the board again.
 func (l *life) reset(why protocol.Cause) {
 	l.b.boots++
+	l.b.mu.Lock()
+	l.b.asked = time.Time{}
+	l.b.mu.Unlock()
 	l.running = false
 	l.send(l.here(why))
 }
 
 func (l *life) here(why protocol.Cause) protocol.Here {
+	boots := l.b.boots
+	if l.b.noBoot {
+		boots = 0
+	}
 	return protocol.Here{
-		Version: 1, Model: "testboard", Serial: l.b.serial, Boot: l.b.boots, HasBoot: true,
+		Version: 1, Model: "testboard", Serial: l.b.serial, Boot: boots, HasBoot: !l.b.noBoot,
 		TickHz: 1_000_000, Channels: len(l.b.channels), Up: l.tick(), Running: l.running, Cause: why,
 	}
 }
@@ -157,6 +168,10 @@ func (l *life) obey(text string) {
 	}
 	l.b.seen[c.Verb]++
 	n := l.b.seen[c.Verb]
+	if time.Since(l.b.asked) < time.Second {
+		l.b.crowded++
+	}
+	l.b.asked = time.Now()
 	l.b.mu.Unlock()
 	if l.b.heard == nil || !l.b.heard(l, c, n) {
 		l.answer(c)
@@ -192,6 +207,12 @@ func (l *life) sample() {
 }
 
 func (l *life) send(r protocol.Record) {
+	switch r.(type) {
+	case protocol.Did, protocol.Wont, protocol.Echo:
+		l.b.mu.Lock()
+		l.b.asked = time.Time{}
+		l.b.mu.Unlock()
+	}
 	line, err := protocol.Append(nil, r)
 	if err != nil {
 		panic(err)
@@ -221,10 +242,11 @@ func (m *memory) Close() error { return nil }
 
 // rig is a capture of boards into memory.
 type rig struct {
-	t    *testing.T
-	file memory
-	cfg  Config
-	end  time.Duration // when the capture is cancelled; 0 means never
+	t      *testing.T
+	boards []*board
+	file   memory
+	cfg    Config
+	end    time.Duration // when the capture is cancelled; 0 means never
 }
 
 func newHeader(boards ...*board) recording.Header {
@@ -239,7 +261,7 @@ func newHeader(boards ...*board) recording.Header {
 }
 
 func newRig(t *testing.T, boards ...*board) *rig {
-	r := &rig{t: t, cfg: Config{Clock: NewClock(1)}}
+	r := &rig{t: t, boards: boards, cfg: Config{Clock: NewClock(1)}}
 	h := newHeader(boards...)
 	for i, b := range boards {
 		r.cfg.Devices = append(r.cfg.Devices, Device{Name: h.Devices[i], Dial: b.dial})
@@ -263,6 +285,11 @@ func (r *rig) run() ([]recording.Entry, error) {
 	failed := Run(ctx, r.cfg)
 	if err := r.cfg.Out.Close(r.cfg.Clock.Now(), r.cfg.Clock.Wall()); err != nil && !errors.Is(failed, err) {
 		r.t.Fatal(err)
+	}
+	for i, b := range r.boards {
+		if b.crowded > 0 {
+			r.t.Errorf("board %d got %d commands while another was not answered", i, b.crowded)
+		}
 	}
 	rec, err := recording.Read(strings.NewReader(r.file.String()))
 	if err != nil {

@@ -37,7 +37,9 @@ type device struct {
 // asking is the outstanding command and what was answered so far.
 type asking struct {
 	verb     protocol.Verb // "" when nothing is outstanding
-	token    byte
+	first    byte          // token of the first try; a late answer is an answer
+	token    byte          // of the last try
+	until    time.Duration // no other command before this (wire rule 7.1)
 	done     bool
 	refusal  string          // the word of its last "wont"
 	here     *protocol.Here  // the answer to "who"
@@ -133,14 +135,19 @@ func (l *link) learn(r protocol.Record) {
 			a.channels = append(a.channels, r)
 		}
 	case protocol.Did:
-		a.done = a.done || r.Token == a.token && r.Verb == a.verb
+		a.done = a.done || a.mine(r.Token, r.Verb)
 	case protocol.Echo:
-		a.done = a.done || r.Token == a.token && a.verb == protocol.EchoMe
+		a.done = a.done || a.mine(r.Token, protocol.EchoMe)
 	case protocol.Wont:
-		if r.Token == a.token && r.Verb == string(a.verb) {
+		if a.mine(r.Token, protocol.Verb(r.Verb)) {
 			a.refusal = r.Why
 		}
 	}
+}
+
+// mine reports whether an answer is to one of the tries of this command.
+func (a *asking) mine(token byte, verb protocol.Verb) bool {
+	return verb == a.verb && token-a.first <= a.token-a.first
 }
 
 func (l *link) here(h protocol.Here) {
@@ -153,7 +160,7 @@ func (l *link) here(h protocol.Here) {
 	}
 	d.bootLine = d.bootLine || unasked
 	d.boot, d.hasBoot = h.Boot, h.HasBoot
-	if !unasked && l.asking.verb == protocol.Who {
+	if l.asking.verb == protocol.Who {
 		l.asking.here, l.asking.channels, l.asking.done = &h, nil, false
 	}
 }

@@ -230,6 +230,6 @@ func (s *session) show(e recording.Entry) []recording.Event {
 // breakOff ends the capture without farewells.
 func (s *session) breakOff(err error) {
 	s.broken = err
-	s.leave()
 	s.hangUp()
+	s.leave()
 }

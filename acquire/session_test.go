@@ -63,8 +63,8 @@ func TestOperatorsWordsAreRecorded(t *testing.T) {
 		ctx, cancel := context.WithCancel(t.Context())
 		defer time.AfterFunc(4*time.Second, func() { operator <- recording.Event{Kind: recording.ZeroMark, Text: "slack"} }).Stop()
 		defer time.AfterFunc(5*time.Second, func() {
-			cancel()
 			operator <- recording.Event{Kind: recording.Interrupt}
+			cancel()
 			close(operator)
 		}).Stop()
 		if err := Run(ctx, r.cfg); err != nil {
@@ -80,6 +80,49 @@ func TestOperatorsWordsAreRecorded(t *testing.T) {
 		zero, stopped := texts(rec.Entries, recording.ZeroMark), texts(rec.Entries, recording.Interrupt)
 		if !slices.Equal(zero, []string{"slack"}) || len(stopped) != 1 {
 			t.Errorf("marks %q, stops %q; want one each", zero, stopped)
+		}
+	})
+}
+
+// What the operator said before the end is recorded, even when the stream had
+// no turn to take it.
+func TestLastWordsAreTaken(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		r := newRig(t, oneBoard())
+		operator := make(chan recording.Event, 2)
+		r.cfg.Operator = operator
+		s := newSession(t.Context(), r.cfg, newGate(1, protocol.Pressure))
+		defer s.waitTicks()
+		close(s.items)
+		operator <- recording.Event{Kind: recording.Mark}
+		operator <- recording.Event{Kind: recording.Interrupt}
+		s.consume()
+		if len(operator) != 0 {
+			t.Errorf("%d events are left", len(operator))
+		}
+	})
+}
+
+func TestEntriesOutOfOrderAreNoSleep(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		r := newRig(t, oneBoard())
+		pauses := 0
+		r.cfg.OnEntry = func(e recording.Entry) []recording.Event {
+			if wordOf(e) == string(recording.Paused) {
+				pauses++
+			}
+			return nil
+		}
+		s := newSession(t.Context(), r.cfg, newGate(1, protocol.Pressure))
+		defer s.waitTicks()
+		start := time.Now()
+		for _, e := range []struct{ at, wall time.Duration }{
+			{1, 1}, {2, 2}, {5, 65}, {4, 4}, {5, 5}, {6, 66}, // seconds; asleep between 2 and 5
+		} {
+			s.notePause(e.at*time.Second, start.Add(e.wall*time.Second))
+		}
+		if pauses != 1 {
+			t.Errorf("%d pauses, want 1", pauses)
 		}
 	})
 }
@@ -111,7 +154,7 @@ func TestFailureOfTheRecordingEndsTheCaptureAtOnce(t *testing.T) {
 					t.Fatal(err)
 				}
 				begun := time.Now()
-				if err := Run(t.Context(), r.cfg); !errors.Is(err, errDiskFull) {
+				if err := Run(t.Context(), r.cfg); a.count(protocol.Rest)+b.count(protocol.Rest) != 0 || !errors.Is(err, errDiskFull) {
 					t.Fatalf("error %v, want the disk's", err)
 				}
 				// The n-th block is due n half seconds after the start.
@@ -256,6 +299,22 @@ func TestWriteThatHangsDoesNotHoldTheCapture(t *testing.T) {
 			t.Errorf("held for %v", took)
 		}
 	})
+}
+
+func TestWaitsOfAFastClockStayReal(t *testing.T) {
+	for factor, want := range map[float64]Config{
+		1: {BootWait: 2500 * time.Millisecond, AnswerWait: time.Second, SilentAfter: 3 * time.Second,
+			GiveUpAfter: 20 * time.Second, EchoEvery: 30 * time.Second},
+		100: {BootWait: 2500 * time.Millisecond, AnswerWait: 25 * time.Second, SilentAfter: 10 * time.Second,
+			GiveUpAfter: 200 * time.Second, EchoEvery: 50 * time.Second},
+	} {
+		got := Config{Clock: NewClock(factor)}
+		got.leastWaits()
+		if got.BootWait != want.BootWait || got.AnswerWait != want.AnswerWait || got.SilentAfter != want.SilentAfter ||
+			got.GiveUpAfter != want.GiveUpAfter || got.EchoEvery != want.EchoEvery {
+			t.Errorf("factor %v: waits %+v, want %+v", factor, got, want)
+		}
+	}
 }
 
 func TestRunRefusesAConfigurationThatDoesNotFit(t *testing.T) {

@@ -179,31 +179,47 @@ func (l *link) silent(ctx context.Context) error {
 
 // farewell tells a device to rest and records what it says until it does.
 func (l *link) farewell(ctx context.Context) {
-	if l.device.known {
-		_ = l.ask(ctx, protocol.Rest, farewellTries) // an unanswered farewell changes nothing
+	if !l.device.known || ctx.Err() != nil {
+		return
 	}
+	// Neither a command cut short by the end nor an unanswered farewell changes
+	// what was captured.
+	if l.asking.verb != "" {
+		_ = l.await(ctx, l.asking.until, l.asking.complete)
+	}
+	_ = l.ask(ctx, protocol.Rest, farewellTries)
 }
 
 // ask sends a command, again after AnswerWait, and waits for its answer; the
 // error after the last try is errLate, also when the answer was a refusal.
 func (l *link) ask(ctx context.Context, verb protocol.Verb, tries int) error {
-	l.asking = asking{verb: verb, token: l.asking.token + 1}
-	defer func() { l.asking.verb = "" }()
-	line, err := protocol.AppendCommand(nil, protocol.Command{Verb: verb, Token: l.asking.token})
+	a := &l.asking
+	*a = asking{verb: verb, first: a.token + 1, token: a.token}
+	err := errLate
+	for try := 0; try < tries && errors.Is(err, errLate); try++ {
+		a.token++
+		if err := l.send(protocol.Command{Verb: verb, Token: a.token}); err != nil {
+			return err
+		}
+		a.until = l.now() + l.s.cfg.AnswerWait
+		err = l.await(ctx, a.until, a.complete)
+	}
+	if ctx.Err() == nil {
+		a.verb = ""
+	}
+	return err
+}
+
+func (l *link) send(c protocol.Command) error {
+	line, err := protocol.AppendCommand(nil, c)
 	if err != nil {
 		return err
 	}
-	for range tries {
-		l.event(recording.Sent, string(line[:len(line)-1]))
-		if err := l.conn.send(line); err != nil {
-			return &lostError{err}
-		}
-		err := l.await(ctx, l.now()+l.s.cfg.AnswerWait, l.asking.complete)
-		if !errors.Is(err, errLate) {
-			return err
-		}
+	l.event(recording.Sent, string(line[:len(line)-1]))
+	if err := l.conn.send(line); err != nil {
+		return &lostError{err}
 	}
-	return errLate
+	return nil
 }
 
 // complete reports whether the command is answered whole.

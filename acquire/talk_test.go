@@ -124,11 +124,58 @@ func TestConversationWithOneBoard(t *testing.T) {
 			end:  8 * time.Second,
 			want: opening + booting + naming + start + samples + "0 silent\n" + naming + samples + ending,
 		},
+		"starts again unheard, and keeps no count of its boots": {
+			change: func(b *board) {
+				b.noBoot = true
+				b.atTime = map[time.Duration]func(*life){3 * time.Second: func(l *life) { l.running = false }}
+			},
+			end: 10 * time.Second,
+			want: opening + booting + naming + start + samples + "0 silent\n0 sent who\n0 here asked\n0 restart\n" +
+				"0 chan a\n0 chan b\n0 did who\n" + naming + start + samples + ending,
+		},
+		"pauses, speaks again, and hears nothing": {
+			change: func(b *board) {
+				b.atTime = map[time.Duration]func(*life){
+					3 * time.Second:         func(l *life) { l.mute = true },
+					6500 * time.Millisecond: func(l *life) { l.mute = false },
+				}
+				b.heard = func(l *life, c protocol.Command, n int) bool { return c.Verb != protocol.Run && n > 1 }
+			},
+			end: 12 * time.Second,
+			want: opening + booting + naming + start + samples + "0 silent\n0 sent who\n" + samples + "0 sent who\n" + samples +
+				"0 sent who\n" + samples + "0 sent rest\n0 did rest\n",
+		},
+		"boots while it is asked for the first time": {
+			change: func(b *board) {
+				b.bootTime = -1
+				b.heard = first(protocol.Who, func(l *life, c protocol.Command) {
+					l.send(l.here(protocol.CauseAsked))
+					l.send(testPressure)
+					l.reset(protocol.CausePower)
+					l.send(testPressure)
+					l.send(testExtension)
+				})
+			},
+			want: opening + "0 sent who\n0 here asked\n0 chan a\n0 here power\n0 chan a\n0 chan b\n" + naming + start + samples + ending,
+		},
 		"does not answer the farewell": {
 			change: func(b *board) {
 				b.heard = func(l *life, c protocol.Command, n int) bool { return c.Verb == protocol.Rest }
 			},
 			want: opening + booting + naming + start + samples + "0 sent rest\n0 val\n0 sent rest\n0 val\n",
+		},
+		"is told the end while it is asked": {
+			change: func(b *board) {
+				b.period = 10 * time.Second
+				b.heard = func(l *life, c protocol.Command, n int) bool {
+					if c.Verb == protocol.Run {
+						time.Sleep(480 * time.Millisecond)
+					}
+					return false
+				}
+			},
+			end:  time.Second,
+			want: opening + booting + naming + start + ending,
 		},
 		"is told the end before it has said who it is": {
 			end:  time.Second,

@@ -18,7 +18,7 @@ func benchFile(b *testing.B) []byte {
 	}
 	for i := range benchLines {
 		at := time.Duration(i) * time.Millisecond / 2
-		line := fmt.Sprintf("val a %04x %08x g %d|5d3c", i&0xffff, i*500, i%15000)
+		line := fmt.Sprintf("val a %04x %08x g %d;5d3c", i&0xffff, i*500, i%15000)
 		if err := w.Write(wire(i%2, at, line)); err != nil {
 			b.Fatal(err)
 		}
@@ -55,7 +55,7 @@ func BenchmarkWrite(b *testing.B) {
 	if err != nil {
 		b.Fatal(err)
 	}
-	e := wire(0, 0, "val a 0123 00345678 g 7240|5d3c")
+	e := wire(0, 0, "val a 0123 00345678 g 7240;5d3c")
 	b.ReportAllocs()
 	for b.Loop() {
 		e.At += time.Millisecond

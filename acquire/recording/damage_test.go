@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"errors"
 	"fmt"
+	"io"
 	"os"
 	"path/filepath"
 	"reflect"
@@ -245,7 +246,7 @@ func (f *failing) Sync() error {
 func TestFailureOfTheFileAtEveryStep(t *testing.T) {
 	for n := 1; ; n++ {
 		f := &failing{left: n}
-		failed, acknowledged := writeUntilError(t, f)
+		acknowledged, failed := writeUntilError(t, f)
 		if failed == nil {
 			if n < 7 {
 				t.Fatalf("%d steps only", n)
@@ -267,10 +268,10 @@ func TestFailureOfTheFileAtEveryStep(t *testing.T) {
 
 // writeUntilError writes three blocks. It returns the error, which must stay,
 // and the entries, wall clock included, that a seal had promised before it.
-func writeUntilError(t *testing.T, f File) (failed error, promised int) {
+func writeUntilError(t *testing.T, f File) (promised int, failed error) {
 	w, err := NewWriter(f, testHeader(), time.Second)
 	if err != nil {
-		return err, -1
+		return -1, err
 	}
 	for i := range 3 {
 		at := time.Duration(i+1) * time.Second
@@ -281,11 +282,22 @@ func writeUntilError(t *testing.T, f File) (failed error, promised int) {
 			if !errors.Is(again, errDisk) || !errors.Is(closed, errDisk) {
 				t.Fatalf("the error did not stay: %v, %v", again, closed)
 			}
-			return closed, promised
+			return promised, closed
 		}
 		promised += 2
 	}
-	return w.Close(4*time.Second, testStart), promised
+	return promised, w.Close(4*time.Second, testStart)
+}
+
+// short writes less than it is given, and says nothing of it.
+type short struct{ memory }
+
+func (s *short) Write(p []byte) (int, error) { return s.memory.Write(p[:len(p)-1]) }
+
+func TestShortWriteIsAnError(t *testing.T) {
+	if _, err := NewWriter(&short{}, testHeader(), 0); !errors.Is(err, io.ErrShortWrite) {
+		t.Errorf("%v", err)
+	}
 }
 
 func TestFilesOfOtherKinds(t *testing.T) {

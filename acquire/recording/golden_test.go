@@ -26,7 +26,7 @@ func TestGoldenFile(t *testing.T) {
 	for _, e := range []Entry{
 		event(0, 1_000_000, Opened, "/dev/ttyUSB0"), event(1, 1_200_000, Opened, "/dev/ttyUSB1"),
 		wire(0, 812_000_000, "\x00\xffboot\r"), wire(0, 812_400_000, "seal 1 0000"),
-		event(0, 2_500_000_000, Sent, "who 01|0000"), event(-1, 2_600_000_000, Mark, "band slack \\ \u00bd turn"),
+		event(0, 2_500_000_000, Sent, "who 01;b021"), event(-1, 2_600_000_000, Mark, "band slack \\ \u00bd turn"),
 	} {
 		if err := w.Write(e); err != nil {
 			t.Fatal(err)
