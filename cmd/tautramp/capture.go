@@ -96,6 +96,11 @@ func (o *captureOptions) check() (mill.System, mill.Pressure, error) {
 	if len(o.ports) == 0 {
 		return "", mill.Pressure{}, &usageError{"capture needs --port; tautramp ports lists what is plugged in"}
 	}
+	for _, name := range o.ports {
+		if file, isFile := strings.CutPrefix(name, replayPrefix); isFile {
+			return "", mill.Pressure{}, &usageError{fmt.Sprintf("%s is no live port: tautramp import %s makes a recording of it", name, file)}
+		}
+	}
 	if !(o.speed > 0) || o.speed > 1000 {
 		return "", mill.Pressure{}, &usageError{"--speed must be above 0 and at most 1000"}
 	}
@@ -180,7 +185,7 @@ func record(ctx context.Context, job recordJob, e env) (alarm string, err error)
 	every := time.Duration(float64(syncEveryReal) * job.header.ClockFactor)
 	out, err := recording.Create(job.path, job.header, every)
 	if err != nil {
-		return "", &outputError{err}
+		return "", &fileError{err}
 	}
 	keys, stopKeys := operatorKeys(e.stdin)
 	defer stopKeys()
@@ -192,7 +197,7 @@ func record(ctx context.Context, job recordJob, e env) (alarm string, err error)
 	})
 	closeErr := out.Close(job.clock.Now(), job.clock.Wall())
 	if closeErr != nil {
-		closeErr = &outputError{fmt.Errorf("closing %s: %w", job.path, closeErr)}
+		closeErr = &fileError{fmt.Errorf("closing %s: %w", job.path, closeErr)}
 	}
 	if err := errors.Join(err, closeErr); err != nil {
 		return "", keepOrRemove(job.path, summary, err)

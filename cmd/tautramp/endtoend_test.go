@@ -82,6 +82,9 @@ func TestEveryWayOfPumpingGivesTheTrueSettings(t *testing.T) {
 		"twice as sticky": {doubleFriction, true},
 	} {
 		t.Run(name, func(t *testing.T) {
+			if testing.Short() && name != "smooth" {
+				t.Skip("the full run has it")
+			}
 			res, truth := rehearsed(t, c.change)
 			target := res.Setup.TargetPa
 			part := 0.03
@@ -135,6 +138,9 @@ func within(t *testing.T, what string, got estimate.Estimate, truth, part float6
 // TestTheRigsFrictionLawMovesTheResults shows that the figures come from the
 // integrated physics and not from a formula that both sides share.
 func TestTheRigsFrictionLawMovesTheResults(t *testing.T) {
+	if testing.Short() {
+		t.Skip("the full run has it")
+	}
 	widths := map[simrig.LawKind]float64{}
 	frictions := map[simrig.LawKind]analyze.Friction{}
 	for _, law := range simrig.Laws() {

@@ -2,6 +2,7 @@ package main
 
 import (
 	"errors"
+	"io/fs"
 
 	"tautramp/acquire"
 	"tautramp/acquire/mill"
@@ -23,11 +24,11 @@ type alarmError struct{ text string }
 
 func (e *alarmError) Error() string { return "the visit raised an alarm: " + e.text }
 
-// outputError is a result that could not be written.
-type outputError struct{ err error }
+// fileError is a file that cannot be read or written.
+type fileError struct{ err error }
 
-func (e *outputError) Error() string { return e.err.Error() }
-func (e *outputError) Unwrap() error { return e.err }
+func (e *fileError) Error() string { return e.err.Error() }
+func (e *fileError) Unwrap() error { return e.err }
 
 // tornError is a recording whose end is missing.
 type tornError struct{ file string }
@@ -51,6 +52,7 @@ func exitTable() []exitRow {
 		{0, "done", "", func(err error) bool { return err == nil }},
 		{2, "the command line cannot be obeyed", "tautramp help lists the commands", as[*usageError]()},
 		{3, "mill.toml has a mistake", "mend the line named above; tautramp profile writes a good example", anyOf(as[*mill.ProfileError](), is(mill.ErrUnknownName), is(simrig.ErrNotRehearsable, simrig.ErrOverLimit, simrig.ErrConfig))},
+		{11, "a file cannot be read or written", "check the name, the folder and the free space; nothing was overwritten", isFileFailure},
 		{4, "a port cannot be opened", "tautramp ports lists what is plugged in; close other programs that use it", is(port.ErrNotFound, port.ErrBusy, port.ErrDenied, port.ErrBadName, port.ErrNoTerminal)},
 		{6, "a device does not speak this wire", "check the port, the speed (--baud) and the board's program; protocol/SPEC.md is the wire", is(acquire.ErrNoAnswer, acquire.ErrNotOurs, acquire.ErrRefused)},
 		{5, "a port went away and did not come back", "plug it in and start a new capture; the recording up to here is good", is(acquire.ErrGaveUp, port.ErrGone, port.ErrStuck)},
@@ -58,7 +60,6 @@ func exitTable() []exitRow {
 		{8, "a recording was altered or damaged", "go back to the original file; figures from a damaged one prove nothing", as[*recording.CorruptError]()},
 		{9, "the recording holds too little to compute a result", "record at least one full rise and fall, with both sensors reading; tautramp check FILE shows what is there", is(analyze.ErrTooFewPairs, analyze.ErrNoCycle, analyze.ErrNoZero, pairing.ErrNoSetting, pairing.ErrNoExtension, pairing.ErrNoTime, pairing.ErrNoPairs)},
 		{10, "the target lies outside what was captured", "ramp up past the target (never past the maker's limit), or give a --target inside the range", as[*analyze.OutOfRangeError]()},
-		{11, "a file cannot be read or written", "check the name, the folder and the free space; nothing was overwritten", anyOf(as[*outputError](), isFileError)},
 		{12, "an alarm was raised during the capture", "stop, release slowly, find the cause before ramping again; the recording is whole", as[*alarmError]()},
 		{13, "a recording has no end", "analyze uses what is sealed; record again if a ramp is missing", as[*tornError]()},
 		{1, "something that should not happen", "please report it with the recording", func(error) bool { return true }},
@@ -73,6 +74,15 @@ func classify(err error) exitRow {
 		}
 	}
 	return table[len(table)-1]
+}
+
+// isFileFailure is true for files, and not for the paths of ports, whose errors
+// wrap the system's too.
+func isFileFailure(err error) bool {
+	if as[*fileError]()(err) {
+		return true
+	}
+	return as[*fs.PathError]()(err) && !is(port.ErrNotFound, port.ErrBusy, port.ErrDenied, port.ErrBadName, port.ErrGone)(err)
 }
 
 func is(targets ...error) func(error) bool {

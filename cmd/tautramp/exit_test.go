@@ -39,7 +39,7 @@ func TestEachClassOfErrorHasItsExitCode(t *testing.T) {
 		{pairing.ErrNoExtension, 9},
 		{pairing.ErrNoTime, 9},
 		{&analyze.OutOfRangeError{What: "band stress"}, 10},
-		{&outputError{errors.New("disk full")}, 11},
+		{&fileError{errors.New("disk full")}, 11},
 		{&fs.PathError{Op: "open", Path: "x", Err: fs.ErrNotExist}, 11},
 		{&alarmError{"limit"}, 12},
 		{&tornError{"x.ramp"}, 13},

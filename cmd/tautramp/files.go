@@ -9,11 +9,6 @@ import (
 	"path/filepath"
 )
 
-func isFileError(err error) bool {
-	_, ok := errors.AsType[*fs.PathError](err)
-	return ok
-}
-
 // writeAside writes a result beside its place and renames it there once it is
 // whole, so that a failed command leaves nothing behind. "-" is stdout.
 func writeAside(path string, e env, write func(io.Writer) error) error {
@@ -22,7 +17,7 @@ func writeAside(path string, e env, write func(io.Writer) error) error {
 	}
 	f, err := os.CreateTemp(filepath.Dir(path), ".tautramp-*")
 	if err != nil {
-		return &outputError{fmt.Errorf("cannot write %s: %w", path, err)}
+		return &fileError{fmt.Errorf("cannot write %s: %w", path, err)}
 	}
 	err = write(f)
 	if err == nil {
@@ -35,7 +30,7 @@ func writeAside(path string, e env, write func(io.Writer) error) error {
 		err = os.Rename(f.Name(), path)
 	}
 	if err != nil {
-		return &outputError{errors.Join(fmt.Errorf("cannot write %s: %w", path, err), os.Remove(f.Name()))}
+		return &fileError{errors.Join(fmt.Errorf("cannot write %s: %w", path, err), os.Remove(f.Name()))}
 	}
 	return nil
 }

@@ -3,11 +3,10 @@ package main
 import (
 	"context"
 	"fmt"
-	"io"
-	"os"
 	"path/filepath"
 	"strings"
 
+	"tautramp/acquire/port"
 	"tautramp/acquire/recording"
 	"tautramp/protocol"
 )
@@ -78,7 +77,7 @@ func importFile(in, out string, header recording.Header) (lineCounts, error) {
 	}
 	w, err := recording.Create(out, header, syncEveryReal)
 	if err != nil {
-		return counts, &outputError{err}
+		return counts, &fileError{err}
 	}
 	counts, err = countLines(in, func(line protocol.Line) error {
 		return w.Write(recording.Entry{Wire: line.Text})
@@ -87,20 +86,23 @@ func importFile(in, out string, header recording.Header) (lineCounts, error) {
 		err = closeErr
 	}
 	if err != nil {
-		err = &outputError{err}
+		err = &fileError{err}
 	}
 	return counts, err
 }
 
+// replayPrefix makes a text file a port that ends.
+const replayPrefix = "file:"
+
 // countLines reads a text file of wire lines and hands each to use, if given.
 func countLines(path string, use func(protocol.Line) error) (lineCounts, error) {
 	var counts lineCounts
-	f, err := os.Open(path)
+	card, err := port.Open(context.Background(), replayPrefix+path, port.Options{})
 	if err != nil {
-		return counts, err
+		return counts, &fileError{err}
 	}
-	defer f.Close() // read only: its error changes nothing
-	lines := protocol.NewScanner(f)
+	defer card.Close() // read only: its error changes nothing
+	lines := protocol.NewScanner(card)
 	for lines.Scan() {
 		counts.add(lines.Line())
 		if use == nil {
@@ -110,7 +112,7 @@ func countLines(path string, use func(protocol.Line) error) (lineCounts, error) 
 			return counts, err
 		}
 	}
-	if err := lines.Err(); err != nil && err != io.EOF {
+	if err := lines.Err(); err != nil {
 		return counts, fmt.Errorf("reading %s: %w", path, err)
 	}
 	return counts, nil

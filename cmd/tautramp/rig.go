@@ -218,7 +218,7 @@ func (o *rigOptions) openEnd(i int) (boardEnd, error) {
 	link := o.links[i]
 	if err := os.Symlink(pair.Path, link); err != nil {
 		end.close()
-		return boardEnd{}, &outputError{fmt.Errorf("--link: %w", err)}
+		return boardEnd{}, &fileError{fmt.Errorf("--link: %w", err)}
 	}
 	end.name = link
 	end.close = func() { os.Remove(link); pair.Close() } // as above
