@@ -22,6 +22,7 @@ type resultFlags struct {
 	target string
 	json   string
 	csv    string
+	pairs  string
 	html   string
 	svg    string
 	png    string
@@ -34,6 +35,7 @@ func (r *resultFlags) add(fs *pflag.FlagSet) {
 	fs.StringVar(&r.html, "html", "", "write the report as one web page to this file")
 	fs.StringVar(&r.json, "json", "", "write every figure as JSON, SI units, to this file (- for the screen)")
 	fs.StringVar(&r.csv, "csv", "", "write the table at round settings to this file (- for the screen)")
+	fs.StringVar(&r.pairs, "pairs", "", "write every pair with its phase and cycle to this file (- for the screen)")
 	fs.StringVar(&r.svg, "svg", "", "write a plot as SVG to this file")
 	fs.StringVar(&r.png, "png", "", "write a plot as PNG to this file")
 	fs.StringVar(&r.plot, "plot", string(report.PlotLoop), "which plot --svg and --png show: "+plotNames())
@@ -70,10 +72,12 @@ func (r *resultFlags) check() (mill.System, mill.Pressure, error) {
 	return system, target, nil
 }
 
-func (r *resultFlags) outputs() []string { return []string{r.json, r.csv, r.html, r.svg, r.png} }
+func (r *resultFlags) outputs() []string {
+	return []string{r.json, r.csv, r.pairs, r.html, r.svg, r.png}
+}
 
 // textOnScreen is false where a machine-readable result goes to the screen.
-func (r *resultFlags) textOnScreen() bool { return r.json != "-" && r.csv != "-" }
+func (r *resultFlags) textOnScreen() bool { return r.json != "-" && r.csv != "-" && r.pairs != "-" }
 
 // computeResult reads a recording file and analyses it. It is the only way to
 // a result in this program.
@@ -121,6 +125,7 @@ func (r *resultFlags) write(res *analyze.Result, meta report.Meta, system mill.S
 	}{
 		{r.json, func(w io.Writer) error { return report.JSON(w, res, meta) }},
 		{r.csv, func(w io.Writer) error { return report.CSV(w, res, meta, system) }},
+		{r.pairs, func(w io.Writer) error { return report.PairsCSV(w, res, system) }},
 		{r.html, func(w io.Writer) error { return report.HTML(w, res, meta, system) }},
 		{r.svg, func(w io.Writer) error { return report.SVG(w, res, plot, system) }},
 		{r.png, func(w io.Writer) error { return report.PNG(w, res, plot, system) }},

@@ -4,7 +4,6 @@ import (
 	"bytes"
 	"context"
 	"flag"
-	"fmt"
 	"path/filepath"
 	"runtime"
 	"sync"
@@ -132,7 +131,7 @@ func checkSoak(t *testing.T, path string, perBoard int) {
 	}
 	running := *soak - 4*time.Second // the ports open and the boards boot first
 	for _, c := range set.Counters {
-		t.Log(fmt.Sprintf("board %d: %d samples, %d lost, %d dropped by itself, %d refused", c.Device+1, c.Samples, c.Lost, c.DeviceSaid, c.Rejected))
+		t.Logf("board %d: %d samples, %d lost, %d dropped by itself, %d refused", c.Device+1, c.Samples, c.Lost, c.DeviceSaid, c.Rejected)
 		if c.Lost != 0 || c.DeviceSaid != 0 || c.Rejected != 0 || c.Samples < int(running.Seconds())*perBoard {
 			t.Errorf("board %d lost lines, or sent too few", c.Device+1)
 		}
