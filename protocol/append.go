@@ -75,6 +75,9 @@ func (h Here) body(dst []byte) []byte {
 	if h.HasBoot {
 		dst = appendHex(append(dst, " boot="...), h.Boot, 8)
 	}
+	if h.Simulated {
+		dst = append(dst, " sim=1"...)
+	}
 	return dst
 }
 

@@ -56,7 +56,7 @@ func reader(word []byte) func(body []byte) (Record, *SyntaxError) {
 func parseHere(body []byte) (Record, *SyntaxError) {
 	f := cut(body, "5.1")
 	f.count("5.1", 9, maxFields)
-	keys := f.keyed("5.1", 4, 5, "hz", "ch", "up", "state", "why", "boot")
+	keys := f.keyed("5.1", 4, 5, "hz", "ch", "up", "state", "why", "boot", "sim")
 	h := Here{
 		Version:  int(f.decimal(f.at[1], 1, 99, "5.1")),
 		Model:    f.name(f.at[2]),
@@ -69,6 +69,9 @@ func parseHere(body []byte) (Record, *SyntaxError) {
 	}
 	if keys[5] != nil {
 		h.Boot, h.HasBoot = f.hex(keys[5], 8), true
+	}
+	if keys[6] != nil {
+		h.Simulated = f.oneOf(keys[6], "5.1", "1") == "1"
 	}
 	return f.done(h)
 }

@@ -36,6 +36,8 @@ type Here struct {
 	Up       uint32 // tick now
 	Running  bool
 	Cause    Cause
+	// Simulated: what it measures is made up. Nothing may be set by it.
+	Simulated bool
 }
 
 // Cause says why a device sent its identity.

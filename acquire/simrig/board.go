@@ -122,6 +122,7 @@ func (b *Board) describe(s float64, cause protocol.Cause) {
 		Version: protocol.Version, Model: model, Serial: b.serial,
 		TickHz: b.spec.TickHz, Channels: len(b.channels),
 		Up: b.tickAt(s), Running: b.running, Cause: cause,
+		Simulated: true,
 	}
 	if !b.spec.NoBootID {
 		h.Boot, h.HasBoot = b.bootID, true

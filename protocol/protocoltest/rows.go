@@ -145,6 +145,7 @@ type fields struct {
 	State             string
 	Why               string
 	Boot              *uint32
+	Sim               bool
 	Channel           letter
 	Quantity          protocol.Quantity
 	Unit              string
@@ -175,6 +176,7 @@ func (f fields) record() (protocol.Record, error) {
 	case "here":
 		h := protocol.Here{Version: f.Version, Model: f.Model, Serial: f.Serial, TickHz: f.Hz, Channels: f.Ch,
 			Up: f.Up, Running: f.State == "run", Cause: protocol.Cause(f.Why)}
+		h.Simulated = f.Sim
 		if f.Boot != nil {
 			h.Boot, h.HasBoot = *f.Boot, true
 		}

@@ -94,11 +94,13 @@ def unknown(word, body):
     return {"word": "unknown", "is": word, "body": body}
 
 
-def here(model, serial, hz, ch, up, state, why, boot=None, version=1):
+def here(model, serial, hz, ch, up, state, why, boot=None, version=1, sim=False):
     fields = {"word": "here", "version": version, "model": model, "serial": serial,
               "hz": hz, "ch": ch, "up": up, "state": state, "why": why}
     if boot is not None:
         fields["boot"] = boot
+    if sim:
+        fields["sim"] = True
     return fields
 
 
