@@ -24,7 +24,7 @@ func FromRecording(rec *recording.Recording) (*Set, error) {
 	}
 	chosen, err := in.choose(rec.Header)
 	if err != nil {
-		return &Set{Counters: in.counters()}, err
+		return &Set{Counters: in.counters(), Simulated: in.simulated()}, err
 	}
 	set := &Set{
 		Setting:   in.channel(chosen.setting, samples),
@@ -34,6 +34,7 @@ func FromRecording(rec *recording.Recording) (*Set, error) {
 		Clocks:    in.clocks(),
 		Counters:  in.counters(),
 		Plan:      Plan{Exercise: rec.Header.Plan.Exercise, Ramps: rec.Header.Plan.Ramps},
+		Alarms:    in.telling.alarms, Ended: in.telling.ended, Simulated: in.simulated(),
 	}
 	set.Warnings = append(chosen.warnings, in.warnings(set)...)
 	if err := in.checkTime(chosen); err != nil {

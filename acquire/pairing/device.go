@@ -16,6 +16,7 @@ type device struct {
 	here    protocol.Here
 	known   bool // here is filled: the tick rate is known
 	foreign bool // speaks a later version of the wire: nothing of it is used
+	madeUp  bool // has said, once at least, that it measures nothing real
 	specs   [letters]*protocol.Chan
 	changed []byte // channels that were declared differently later on
 
@@ -36,6 +37,7 @@ func (d *device) identify(r protocol.Here, t stamp) {
 		d.restart()
 	}
 	d.here, d.known, d.foreign = r, true, r.Version > protocol.Version
+	d.madeUp = d.madeUp || r.Simulated
 	d.place(t)
 }
 

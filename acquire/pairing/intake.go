@@ -2,6 +2,7 @@ package pairing
 
 import (
 	"math"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -46,11 +47,13 @@ type source struct {
 type intake struct {
 	devices []device
 	marks   *marks // nil: not kept
-	news    bool   // a declaration came; whoever acts on it clears it
+	telling telling
+	plan    recording.Plan
+	news    bool // a declaration came; whoever acts on it clears it
 }
 
 func newIntake(h recording.Header, keep bool) *intake {
-	in := &intake{devices: make([]device, len(h.Devices))}
+	in := &intake{devices: make([]device, len(h.Devices)), plan: h.Plan}
 	factor := h.ClockFactor
 	if !(factor > 0) {
 		factor = 1
@@ -125,6 +128,9 @@ func (in *intake) event(e recording.Entry) {
 		}
 	default:
 		in.marks.event(e)
+		if in.marks != nil {
+			in.telling.event(e, in.plan)
+		}
 	}
 }
 
@@ -162,4 +168,10 @@ func (in *intake) counters() []Counters {
 		all[i] = in.devices[i].counters
 	}
 	return all
+}
+
+// simulated tells whether any device said that what it measures is made up:
+// one is enough to make a rehearsal of the whole.
+func (in *intake) simulated() bool {
+	return slices.ContainsFunc(in.devices, func(d device) bool { return d.madeUp })
 }

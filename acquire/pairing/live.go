@@ -157,6 +157,9 @@ func (l *Live) Latest() (setting, extension Reading) { return l.latest[0], l.lat
 // Counters is what went missing so far, by device.
 func (l *Live) Counters() []Counters { return l.in.counters() }
 
+// Simulated tells whether a device has said that what it measures is made up.
+func (l *Live) Simulated() bool { return l.in.simulated() }
+
 // Channels are the two channels that the pairs are made of, as declared by now
 // and without readings; ok is false before both are declared.
 func (l *Live) Channels() (setting, extension Channel, ok bool) {

@@ -35,7 +35,7 @@ type Pair struct {
 	Part       int     // pairs of different parts have a gap between them
 }
 
-// Mark is something the operator said, on the host timeline.
+// Mark is something the operator said, or was told, on the host timeline.
 type Mark struct {
 	T    float64 // s
 	Kind MarkKind
@@ -50,6 +50,7 @@ const (
 	Button   MarkKind = "button" // push button or foot switch pressed
 	Operator MarkKind = "mark"   // key or page button
 	Zero     MarkKind = "zero"   // the operator says the band is slack
+	Alarm    MarkKind = "alarm"  // the program warned the operator: in Set.Alarms only
 )
 
 // ClockFit is one segment of a device's clock mapped to the host timeline:
@@ -101,10 +102,15 @@ type Set struct {
 	Counters  []Counters
 	Unpaired  int // good extension readings without a setting at their instant
 	Plan      Plan
+	Alarms    []Mark // raised during the visit, in the order of the recording
+	Ended     string // how the visit ended, in words; "" where nothing says so
+	Simulated bool   // a device says that what it measures is made up
 	Warnings  []string
 }
 
-// Plan mirrors the recording's plan, so that the analysis needs no recording.
+// Plan mirrors the recording's plan, so that the analysis needs no recording. An
+// Exercise of 0 means that no cycle is for exercise; Ramps of 0, as many as there
+// are.
 type Plan struct{ Exercise, Ramps int }
 
 // CutKnown tells whether the channel's display is known to round or to cut off
