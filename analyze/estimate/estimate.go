@@ -40,10 +40,16 @@ func (e Estimate) Std() float64 {
 
 // Interval95 holds the true value with 95 % confidence: Student's t at the
 // effective degrees of freedom of Random and System together (JCGM 100 G.4,
-// System taken as known well). NaN when the value is unknown.
+// System taken as known well). With one or two degrees of freedom that
+// approximation may fall short of what scatter alone asks for; the interval is
+// never narrower than RandomInterval95. NaN when the value is unknown.
 func (e Estimate) Interval95() (lo, hi float64) {
 	dof := EffectiveDoF([]Component{{Std: e.Random, DoF: e.DoF}, {Std: e.System, DoF: math.Inf(1)}})
-	return e.interval(e.Std(), dof)
+	lo, hi = e.interval(e.Std(), dof)
+	if rlo, rhi := e.RandomInterval95(); rhi-rlo > hi-lo {
+		return rlo, rhi
+	}
+	return lo, hi
 }
 
 // RandomInterval95 is the interval from scatter alone. NaN when the value is

@@ -25,12 +25,18 @@ func TestIntervalUsesDegreesOfFreedom(t *testing.T) {
 	if e.Std() != 5 {
 		t.Errorf("std %v, want 5", e.Std())
 	}
-	// Welch-Satterthwaite: 5^4 / (3^4 / 2) = 15.43.
-	lo, hi := e.Interval95()
-	half := Student95(625.0/81*2) * 5
+	rlo, rhi := e.RandomInterval95()
+	// Welch-Satterthwaite, 5^4 / (3^4 / 2) = 15.43, would give 10.6 to each side,
+	// less than the 12.9 of scatter alone.
+	if lo, hi := e.Interval95(); lo != rlo || hi != rhi {
+		t.Errorf("%v to %v is narrower than scatter alone, %v to %v", lo, hi, rlo, rhi)
+	}
+	many := e
+	many.DoF = 20 // 5^4 / (3^4 / 20) = 154.3
+	lo, hi := many.Interval95()
+	half := Student95(625.0/81*20) * 5
 	near(t, "low", lo, 10-half, 1e-12)
 	near(t, "high", hi, 10+half, 1e-12)
-	rlo, rhi := e.RandomInterval95()
 	near(t, "random low", rlo, 10-3*4.30265272975, 1e-9)
 	near(t, "random high", rhi, 10+3*4.30265272975, 1e-9)
 	if lo, hi := (Estimate{Value: 7, Method: "exact"}).Interval95(); lo != 7 || hi != 7 {
@@ -38,6 +44,27 @@ func TestIntervalUsesDegreesOfFreedom(t *testing.T) {
 	}
 	if lo, _ := (Estimate{Value: 7, Random: 1, Method: "no freedom"}).Interval95(); !math.IsInf(lo, -1) {
 		t.Errorf("scatter without degrees of freedom gives a finite end %v", lo)
+	}
+}
+
+// Two ramps leave one degree of freedom. Truth is drawn from the estimate's own
+// budget: scatter of two ramps, and a system part of 0.3 of the scatter's.
+func TestIntervalOfTwoRampsHoldsTheTruth(t *testing.T) {
+	const trials = 20000
+	r := rand.New(rand.NewPCG(8, 8))
+	hits := 0
+	for range trials {
+		a, b := r.NormFloat64(), r.NormFloat64()
+		e := OverRamps([]float64{a, b}, []float64{0, 0}, 100)
+		e.System = 0.3 / math.Sqrt2
+		if lo, hi := e.Interval95(); math.Abs(e.System*r.NormFloat64()-(lo+hi)/2) <= (hi-lo)/2 {
+			hits++
+		}
+	}
+	// Exact: P(|t1| <= 12.706 / sqrt 1.09) = 94.8 %; the standard deviation of a
+	// share of 20,000 is 0.16 %.
+	if share := float64(hits) / trials; share < 0.94 || share > 0.97 {
+		t.Errorf("the 95 %% interval holds the truth in %.2f %%", 100*share)
 	}
 }
 
