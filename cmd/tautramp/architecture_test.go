@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"encoding/json"
 	"errors"
+	"go/ast"
 	"go/parser"
 	"go/token"
 	"io"
@@ -40,7 +41,7 @@ func rooms() map[string][]string {
 		"analyze/report":        {"acquire/mill", "analyze", "analyze/estimate", gonum, plot},
 		"cmd/tautramp/visit":    {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze", "analyze/estimate"},
 		"cmd/tautramp": {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "acquire/port", "acquire/simrig",
-			"analyze", "analyze/estimate", "analyze/report", "cmd/tautramp/visit", "github.com/spf13/pflag"},
+			"analyze", "analyze/estimate", "analyze/report", "cmd/tautramp/visit", "github.com/spf13/pflag", sys},
 	}
 }
 
@@ -122,11 +123,82 @@ func TestPureRoomsReachNothingOutside(t *testing.T) {
 			continue
 		}
 		for _, imported := range p.Imports {
-			if slices.Contains([]string{"os", "net", "os/exec", "math/rand", "math/rand/v2"}, imported) {
+			if slices.Contains([]string{"os", "net", "os/exec", "math/rand"}, imported) {
 				t.Errorf("%s imports %s", room, imported)
 			}
 		}
 	}
+}
+
+// TestNoRoomHasHiddenState allows package variables only for sentinel errors,
+// and where go:embed asks for one; init functions never; and the machine's
+// clock never in a pure room.
+func TestNoRoomHasHiddenState(t *testing.T) {
+	for _, p := range listPackages(t) {
+		room := strings.TrimPrefix(p.ImportPath, "tautramp/")
+		for _, name := range p.GoFiles {
+			file, err := parser.ParseFile(token.NewFileSet(), filepath.Join(p.Dir, name), nil, parser.ParseComments)
+			if err != nil {
+				t.Fatal(err)
+			}
+			for _, hidden := range hiddenState(file) {
+				t.Errorf("%s/%s: %s", room, name, hidden)
+			}
+			if slices.Contains(pureRooms(), room) && callsTimeNow(file) {
+				t.Errorf("%s/%s calls time.Now", room, name)
+			}
+		}
+	}
+}
+
+func hiddenState(file *ast.File) []string {
+	var found []string
+	for _, decl := range file.Decls {
+		switch d := decl.(type) {
+		case *ast.FuncDecl:
+			if d.Name.Name == "init" && d.Recv == nil {
+				found = append(found, "an init function")
+			}
+		case *ast.GenDecl:
+			if d.Tok != token.VAR || strings.Contains(docText(d.Doc), "//go:embed") {
+				continue
+			}
+			for _, spec := range d.Specs {
+				for _, name := range spec.(*ast.ValueSpec).Names {
+					if !strings.HasPrefix(strings.ToLower(name.Name), "err") && name.Name != "_" {
+						found = append(found, "package variable "+name.Name)
+					}
+				}
+			}
+		}
+	}
+	return found
+}
+
+// docText is a comment with its directives, which CommentGroup.Text leaves out.
+func docText(doc *ast.CommentGroup) string {
+	if doc == nil {
+		return ""
+	}
+	var b strings.Builder
+	for _, c := range doc.List {
+		b.WriteString(c.Text)
+	}
+	return b.String()
+}
+
+func callsTimeNow(file *ast.File) bool {
+	found := false
+	ast.Inspect(file, func(n ast.Node) bool {
+		sel, ok := n.(*ast.SelectorExpr)
+		if !ok {
+			return true
+		}
+		pkg, ok := sel.X.(*ast.Ident)
+		found = found || ok && pkg.Name == "time" && sel.Sel.Name == "Now"
+		return true
+	})
+	return found
 }
 
 func TestEveryRoomHasOnePackageComment(t *testing.T) {

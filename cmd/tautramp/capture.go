@@ -7,6 +7,7 @@ import (
 	"fmt"
 	"io"
 	"os"
+	"path/filepath"
 	"strings"
 	"time"
 
@@ -67,29 +68,32 @@ func (o *captureOptions) run(ctx context.Context, e env) error {
 	if err != nil {
 		return err
 	}
+	if filepath.Ext(o.out) != ".ramp" {
+		return &usageError{fmt.Sprintf("--out %s: the name of a recording ends in .ramp", o.out)}
+	}
 	if err := refuseExisting(o.out); err != nil {
 		return err
 	}
 	if err := printCautions(e); err != nil {
 		return err
 	}
-	alarm, err := record(ctx, recordJob{header: header, path: o.out, devices: o.devices(), system: system, patience: o.patience}, e)
-	if err != nil {
-		return err
-	}
-	return finish(o.out, alarm, o.resultFlags, system, target, e)
+	visitErr := record(ctx, recordJob{header: header, path: o.out, devices: o.devices(), system: system, patience: o.patience}, e)
+	return finish(o.out, visitErr, o.resultFlags, system, target, e)
 }
 
-// finish computes the result of what was recorded, alarm or not, and then says
-// that there was one.
-func finish(path, alarm string, r resultFlags, system mill.System, target mill.Pressure, e env) error {
-	if err := analyzeFile(path, r, system, target, e); err != nil {
-		return err
+// finish computes the result of what was recorded. After an alarm it does so
+// too, and what is said last is the alarm.
+func finish(path string, visitErr error, r resultFlags, system mill.System, target mill.Pressure, e env) error {
+	if visitErr != nil && !onlyAlarm(visitErr) {
+		return visitErr
 	}
-	if alarm != "" {
-		return &alarmError{alarm}
-	}
-	return nil
+	return errors.Join(analyzeFile(path, r, system, target, e), visitErr)
+}
+
+// onlyAlarm is true where the visit itself went well but for an alarm.
+func onlyAlarm(err error) bool {
+	_, ok := err.(*alarmError)
+	return ok
 }
 
 func (o *captureOptions) check() (mill.System, mill.Pressure, error) {
@@ -156,13 +160,32 @@ func dialPort(name string, baud int) acquire.Dial {
 }
 
 func printCautions(e env) error {
-	for _, line := range report.Cautions() {
-		if _, err := fmt.Fprintf(e.stderr, "CAUTION  %s\n", line); err != nil {
-			return err
+	for _, caution := range report.Cautions() {
+		for i, line := range wrap(caution, 70) {
+			head := "CAUTION  "
+			if i > 0 {
+				head = "         "
+			}
+			if _, err := fmt.Fprintf(e.stderr, "%s%s\n", head, line); err != nil {
+				return err
+			}
 		}
 	}
-	_, err := fmt.Fprintln(e.stderr)
+	_, err := fmt.Fprint(e.stderr, "\n")
 	return err
+}
+
+// wrap cuts text into lines of at most so many bytes, at spaces.
+func wrap(text string, width int) []string {
+	var lines []string
+	line := ""
+	for _, word := range strings.Fields(text) {
+		if line != "" && len(line)+1+len(word) > width {
+			lines, line = append(lines, line), ""
+		}
+		line = strings.TrimSpace(line + " " + word)
+	}
+	return append(lines, line)
 }
 
 // recordJob is what record needs, from capture or from the demo.
@@ -176,16 +199,16 @@ type recordJob struct {
 	patience time.Duration
 }
 
-// record runs the visit and closes the recording, whatever happens. It
-// returns the text of the gravest alarm, if there was one.
-func record(ctx context.Context, job recordJob, e env) (alarm string, err error) {
+// record runs the visit and closes the recording, whatever happens. An alarm
+// is in the error that it returns, alone or beside what ended the visit.
+func record(ctx context.Context, job recordJob, e env) error {
 	if job.clock == nil {
 		job.clock = e.clock(job.header.ClockFactor)
 	}
 	every := time.Duration(float64(syncEveryReal) * job.header.ClockFactor)
 	out, err := recording.Create(job.path, job.header, every)
 	if err != nil {
-		return "", &fileError{err}
+		return &fileError{err}
 	}
 	keys, stopKeys := operatorKeys(e.stdin)
 	defer stopKeys()
@@ -199,18 +222,25 @@ func record(ctx context.Context, job recordJob, e env) (alarm string, err error)
 	if closeErr != nil {
 		closeErr = &fileError{fmt.Errorf("closing %s: %w", job.path, closeErr)}
 	}
+	screen.end(summary)
 	if err := errors.Join(err, closeErr); err != nil {
-		return "", keepOrRemove(job.path, summary, err)
+		return keepOrRemove(job.path, summary, err)
 	}
-	screen.end(summary, job.path)
-	return summary.Alarm, nil
+	screen.line("recording: " + job.path)
+	if summary.Alarm != "" {
+		return &alarmError{summary.Alarm}
+	}
+	return nil
 }
 
 // keepOrRemove says where the data are when a capture fails; a recording that
 // holds none is taken away again.
 func keepOrRemove(path string, summary visit.Summary, err error) error {
+	if summary.Alarm != "" {
+		err = errors.Join(err, &alarmError{summary.Alarm})
+	}
 	for _, c := range summary.Counters {
-		if c.Lines > 0 {
+		if c.Samples > 0 {
 			return fmt.Errorf("%w\nwhat was captured is kept: tautramp analyze %s", err, path)
 		}
 	}

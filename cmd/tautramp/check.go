@@ -63,7 +63,7 @@ func orNone(entered string) string {
 func checkRecording(path string, e env) error {
 	rec, err := recording.ReadFile(path)
 	if rec == nil {
-		return fmt.Errorf("%s: %w", path, err)
+		return err
 	}
 	var b bytes.Buffer
 	fmt.Fprintf(&b, "%s: %s\n", path, rec.Outcome)
@@ -80,7 +80,7 @@ func checkRecording(path string, e env) error {
 	}
 	switch {
 	case err != nil:
-		return fmt.Errorf("%s: %w", path, err)
+		return err
 	case rec.Outcome == recording.Torn:
 		return &tornError{path}
 	}

@@ -89,7 +89,7 @@ func recordDemo(ctx context.Context, o rigOptions, r resultFlags, out string, e 
 		return err
 	}
 	path := filepath.Join(out, "visit.ramp")
-	alarm, err := record(ctx, recordJob{
+	visitErr := record(ctx, recordJob{
 		header: recording.Header{
 			Program: programVersion(), Started: clock.Wall(), Source: recording.Live, ClockFactor: o.speed,
 			Devices: []string{end.name}, Tensioner: s.tensioner.Name, Band: s.band.Name,
@@ -98,10 +98,7 @@ func recordDemo(ctx context.Context, o rigOptions, r resultFlags, out string, e 
 		path: path, system: system, clock: clock,
 		devices: []acquire.Device{{Name: end.name, Dial: dialPort(end.name, 0)}},
 	}, e)
-	if err != nil {
-		return err
-	}
-	return finish(path, alarm, r, system, target, e)
+	return finish(path, visitErr, r, system, target, e)
 }
 
 // demoEnd is a pseudo-terminal, or TCP where the system has none.

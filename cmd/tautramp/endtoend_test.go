@@ -46,7 +46,7 @@ func rehearsed(t *testing.T, change func(*simrig.Config)) (*analyze.Result, simr
 	if err := f.Close(); err != nil {
 		t.Fatal(err)
 	}
-	_, err = importFile(log, ramp, recording.Header{
+	_, err = importFile(t.Context(), log, ramp, recording.Header{
 		Program: "test", Started: time.Date(2026, 6, 1, 8, 0, 0, 0, time.UTC), Source: recording.Imported, ClockFactor: 1,
 		Devices: []string{"card.txt"}, Tensioner: "T-1", Band: "QW-6", Plan: recording.Plan{Exercise: 1}, Profile: mill.Example(),
 	})

@@ -3,6 +3,7 @@ package main
 import (
 	"errors"
 	"io/fs"
+	"slices"
 
 	"tautramp/acquire"
 	"tautramp/acquire/mill"
@@ -11,6 +12,7 @@ import (
 	"tautramp/acquire/recording"
 	"tautramp/acquire/simrig"
 	"tautramp/analyze"
+	"tautramp/analyze/estimate"
 )
 
 // usageError is a command line that cannot be obeyed.
@@ -46,24 +48,29 @@ type exitRow struct {
 }
 
 // exitTable is the only place where errors meet exit codes. The first row
-// that fits wins; the last one fits everything.
+// that fits wins, an alarm before all else; the last one fits everything.
 func exitTable() []exitRow {
 	return []exitRow{
 		{0, "done", "", func(err error) bool { return err == nil }},
-		{2, "the command line cannot be obeyed", "tautramp help lists the commands", as[*usageError]()},
-		{3, "mill.toml has a mistake", "mend the line named above; tautramp profile writes a good example", anyOf(as[*mill.ProfileError](), is(mill.ErrUnknownName), is(simrig.ErrNotRehearsable, simrig.ErrOverLimit, simrig.ErrConfig))},
+		{12, "an alarm was raised during the capture", "stop, release slowly, find the cause before ramping again; the recording is whole", as[*alarmError]()},
+		{2, "the command line cannot be obeyed", "tautramp help lists the commands, tautramp COMMAND --help explains one", anyOf(as[*usageError](), is(mill.ErrUnknownName))},
+		{3, "mill.toml has a mistake", "mend the line named above; tautramp profile writes a good example", anyOf(as[*mill.ProfileError](), is(simrig.ErrNotRehearsable))},
 		{11, "a file cannot be read or written", "check the name, the folder and the free space; nothing was overwritten", isFileFailure},
 		{4, "a port cannot be opened", "tautramp ports lists what is plugged in; close other programs that use it", is(port.ErrNotFound, port.ErrBusy, port.ErrDenied, port.ErrBadName, port.ErrNoTerminal)},
 		{6, "a device does not speak this wire", "check the port, the speed (--baud) and the board's program; protocol/SPEC.md is the wire", is(acquire.ErrNoAnswer, acquire.ErrNotOurs, acquire.ErrRefused)},
 		{5, "a port went away and did not come back", "plug it in and start a new capture; the recording up to here is good", is(acquire.ErrGaveUp, port.ErrGone, port.ErrStuck)},
 		{7, "the file is not a recording", "give the .ramp file that capture or import wrote", is(recording.ErrNotRecording, recording.ErrNoHeader, recording.ErrVersion)},
 		{8, "a recording was altered or damaged", "go back to the original file; figures from a damaged one prove nothing", as[*recording.CorruptError]()},
-		{9, "the recording holds too little to compute a result", "record at least one full rise and fall, with both sensors reading; tautramp check FILE shows what is there", is(analyze.ErrTooFewPairs, analyze.ErrNoCycle, analyze.ErrNoZero, pairing.ErrNoSetting, pairing.ErrNoExtension, pairing.ErrNoTime, pairing.ErrNoPairs)},
+		{9, "the recording holds too little to compute a result", "record at least one full rise and fall, with both sensors reading; tautramp check FILE shows what is there", is(analyze.ErrTooFewPairs, analyze.ErrNoCycle, analyze.ErrNoZero, pairing.ErrNoSetting, pairing.ErrNoExtension, pairing.ErrNoTime, pairing.ErrNoPairs, estimate.ErrBadValue)},
 		{10, "the target lies outside what was captured", "ramp up past the target (never past the maker's limit), or give a --target inside the range", as[*analyze.OutOfRangeError]()},
-		{12, "an alarm was raised during the capture", "stop, release slowly, find the cause before ramping again; the recording is whole", as[*alarmError]()},
 		{13, "a recording has no end", "analyze uses what is sealed; record again if a ramp is missing", as[*tornError]()},
 		{1, "something that should not happen", "please report it with the recording", func(error) bool { return true }},
 	}
+}
+
+// byCode is the table in the order in which people look a code up.
+func byCode(table []exitRow) []exitRow {
+	return slices.SortedFunc(slices.Values(table), func(a, b exitRow) int { return a.code - b.code })
 }
 
 func classify(err error) exitRow {

@@ -23,7 +23,7 @@ func TestEachClassOfErrorHasItsExitCode(t *testing.T) {
 		{errors.New("never seen"), 1},
 		{&usageError{"no"}, 2},
 		{&mill.ProfileError{Line: 3, Key: "band.net_width", Problem: "no unit"}, 3},
-		{mill.ErrUnknownName, 3},
+		{mill.ErrUnknownName, 2},
 		{port.ErrNotFound, 4},
 		{port.ErrBusy, 4},
 		{port.ErrBadName, 4},
@@ -43,6 +43,7 @@ func TestEachClassOfErrorHasItsExitCode(t *testing.T) {
 		{&fs.PathError{Op: "open", Path: "x", Err: fs.ErrNotExist}, 11},
 		{&alarmError{"limit"}, 12},
 		{&tornError{"x.ramp"}, 13},
+		{errors.Join(analyze.ErrNoCycle, &alarmError{"limit"}), 12},
 	} {
 		wrapped := c.err
 		if wrapped != nil {

@@ -17,7 +17,7 @@ func writeAside(path string, e env, write func(io.Writer) error) error {
 	}
 	f, err := os.CreateTemp(filepath.Dir(path), ".tautramp-*")
 	if err != nil {
-		return &fileError{fmt.Errorf("cannot write %s: %w", path, err)}
+		return &fileError{fmt.Errorf("cannot write %s: %w", path, bare(err))}
 	}
 	err = write(f)
 	if err == nil {
@@ -30,7 +30,40 @@ func writeAside(path string, e env, write func(io.Writer) error) error {
 		err = os.Rename(f.Name(), path)
 	}
 	if err != nil {
-		return &fileError{errors.Join(fmt.Errorf("cannot write %s: %w", path, err), os.Remove(f.Name()))}
+		return &fileError{errors.Join(fmt.Errorf("cannot write %s: %w", path, bare(err)), os.Remove(f.Name()))}
+	}
+	return nil
+}
+
+// bare takes the name of a file that the user never gave out of an error.
+func bare(err error) error {
+	if pathErr, ok := errors.AsType[*fs.PathError](err); ok {
+		return pathErr.Err
+	}
+	return err
+}
+
+// checkOutputs refuses results that would end in one file, replace what is no
+// result, or have no folder, before any work is done for them.
+func checkOutputs(paths []string) error {
+	seen := map[string]bool{}
+	for _, path := range paths {
+		if path == "" {
+			continue
+		}
+		if seen[path] {
+			return &usageError{fmt.Sprintf("two results cannot both go to %s", path)}
+		}
+		seen[path] = true
+		if path == "-" {
+			continue
+		}
+		if ext := filepath.Ext(path); ext == ".ramp" || ext == ".toml" || ext == ".txt" {
+			return &usageError{fmt.Sprintf("%s: a result does not go to a %s file, which may hold what cannot be made again", path, ext)}
+		}
+		if info, err := os.Stat(filepath.Dir(path)); err != nil || !info.IsDir() {
+			return &fileError{fmt.Errorf("%s: there is no folder %s", path, filepath.Dir(path))}
+		}
 	}
 	return nil
 }

@@ -2,7 +2,9 @@ package main
 
 import (
 	"context"
+	"errors"
 	"fmt"
+	"os"
 	"path/filepath"
 	"strings"
 
@@ -11,7 +13,7 @@ import (
 	"tautramp/protocol"
 )
 
-func runImport(_ context.Context, args []string, e env) error {
+func runImport(ctx context.Context, args []string, e env) error {
 	var p profileFlags
 	var plan recording.Plan
 	var out string
@@ -35,7 +37,7 @@ func runImport(_ context.Context, args []string, e env) error {
 	if err != nil {
 		return err
 	}
-	counts, err := importFile(in, out, recording.Header{
+	counts, err := importFile(ctx, in, out, recording.Header{
 		Program: programVersion(), Started: e.wall(), Source: recording.Imported, ClockFactor: 1,
 		Devices: []string{filepath.Base(in)}, Tensioner: s.tensioner.Name, Band: s.band.Name, Plan: plan, Profile: s.text,
 	})
@@ -66,8 +68,9 @@ func (c *lineCounts) add(line protocol.Line) {
 }
 
 // importFile copies every line, good or refused, into a new recording. A text
-// file without one good line is no wire log, and leaves no recording behind.
-func importFile(in, out string, header recording.Header) (lineCounts, error) {
+// file without one good line is no wire log. A failure leaves no recording
+// behind: the text is still there.
+func importFile(ctx context.Context, in, out string, header recording.Header) (lineCounts, error) {
 	counts, err := countLines(in, nil)
 	if err != nil {
 		return counts, err
@@ -80,15 +83,18 @@ func importFile(in, out string, header recording.Header) (lineCounts, error) {
 		return counts, &fileError{err}
 	}
 	counts, err = countLines(in, func(line protocol.Line) error {
+		if err := ctx.Err(); err != nil {
+			return err
+		}
 		return w.Write(recording.Entry{Wire: line.Text})
 	})
 	if closeErr := w.Close(0, header.Started); err == nil {
 		err = closeErr
 	}
 	if err != nil {
-		err = &fileError{err}
+		return counts, &fileError{errors.Join(fmt.Errorf("import of %s: %w", in, err), os.Remove(out))}
 	}
-	return counts, err
+	return counts, nil
 }
 
 // replayPrefix makes a text file a port that ends.

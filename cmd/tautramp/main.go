@@ -10,6 +10,7 @@ import (
 	"io"
 	"os"
 	"os/signal"
+	"strings"
 	"syscall"
 	"time"
 
@@ -29,20 +30,20 @@ func main() {
 // env is everything a verb may touch of the outside, passed in so that tests
 // can stand in for it.
 type env struct {
-	stdin    io.Reader
-	stdout   io.Writer
-	stderr   io.Writer
-	terminal bool // stdout is a terminal that can redraw a line
-	clock    func(factor float64) acquire.Clock
-	wall     func() time.Time
+	stdin   io.Reader
+	stdout  io.Writer // results
+	stderr  io.Writer // progress, cautions, errors
+	columns int       // of stderr where it is a terminal that can redraw a line, else 0
+	clock   func(factor float64) acquire.Clock
+	wall    func() time.Time
 }
 
 func systemEnv() env {
 	return env{
 		stdin: os.Stdin, stdout: os.Stdout, stderr: os.Stderr,
-		terminal: isTerminal(os.Stdout),
-		clock:    acquire.NewClock,
-		wall:     time.Now,
+		columns: terminalWidth(os.Stderr),
+		clock:   acquire.NewClock,
+		wall:    time.Now,
 	}
 }
 
@@ -87,6 +88,9 @@ func dispatch(ctx context.Context, args []string, e env) error {
 	}
 	switch args[0] {
 	case "help", "--help", "-h":
+		if len(args) > 1 {
+			return dispatch(ctx, []string{args[1], "--help"}, e)
+		}
 		usage(e.stdout)
 		return nil
 	case "version", "--version":
@@ -108,7 +112,7 @@ func usage(w io.Writer) {
 	}
 	fmt.Fprint(w, "\nEach command explains itself: tautramp capture --help\n")
 	fmt.Fprintf(w, "\nExit codes:\n")
-	for _, row := range exitTable() {
+	for _, row := range byCode(exitTable()) {
 		fmt.Fprintf(w, "  %3d  %s\n", row.code, row.what)
 	}
 }
@@ -120,7 +124,7 @@ func flags(name, args, about string, e env) *pflag.FlagSet {
 	fs.SetOutput(e.stderr)
 	fs.SortFlags = false
 	fs.Usage = func() {
-		fmt.Fprintf(e.stdout, "usage: tautramp %s %s\n\n%s\n\n%s", name, args, about, fs.FlagUsagesWrapped(80))
+		fmt.Fprintf(e.stdout, "usage: tautramp %s\n\n%s\n\n%s", strings.TrimSpace(name+" "+args+" [flags]"), about, fs.FlagUsagesWrapped(80))
 	}
 	return fs
 }

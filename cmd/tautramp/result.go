@@ -67,9 +67,12 @@ func (r *resultFlags) check() (mill.System, mill.Pressure, error) {
 		if err != nil {
 			return "", target, &usageError{"--target: " + err.Error()}
 		}
+		if !(q.SI > 0) {
+			return "", target, &usageError{fmt.Sprintf("--target: %s is no band stress to set a band to", r.target)}
+		}
 		target.Quantity = q
 	}
-	return system, target, nil
+	return system, target, checkOutputs(r.outputs())
 }
 
 func (r *resultFlags) outputs() []string {
@@ -84,7 +87,7 @@ func (r *resultFlags) textOnScreen() bool { return r.json != "-" && r.csv != "-"
 func computeResult(path string, target mill.Pressure) (*analyze.Result, report.Meta, error) {
 	rec, err := recording.ReadFile(path)
 	if err != nil {
-		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
+		return nil, report.Meta{}, err
 	}
 	set, err := pairing.FromRecording(rec)
 	if err != nil {
@@ -116,8 +119,14 @@ func reportMeta(path string, rec *recording.Recording, set *pairing.Set) report.
 	return meta
 }
 
-// write puts a result wherever the flags say.
+// write puts a result wherever the flags say: on the screen first, for a full
+// disk must not keep it from there.
 func (r *resultFlags) write(res *analyze.Result, meta report.Meta, system mill.System, e env) error {
+	if r.textOnScreen() {
+		if err := report.Text(e.stdout, res, meta, system); err != nil {
+			return err
+		}
+	}
 	plot := report.Plot(r.plot)
 	for _, out := range []struct {
 		path  string
@@ -136,9 +145,11 @@ func (r *resultFlags) write(res *analyze.Result, meta report.Meta, system mill.S
 		if err := writeAside(out.path, e, out.write); err != nil {
 			return err
 		}
-	}
-	if r.textOnScreen() {
-		return report.Text(e.stdout, res, meta, system)
+		if out.path != "-" {
+			if _, err := fmt.Fprintf(e.stderr, "written: %s\n", out.path); err != nil {
+				return err
+			}
+		}
 	}
 	return nil
 }

@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"io/fs"
 	"net"
 	"os"
 	"strconv"
@@ -59,6 +60,9 @@ func runRig(ctx context.Context, args []string, e env) error {
 		return err
 	}
 	if o.log != "" {
+		if err := refuseExisting(o.log); err != nil {
+			return err
+		}
 		return writeAside(o.log, e, r.WriteLog)
 	}
 	return o.serve(ctx, r, e)
@@ -129,7 +133,11 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 			return nil, err
 		}
 	}
-	return simrig.New(c)
+	rig, err := simrig.New(c)
+	if errors.Is(err, simrig.ErrConfig) || errors.Is(err, simrig.ErrOverLimit) {
+		err = &usageError{err.Error()}
+	}
+	return rig, err
 }
 
 // noneIfZero turns the command line's "0 = none" into the rig's "negative =
@@ -216,13 +224,26 @@ func (o *rigOptions) openEnd(i int) (boardEnd, error) {
 		return end, nil
 	}
 	link := o.links[i]
-	if err := os.Symlink(pair.Path, link); err != nil {
+	if err := linkTo(pair.Path, link); err != nil {
 		end.close()
 		return boardEnd{}, &fileError{fmt.Errorf("--link: %w", err)}
 	}
 	end.name = link
 	end.close = func() { os.Remove(link); pair.Close() } // as above
 	return end, nil
+}
+
+// linkTo gives a port a fixed name, in the place of a link to nowhere that a
+// killed rig left.
+func linkTo(path, link string) error {
+	if old, err := os.Readlink(link); err == nil {
+		if _, err := os.Stat(old); errors.Is(err, fs.ErrNotExist) || old == path {
+			if err := os.Remove(link); err != nil {
+				return err
+			}
+		}
+	}
+	return os.Symlink(path, link)
 }
 
 // endedByContext takes back the error that the end of the context made.

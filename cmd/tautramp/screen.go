@@ -53,11 +53,11 @@ func (s *screen) draw(now visit.Status) {
 	}
 	phase := fmt.Sprintf("%s %d", now.Phase, now.Cycle)
 	realGap := time.Duration(float64(now.At-s.drawnAt) / s.factor)
-	if !s.e.terminal && phase == s.phase && realGap < plainEvery {
+	if !s.redraws() && phase == s.phase && realGap < plainEvery {
 		return
 	}
 	s.phase, s.drawnAt = phase, now.At
-	if !s.e.terminal {
+	if !s.redraws() {
 		s.line(s.figures(now))
 		return
 	}
@@ -65,15 +65,25 @@ func (s *screen) draw(now visit.Status) {
 	s.open = true
 }
 
+func (s *screen) redraws() bool { return s.e.columns > 0 }
+
+// paint is the line that is redrawn, cut to one row: a line that wraps cannot
+// be taken back. In an alarm the gauge stays in sight, for it must be seen to
+// fall.
 func (s *screen) paint(now visit.Status) string {
-	if now.Alarm != visit.NoAlarm {
-		return "\a\x1b[7m STOP " + now.AlarmText + " \x1b[0m"
+	if now.Alarm == visit.NoAlarm {
+		return s.cut(s.figures(now))
 	}
-	return s.figures(now)
+	text := "STOP  " + s.show(now.SettingSI, s.role, 0, "gauge") + "  release slowly"
+	return "\a\x1b[7m" + s.cut(text) + "\x1b[0m"
+}
+
+func (s *screen) cut(text string) string {
+	return text[:min(len(text), s.e.columns-1)]
 }
 
 func (s *screen) loud(text string) string {
-	if s.e.terminal {
+	if s.redraws() {
 		return "\a\x1b[7m*** STOP *** " + text + "\x1b[0m"
 	}
 	return "*** STOP *** " + text
@@ -96,20 +106,20 @@ func (s *screen) figures(now visit.Status) string {
 	if now.Exercise {
 		cycle += " (exercise)"
 	}
-	fields := []string{
-		s.show(now.SettingSI, s.role, 0, "gauge"),
-		"stretch " + s.show(now.StretchM, mill.RoleExtension, 5, ""),
-		s.show(now.StressPa, mill.RoleStress, -2, "band"),
-		s.show(now.RateSI, s.role, 1, "") + "/s",
-		string(now.Phase), cycle,
-	}
-	if now.Lost > 0 || now.Rejected > 0 {
-		fields = append(fields, fmt.Sprintf("lost %d, refused %d", now.Lost, now.Rejected))
-	}
+	var fields []string
 	for i, link := range now.Link {
 		if link != "" {
 			fields = append(fields, fmt.Sprintf("board %d %s", i+1, link))
 		}
+	}
+	fields = append(fields,
+		s.show(now.SettingSI, s.role, 0, "gauge"),
+		s.show(now.StressPa, mill.RoleStress, -2, "band"),
+		s.show(now.RateSI, s.role, 1, "")+"/s",
+		string(now.Phase), cycle,
+		"stretch "+s.show(now.StretchM, mill.RoleExtension, 5, ""))
+	if now.Lost > 0 || now.Rejected > 0 {
+		fields = append(fields, fmt.Sprintf("lost %d, refused %d", now.Lost, now.Rejected))
 	}
 	return strings.Join(fields, "  ")
 }
@@ -136,6 +146,6 @@ func (s *screen) show(si float64, role mill.Role, usDecimals int, word string) s
 }
 
 // end closes the line and says how the visit ended.
-func (s *screen) end(sum visit.Summary, path string) {
-	s.line(fmt.Sprintf("%s; %d cycles closed; recording: %s", sum.Reason, sum.Cycles, path))
+func (s *screen) end(sum visit.Summary) {
+	s.line(fmt.Sprintf("%s; %d cycles closed", sum.Reason, sum.Cycles))
 }

@@ -12,7 +12,7 @@ import (
 	"tautramp/cmd/tautramp/visit"
 )
 
-func testScreen(t *testing.T, terminal bool) (*screen, *bytes.Buffer) {
+func testScreen(t *testing.T, columns int) (*screen, *bytes.Buffer) {
 	t.Helper()
 	profile, err := mill.Parse(mill.Example())
 	if err != nil {
@@ -20,7 +20,7 @@ func testScreen(t *testing.T, terminal bool) (*screen, *bytes.Buffer) {
 	}
 	var out bytes.Buffer
 	h := recording.Header{Parsed: profile, Tensioner: "T-1", ClockFactor: 1}
-	return newScreen(env{stderr: &out, terminal: terminal}, h, mill.US), &out
+	return newScreen(env{stderr: &out, columns: columns}, h, mill.US), &out
 }
 
 // status is 724 psi, 0.00655 in and 9,500 psi of band stress, the invented
@@ -30,20 +30,20 @@ func status(at time.Duration) visit.Status {
 }
 
 func TestScreenShowsTheFiguresInTheUnitsOfTheUser(t *testing.T) {
-	s, _ := testScreen(t, false)
-	want := "724 gauge psi  stretch 0.00655 in  9500 band psi  8.0 psi/s  loading  cycle 2 of 4"
+	s, _ := testScreen(t, 0)
+	want := "724 gauge psi  9500 band psi  8.0 psi/s  loading  cycle 2 of 4  stretch 0.00655 in"
 	if got := s.figures(status(0)); got != want {
 		t.Errorf("US\n got %q\nwant %q", got, want)
 	}
 	s.system = mill.SI
-	want = "49.92 gauge bar  stretch 0.1664 mm  65.5 band MPa  0.552 bar/s  loading  cycle 2 of 4"
+	want = "49.92 gauge bar  65.5 band MPa  0.552 bar/s  loading  cycle 2 of 4  stretch 0.1664 mm"
 	if got := s.figures(status(0)); got != want {
 		t.Errorf("SI\n got %q\nwant %q", got, want)
 	}
 }
 
 func TestScreenShowsDashesForWhatIsNotKnown(t *testing.T) {
-	s, _ := testScreen(t, false)
+	s, _ := testScreen(t, 0)
 	now := status(0)
 	now.StressPa = math.NaN()
 	if got := s.figures(now); !strings.Contains(got, "-- band psi") {
@@ -52,7 +52,7 @@ func TestScreenShowsDashesForWhatIsNotKnown(t *testing.T) {
 }
 
 func TestAnAlarmIsLoudAndStays(t *testing.T) {
-	s, out := testScreen(t, true)
+	s, out := testScreen(t, 80)
 	s.draw(status(0))
 	now := status(time.Second)
 	now.Alarm, now.AlarmText = visit.OverLimit, "960 psi is over the limit"
@@ -64,7 +64,7 @@ func TestAnAlarmIsLoudAndStays(t *testing.T) {
 }
 
 func TestPlainLinesComeNowAndThenButEveryWordOfAdviceComesAtOnce(t *testing.T) {
-	s, out := testScreen(t, false)
+	s, out := testScreen(t, 0)
 	for at := range 30 {
 		s.draw(status(time.Duration(at) * 100 * time.Millisecond))
 	}
@@ -74,5 +74,20 @@ func TestPlainLinesComeNowAndThenButEveryWordOfAdviceComesAtOnce(t *testing.T) {
 	lines := strings.Split(strings.TrimSpace(out.String()), "\n")
 	if len(lines) != 4 || lines[0] != ">> pump up slowly" || lines[3] != ">> hold" {
 		t.Errorf("%d lines:\n%s", len(lines), out.String())
+	}
+}
+
+func TestTheRedrawnLineFitsTheTerminal(t *testing.T) {
+	for _, columns := range []int{20, 60, 80, 200} {
+		s, _ := testScreen(t, columns)
+		now := status(0)
+		if got := s.paint(now); len(got) >= columns {
+			t.Errorf("%d columns of %d", len(got), columns)
+		}
+		now.Alarm, now.AlarmText = visit.OverLimit, strings.Repeat("far too long ", 30)
+		got := strings.TrimSuffix(strings.TrimPrefix(s.paint(now), "\a\x1b[7m"), "\x1b[0m")
+		if len(got) >= columns || columns > 30 && !strings.Contains(got, "724 gauge psi") {
+			t.Errorf("%d columns: %q", columns, got)
+		}
 	}
 }

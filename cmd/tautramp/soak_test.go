@@ -35,7 +35,7 @@ func TestThousandLinesASecond(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "soak.ramp")
 	var screen bytes.Buffer
 	heaps := watchHeap(ctx, *soak/10)
-	_, err := record(ctx, recordJob{header: soakHeader(names), path: path, devices: devices, system: mill.US, clock: clock},
+	err := record(ctx, recordJob{header: soakHeader(names), path: path, devices: devices, system: mill.US, clock: clock},
 		env{stdout: &screen, stderr: &screen})
 	if err != nil {
 		t.Fatal(err)

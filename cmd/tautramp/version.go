@@ -1,9 +1,6 @@
 package main
 
-import (
-	"os"
-	"runtime/debug"
-)
+import "runtime/debug"
 
 // programVersion names the program and the build it came from. It goes into
 // every recording, so that a figure can be traced to the code that made it.
@@ -15,9 +12,4 @@ func programVersion() string {
 		}
 	}
 	return "tautramp " + version
-}
-
-func isTerminal(f *os.File) bool {
-	info, err := f.Stat()
-	return err == nil && info.Mode()&os.ModeCharDevice != 0 && os.Getenv("TERM") != "dumb"
 }
