@@ -1,0 +1,33 @@
+#!/bin/sh
+# Prints what the core costs and fails above the limits. usage: cost.sh BUILD
+set -eu
+build=$1
+bad=0
+
+flash() { avr-size "$1" | awk 'NR == 2 { print $1 + $2 }'; }
+ram() { avr-size "$1" | awk 'NR == 2 { print $2 + $3 }'; }
+
+say() { # what, is, limit
+  printf '%-44s %5d of %5d\n' "$1" "$2" "$3"
+  if [ "$2" -gt "$3" ]; then echo "  above the limit"; bad=1; fi
+}
+
+say "core: bytes of flash" $(($(flash "$build/core.elf") - $(flash "$build/stub.elf"))) "$FLASH_MAX"
+say "core: bytes of RAM (two channels, four lines)" "$(ram "$build/core.elf")" "$RAM_MAX"
+
+"$build/meter" "$build/core.elf" > "$build/cycles"
+say "core: cycles of the slowest sample line" "$(sort -n "$build/cycles" | tail -n 1 | cut -d' ' -f1)" "$CYCLES_MAX"
+sed 's/^/  /' "$build/cycles"
+
+for helper in taut_sensor taut_log; do
+  printf '%-44s %5d\n' "beside it, $helper: bytes of flash" "$(flash "$build/$helper.o")"
+done
+
+# Division, long multiplication and floating point come as calls to these.
+helpers=$(avr-nm "$build/core.elf" | grep -E '__(u?div|u?mod|mul|.*[sd]f)' || true)
+if [ -n "$helpers" ]; then
+  echo "the core calls for arithmetic that it must not use:"
+  echo "$helpers"
+  bad=1
+fi
+exit $bad
