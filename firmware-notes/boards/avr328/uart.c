@@ -1,0 +1,108 @@
+#include <avr/interrupt.h>
+#include <avr/io.h>
+#include <util/atomic.h>
+
+#include "board.h"
+
+#if BAUD == 115200
+#define DIVISOR 16 /* 117647: 2.1 % fast, within what a receiver takes */
+#elif BAUD == 500000
+#define DIVISOR 3 /* exact */
+#else
+#error "BAUD is 115200 or 500000"
+#endif
+
+#define IN_SIZE 64 /* a power of two */
+
+static volatile char in[IN_SIZE], out[256];
+static volatile uint8_t in_head, in_tail, out_head, out_tail; /* head: where the next goes */
+static volatile uint8_t lost;
+static volatile uint32_t line_tick;
+
+void uart_start(void)
+{
+	UCSR0A = _BV(U2X0);
+	UBRR0 = DIVISOR;
+	UCSR0C = _BV(UCSZ01) | _BV(UCSZ00);
+	UCSR0B = _BV(RXEN0) | _BV(TXEN0) | _BV(RXCIE0);
+}
+
+static void lose_one(void)
+{
+	if (lost != 255)
+		lost++;
+}
+
+/* The error bits belong to the byte that is read after them; both must be read, or
+ * the interrupt comes again at once. */
+ISR(USART_RX_vect)
+{
+	uint8_t errors = UCSR0A;
+	char byte = (char)UDR0;
+
+	if (errors & _BV(DOR0))
+		lose_one();
+	if ((uint8_t)(in_head - in_tail) == IN_SIZE) {
+		lose_one();
+		return;
+	}
+	in[in_head++ & (IN_SIZE - 1)] = byte;
+	if (byte == '\n')
+		line_tick = clock_now_locked();
+}
+
+ISR(USART_UDRE_vect)
+{
+	if (out_head == out_tail)
+		UCSR0B &= (uint8_t)~_BV(UDRIE0);
+	else
+		UDR0 = (uint8_t)out[out_tail++];
+}
+
+uint8_t uart_room(void)
+{
+	return (uint8_t)(255 - (uint8_t)(out_head - out_tail));
+}
+
+void uart_send(char byte)
+{
+	out[out_head] = byte;
+	out_head++;
+	ATOMIC_BLOCK(ATOMIC_RESTORESTATE)
+		UCSR0B |= _BV(UDRIE0);
+}
+
+uint8_t uart_waiting(void)
+{
+	return (uint8_t)(in_head - in_tail);
+}
+
+char uart_peek(void)
+{
+	return in[in_tail & (IN_SIZE - 1)];
+}
+
+void uart_drop(void)
+{
+	in_tail++;
+}
+
+uint32_t uart_line_tick(void)
+{
+	uint32_t tick;
+
+	ATOMIC_BLOCK(ATOMIC_RESTORESTATE)
+		tick = line_tick;
+	return tick;
+}
+
+uint8_t uart_lost(void)
+{
+	uint8_t n;
+
+	ATOMIC_BLOCK(ATOMIC_RESTORESTATE) {
+		n = lost;
+		lost = 0;
+	}
+	return n;
+}
