@@ -78,7 +78,7 @@ static uint8_t pace(struct taut *t, const char *at)
 	uint8_t index = (uint8_t)(at[1] - 'a');
 	const uint32_t *power = taut_powers + 7;
 	const char *first = at + 3, *end = first;
-	uint32_t per = 0, weight;
+	uint32_t per = 0;
 
 	if (*at != ' ' || index > 25 || at[2] != ' ' || *first == '0')
 		return TAUT_WORD_FIELDS;
@@ -88,8 +88,8 @@ static uint8_t pace(struct taut *t, const char *at)
 		return TAUT_WORD_FIELDS;
 	while (end != first) {
 		char digit = *--end;
+		uint32_t weight = taut_long_at(--power);
 
-		weight = taut_long_at(--power);
 		while (digit-- > '0')
 			per += weight;
 	}

@@ -4,8 +4,7 @@
  *   PD0, PD1  serial line to the host
  *   PC0       pressure: ratiometric, 0.5 to 4.5 V for 0 to 1500 psi, from the same 5 V
  *             that AVCC has
- *   PD2, PD5  indicator: clock and data; or
- *   PD5, PD6  the two tracks A and B of a scale
+ *   PD2, PD3  indicator: clock and data, or the two tracks A and B of a scale
  *   PD4       foot switch to ground
  * No output pin is ever written after the start. */
 #ifndef BOARD_H

@@ -19,7 +19,9 @@ static volatile uint8_t ready;
 
 void indicator_start(void)
 {
-	EICRA = _BV(ISC01) | _BV(ISC00); /* rising */
+	/* Rising edges of both; the one of PD3 is not used, but left at its "low level" it
+	 * keeps a simulator busy. */
+	EICRA = _BV(ISC01) | _BV(ISC00) | _BV(ISC11) | _BV(ISC10);
 	EIMSK = _BV(INT0);
 }
 
@@ -34,7 +36,7 @@ ISR(INT0_vect)
 	}
 	edge = now;
 	shifted >>= 1;
-	if (PIND & _BV(PD5))
+	if (PIND & _BV(PD3))
 		shifted |= 0x800000;
 	if (++bits == BITS) {
 		whole = shifted;

@@ -15,8 +15,10 @@ static volatile uint8_t tracks, missed;
 
 void indicator_start(void)
 {
-	tracks = (PIND >> PD5) & 3;
-	PCMSK2 = _BV(PCINT21) | _BV(PCINT22);
+	/* Not used, but left at their "low level" they keep a simulator busy. */
+	EICRA = _BV(ISC01) | _BV(ISC00) | _BV(ISC11) | _BV(ISC10);
+	tracks = (PIND >> PD2) & 3;
+	PCMSK2 = _BV(PCINT18) | _BV(PCINT19);
 	PCICR = _BV(PCIE2);
 }
 
@@ -29,7 +31,7 @@ ISR(PCINT2_vect)
 		1, MISSED, 0, -1,
 		MISSED, -1, 1, 0,
 	};
-	uint8_t now = (PIND >> PD5) & 3;
+	uint8_t now = (PIND >> PD2) & 3;
 	int8_t step = steps[tracks << 2 | now];
 
 	tracks = now;
