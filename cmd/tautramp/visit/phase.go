@@ -7,63 +7,63 @@ import (
 )
 
 const (
-	goalStress = 1.15 // of the target: where a ramp ends
-	goalHalf   = 0.47 // of the target: where the first cycle ends, near enough to half
-	goalSlack  = 1.15 // of the frictionless setting, where the stress is not known
-	goalLimit  = 0.95 // of the limit: no ramp goes higher
-	holdS      = 5.0  // how long the top is held
 	holdShows  = 2.0  // s of standing still that are a hold and no pause between two strokes
+	stillShows = 1.5  // s, before the word for a motion gives way
 	seatingEnd = 0.15 // of the setting for the target, beyond the lift: the toe is over
+	cleanRate  = 0.5  // of a still rate: the standard uncertainty of a rate that two seconds tell,
+	cleanNoise = 0.75 // or so much of the doubt that the noise alone makes
 
 	paceSlow = 0.0015 // of the limit per s
 	paceFast = 0.012
 )
 
-// halfOnly reports that this cycle is the first of exercise, meant for half of
-// the target.
-func (k *tracker) halfOnly() bool { return k.closed == 0 && k.plan.Exercise > 0 }
-
-// atGoal reports that the rise has gone as far as it should.
-func (k *tracker) atGoal() bool {
-	stress, setting := goalStress*k.site.target, goalSlack*k.site.full
-	if k.halfOnly() {
-		stress, setting = goalHalf*k.site.target, goalSlack*k.site.half
+// motion is the setting's rate as it is shown, and its standard uncertainty;
+// NaN where it is not known: of the last two seconds where these are straight,
+// else, as between the strokes of a pump, of several.
+func (k *tracker) motion() (rate, std float64) {
+	rate, std = k.rate.slope()
+	if pace, paceStd := k.pace.slope(); !math.IsNaN(pace) && std > max(cleanRate*stillRate*k.site.limit, cleanNoise*k.doubt(&k.rate)) {
+		return pace, paceStd
 	}
-	// Comparisons with what is not known are false.
-	return k.stressPa() >= stress || k.setting >= goalLimit*k.site.limit ||
-		math.IsNaN(k.stressPa()) && k.setting >= setting
+	return rate, std
 }
 
-// watchGoal notes since when the goal is held.
-func (k *tracker) watchGoal() {
-	switch {
-	case k.stage != onRise || k.setting < k.cycle.top-k.band:
-		k.heldAt = math.NaN()
-	case math.IsNaN(k.heldAt) && k.atGoal() && k.stillS() > 0:
-		k.heldAt = k.now
+func (k *tracker) shownRate() float64 {
+	rate, _ := k.motion()
+	return rate
+}
+
+// direction is that of the motion: 1, -1, or 0 for a setting that stands still.
+func (k *tracker) direction() int {
+	rate, std := k.motion()
+	switch least := stillRate*k.site.limit + max(k.doubt(&k.rate), stillDoubts*std); {
+	case rate > least:
+		return 1
+	case rate < -least:
+		return -1
+	}
+	return 0
+}
+
+// settlePhase finds the analysis's word for what goes on, such that it agrees
+// with the direction.
+func (k *tracker) settlePhase() {
+	switch direction := k.direction(); {
+	case direction > 0:
+		k.phase = k.upPhase()
+	case direction < 0:
+		k.phase = k.downPhase()
+	case k.phase == "" || k.stillS() >= stillShows:
+		k.phase = k.stillPhase()
 	}
 }
 
-func (k *tracker) heldEnough() bool { return k.now-k.heldAt >= holdS }
-
-// phase is the analysis's word for what goes on.
-func (k *tracker) phase() analyze.PhaseKind {
+func (k *tracker) upPhase() analyze.PhaseKind {
 	c := &k.cycle
-	still := k.stillS() >= holdShows
 	switch {
-	case k.stage == atRest:
-		return analyze.Resting
-	case k.stage == onFall && still && k.low():
-		return analyze.Resting
-	case still && c.moved:
-		return analyze.Holding
-	case k.stage == onFall && c.topM-k.stretch <= k.movesM():
-		return analyze.Inside
-	case k.stage == onFall:
-		return analyze.Unloading
-	case !c.moved:
+	case k.stage == atRest || !c.moved:
 		return analyze.SlackLift
-	case k.setting < c.top-k.band || k.falling():
+	case k.setting < c.top-k.band && k.stretch-c.lowM <= k.movesM():
 		return analyze.Inside
 	case c.top < orElse(k.site.lift, 0)+seatingEnd*orElse(k.site.full, k.site.limit):
 		return analyze.Seating
@@ -71,11 +71,18 @@ func (k *tracker) phase() analyze.PhaseKind {
 	return analyze.Loading
 }
 
-// falling reports that the setting goes down, before its dead band says so; over
-// several seconds, so that the sag after a stroke does not.
-func (k *tracker) falling() bool {
-	rate, _ := k.pace.slope()
-	return rate < -k.doubt(&k.pace)
+func (k *tracker) downPhase() analyze.PhaseKind {
+	if k.cycle.highM-k.stretch <= k.movesM() {
+		return analyze.Inside
+	}
+	return analyze.Unloading
+}
+
+func (k *tracker) stillPhase() analyze.PhaseKind {
+	if k.stage == atRest || k.low() || !k.cycle.moved {
+		return analyze.Resting
+	}
+	return analyze.Holding
 }
 
 // low reports that the setting is down where a cycle closes.

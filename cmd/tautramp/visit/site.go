@@ -48,6 +48,11 @@ func newSite(h recording.Header) (site, error) {
 	if err != nil {
 		return site{}, fmt.Errorf("start a visit: %w", err)
 	}
+	if t.SetBy == mill.SetBySpring {
+		return site{}, fmt.Errorf("start a visit: %w", &mill.ProfileError{Key: "tensioner.set_by",
+			Problem: fmt.Sprintf("tensioner %s is set by spring length, which falls as the load rises: its limit would not stop anybody", t.Name),
+			Hint:    "a capture by spring length is not handled; measure what the spring is loaded by, such as pressure or torque"})
+	}
 	b, err := h.Parsed.FindBand(h.Band)
 	if err != nil {
 		return site{}, fmt.Errorf("start a visit: %w", err)

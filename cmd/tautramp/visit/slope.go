@@ -19,6 +19,19 @@ type slopeCheck struct {
 	points []state
 	judged bool   // in this rise
 	advice string // what is wrong; "" when nothing is
+	fitted straight
+}
+
+// straight is the last rise that fitted: extension since the zero over setting.
+// The zero value is none.
+type straight struct{ a, b float64 }
+
+// settingAt is where the line has an extension; NaN without a line.
+func (s straight) settingAt(stretchM float64) float64 {
+	if !(s.b > 0) {
+		return math.NaN()
+	}
+	return (stretchM - s.a) / s.b
 }
 
 // learnSlope collects the rise where it is straight: above the guard's grace.
@@ -35,29 +48,29 @@ func (k *tracker) learnSlope() {
 	}
 }
 
-// slope is that of the points so far, m per SI.
-func (s *slopeCheck) slope(limit float64) (float64, bool) {
+// line is that through the points so far, m over SI.
+func (s *slopeCheck) line(limit float64) (straight, bool) {
 	n := len(s.points)
 	if n < slopePoints || s.points[n-1].p-s.points[0].p < slopeSpan*limit {
-		return 0, false
+		return straight{}, false
 	}
 	x, y := make([]float64, n), make([]float64, n)
 	for i, p := range s.points {
 		x[i], y[i] = p.p, p.e
 	}
 	line, err := estimate.FitLine(x, y)
-	return line.B, err == nil
+	return straight{line.A, line.B}, err == nil
 }
 
 // compareSlope judges this rise's slope against the geometry's, once it can be
 // told.
 func (k *tracker) compareSlope() {
-	b, ok := k.check.slope(k.site.limit)
+	line, ok := k.check.line(k.site.limit)
 	if !ok || math.IsNaN(k.site.slope) {
 		return
 	}
 	k.check.judged, k.check.advice = true, ""
-	if ratio := b / k.site.slope; ratio < slopeLow || ratio > slopeHigh {
+	if ratio := line.b / k.site.slope; ratio < slopeLow || ratio > slopeHigh {
 		k.check.advice = k.site.slopeAdvice(ratio)
 	}
 }
@@ -66,10 +79,14 @@ func (k *tracker) compareSlope() {
 // kept near the geometry's, so that a bad first cycle cannot disarm the guard.
 func (k *tracker) judgeSlope() {
 	k.compareSlope()
-	b, ok := k.check.slope(k.site.limit)
+	line, ok := k.check.line(k.site.limit)
 	if !ok || k.guard.raised {
 		return
 	}
+	if k.check.advice == "" && !math.IsNaN(k.zero.value) {
+		k.check.fitted = straight{line.a - k.zero.value, line.b}
+	}
+	b := line.b
 	if g := k.site.slope; !math.IsNaN(g) {
 		b = min(max(b, slopeLow*g), slopeHigh*g)
 	}

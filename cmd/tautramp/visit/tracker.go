@@ -46,30 +46,35 @@ type tracker struct {
 	site site
 	plan recording.Plan
 
-	countM   float64 // least count of the extension
-	noiseSI  float64 // of the setting
-	noiseM   float64 // of the extension
-	band     float64 // dead band of the setting
-	early    []pairing.Pair
-	turner   *analyze.Turner // nil before the noise is known
-	rate     trend
-	pace     trend
-	lately   recent  // extension
-	now      float64 // time of the last pair
-	setting  float64
-	stretch  float64 // extension, lightly smoothed
-	part     int
-	seen     bool
-	stillAt  float64 // since when the setting stands still; NaN while it moves
-	stage    stage
-	cycle    cycle
-	closed   int
-	zero     zero
-	guard    guard
-	check    slopeCheck
-	heldAt   float64 // since when the goal is reached; NaN before
-	finished bool
-	events   []recording.Event
+	countM  float64 // least count of the extension
+	noiseSI float64 // of the setting
+	noiseM  float64 // of the extension
+	band    float64 // dead band of the setting
+	early   []pairing.Pair
+	turner  *analyze.Turner // nil before the noise is known
+	rate    trend
+	pace    trend
+	lately  recent  // extension
+	now     float64 // time of the last pair
+	setting float64
+	stretch float64 // extension, lightly smoothed
+	part    int
+	seen    bool
+	stillAt float64 // since when the setting stands still; NaN while it moves
+	stage   stage
+	cycle   cycle
+	closed  int
+	zero    zero
+	guard   guard
+	check   slopeCheck
+	step    step
+	goal    float64 // setting to hold this ramp at; NaN where it is not known
+	heldAt  float64 // since when it is held; NaN before
+	phase   analyze.PhaseKind
+
+	aimedWith string // the advice that the goal was set with
+	finished  bool
+	events    []recording.Event
 }
 
 // cycle is the rise and fall going on.
@@ -78,16 +83,18 @@ type cycle struct {
 	low    float64 // lowest setting since the last top
 	top    float64 // highest setting
 	startM float64 // extension at its start, lowest before it moved
-	topM   float64 // highest extension
+	highM  float64 // highest extension since the last bottom
+	lowM   float64 // lowest extension since the last top
 	moved  bool    // the extension has followed
 }
 
 func newTracker(s site, plan recording.Plan) *tracker {
 	k := &tracker{site: s, plan: plan, rate: trend{span: trendS}, pace: trend{span: paceS},
-		lately: recent{most: 3}, setting: math.NaN(), stretch: math.NaN(), stillAt: math.NaN(), heldAt: math.NaN()}
+		lately: recent{most: 3}, setting: math.NaN(), stretch: math.NaN(), stillAt: math.NaN(),
+		heldAt: math.NaN(), goal: math.NaN()}
 	k.zero = newZero(s)
 	k.guard = newGuard(s)
-	k.cycle.low = math.Inf(1)
+	k.cycle.low, k.cycle.highM = math.Inf(1), math.Inf(-1)
 	return k
 }
 
@@ -122,9 +129,10 @@ func (k *tracker) pair(p pairing.Pair) {
 	k.pace.add(p.T, p.Setting)
 	if k.turner == nil {
 		k.settleNoise(p)
-		return
+	} else {
+		k.follow(p)
 	}
-	k.follow(p)
+	k.settlePhase()
 }
 
 // settleNoise waits for enough pairs to tell the noise, then follows them.
@@ -164,7 +172,7 @@ func (k *tracker) follow(p pairing.Pair) {
 	_, turn, _ := k.turner.Add(p.Setting)
 	switch {
 	case turn == analyze.Top:
-		c.low = p.Setting
+		c.low, c.lowM = p.Setting, k.stretch
 		k.stage = onFall
 	case turn == analyze.Bottom && k.stage == onFall:
 		k.turnUp()
@@ -182,8 +190,8 @@ func (k *tracker) follow(p pairing.Pair) {
 	if k.guard.short = k.guard.short && k.stage == onRise; k.stage == onRise {
 		k.climb(p)
 	}
-	c.topM = max(c.topM, k.stretch)
-	k.watchGoal()
+	c.highM, c.lowM = max(c.highM, k.stretch), min(c.lowM, k.stretch)
+	k.steer()
 }
 
 // watchStill notes since when the setting stands still: when its rate is not
@@ -215,10 +223,11 @@ func (k *tracker) stillS() float64 { return orElse(k.now-k.stillAt, 0) }
 // begin starts a cycle from the low end.
 func (k *tracker) begin() {
 	k.stage = onRise
-	k.cycle = cycle{start: k.cycle.low, low: k.setting, top: k.setting, startM: k.stretch, topM: k.stretch}
+	k.cycle = cycle{start: k.cycle.low, low: k.setting, top: k.setting, startM: k.stretch, highM: k.stretch, lowM: k.stretch}
 	k.guard.begin(k.cycle.start)
 	k.check.points, k.check.judged = k.check.points[:0], false
-	k.heldAt = math.NaN()
+	k.step, k.heldAt = raising, math.NaN()
+	k.goal, k.aimedWith = k.aim(), k.check.advice
 }
 
 // leastRise is what a rise must be to count as a cycle.
@@ -232,7 +241,10 @@ func (k *tracker) rise() float64 { return k.cycle.top - k.cycle.start }
 // down far enough, else a wiggle of the old one.
 func (k *tracker) turnUp() {
 	if k.cycle.low > k.cycle.start+max(closedAgain*k.rise(), k.band) {
-		k.stage = onRise
+		k.stage, k.cycle.highM = onRise, k.stretch
+		if k.cycle.top-k.cycle.low > clearFall*k.site.limit {
+			k.step, k.heldAt = raising, math.NaN()
+		}
 		return
 	}
 	k.close()

@@ -61,13 +61,36 @@ const (
 	TooFast  Pace = "too fast"
 )
 
-// Status is all that a screen shows. Unknown numbers are NaN.
+// ReplyKind says what became of a key. The zero value: none was pressed yet.
+type ReplyKind string
+
+// The replies.
+const (
+	ZeroTaken   ReplyKind = "zero taken"
+	ZeroRefused ReplyKind = "not taken: the band is not slack" // for the live figures; the event is recorded all the same
+	MarkTaken   ReplyKind = "mark taken"
+	Undone      ReplyKind = "undone"
+	NothingToDo ReplyKind = "nothing to undo"
+)
+
+// Reply is the answer to the last key.
+type Reply struct {
+	Kind      ReplyKind
+	At        time.Duration // when; tells one reply from the next
+	SettingSI float64       // then; NaN when it was not known
+	Number    int           // of marks that stand, for MarkTaken
+}
+
+// Status is all that a screen shows. Unknown numbers are NaN. A number is
+// unknown also while a board that it needs is away: nothing old is shown as if
+// it were read now.
 type Status struct {
 	At        time.Duration
 	SettingSI float64
+	GoalSI    float64 // setting up to which Next sends the operator; NaN when it sends nobody up, or where not known; never above 0.95 of the limit
 	StretchM  float64 // extension since the zero of this cycle; NaN before there is one
 	StressPa  float64 // provisional
-	RateSI    float64 // setting per second
+	RateSI    float64 // setting per second, smoothed; Phase agrees with its sign
 	Pace      Pace
 	Phase     analyze.PhaseKind
 	Cycle     int // 1-based
@@ -75,9 +98,10 @@ type Status struct {
 	Exercise  bool
 	Lost      int // sequence numbers missing
 	Rejected  int
-	Link      []string // by device: "" when all is well, else what is not
+	Link      []string // by board: "" when all is well, else what is not
 	Alarm     AlarmKind
 	AlarmText string
-	Next      string // what to do next, one sentence
+	Next      string // what to do next, one sentence without figures
+	Reply     Reply  // to the last key
 	Done      bool
 }

@@ -1,14 +1,15 @@
 package visit
 
 import (
+	"bytes"
 	"context"
 	"fmt"
-	"math"
 	"slices"
 	"time"
 
 	"tautramp/acquire/pairing"
 	"tautramp/acquire/recording"
+	"tautramp/protocol"
 )
 
 // watch sees every entry of the capture, in order, from one goroutine.
@@ -20,6 +21,8 @@ type watch struct {
 	stop    func() // ends the capture
 
 	latest  [2]pairing.Reading
+	source  [2]source // of latest
+	reply   Reply
 	link    []string
 	now     time.Duration
 	begun   bool
@@ -28,6 +31,13 @@ type watch struct {
 	factor  float64 // clock seconds per real second
 	drawn   Status
 	drawnAt time.Duration
+}
+
+// source is where a channel's readings come from.
+type source struct {
+	device int
+	period float64       // nominal, s
+	at     time.Duration // when the newest one came
 }
 
 // statusEvery is the shortest real time between two statuses that differ in
@@ -60,6 +70,7 @@ func (w *watch) entry(e recording.Entry) []recording.Event {
 		w.event(e)
 	} else if e.Device >= 0 && e.Device < len(w.link) {
 		w.link[e.Device] = ""
+		w.button(e.Wire)
 	}
 	paired := false
 	for _, p := range w.live.Add(e) {
@@ -112,28 +123,46 @@ func (w *watch) readings() {
 		if r.Status == 0 || r.T == w.latest[i].T && r.Part == w.latest[i].Part && r.Status == w.latest[i].Status {
 			continue
 		}
-		w.latest[i] = r
+		w.latest[i], w.source[i].at = r, w.now
 		if i == 0 {
 			w.alarms.setting(r, now)
 		} else {
 			w.alarms.extension(r, now)
 		}
 	}
-	w.alarms.seen[0].period, w.alarms.seen[1].period = setting.PeriodS, extension.PeriodS
+	for i, c := range []pairing.Channel{setting, extension} {
+		w.alarms.seen[i].period = c.PeriodS
+		w.source[i].device, w.source[i].period = c.Device, c.PeriodS
+	}
 	w.alarms.time(now)
+}
+
+// button takes a press on a board's own button, which is a mark.
+func (w *watch) button(wire []byte) {
+	if !bytes.HasPrefix(wire, []byte("btn ")) {
+		return
+	}
+	r, bad := protocol.Parse(wire)
+	if b, ok := r.(protocol.Button); ok && bad == nil && b.Down {
+		w.answer(MarkTaken, w.tracker.zero.markPlain())
+	}
 }
 
 // event takes what the host did.
 func (w *watch) event(e recording.Entry) {
 	switch e.Event.Kind {
 	case recording.ZeroMark:
-		w.tracker.zero.mark(w.tracker.stretch)
+		w.answer(w.zeroMark(), 0)
+	case recording.Mark:
+		w.answer(MarkTaken, w.tracker.zero.markPlain())
+	case recording.Undo:
+		w.answer(w.tracker.zero.undo(), 0)
 	case recording.LostPort:
-		w.setLink(e.Device, "lost, waiting for it")
+		w.setLink(e.Device, linkLost)
 	case recording.Silent:
-		w.setLink(e.Device, "silent")
+		w.setLink(e.Device, linkSilent)
 	case recording.Restarted:
-		w.setLink(e.Device, "started again")
+		w.setLink(e.Device, linkRestarted)
 	case recording.PlanClosed:
 		w.stop()
 	}
@@ -171,36 +200,11 @@ func (w *watch) prompt(next string) []recording.Event {
 	return out
 }
 
-// status is all that a screen shows now.
-func (w *watch) status() Status {
-	k := w.tracker
-	rate, _ := w.alarms.raw.slope()
-	s := Status{At: w.now, SettingSI: math.NaN(), StretchM: k.stretchM(), StressPa: k.stressPa(), RateSI: rate,
-		Pace: k.paceNow(), Phase: k.phase(), Cycle: k.number(), Planned: k.planned(),
-		Exercise: k.number() <= k.plan.Exercise, Link: slices.Clone(w.link), Next: k.next(), Done: k.finished}
-	if w.latest[0].Status.Ok() {
-		s.SettingSI = w.latest[0].Value
-	}
-	if w.latest[1].Status != 0 && !w.latest[1].Status.Ok() {
-		s.StretchM, s.StressPa = math.NaN(), math.NaN()
-	}
-	for _, c := range w.live.Counters() {
-		s.Lost += c.Lost
-		s.Rejected += c.Rejected
-	}
-	if s.Alarm, s.AlarmText = w.alarms.gravest(); s.Alarm != NoAlarm {
-		s.Next = "STOP - " + k.site.words.release
-	} else if c := w.alarms.missing(w.now.Seconds()); c != nil && k.seen && !k.finished {
-		s.Next = "wait: there is no reading of " + c.name
-	}
-	return s
-}
-
 // draw shows a status when something changed that matters, or when it is time.
 func (w *watch) draw(s Status) {
 	last := w.drawn
 	changed := s.Phase != last.Phase || s.Alarm != last.Alarm || s.Cycle != last.Cycle || s.Next != last.Next ||
-		s.Done != last.Done || !slices.Equal(s.Link, last.Link)
+		s.Done != last.Done || s.Reply.At != last.Reply.At || s.Reply.Kind != last.Reply.Kind || s.Reply.Number != last.Reply.Number || !slices.Equal(s.Link, last.Link)
 	if !changed && !w.due() {
 		return
 	}

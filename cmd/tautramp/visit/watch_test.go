@@ -1,12 +1,14 @@
 package visit
 
 import (
+	"errors"
 	"math"
 	"slices"
 	"strings"
 	"testing"
 	"time"
 
+	"tautramp/acquire/mill"
 	"tautramp/acquire/recording"
 	"tautramp/protocol"
 )
@@ -104,7 +106,7 @@ func TestWholeVisitOverTheWire(t *testing.T) {
 		t.Errorf("events %q, want %q", kinds, want)
 	}
 	want := []string{"first caution", "second caution", "wait for the boards", "let the band go slack and keep still",
-		"pump up slowly, to about half of the target only, near 378 psi, and hold", "pump up slowly", "hold",
+		"pump up slowly, to about half of the target only, and hold", "hold",
 		"open the valve slowly, all the way until the band is slack, then rest", "rest, then start the next ramp",
 		"pump up slowly", "hold", "open the valve slowly, all the way until the band is slack, then rest",
 		"all planned cycles are closed"}
@@ -217,13 +219,114 @@ func TestNoReadingIsSaidBeforePumping(t *testing.T) {
 	}
 }
 
-func TestOperatorsZeroMarkIsUsed(t *testing.T) {
-	w, _ := run(t, config(t), lines(t, t1(1), from(200).rest(5)))
+// press gives a key to a watch and returns the answer.
+func press(w *watch, kind recording.EventKind) Reply {
+	w.entry(recording.Entry{Device: -1, At: w.now, HasAt: true, Event: &recording.Event{Kind: kind}})
+	return w.drawn.Reply
+}
+
+// At 70 psi T-1's wheel is not lifted yet (83.5 psi without friction), and no
+// zero is taken by itself.
+func TestOperatorsZeroMarkIsUsedAndUndone(t *testing.T) {
+	w, _ := run(t, config(t), lines(t, t1(1), from(70).rest(5)))
 	if !math.IsNaN(w.drawn.StressPa) {
 		t.Fatalf("stress %g", w.drawn.StressPa)
 	}
-	w.entry(recording.Entry{Device: -1, At: w.now, HasAt: true, Event: &recording.Event{Kind: recording.ZeroMark}})
+	r := press(w, recording.ZeroMark)
+	if r.Kind != ZeroTaken || r.At != w.now {
+		t.Errorf("reply %+v", r)
+	}
+	near(t, "setting in the reply, psi", r.SettingSI/psiPa, 70, 1)
 	near(t, "stress after the mark", w.status().StressPa, 0, 1)
+	if r := press(w, recording.Undo); r.Kind != Undone || !math.IsNaN(w.drawn.StressPa) {
+		t.Errorf("reply %+v, stress %g after the undo", r, w.drawn.StressPa)
+	}
+	if r := press(w, recording.Undo); r.Kind != NothingToDo {
+		t.Errorf("reply %+v", r)
+	}
+}
+
+// A zero taken on a loaded band would make the stress read low.
+func TestZeroMarkOnALoadedBandIsRefused(t *testing.T) {
+	for name, c := range map[string]*script{
+		"held under load":          from(35).rest(10).to(500, 8).rest(8),
+		"on the way up, low":       from(35).rest(10).to(75, 8),
+		"before anything is known": from(20).rest(0.5),
+	} {
+		w, _ := run(t, config(t), lines(t, t1(1), c))
+		before := w.status().StressPa
+		if r := press(w, recording.ZeroMark); r.Kind != ZeroRefused {
+			t.Errorf("%s: reply %+v", name, r)
+		}
+		if after := w.status().StressPa; math.Float64bits(after) != math.Float64bits(before) {
+			t.Errorf("%s: stress %g, was %g", name, after, before)
+		}
+		// The recording keeps it, so undo takes back this one and no other.
+		if r := press(w, recording.Undo); r.Kind != Undone {
+			t.Errorf("%s: reply %+v", name, r)
+		}
+	}
+}
+
+func TestUndoKeepsAZeroReadSinceFromTheSlackBand(t *testing.T) {
+	r := t1(1)
+	entries := lines(t, r, from(70).rest(5).to(20, 10).rest(6))
+	w, _ := run(t, config(t), entries[:len(entries)*5/16])
+	if got := press(w, recording.ZeroMark); got.Kind != ZeroTaken {
+		t.Fatalf("reply %+v", got)
+	}
+	for _, e := range entries[len(entries)*5/16:] {
+		w.entry(e)
+	}
+	before := w.status().StressPa
+	press(w, recording.Undo)
+	if after := w.status().StressPa; math.IsNaN(before) || after != before {
+		t.Errorf("stress %g, was %g", after, before)
+	}
+}
+
+func TestMarksAreCountedAndUndoneInTurn(t *testing.T) {
+	w, _ := run(t, config(t), lines(t, t1(1), from(35).rest(5)))
+	press(w, recording.Mark)
+	if r := press(w, recording.Mark); r.Kind != MarkTaken || r.Number != 2 {
+		t.Errorf("reply %+v", r)
+	}
+	press(w, recording.Undo)
+	b := &board{t: t, seq: 6000}
+	w.entry(b.entry(w.now.Seconds()+0.2, protocol.Button{ID: '1', Seq: 7000, Tick: uint32(w.now.Microseconds() + 200000), Down: true}))
+	if r := w.status().Reply; r.Kind != MarkTaken || r.Number != 2 {
+		t.Errorf("reply to the board's button %+v", r)
+	}
+}
+
+func TestNothingOldIsShownAsIfReadNow(t *testing.T) {
+	unknown := func(w *watch) bool {
+		s := w.status()
+		return math.IsNaN(s.SettingSI) && math.IsNaN(s.StretchM) && math.IsNaN(s.StressPa) && math.IsNaN(s.RateSI)
+	}
+	start := func() (*watch, func(float64, recording.EventKind)) {
+		w, _ := run(t, config(t), lines(t, t1(1), from(35).rest(10).to(300, 8)))
+		if unknown(w) {
+			t.Fatal("nothing is known of a running board")
+		}
+		return w, func(later float64, kind recording.EventKind) {
+			w.entry(recording.Entry{Device: 0, At: w.now + time.Duration(later*1e9), HasAt: true, Event: &recording.Event{Kind: kind}})
+		}
+	}
+	for _, kind := range []recording.EventKind{recording.LostPort, recording.Silent, recording.Restarted} {
+		w, host := start()
+		host(0.01, kind)
+		if s := w.status(); !unknown(w) || s.Link[0] == "" || s.Next != nextAway || !math.IsNaN(s.GoalSI) {
+			t.Errorf("after %s: %+v", kind, s)
+		}
+	}
+	w, host := start()
+	if host(1.9, recording.WallTime); unknown(w) {
+		t.Error("readings of 1.9 s ago are refused")
+	}
+	if host(0.2, recording.WallTime); !unknown(w) || w.status().Link[0] != linkQuiet {
+		t.Errorf("readings of 2.1 s ago: %+v", w.status())
+	}
 }
 
 func TestVisitNeedsAProfile(t *testing.T) {
@@ -236,6 +339,17 @@ func TestVisitNeedsAProfile(t *testing.T) {
 	cfg.Header.Tensioner = "T-9"
 	if _, err := Run(t.Context(), cfg); err == nil {
 		t.Error("no error")
+	}
+}
+
+// The length of a spring under load gets shorter: a limit on it would be on the
+// wrong side.
+func TestSpringLengthIsRefused(t *testing.T) {
+	cfg := config(t)
+	cfg.Header.Parsed.Tensioners[0].SetBy = mill.SetBySpring
+	var bad *mill.ProfileError
+	if _, err := Run(t.Context(), cfg); !errors.As(err, &bad) || bad.Key != "tensioner.set_by" || !strings.Contains(bad.Problem, "falls as the load rises") {
+		t.Errorf("%v", err)
 	}
 }
 

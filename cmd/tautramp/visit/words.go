@@ -32,9 +32,17 @@ func (s site) slopeAdvice(ratio float64) string {
 	return fmt.Sprintf("do not go higher yet: the stretch grows %.2f times as fast as cylinders and band section say; check the clamps, the gauge length, the bore and the band's measures", ratio)
 }
 
-// Sentences of Status.Next.
+// Words of Status.Link, and sentences of Status.Next.
 const (
-	nextWait  = "wait for the boards"
+	nextWait      = "wait for the boards"
+	linkLost      = "lost, waiting for it"
+	linkSilent    = "silent"
+	linkRestarted = "started again"
+	linkQuiet     = "sends no readings"
+
+	nextAway  = "wait: a board is away"
+	onlyHalf  = "to about half of the target only, and hold"
+	recheck   = onlyHalf + ": the stretch has not fitted cylinders and band section yet"
 	nextDone  = "all planned cycles are closed"
 	nextHold  = "hold"
 	nextRest  = "rest, then start the next ramp"
@@ -49,28 +57,30 @@ func (k *tracker) next() string {
 		return nextDone
 	case !k.seen:
 		return nextWait
-	case k.stage == onFall || k.stage == onRise && k.heldEnough():
+	case k.stage != atRest && k.step == lowering:
 		return w.lower + ", all the way until the band is slack, then rest"
-	case k.stage == onRise && k.atGoal():
-		return nextHold
-	case k.stage == onRise:
-		return w.raise
-	case k.check.advice != "":
+	case k.stage != atRest && k.atGoal() && k.check.advice != "":
 		return k.check.advice
-	case k.zero.value != k.zero.value:
+	case k.stage != atRest && k.step == holding:
+		return nextHold
+	case k.stage == atRest && k.check.advice != "":
+		return k.check.advice
+	case k.stage == atRest && k.zero.value != k.zero.value:
 		return nextSlack
-	case k.halfOnly():
-		return w.raise + k.halfWay()
-	case k.closed == 0:
-		return w.raise
 	}
-	return nextRest
+	return k.upward()
 }
 
-// halfWay says how far the first cycle goes.
-func (k *tracker) halfWay() string {
-	if k.site.half != k.site.half {
-		return ", to about half of the target only, and hold"
+// upward sends the operator up.
+func (k *tracker) upward() string {
+	switch w := k.site.words; {
+	case k.check.advice != "":
+		return recheck
+	case k.stage == atRest && k.closed > 0:
+		return nextRest
+	case k.halfOnly():
+		return w.raise + ", " + onlyHalf
+	default:
+		return w.raise
 	}
-	return fmt.Sprintf(", to about half of the target only, near %s, and hold", k.site.figure(k.site.half))
 }

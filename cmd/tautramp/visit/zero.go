@@ -22,14 +22,25 @@ type zero struct {
 	readings recent
 	lastT    float64 // of the last reading taken
 	level    float64 // setting at the start of this rest
+	believe  float64 // setting up to which the operator's word that the band is slack is taken
+	marks    []mark  // of the operator, that may be undone
+	byHand   bool    // value is the operator's, not read since
+}
+
+// mark is one key of the operator: a mark in the recording, or a zero.
+type mark struct {
+	isZero bool
+	taken  bool    // as the zero
+	before float64 // the zero before it was taken
 }
 
 func newZero(s site) zero {
-	return zero{below: orElse(slackLift*s.lift, slackElse*s.limit), value: math.NaN(), readings: recent{most: zeroMost}}
+	return zero{below: orElse(slackLift*s.lift, slackElse*s.limit), believe: orElse(s.lift, slackElse*s.limit),
+		value: math.NaN(), readings: recent{most: zeroMost}}
 }
 
 func (z *zero) forget() {
-	z.value = math.NaN()
+	z.value, z.byHand = math.NaN(), false // undoing a mark shall not bring back what is forgotten
 	z.readings.values = z.readings.values[:0]
 }
 
@@ -49,12 +60,58 @@ func (z *zero) take(k *tracker, p pairing.Pair) {
 	z.lastT = p.T
 	z.readings.add(p.Extension)
 	if len(z.readings.values) >= zeroLeast {
-		z.value = z.readings.median()
+		z.value, z.byHand = z.readings.median(), false
 	}
 }
 
-// mark is the operator saying that the band is slack now.
-func (z *zero) mark(extension float64) { z.value = extension }
+// markZero is the operator saying that the band is slack now. A zero taken on a
+// loaded band would make every stress read low, so it is believed only where
+// that can be: at rest, and with no more on the tensioner than lifts the
+// weight.
+func (k *tracker) markZero() ReplyKind {
+	z := &k.zero
+	if !(k.stillS() > 0) || !(k.setting <= z.believe) || math.IsNaN(k.stretch) {
+		return k.refuseZero()
+	}
+	before := z.value
+	z.value, z.byHand = k.stretch, true
+	z.readings.values = z.readings.values[:0]
+	z.marks = append(z.marks, mark{isZero: true, taken: true, before: before})
+	return ZeroTaken
+}
+
+// refuseZero keeps a place for the event, which is recorded all the same, so
+// that undo takes back what the recording takes back.
+func (k *tracker) refuseZero() ReplyKind {
+	k.zero.marks = append(k.zero.marks, mark{isZero: true})
+	return ZeroRefused
+}
+
+// markPlain notes a mark that changes no figure, and returns how many stand.
+func (z *zero) markPlain() int {
+	z.marks = append(z.marks, mark{})
+	n := 0
+	for _, m := range z.marks {
+		if !m.isZero {
+			n++
+		}
+	}
+	return n
+}
+
+// undo takes the last mark back. A zero read from the slack band since then
+// stays.
+func (z *zero) undo() ReplyKind {
+	n := len(z.marks)
+	if n == 0 {
+		return NothingToDo
+	}
+	if last := z.marks[n-1]; last.taken && z.byHand {
+		z.value = last.before
+	}
+	z.marks = z.marks[:n-1]
+	return Undone
+}
 
 // stretch is the extension since the zero, NaN before there is one.
 func (k *tracker) stretchM() float64 { return k.stretch - k.zero.value }

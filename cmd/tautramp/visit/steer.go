@@ -1,0 +1,104 @@
+package visit
+
+import "math"
+
+const (
+	goalStress = 1.15 // of the target: where a ramp ends
+	goalEnough = 1.02 // of the target: enough where the setting has reached its goal
+	goalHalf   = 0.47 // of the target: where the first cycle ends, near enough to half
+	goalSlack  = 1.15 // of the frictionless setting, where nothing better is known
+	goalLimit  = 0.95 // of the limit: no ramp goes higher
+	holdS      = 5.0  // how long the top is held
+	clearFall  = 0.08 // of the limit: a fall that no sag between two strokes makes
+)
+
+// step is what the operator is asked to do in the cycle going on. Within one
+// ramp it only goes forward.
+type step int
+
+const (
+	raising step = iota
+	holding
+	lowering
+)
+
+// halfOnly reports that this ramp is meant for half of the target: the first of
+// exercise, and every one until the slope fits the geometry.
+func (k *tracker) halfOnly() bool {
+	return k.closed == 0 && k.plan.Exercise > 0 || k.check.advice != ""
+}
+
+// atGoal reports that the rise has gone as far as it should. To half of the
+// target it goes by the setting too: a stress that reads low must not be chased.
+func (k *tracker) atGoal() bool {
+	stress, target := k.stressPa(), k.site.target
+	// Comparisons with what is not known are false.
+	there := k.setting >= k.goal-k.band/2
+	switch {
+	case k.setting >= goalLimit*k.site.limit:
+		return true
+	case k.halfOnly():
+		return there || stress >= goalHalf*target
+	}
+	return stress >= goalStress*target || there && !(stress < goalEnough*target)
+}
+
+// aim is the setting to hold this ramp at, NaN where it cannot be told.
+func (k *tracker) aim() float64 {
+	goal := goalSlack * k.site.full
+	if k.halfOnly() {
+		goal = k.site.half
+	} else if e := k.check.fitted.settingAt(goalStress * k.site.target * k.site.gauge / k.site.modulus); !math.IsNaN(e) && !math.IsNaN(goal) {
+		goal = max(e, k.site.full) // friction of the rise included
+	}
+	if math.IsNaN(goal) {
+		return goal
+	}
+	return min(goal, goalLimit*k.site.limit)
+}
+
+// goalSI is the goal for the screen: NaN unless the operator is sent up to it,
+// and once it is passed.
+func (k *tracker) goalSI() float64 {
+	up := k.seen && !k.finished && (k.stage == atRest && k.check.advice == "" && k.zero.value == k.zero.value ||
+		k.stage != atRest && k.step == raising)
+	if !up || k.setting > k.goal {
+		return math.NaN()
+	}
+	return k.goal
+}
+
+// steer moves on what the operator is asked to do.
+func (k *tracker) steer() {
+	if k.stage == atRest || k.check.advice != k.aimedWith {
+		k.goal, k.aimedWith = k.aim(), k.check.advice
+	}
+	if k.stage == atRest {
+		k.step, k.heldAt = raising, math.NaN()
+		return
+	}
+	fell := k.cycle.top - k.setting
+	switch k.step {
+	case raising:
+		if k.stage == onFall && fell > clearFall*k.site.limit {
+			k.step = lowering
+		} else if k.atGoal() {
+			k.step = holding
+		}
+	case holding:
+		k.watchHold()
+		if k.stage == onFall || k.now-k.heldAt >= holdS {
+			k.step = lowering
+		}
+	}
+}
+
+// watchHold notes since when the goal is held.
+func (k *tracker) watchHold() {
+	switch {
+	case k.setting < k.cycle.top-k.band:
+		k.heldAt = math.NaN()
+	case math.IsNaN(k.heldAt) && k.stillS() > 0:
+		k.heldAt = k.now
+	}
+}
