@@ -1,7 +1,6 @@
 package port
 
 import (
-	"errors"
 	"fmt"
 	"strings"
 )
@@ -18,7 +17,7 @@ type Info struct {
 
 // List shows the serial ports of this machine. It opens built-in ports for a
 // moment to see whether they are real: call it when somebody asks, never on a
-// timer, never while a capture runs. Pseudo-terminals are not in it.
+// timer. Pseudo-terminals are not in it.
 func List() ([]Info, error) {
 	all, err := list()
 	if err != nil {
@@ -27,17 +26,9 @@ func List() ([]Info, error) {
 	return all, nil
 }
 
-// Find gives the path at which a USB board now is, after it was unplugged and
-// came back under another name. Boards without a serial number of their own
-// cannot be told apart: with two alike it is ErrBadName, with none ErrNotFound.
-func Find(board Info) (string, error) {
-	all, err := List()
-	if err != nil {
-		return "", err
-	}
-	return find(all, board)
-}
-
+// find gives the path at which a USB board is among all. Boards without a serial
+// number of their own cannot be told apart: with two alike it is ErrBadName, with
+// none ErrNotFound.
 func find(all []Info, board Info) (string, error) {
 	if board.Vendor == "" {
 		return "", fmt.Errorf("%w: %s is no USB board, it has only its path", ErrBadName, board.Path)
@@ -54,5 +45,5 @@ func find(all []Info, board Info) (string, error) {
 	case 1:
 		return at[0], nil
 	}
-	return "", errors.Join(fmt.Errorf("%w: USB board %s:%s is at %s alike; name one", ErrBadName, board.Vendor, board.Model, strings.Join(at, " and ")))
+	return "", fmt.Errorf("%w: USB board %s:%s is at %s alike; name one", ErrBadName, board.Vendor, board.Model, strings.Join(at, " and "))
 }

@@ -1,10 +1,11 @@
 // Package port opens the line to a measuring board: a serial port, a TCP
 // address, or a text file of wire lines to replay. All of them keep one
-// contract, which Open states and package porttest checks. Start with Open; List
-// shows what is plugged in; NewPair is a board's end without a board.
+// contract, which Open states and package porttest checks. Start with Open, or
+// with Dialer to open the same board again after a loss; List shows what is
+// plugged in; NewPair is a board's end without a board.
 //
 // Deliberately absent: lines, records and anything that knows what the bytes
-// mean; opening again after a loss, which is the caller's to decide.
+// mean; when to open again after a loss, which is the caller's to decide.
 package port
 
 import (
@@ -78,3 +79,12 @@ func (o Options) withDefaults() Options {
 	}
 	return o
 }
+
+// absentError is an ErrNotFound in words of its own.
+type absentError struct {
+	text  string
+	cause error
+}
+
+func (e *absentError) Error() string   { return e.text }
+func (e *absentError) Unwrap() []error { return []error{ErrNotFound, e.cause} }

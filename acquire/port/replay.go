@@ -7,18 +7,16 @@ import (
 	"io/fs"
 	"os"
 	"sync"
-	"sync/atomic"
 )
 
-// Replay is a text file of wire lines in a board's place, read as fast as it
+// replay is a text file of wire lines in a board's place, read as fast as it
 // will go. It ends in io.EOF, which is neither a loss nor an own Close: there is
 // no more to come. Commands written to it go nowhere.
-type Replay struct {
-	name      string
-	mu        sync.Mutex // Close waits for a Read under way
-	file      *os.File
-	closed    bool
-	swallowed atomic.Int64
+type replay struct {
+	name   string
+	mu     sync.Mutex // Close waits for a Read under way
+	file   *os.File
+	closed bool
 }
 
 func openFile(path string) (io.ReadWriteCloser, error) {
@@ -29,7 +27,7 @@ func openFile(path string) (io.ReadWriteCloser, error) {
 	f, err := os.Open(path)
 	switch {
 	case errors.Is(err, fs.ErrNotExist):
-		return nil, fmt.Errorf("opening %s: %w (%w); check the path", name, ErrNotFound, err)
+		return nil, &absentError{fmt.Sprintf("opening %s: no such file; check the path", name), err}
 	case errors.Is(err, fs.ErrPermission):
 		return nil, fmt.Errorf("opening %s: %w (%w); check who may read the file", name, ErrDenied, err)
 	case err != nil:
@@ -38,11 +36,11 @@ func openFile(path string) (io.ReadWriteCloser, error) {
 	if info, err := f.Stat(); err != nil || !info.Mode().IsRegular() {
 		return nil, errors.Join(fmt.Errorf("opening %s: %w: not a file of text", name, ErrBadName), err, f.Close())
 	}
-	return &Replay{name: name, file: f}, nil
+	return &replay{name: name, file: f}, nil
 }
 
 // Read gives the next bytes of the file, then io.EOF.
-func (r *Replay) Read(p []byte) (int, error) {
+func (r *replay) Read(p []byte) (int, error) {
 	r.mu.Lock()
 	defer r.mu.Unlock()
 	if r.closed {
@@ -58,22 +56,18 @@ func (r *Replay) Read(p []byte) (int, error) {
 	return n, err
 }
 
-// Write counts the bytes and drops them.
-func (r *Replay) Write(p []byte) (int, error) {
+// Write drops the bytes.
+func (r *replay) Write(p []byte) (int, error) {
 	r.mu.Lock()
 	defer r.mu.Unlock()
 	if r.closed {
 		return 0, fmt.Errorf("%s: %w", r.name, ErrClosed)
 	}
-	r.swallowed.Add(int64(len(p)))
 	return len(p), nil
 }
 
-// Swallowed is the number of bytes written so far.
-func (r *Replay) Swallowed() int64 { return r.swallowed.Load() }
-
 // Close closes the file.
-func (r *Replay) Close() error {
+func (r *replay) Close() error {
 	r.mu.Lock()
 	defer r.mu.Unlock()
 	if r.closed {

@@ -41,7 +41,7 @@ func dialError(ctx context.Context, name string, err error) error {
 	}
 	hint := "is the board or its bridge running, and is the port number right?"
 	if os.IsTimeout(err) {
-		hint = "nothing answered: check the cable and the address"
+		hint = "check the cable and the address"
 	}
-	return fmt.Errorf("opening %s: %w (%w); %s", name, ErrNotFound, err, hint)
+	return &absentError{fmt.Sprintf("opening %s: nobody answers at %s (%v); %s", name, strings.TrimPrefix(name, "tcp://"), err, hint), err}
 }
