@@ -54,7 +54,6 @@ void indicator_poll(struct taut *t, struct taut_sensor *sensor)
 {
 	uint32_t burst = 0, tick = 0;
 	uint8_t taken;
-	int32_t count;
 
 	ATOMIC_BLOCK(ATOMIC_RESTORESTATE) {
 		taken = ready;
@@ -63,7 +62,8 @@ void indicator_poll(struct taut *t, struct taut_sensor *sensor)
 		tick = whole_tick;
 	}
 	if (taken) {
-		count = (int32_t)(burst & 0xfffff);
+		int32_t count = (int32_t)(burst & 0xfffff);
+
 		if (burst & 0x100000)
 			count = -count;
 		if (burst & 0x800000) /* inches: not what the channel declares */
