@@ -92,11 +92,18 @@ func (c *conn) send(line []byte) error {
 	}
 }
 
-// close closes the port and waits for the reader, which Close releases. It does
-// not wait for a Write that hangs: no system promises to release that.
-func (c *conn) close() error {
-	close(c.done)
+// close closes the port and waits for the reader, which Close releases; what the
+// reader has still read goes to rest. It does not wait for a Write that hangs: no
+// system promises to release that.
+func (c *conn) close(rest func(chunk)) error {
 	err := c.rwc.Close()
-	<-c.ended
-	return err
+	for {
+		select {
+		case got := <-c.chunks:
+			rest(got)
+		case <-c.ended:
+			close(c.done)
+			return err
+		}
+	}
 }

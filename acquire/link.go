@@ -102,10 +102,17 @@ func (l *link) dial(ctx context.Context) (io.ReadWriteCloser, error) {
 	defer cancel()
 	rwc, err := l.dev.Dial(timed)
 	if err != nil && timed.Err() != nil && ctx.Err() == nil {
-		return nil, fmt.Errorf("%w: its port did not open within %v", ErrNoAnswer, wait)
+		if l.outage.on {
+			return nil, errors.New("its port does not open")
+		}
+		return nil, fmt.Errorf("%w: its port did not open within %.1f s", ErrNoAnswer, l.realS(wait))
 	}
 	return rwc, err
 }
+
+// realS is a time of the capture's clock in seconds of the wall, which is what
+// people wait for.
+func (l *link) realS(d time.Duration) float64 { return d.Seconds() / l.s.cfg.Clock.Factor() }
 
 // pause waits before the port is opened again, or gives up.
 func (l *link) pause(ctx context.Context, last error) error {
@@ -116,7 +123,10 @@ func (l *link) pause(ctx context.Context, last error) error {
 		return err
 	}
 	left := l.outage.since + l.s.cfg.GiveUpAfter - l.now()
-	return l.s.cfg.Clock.Sleep(ctx, min(l.backOff(), left))
+	if err := l.s.cfg.Clock.Sleep(ctx, min(l.backOff(), left)); err != nil {
+		return err
+	}
+	return l.overdue(last)
 }
 
 // backOff is how long to leave the device alone, longer each time.
@@ -133,17 +143,18 @@ func (l *link) overdue(last error) error {
 	if !l.outage.on || after < l.s.cfg.GiveUpAfter {
 		return nil
 	}
-	why := fmt.Sprintf("not running for %.1f s", after.Seconds())
+	why := fmt.Sprintf("not running for %.1f s", l.realS(after))
 	if last != nil {
 		why += ": " + last.Error()
 	}
 	return fmt.Errorf("%w: %s; what was captured is kept", ErrGaveUp, why)
 }
 
-// drop closes the connection and records what was left of a line. An error of
-// Close changes nothing of what was heard.
+// drop closes the connection and records what was read and not yet taken, and
+// what was left of a line. An error of Close, or one that the reader ends with,
+// changes nothing of what was heard.
 func (l *link) drop() {
-	_ = l.conn.close()
+	_ = l.conn.close(func(c chunk) { _ = l.take(c) })
 	l.hearing.lines.Flush(l.line)
 	l.conn = nil
 }

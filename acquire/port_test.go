@@ -6,6 +6,7 @@ import (
 	"io"
 	"net"
 	"slices"
+	"strings"
 	"testing"
 	"testing/synctest"
 	"time"
@@ -18,10 +19,11 @@ func TestPortThatHangsWhileItOpensIsGivenUp(t *testing.T) {
 	for name, test := range map[string]struct {
 		from int // the opening that hangs; after a loss those before it fail
 		want error
+		text string
 	}{
-		"at first":             {1, ErrNoAnswer},
-		"after a loss":         {2, ErrGaveUp},
-		"a while after a loss": {8, ErrGaveUp},
+		"at first":             {1, ErrNoAnswer, "its port did not open within 20.0 s"},
+		"after a loss":         {2, ErrGaveUp, "not running for 20.0 s: its port does not open; what"},
+		"a while after a loss": {8, ErrGaveUp, "not running for 20.0 s: its port does not open; what"},
 	} {
 		t.Run(name, func(t *testing.T) {
 			synctest.Test(t, func(t *testing.T) {
@@ -40,8 +42,8 @@ func TestPortThatHangsWhileItOpensIsGivenUp(t *testing.T) {
 					return dial(ctx)
 				}
 				begun := time.Now()
-				if _, err := r.run(); !errors.Is(err, test.want) {
-					t.Errorf("error %v, want %v", err, test.want)
+				if _, err := r.run(); !errors.Is(err, test.want) || !strings.Contains(err.Error(), test.text) {
+					t.Errorf("error %v, want %v with %q", err, test.want, test.text)
 				}
 				if took := time.Since(begun); took > 23500*time.Millisecond {
 					t.Errorf("given up after %v", took)
@@ -108,4 +110,18 @@ func TestOddPortsAreLostPorts(t *testing.T) {
 			})
 		})
 	}
+}
+
+// What the reader has when the connection is dropped is no less heard.
+func TestWhatWasReadBeforeTheDropIsKept(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		host, far := net.Pipe()
+		c := connect(host, NewClock(1))
+		go far.Write([]byte("last words\n"))
+		synctest.Wait() // the reader has them, and nobody takes them
+		var got string
+		if err := c.close(func(k chunk) { got += string(k.data) }); err != nil || got != "last words\n" {
+			t.Errorf("kept %q, %v", got, err)
+		}
+	})
 }

@@ -208,7 +208,8 @@ func (s *session) tell(events []recording.Event) {
 }
 
 // write returns what OnEntry wants written next; once the recording has failed
-// it does nothing.
+// it does nothing. An entry that is refused ends the capture as well: nothing
+// may be missing from a recording unseen.
 func (s *session) write(e recording.Entry) []recording.Event {
 	if s.broken != nil {
 		return nil

@@ -15,6 +15,7 @@ import (
 const (
 	tries         = 3 // of every command that must be answered
 	farewellTries = 2
+	whyBusy       = "busy" // wire rule 5.7
 	forever       = time.Duration(math.MaxInt64)
 )
 
@@ -170,7 +171,7 @@ func (l *link) silent(ctx context.Context) error {
 	case errors.Is(err, errLate) && l.hearing.goodAt > since:
 		return nil // it speaks again, whether it heard us or not
 	case errors.Is(err, errLate):
-		return &lostError{fmt.Errorf("no line since %.1f s, and no answer", (l.now() - since).Seconds())}
+		return &lostError{fmt.Errorf("no line since %.1f s, and no answer", l.realS(l.now()-since))}
 	case err == nil && !l.device.running:
 		return errRestarted
 	}
@@ -191,7 +192,8 @@ func (l *link) farewell(ctx context.Context) {
 }
 
 // ask sends a command, again after AnswerWait, and waits for its answer; the
-// error after the last try is errLate, also when the answer was a refusal.
+// error after the last try is errLate. A refusal ends it at once with errLate
+// too, but for a device that is only busy: that is asked again.
 func (l *link) ask(ctx context.Context, verb protocol.Verb, tries int) error {
 	a := &l.asking
 	*a = asking{verb: verb, first: a.token + 1, token: a.token}
@@ -203,6 +205,10 @@ func (l *link) ask(ctx context.Context, verb protocol.Verb, tries int) error {
 		}
 		a.until = l.now() + l.s.cfg.AnswerWait
 		err = l.await(ctx, a.until, a.complete)
+		if err == nil && a.refused() {
+			err = errLate
+			break
+		}
 	}
 	if ctx.Err() == nil {
 		a.verb = ""
@@ -222,8 +228,14 @@ func (l *link) send(c protocol.Command) error {
 	return nil
 }
 
-// complete reports whether the command is answered whole.
+// refused reports whether the device will not do it, now or later.
+func (a *asking) refused() bool { return a.refusal != "" && a.refusal != whyBusy }
+
+// complete reports whether the command is answered whole, or refused.
 func (a *asking) complete() bool {
+	if a.refused() {
+		return true
+	}
 	if a.verb != protocol.Who {
 		return a.done
 	}

@@ -315,4 +315,44 @@ func TestCaptureRefusesADevice(t *testing.T) {
 	}
 }
 
+// Nobody waits for an answer that has come. A board that is busy is asked again
+// (see "refuses the first start").
+func TestRefusalEndsTheAskingAtOnce(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		b := oneBoard()
+		var refused time.Time
+		b.heard = func(l *life, c protocol.Command, n int) bool {
+			if c.Verb == protocol.Run {
+				refused = time.Now()
+				l.send(protocol.Wont{Token: c.Token, Verb: "run", Why: "fault"})
+			}
+			return c.Verb == protocol.Run
+		}
+		_, err := newRig(t, b).run()
+		if took := time.Since(refused); !errors.Is(err, ErrRefused) || b.count(protocol.Run) != 1 || took > 500*time.Millisecond {
+			t.Errorf("error %v after %v, asked %d times", err, took, b.count(protocol.Run))
+		}
+	})
+}
+
+// On a clock that runs 15 times as fast, people still wait in their own seconds.
+func TestMessagesTellSecondsOfTheWall(t *testing.T) {
+	synctest.Test(t, func(t *testing.T) {
+		b := oneBoard()
+		b.bootTime = -1
+		b.atTime = map[time.Duration]func(*life){3 * time.Second: unplug}
+		b.dialled = func(n int) error {
+			if n > 1 {
+				return errNoSuchPort
+			}
+			return nil
+		}
+		r := newRig(t, b)
+		r.cfg.Clock, r.cfg.GiveUpAfter = NewClock(15), 300*time.Second
+		if _, err := r.run(); err == nil || !strings.Contains(err.Error(), "not running for 20.0 s: no such port") {
+			t.Errorf("error %v", err)
+		}
+	})
+}
+
 var errNoSuchPort = errors.New("no such port")

@@ -16,8 +16,8 @@ type File interface {
 	Close() error
 }
 
-// SyncInterval is the real time after which a block is sealed and synced
-// (SPEC 6.3): what a power cut can cost.
+// SyncInterval is the real time after which a block is sealed and synced (SPEC
+// 6.3): what a power cut can cost, beside the time that the sealing takes.
 const SyncInterval = 500 * time.Millisecond
 
 const (
@@ -72,7 +72,8 @@ func NewWriter(f File, h Header, every time.Duration) (*Writer, error) {
 func (w *Writer) Header() Header { return w.header }
 
 // Write adds one entry. It reaches the disk with the next seal. An entry that
-// cannot be written down is refused and does no harm.
+// cannot be written down is refused; the file stays good, without it, and the
+// caller decides what that means.
 func (w *Writer) Write(e Entry) error {
 	if err := w.usable(); err != nil {
 		return err
