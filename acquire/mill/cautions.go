@@ -8,16 +8,31 @@ import (
 // Cautions are doubts about a profile that Parse accepted: figures that are
 // possible but more often a slip, and figures that are missing. Each is one
 // sentence that names its place. The limits are judgement.
-func (p *Profile) Cautions() []string {
+func (p *Profile) Cautions() []string { return append(p.doubts(), p.gaps()...) }
+
+// doubts are the figures that are more often a slip.
+func (p *Profile) doubts() []string {
 	var c cautions
 	for _, t := range p.Tensioners {
 		c.tensioner(t)
-		c.instrument(p, "tensioner "+t.Name, MeasuresSetting, t.SettingDim())
 	}
 	for _, b := range p.Bands {
 		c.band(b)
 	}
 	c.rig(p.Rig)
+	return c
+}
+
+// gaps are the figures that are missing.
+func (p *Profile) gaps() []string {
+	var c cautions
+	for _, t := range p.Tensioners {
+		place := "tensioner " + t.Name
+		if t.SetBy == SetByPressure && t.GeometryAreaM2() == 0 {
+			c.about(place, "without cylinders and bore the measured slope cannot be checked against geometry")
+		}
+		c.instrument(p, place, MeasuresSetting, t.SettingDim())
+	}
 	c.instrument(p, "rig", MeasuresExtension, DimLength)
 	return c
 }
@@ -38,21 +53,31 @@ func (c *cautions) outside(place, what string, q Quantity, low, high float64, us
 
 func (c *cautions) tensioner(t Tensioner) {
 	place := "tensioner " + t.Name
-	c.outside(place, "bore", t.Bore.Quantity, 0.5*inchM, 12*inchM, "0.5 to 12 in (13 to 305 mm)")
-	if t.SetBy == SetByPressure && t.GeometryAreaM2() == 0 {
-		c.about(place, "without cylinders and bore the measured slope cannot be checked against geometry")
+	c.outside(place, "bore", t.Bore.Quantity, 0.5*inchM, 20*inchM, "0.5 to 20 in (13 to 508 mm)")
+	switch t.SetBy {
+	case SetByPressure: // from an air bag to a press; what a mill's hoses and gauges are made for lies between
+		c.outside(place, "setting limit", t.SettingLimit.Quantity, 20*psiPa, 10000*psiPa, "20 to 10,000 psi (1.4 to 690 bar)")
+	case SetBySpring:
+		c.about(place, "a spring gets shorter as its load rises, and the limit would be on the wrong side: a capture by spring length is not handled")
 	}
 	if t.TravelRatio != 0 && (t.TravelRatio < 0.2 || t.TravelRatio > 5) {
 		c.about(place, "travel ratio %g is unusual: it is cylinder travel / wheel travel", t.TravelRatio)
 	}
 }
 
+// leastSlim is how many times its thickness a band is wide at least: the example's
+// narrowest is 33 times.
+const leastSlim = 10
+
 func (c *cautions) band(b Band) {
 	place := "band " + b.Name
 	c.outside(place, "thickness", b.Thickness.Quantity, 0.01*inchM, 0.2*inchM, "0.01 to 0.2 in (0.25 to 5 mm)")
-	c.outside(place, "net width", b.NetWidth.Quantity, 0.2*inchM, 20*inchM, "0.2 to 20 in (5 to 508 mm)")
+	c.outside(place, "net width", b.NetWidth.Quantity, 0.2*inchM, 24*inchM, "0.2 to 24 in (5 to 610 mm)")
 	c.outside(place, "target", b.Target.Quantity, 1000*psiPa, 40000*psiPa, "1,000 to 40,000 psi (7 to 276 MPa)")
-	c.outside(place, "modulus", b.Modulus.Quantity, 26e6*psiPa, 32e6*psiPa, "26 to 32 Mpsi (179 to 221 GPa) of steel")
+	c.outside(place, "modulus", b.Modulus.Quantity, 180e9, 220e9, "180 to 220 GPa (26 to 32 Mpsi) of steel")
+	if b.NetWidth.Given() && b.NetWidth.SI < leastSlim*b.Thickness.SI {
+		c.about(place, "net width %s is less than %d times the thickness %s: check both numbers and their units", b.NetWidth, leastSlim, b.Thickness)
+	}
 	if gross := b.GrossWidth; gross.Given() && b.NetWidth.SI < 0.7*gross.SI {
 		c.about(place, "net width %s is more than 30 %% below the gross width %s: measure from the back to the gullet bottom again",
 			b.NetWidth, gross)
@@ -71,7 +96,11 @@ func (c *cautions) rig(r Rig) {
 func (c *cautions) instrument(p *Profile, place, measures string, d Dim) {
 	i, ok := p.FindInstrument(measures, d, "")
 	if !ok {
-		c.about(place, "no instrument for the %s is written down: its error is left out of the uncertainty", measures)
+		what := "setting"
+		if measures == MeasuresExtension {
+			what = "stretch"
+		}
+		c.about(place, "no instrument for the %s is written down: its error is left out of the uncertainty", what)
 		return
 	}
 	place = "instrument " + i.Name

@@ -106,18 +106,25 @@ func TestExampleExplainsEveryKey(t *testing.T) {
 
 func TestCautionsNameTheDoubt(t *testing.T) {
 	for _, c := range []struct{ name, old, new, says string }{
-		{"mm typed as inches", `thickness = "0.058 in"`, `thickness = "1.47 in"`, "band QW-6: thickness 1.47 in is outside"},
+		{"a band of an odd gauge", `thickness = "0.058 in"`, `thickness = "0.35 in"`, "band QW-6: thickness 0.35 in is outside"},
+		{"width near the thickness", "net_width = \"1.73 in\"\ngross_width = \"2.00 in\"", "net_width = \"0.45 in\"", "net width 0.45 in is less than 10 times"},
+		{"a band wider than any", "net_width = \"1.73 in\"\ngross_width = \"2.00 in\"", "net_width = \"24.5 in\"", "net width 24.5 in is outside"},
+		{"bar typed as kPa", `setting_limit = "950 psi"`, `setting_limit = "65 kPa"`, "setting limit 65 kPa is outside"},
+		{"psi typed as bar", `setting_limit = "950 psi"`, `setting_limit = "950 bar"`, "setting limit 950 bar is outside"},
+		{"stress of another kind", `target = "9500 psi"`, `target = "45000 psi"`, "target 45000 psi is outside"},
+		{"bore in mm as inches", `bore = "2.5 in"`, `bore = "63 in"`, "bore 63 in is outside"},
+		{"set by spring length", "set_by = \"torque\"                # a screw, turned with a torque wrench\nsetting_limit = \"40 lbf ft\"", "set_by = \"spring\"\nsetting_limit = \"4 in\"", "tensioner T-2: a spring gets shorter"},
 		{"inches typed as mm", `thickness = "0.058 in"`, `thickness = "0.058 mm"`, "band QW-6: thickness 0.058 mm is outside"},
 		{"width in mm as inches", "net_width = \"1.73 in\"\ngross_width = \"2.00 in\"", "net_width = \"133 in\"", "net width 133 in is outside"},
 		{"teeth too deep", `net_width = "5.25 in"`, `net_width = "4.1 in"`, "more than 30 % below"},
-		{"soft modulus", `modulus = "29.0 Mpsi"        #`, `modulus = "10 Mpsi" #`, "modulus 10 Mpsi is outside"},
+		{"soft modulus", `modulus = "29.0 Mpsi"        #`, `modulus = "17 Mpsi" #`, "modulus 17 Mpsi is outside"},
 		{"no geometry", "cylinders = 2                # number of cylinders that lift the wheel together\nbore = \"2.5 in\"", "", "checked against geometry"},
 		{"odd ratio", "travel_ratio = 1 ", "travel_ratio = 12", "travel ratio 12"},
 		{"short rig", `gauge_length = "20.00 in"`, `gauge_length = "20 mm"`, "gauge length 20 mm"},
 		{"aluminium bar", `material = "steel"`, `material = "aluminium"`, "a bar of aluminium"},
 		{"no limit", `limit = "0.003 mm"`, ``, "instrument digital indicator: no limit"},
 		{"no due day", `due = "2026-12-01"`, ``, "instrument digital indicator: no day"},
-		{"no instrument", `measures = "extension"`, `measures = "setting"`, "no instrument for the extension"},
+		{"no instrument", `measures = "extension"`, `measures = "setting"`, "no instrument for the stretch"},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			text := string(Example())

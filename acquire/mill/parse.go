@@ -1,7 +1,6 @@
 package mill
 
 import (
-	"errors"
 	"fmt"
 	"strconv"
 	"strings"
@@ -14,32 +13,26 @@ import (
 const largestFile = 256 << 10
 
 // Parse reads a mill.toml. The error joins one *ProfileError for each fault, in
-// line order.
+// line order, and after them one for each measure that can be read and is more
+// often a slip: otherwise one fault would hide it until the next try.
 func Parse(text []byte) (*Profile, error) {
 	if len(text) > largestFile {
 		return nil, &ProfileError{Problem: fmt.Sprintf("%d bytes is too long for a mill.toml", len(text)), Hint: "is it the right file?"}
 	}
 	root := map[string]any{}
 	if _, err := toml.Decode(string(text), &root); err != nil {
-		return nil, syntaxFault(err)
+		return nil, syntaxFault(string(text), err)
 	}
 	f := &faults{lines: keyLines(strings.TrimPrefix(string(text), "\ufeff"))}
 	p := readProfile(&table{faults: f, values: root})
 	checkNames(f, p)
-	if err := f.err(); err != nil {
-		return nil, err
+	if len(f.found) == 0 {
+		return p, nil
 	}
-	return p, nil
-}
-
-// syntaxFault puts an error of the decoder into our own terms.
-func syntaxFault(err error) error {
-	bad := &ProfileError{Problem: err.Error(), Hint: "this is not TOML: compare with the written example"}
-	var syntax toml.ParseError
-	if errors.As(err, &syntax) {
-		bad.Line, bad.Key, bad.Problem = syntax.Position.Line, syntax.LastKey, syntax.Message
+	for _, doubt := range p.doubts() {
+		f.found = append(f.found, &ProfileError{Problem: "look again too: " + doubt})
 	}
-	return bad
+	return nil, f.err()
 }
 
 func readProfile(t *table) *Profile {
@@ -118,8 +111,11 @@ func (t *table) checkHydraulic(s Tensioner) {
 		}
 		return
 	}
-	if t.has("cylinders") != t.has("bore") {
-		t.faults.add(t.path, "write both cylinders and bore, or neither", "cylinders and bore go together")
+	switch cylinders, bore := t.has("cylinders"), t.has("bore"); {
+	case bore && !cylinders:
+		t.faults.add(t.at("bore"), "write how many cylinders lift the wheel together, such as cylinders = 2", "of how many cylinders?")
+	case cylinders && !bore:
+		t.faults.add(t.at("cylinders"), `write the inside diameter of one of them, such as bore = "2.5 in"`, "of what bore?")
 	}
 }
 
@@ -149,12 +145,31 @@ func readBand(t *table) Band {
 		t.faults.add(t.at("net_width"), "net width runs from the back to the gullet bottom, gross width to the tooth tip",
 			"%s is not less than the gross width %s", b.NetWidth, b.GrossWidth)
 	}
-	if b.NetWidth.Given() && b.Thickness.SI >= b.NetWidth.SI {
+	switch {
+	case b.NetWidth.Given() && b.Thickness.SI >= b.NetWidth.SI:
 		t.faults.add(t.at("thickness"), "check that the units are not mixed up",
 			"%s is not less than the net width %s", b.Thickness, b.NetWidth)
+	case b.Thickness.SI > mostThickM:
+		t.faults.add(t.at("thickness"), "check that the units are not mixed up", "%s is no band: above 1 in (25.4 mm)", b.Thickness)
+	}
+	if m := b.Modulus; m.Given() && (m.SI < leastModulusPa || m.SI > mostModulusPa) {
+		t.faults.add(t.at("modulus"), "Young's modulus of steel is 200 to 207 GPa, 29 to 30 Mpsi", "%s is no steel's: outside 100 to 300 GPa (14.5 to 43.5 Mpsi)", m)
+	}
+	if b.Target.SI > mostTargetPa {
+		t.faults.add(t.at("target"), "write the band stress wanted, not a pressure of the gauge or a wheel pull", "%s would break any band: above 150,000 psi (1,034 MPa)", b.Target)
 	}
 	return b
 }
+
+// Beyond these a measure of a band is refused: what is there can only be a slip
+// of the pen. Judgement: the thickest bands are near 0.1 in, steels for springs
+// and saws lie within 5 % of 205 GPa, and none carries 150,000 psi for long.
+const (
+	mostThickM     = 1 * inchM
+	leastModulusPa = 100e9
+	mostModulusPa  = 300e9
+	mostTargetPa   = 150e3 * psiPa
+)
 
 func readRig(t *table) Rig {
 	defer t.rest()

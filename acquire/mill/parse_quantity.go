@@ -29,7 +29,7 @@ func ParseQuantity(text string, dims ...Dim) (Quantity, error) {
 	if entered == "" {
 		return refuse("nothing given", "write a number and its unit: "+unitNames(dims))
 	}
-	number, unitName := splitUnit(entered)
+	number, unitName := splitUnit(plainFractions(entered))
 	value, ok := parseNumber(number)
 	if !ok {
 		return refuse("not a number", numberHint(number))
@@ -53,6 +53,50 @@ func ParseQuantity(text string, dims ...Dim) (Quantity, error) {
 		return refuse("far too small to be real", "check the number and its unit")
 	}
 	return Quantity{SI: si, Entered: entered, Unit: unit}, nil
+}
+
+// plainFractions writes out the fractions that are one character each.
+func plainFractions(text string) string {
+	var b strings.Builder
+	last := ' '
+	for _, r := range text {
+		if plain := plainFraction(r); plain != "" {
+			if last >= '0' && last <= '9' {
+				b.WriteByte(' ')
+			}
+			b.WriteString(plain)
+		} else {
+			b.WriteRune(r)
+		}
+		last = r
+	}
+	return b.String()
+}
+
+// plainFraction is the fraction that a character stands for, "" for any other;
+// the fraction slash is a slash.
+func plainFraction(r rune) string {
+	switch r {
+	case '\u00bc':
+		return "1/4"
+	case '\u00bd':
+		return "1/2"
+	case '\u00be':
+		return "3/4"
+	case '\u2153':
+		return "1/3"
+	case '\u2154':
+		return "2/3"
+	case '\u215b':
+		return "1/8"
+	case '\u215c':
+		return "3/8"
+	case '\u215d':
+		return "5/8"
+	case '\u215e':
+		return "7/8"
+	}
+	return ""
 }
 
 // splitUnit cuts behind the last character that can belong to a number: a unit

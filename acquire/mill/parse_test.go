@@ -84,7 +84,14 @@ func TestParseRefusesWithLineAndKey(t *testing.T) {
 		{"endless ratio", `set_by`, "travel_ratio = inf\nset_by", 5, "tensioner.travel_ratio", "between 0.001 and 1000"},
 		{"ratio of nothing", `set_by`, "travel_ratio = 0\nset_by", 5, "tensioner.travel_ratio", "between 0.001 and 1000"},
 		{"ratio not a number", `set_by`, "travel_ratio = nan\nset_by", 5, "tensioner.travel_ratio", "between 0.001 and 1000"},
-		{"bore without cylinders", `set_by`, "bore = \"2.5 in\"\nset_by", 3, "tensioner", "both cylinders and bore"},
+		{"bore without cylinders", `set_by`, "bore = \"2.5 in\"\nset_by", 5, "tensioner.bore", "how many cylinders lift"},
+		{"cylinders without bore", `set_by`, "cylinders = 2\nset_by", 5, "tensioner.cylinders", "inside diameter of one"},
+		{"thicker than any band", `"0.058 in"`, `"1.47 in"`, 9, "band.thickness", "above 1 in (25.4 mm)"},
+		{"modulus of nothing like steel", `"29 Mpsi"`, `"29 ksi"`, 11, "band.modulus", "outside 100 to 300 GPa"},
+		{"modulus too stiff", `"29 Mpsi"`, `"2050 GPa"`, 11, "band.modulus", "outside 100 to 300 GPa"},
+		{"target of a wrong unit", `modulus =`, "target = \"9500 MPa\"\nmodulus =", 11, "band.target", "above 150,000 psi (1,034 MPa)"},
+		{"measure without quote marks", `"950 psi"`, `62 bar # limit`, 6, "tensioner.setting_limit", `put quote marks around it: setting_limit = "62 bar"`},
+		{"measure stuck together without quote marks", `"20 in"`, `508mm`, 13, "rig.gauge_length", `gauge_length = "508mm"`},
 		{"unknown hold", `set_by`, "hold = \"shut\"\nset_by", 5, "tensioner.hold", "maintained, locked"},
 		{"misspelt in the rehearsal", `[[band]]`, "[tensioner.rehearsal]\nfriction = \"1 lbf\"\n[[band]]", 8, "tensioner.rehearsal.friction", "friction_constant"},
 		{"mill twice over", `[mill]`, `[[mill]]`, 1, "mill", "write it once"},
@@ -133,6 +140,20 @@ func TestParseReportsAllFaultsInLineOrder(t *testing.T) {
 	want := "1 mill.name|2 mill.nick|6 tensioner.setting_limit|9 band.thickness|13 rig.gauge_length"
 	if strings.Join(got, "|") != want {
 		t.Errorf("got  %s\nwant %s", strings.Join(got, "|"), want)
+	}
+}
+
+// One missing line shall not hide what is wrong with the figures.
+func TestDoubtsAreToldBesideFaults(t *testing.T) {
+	text := strings.NewReplacer("setting_limit = \"950 psi\"\n", "", `"0.058 in"`, `"0.58 in"`).Replace(good)
+	_, err := Parse([]byte(text))
+	for _, want := range []string{"tensioner.setting_limit: missing", "look again too: band QW-6: thickness 0.58 in is outside"} {
+		if err == nil || !strings.Contains(err.Error(), want) {
+			t.Errorf("got %v; want %q in it", err, want)
+		}
+	}
+	if err != nil && strings.Contains(err.Error(), "instrument") {
+		t.Errorf("what is missing is no doubt about a figure: %v", err)
 	}
 }
 

@@ -41,7 +41,7 @@ const (
 	HoldLocked     Hold = "locked"     // a valve locks the oil in
 )
 
-// Tensioner is one strain system of one mill.
+// Tensioner is what pulls one band mill's wheels apart.
 type Tensioner struct {
 	Name         string
 	SetBy        SetBy
