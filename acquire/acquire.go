@@ -92,7 +92,7 @@ func (c *Config) check() (setting protocol.Quantity, err error) {
 		return "", errors.New("start a capture: it needs a clock and a recording")
 	}
 	if n := len(c.Out.Header().Devices); len(c.Devices) == 0 || len(c.Devices) != n {
-		return "", fmt.Errorf("start a capture: %d devices, but the recording names %d", len(c.Devices), n)
+		return "", fmt.Errorf("start a capture: %d boards, but the recording names %d", len(c.Devices), n)
 	}
 	if setting, err = c.Out.Header().SettingQuantity(); err != nil {
 		return "", fmt.Errorf("start a capture: %w", err)

@@ -7,10 +7,10 @@ import (
 
 // Errors that end a capture, wrapped in a *DeviceError that names the device.
 var (
-	ErrNoAnswer = errors.New("the device does not say who it is")
-	ErrGaveUp   = errors.New("the device went away and did not come back")
-	ErrNotOurs  = errors.New("the device does not fit this capture")
-	ErrRefused  = errors.New("the device refuses a command")
+	ErrNoAnswer = errors.New("the board does not say who it is")
+	ErrGaveUp   = errors.New("the board went away and did not come back")
+	ErrNotOurs  = errors.New("the board does not fit this capture")
+	ErrRefused  = errors.New("the board refuses a command")
 )
 
 // DeviceError is a failure of one device.
@@ -21,7 +21,7 @@ type DeviceError struct {
 }
 
 func (e *DeviceError) Error() string {
-	return fmt.Sprintf("device %d on %s: %v", e.Device+1, e.Name, e.Err)
+	return fmt.Sprintf("board %d on %s: %v", e.Device+1, e.Name, e.Err)
 }
 
 func (e *DeviceError) Unwrap() error { return e.Err }

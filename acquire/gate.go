@@ -42,7 +42,11 @@ func (g *gate) arrive(device int, channels []protocol.Chan) error {
 	all := slices.Concat(g.present...)
 	for _, want := range []protocol.Quantity{g.setting, protocol.Extension} {
 		if !slices.ContainsFunc(all, func(c protocol.Chan) bool { return c.Quantity == want }) {
-			return fmt.Errorf("%w: no channel measures %s; the devices declare %s", ErrNotOurs, want, namesOf(all))
+			what := string(want)
+			if want == protocol.Extension {
+				what = "the stretch (extension)"
+			}
+			return fmt.Errorf("%w: no channel measures %s; the boards declare %s", ErrNotOurs, what, namesOf(all))
 		}
 	}
 	g.opened = true

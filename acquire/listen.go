@@ -48,7 +48,7 @@ type asking struct {
 
 var (
 	errLate      = errors.New("no answer in time")
-	errRestarted = errors.New("the device started again")
+	errRestarted = errors.New("the board started again")
 )
 
 // await takes what comes in until done says so. It ends with errLate at the

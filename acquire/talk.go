@@ -106,10 +106,10 @@ func (h *hearing) hint() string {
 		return "nothing was heard; check its power, its cable and the port's name"
 	case h.good == 0:
 		return fmt.Sprintf("%d bytes were heard, but no line of ours; check the speed (baud), "+
-			"and whether another device is on this port", h.bytes)
+			"and whether another board is on this port", h.bytes)
 	}
 	return fmt.Sprintf("%d good lines were heard, but no answer; check the wire that carries "+
-		"commands to the device", h.good)
+		"commands to the board", h.good)
 }
 
 // accept takes the identity, which must not change during a capture.

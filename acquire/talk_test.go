@@ -261,11 +261,11 @@ func TestCaptureRefusesADevice(t *testing.T) {
 		},
 		"that lacks the extension": {
 			change: func(b *board) { b.channels = b.channels[:1] },
-			want:   ErrNotOurs, text: "no channel measures extension; the devices declare pressure",
+			want:   ErrNotOurs, text: "no channel measures the stretch (extension); the boards declare pressure",
 		},
 		"that has no channels": {
 			change: func(b *board) { b.channels = nil },
-			want:   ErrNotOurs, text: "the devices declare none",
+			want:   ErrNotOurs, text: "the boards declare none",
 		},
 		"that never declares all its channels": {
 			change: func(b *board) {

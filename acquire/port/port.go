@@ -62,7 +62,7 @@ func Open(ctx context.Context, name string, o Options) (io.ReadWriteCloser, erro
 	case hasScheme && scheme == "file":
 		return openFile(rest)
 	case strings.Contains(name, "://"):
-		return nil, fmt.Errorf("%w: %q; write a device such as %s, or tcp://host:port", ErrBadName, name, exampleName)
+		return nil, fmt.Errorf("%w: %q; write a port such as %s, or tcp://host:port", ErrBadName, name, exampleName)
 	}
 	return openSerial(ctx, name, o)
 }
