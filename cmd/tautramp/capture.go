@@ -77,6 +77,9 @@ func (o *captureOptions) run(ctx context.Context, e env) error {
 	if err := printCautions(e); err != nil {
 		return err
 	}
+	if _, err := fmt.Fprintln(e.stderr, keyHelp); err != nil {
+		return err
+	}
 	visitErr := record(ctx, recordJob{header: header, path: o.out, devices: o.devices(), system: system, patience: o.patience}, e)
 	return finish(o.out, visitErr, o.resultFlags, system, target, e)
 }
@@ -148,15 +151,9 @@ func fileWord(name string) string {
 func (o *captureOptions) devices() []acquire.Device {
 	var devices []acquire.Device
 	for _, name := range o.ports {
-		devices = append(devices, acquire.Device{Name: name, Dial: dialPort(name, o.baud)})
+		devices = append(devices, acquire.Device{Name: name, Dial: port.Dialer(name, port.Options{Baud: o.baud})})
 	}
 	return devices
-}
-
-func dialPort(name string, baud int) acquire.Dial {
-	return func(ctx context.Context) (io.ReadWriteCloser, error) {
-		return port.Open(ctx, name, port.Options{Baud: baud})
-	}
 }
 
 func printCautions(e env) error {
@@ -210,7 +207,7 @@ func record(ctx context.Context, job recordJob, e env) error {
 	if err != nil {
 		return &fileError{err}
 	}
-	keys, stopKeys := operatorKeys(e.stdin)
+	keys, stopKeys := operatorKeys(e)
 	defer stopKeys()
 	screen := newScreen(e, job.header, job.system)
 	summary, err := visit.Run(ctx, visit.Config{
@@ -250,15 +247,17 @@ func keepOrRemove(path string, summary visit.Summary, err error) error {
 // operatorKeys turns lines typed on the terminal into host events. The reader
 // of a terminal cannot be interrupted, so its goroutine is left to end with
 // the program; nothing it reads after stop is used.
-func operatorKeys(r io.Reader) (<-chan recording.Event, func()) {
-	if r == nil {
+func operatorKeys(e env) (<-chan recording.Event, func()) {
+	if e.stdin == nil {
 		return nil, func() {}
 	}
 	events, done := make(chan recording.Event), make(chan struct{})
 	go func() {
-		for lines := bufio.NewScanner(r); lines.Scan(); {
-			event, ok := keyEvent(strings.TrimSpace(lines.Text()))
+		for lines := bufio.NewScanner(e.stdin); lines.Scan(); {
+			key := strings.TrimSpace(lines.Text())
+			event, ok := keyEvent(key)
 			if !ok {
+				fmt.Fprintf(e.stderr, "key: %q is none of z, m, u\n", key) // lost at worst: nobody reads it
 				continue
 			}
 			select {
@@ -270,6 +269,9 @@ func operatorKeys(r io.Reader) (<-chan recording.Event, func()) {
 	}()
 	return events, func() { close(done) }
 }
+
+// keyHelp stands above every capture.
+const keyHelp = "KEYS  z Enter: the band is slack now   m Enter: mark   u Enter: undo   Ctrl-C: end"
 
 func keyEvent(key string) (recording.Event, bool) {
 	switch {

@@ -96,7 +96,7 @@ func recordDemo(ctx context.Context, o rigOptions, r resultFlags, out string, e 
 			Plan: recording.Plan{Exercise: o.exercise, Ramps: o.ramps}, Profile: s.text, Parsed: s.profile,
 		},
 		path: path, system: system, clock: clock,
-		devices: []acquire.Device{{Name: end.name, Dial: dialPort(end.name, 0)}},
+		devices: []acquire.Device{{Name: end.name, Dial: port.Dialer(end.name, port.Options{})}},
 	}, e)
 	return finish(path, visitErr, r, system, target, e)
 }

@@ -23,6 +23,8 @@ type screen struct {
 	role    mill.Role
 	factor  float64
 	next    string
+	reply   visit.Reply
+	limitSI float64
 	phase   string
 	alarm   visit.AlarmKind
 	drawnAt time.Duration
@@ -32,7 +34,7 @@ type screen struct {
 func newScreen(e env, h recording.Header, system mill.System) *screen {
 	s := &screen{e: e, system: system, role: mill.RolePressure, factor: h.ClockFactor, drawnAt: -time.Hour}
 	if t, err := h.Parsed.FindTensioner(h.Tensioner); err == nil {
-		s.role = t.SettingRole()
+		s.role, s.limitSI = t.SettingRole(), t.SettingLimit.SI
 	}
 	return s
 }
@@ -47,9 +49,13 @@ func (s *screen) draw(now visit.Status) {
 			s.line("alarm over")
 		}
 	}
-	if now.Next != "" && now.Next != s.next {
-		s.next = now.Next
-		s.line(">> " + now.Next)
+	if next := s.advice(now); next != s.next {
+		s.next = next
+		s.line(">> " + next)
+	}
+	if now.Reply.Kind != s.reply.Kind || now.Reply.At != s.reply.At {
+		s.reply = now.Reply
+		s.line(s.answer(now.Reply))
 	}
 	phase := fmt.Sprintf("%s %d", now.Phase, now.Cycle)
 	realGap := time.Duration(float64(now.At-s.drawnAt) / s.factor)
@@ -80,6 +86,24 @@ func (s *screen) paint(now visit.Status) string {
 
 func (s *screen) cut(text string) string {
 	return text[:min(len(text), s.e.columns-1)]
+}
+
+// advice is what to do next, with the setting to stop at where it sends the
+// operator up.
+func (s *screen) advice(now visit.Status) string {
+	if math.IsNaN(now.GoalSI) {
+		return now.Next
+	}
+	return fmt.Sprintf("%s (to about %s; limit %s)", now.Next, s.show(now.GoalSI, s.role, -1, "gauge"), s.show(s.limitSI, s.role, 0, "gauge"))
+}
+
+// answer says what became of a key.
+func (s *screen) answer(r visit.Reply) string {
+	text := string(r.Kind)
+	if r.Kind == visit.MarkTaken {
+		text = fmt.Sprintf("mark %d taken", r.Number)
+	}
+	return "key: " + text + ", at " + s.show(r.SettingSI, s.role, 0, "gauge")
 }
 
 func (s *screen) loud(text string) string {

@@ -26,7 +26,7 @@ func testScreen(t *testing.T, columns int) (*screen, *bytes.Buffer) {
 // status is 724 psi, 0.00655 in and 9,500 psi of band stress, the invented
 // mill's working point.
 func status(at time.Duration) visit.Status {
-	return visit.Status{At: at, SettingSI: 724 * psi, StretchM: 0.00655 * 0.0254, StressPa: 9500 * psi, RateSI: 8 * psi, Phase: "loading", Cycle: 2, Planned: 4, Next: "pump up slowly"}
+	return visit.Status{At: at, SettingSI: 724 * psi, StretchM: 0.00655 * 0.0254, StressPa: 9500 * psi, RateSI: 8 * psi, Phase: "loading", Cycle: 2, Planned: 4, Next: "pump up slowly", GoalSI: 780 * psi}
 }
 
 func TestScreenShowsTheFiguresInTheUnitsOfTheUser(t *testing.T) {
@@ -69,10 +69,10 @@ func TestPlainLinesComeNowAndThenButEveryWordOfAdviceComesAtOnce(t *testing.T) {
 		s.draw(status(time.Duration(at) * 100 * time.Millisecond))
 	}
 	now := status(3 * time.Second)
-	now.Next = "hold"
+	now.Next, now.GoalSI = "hold", math.NaN()
 	s.draw(now)
 	lines := strings.Split(strings.TrimSpace(out.String()), "\n")
-	if len(lines) != 4 || lines[0] != ">> pump up slowly" || lines[3] != ">> hold" {
+	if len(lines) != 4 || lines[0] != ">> pump up slowly (to about 780 gauge psi; limit 950 gauge psi)" || lines[3] != ">> hold" {
 		t.Errorf("%d lines:\n%s", len(lines), out.String())
 	}
 }
@@ -88,6 +88,22 @@ func TestTheRedrawnLineFitsTheTerminal(t *testing.T) {
 		got := strings.TrimSuffix(strings.TrimPrefix(s.paint(now), "\a\x1b[7m"), "\x1b[0m")
 		if len(got) >= columns || columns > 30 && !strings.Contains(got, "724 gauge psi") {
 			t.Errorf("%d columns: %q", columns, got)
+		}
+	}
+}
+
+func TestEveryKeyIsAnswered(t *testing.T) {
+	for reply, want := range map[visit.Reply]string{
+		{Kind: visit.ZeroTaken, SettingSI: 34 * psi}:             "key: zero taken, at 34 gauge psi",
+		{Kind: visit.ZeroRefused, SettingSI: 724 * psi}:          "key: not taken: the band is not slack, at 724 gauge psi",
+		{Kind: visit.MarkTaken, SettingSI: 500 * psi, Number: 2}: "key: mark 2 taken, at 500 gauge psi",
+	} {
+		s, out := testScreen(t, 0)
+		now := status(0)
+		now.Reply = reply
+		s.draw(now)
+		if !strings.Contains(out.String(), want+"\n") {
+			t.Errorf("want %q in %q", want, out.String())
 		}
 	}
 }

@@ -82,7 +82,7 @@ func loadBoards(t *testing.T, perBoard int, clock acquire.Clock) (devices []acqu
 			}
 		})
 		names = append(names, pair.Path)
-		devices = append(devices, acquire.Device{Name: pair.Path, Dial: dialPort(pair.Path, 0)})
+		devices = append(devices, acquire.Device{Name: pair.Path, Dial: port.Dialer(pair.Path, port.Options{})})
 	}
 	t.Cleanup(func() { cancel(); served.Wait() })
 	return devices, names
