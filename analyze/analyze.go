@@ -7,6 +7,8 @@
 package analyze
 
 import (
+	"time"
+
 	"tautramp/acquire/mill"
 	"tautramp/acquire/pairing"
 	"tautramp/analyze/estimate"
@@ -20,6 +22,7 @@ type Input struct {
 	Band      string
 	Target    mill.Pressure // overrides the band's target when given
 	Set       *pairing.Set
+	Day       time.Time // of the measurement; zero where it is not known: no check is then called overdue
 }
 
 // Result is the whole analysis.
@@ -31,6 +34,7 @@ type Result struct {
 	Falling    Branch
 	Friction   Friction
 	Widths     []WidthAt
+	Working    WidthAt           // at the working setting: the target's where it is in range, else the highest on both branches
 	WidthRatio estimate.Estimate // half-width at the working setting / that setting
 	Grade      Grade
 	AtRising   TargetSetting
@@ -38,6 +42,9 @@ type Result struct {
 	ResetSI    estimate.Estimate // after an overshoot: the setting to drop to before approaching again
 	Running    RunningBand
 	Warnings   []Warning
+	Marks      ZeroMarks
+	Simulated  bool   // a device said that what it measures is made up: nothing may be set by these figures
+	Ended      string // how the visit ended, in words; "" where the recording does not say
 
 	work *work
 }

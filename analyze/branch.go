@@ -56,9 +56,15 @@ func (r *Result) StressAt(d Direction, settingSI float64) (estimate.Estimate, er
 	}
 	b := r.branch(d)
 	if !(settingSI >= b.LowSI && settingSI <= b.HighSI) {
-		return estimate.Estimate{}, &OutOfRangeError{settingSI, b.LowSI, b.HighSI, "setting, " + string(d)}
+		t := r.Setup.Tensioner
+		return estimate.Estimate{}, &OutOfRangeError{settingSI, b.LowSI, b.HighSI, "setting, " + string(d), d, t.SettingRole(), t.SetBy}
 	}
-	return r.work.combine(stressFigure(d, settingSI), onePoint, "not a finite number"), nil
+	return r.work.stressAt(d, settingSI), nil
+}
+
+// stressAt is the stress at a setting, by the ramps that reach it.
+func (w *work) stressAt(d Direction, settingSI float64) estimate.Estimate {
+	return w.reaching(d, at(settingSI)).combine(stressFigure(d, settingSI), onePoint, noZero)
 }
 
 func (r *Result) usable() error {

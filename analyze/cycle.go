@@ -90,8 +90,7 @@ func (w *work) findCycles() error {
 }
 
 // assignRoles makes the first closed cycles exercise, as planned, and returns
-// how many are closed. Without a plan the first of several is taken for
-// exercise.
+// how many are closed.
 func (w *work) assignRoles() (closed int) {
 	for _, c := range w.res.Cycles {
 		if c.Role == Ramp {
@@ -99,10 +98,6 @@ func (w *work) assignRoles() (closed int) {
 		}
 	}
 	exercise := w.set.Plan.Exercise
-	if w.set.Plan.Exercise == 0 && w.set.Plan.Ramps == 0 && closed > 1 {
-		exercise = 1
-		w.warn("assumed-exercise", "No plan was recorded: the first cycle is taken for exercise and not fitted.")
-	}
 	for i := range w.res.Cycles {
 		c := &w.res.Cycles[i]
 		switch {

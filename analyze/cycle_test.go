@@ -32,8 +32,9 @@ func TestRolesOfCycles(t *testing.T) {
 	}{
 		{"as planned", pairing.Plan{Exercise: 1, Ramps: 2}, 3, 0, []Role{Exercise, Ramp, Ramp}, "two-cycles"},
 		{"no exercise planned", pairing.Plan{Ramps: 2}, 2, 0, []Role{Ramp, Ramp}, "two-cycles"},
-		{"no plan: the first is taken for exercise", pairing.Plan{}, 3, 0, []Role{Exercise, Ramp, Ramp}, "assumed-exercise"},
-		{"no plan and one cycle", pairing.Plan{}, 1, 0, []Role{Ramp}, "one-cycle"},
+		{"no exercise, as many ramps as there are", pairing.Plan{}, 2, 0, []Role{Ramp, Ramp}, "two-cycles"},
+		{"exercise, as many ramps as there are", pairing.Plan{Exercise: 1}, 3, 0, []Role{Exercise, Ramp, Ramp}, "two-cycles"},
+		{"no exercise and one cycle", pairing.Plan{}, 1, 0, []Role{Ramp}, "one-cycle"},
 		{"cut off in the last rise", pairing.Plan{Exercise: 1, Ramps: 2}, 3, 0.7, []Role{Exercise, Ramp, Incomplete}, "incomplete-cycle"},
 		{"cut off at the start of the last fall", pairing.Plan{Exercise: 1, Ramps: 2}, 3, 0.3, []Role{Exercise, Ramp, Incomplete}, "incomplete-cycle"},
 	} {

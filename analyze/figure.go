@@ -10,8 +10,17 @@ import (
 // falling, and the extension at zero tension that both share.
 type ramp struct {
 	rising, falling estimate.Line
-	zeroM           float64 // NaN: not known
-	zeroVar         float64 // of scatter, m2
+	zeroM           float64       // NaN: not known
+	zeroVar         float64       // of scatter, m2
+	reach           [2][2]float64 // settings fitted, low and high: rising, falling
+}
+
+// covers is the range of setting that the ramp's line was fitted over.
+func (r ramp) covers(d Direction) (low, high float64) {
+	if d == Falling {
+		return r.reach[1][0], r.reach[1][1]
+	}
+	return r.reach[0][0], r.reach[0][1]
 }
 
 func (r ramp) line(d Direction) estimate.Line {
@@ -33,6 +42,9 @@ func (k constants) pullPerM() float64 { return 2 * k.areaM2 * k.paPerM() }
 
 // figure computes one number from one ramp; NaN where it cannot.
 type figure func(r ramp, k constants) float64
+
+// at is the same setting for every ramp.
+func at(settingSI float64) figure { return func(ramp, constants) float64 { return settingSI } }
 
 // combine is a figure over all fitted ramps. Scatter is the ramps' own, with
 // what one ramp's line leaves open as its floor; what repeats is found by

@@ -15,7 +15,6 @@ type Friction struct {
 	AreaM2    estimate.Estimate // A*
 	AreaRatio estimate.Estimate // A* / geometry's
 	F0MuWN    estimate.Estimate // F0 + mu W, only together with its zero
-	LoopJ     estimate.Estimate // energy lost in one cycle; unknown without the travel of the cylinders
 }
 
 // balance is one ramp as setting on wheel pull, p = k F + a, both ways.
@@ -49,7 +48,6 @@ func (b balance) f0N() float64 { return b.f0MuWN() - b.mu()*b.weightN() }
 // friction works out the force balance of a pressure-set tensioner.
 func (w *work) friction() {
 	f := &w.res.Friction
-	f.LoopJ = estimate.Unknown("the travel of the wheel was not measured")
 	if w.setup.Tensioner.SetBy != mill.SetByPressure && w.setup.Tensioner.SetBy != "" {
 		no := estimate.Unknown("worked out for tensioners set by pressure only")
 		f.F0N, f.Mu, f.WeightN, f.AreaM2, f.AreaRatio, f.F0MuWN = no, no, no, no, no, no

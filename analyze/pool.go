@@ -41,6 +41,7 @@ func (w *work) keepRamps() {
 			continue
 		}
 		r := ramp{rising: c.Rising.Line, falling: c.Falling.Line, zeroM: math.NaN()}
+		r.reach = [2][2]float64{{c.Rising.LowSI, c.Rising.HighSI}, {c.Falling.LowSI, c.Falling.HighSI}}
 		if c.Zero.Known() {
 			r.zeroM, r.zeroVar = c.Zero.Value, c.Zero.Random*c.Zero.Random
 			w.zeroFrom = c.ZeroFrom
@@ -84,6 +85,30 @@ func (w *work) captured(b *Branch) {
 	b.Cycles = len(w.ramps)
 }
 
+// A ramp speaks for a setting this share of its own range beyond what it
+// covered: ramps that were meant to be alike end a little apart. Judgement.
+const nearEnough = 0.02
+
+// reaching is the work on only those ramps that cover a setting in a direction,
+// each with its own where it differs from ramp to ramp. A ramp that stopped
+// lower says nothing of what lies above. All of them, where none does.
+func (w *work) reaching(d Direction, setting figure) *work {
+	var kept []ramp
+	for _, r := range w.ramps {
+		low, high := r.covers(d)
+		slack := nearEnough * (high - low)
+		if p := setting(r, w.k); !(p < low-slack || p > high+slack) {
+			kept = append(kept, r)
+		}
+	}
+	if len(kept) == 0 || len(kept) == len(w.ramps) {
+		return w
+	}
+	some := *w
+	some.ramps = kept
+	return &some
+}
+
 // branch is the line of all ramps together.
 func (w *work) branch(b *Branch) {
 	d := b.Direction
@@ -91,8 +116,8 @@ func (w *work) branch(b *Branch) {
 	b.Stress0 = w.combine(func(r ramp, k constants) float64 { return (r.line(d).A - r.zeroM) * k.paPerM() }, wholeLoop, noZero)
 	b.LowPa, b.HighPa = math.NaN(), math.NaN()
 	if w.zeroKnown() {
-		b.LowPa = w.combine(stressFigure(d, b.LowSI), onePoint, noZero).Value
-		b.HighPa = w.combine(stressFigure(d, b.HighSI), onePoint, noZero).Value
+		b.LowPa = w.stressAt(d, b.LowSI).Value
+		b.HighPa = w.stressAt(d, b.HighSI).Value
 	}
 }
 

@@ -18,6 +18,16 @@ import (
 // rehearsed runs a simulated rig flat out and pairs what its memory card says.
 func rehearsed(t testing.TB, c simrig.Config) (*analyze.Result, simrig.Truth) {
 	t.Helper()
+	set, p, truth := rehearsedSet(t, c)
+	r, err := analyze.Analyze(analyze.Input{Profile: p, Tensioner: "T-1", Band: "QW-6", Set: set})
+	if err != nil {
+		t.Fatal(err)
+	}
+	return r, truth
+}
+
+func rehearsedSet(t testing.TB, c simrig.Config) (*pairing.Set, *mill.Profile, simrig.Truth) {
+	t.Helper()
 	p, err := mill.Parse(mill.Example())
 	if err != nil {
 		t.Fatal(err)
@@ -42,11 +52,7 @@ func rehearsed(t testing.TB, c simrig.Config) (*analyze.Result, simrig.Truth) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	r, err := analyze.Analyze(analyze.Input{Profile: p, Tensioner: "T-1", Band: "QW-6", Set: set})
-	if err != nil {
-		t.Fatal(err)
-	}
-	return r, rig.Truth()
+	return set, p, rig.Truth()
 }
 
 func near(t *testing.T, what string, got, want, tolerance float64) {
@@ -92,6 +98,54 @@ func TestRehearsalRigByEveryWayOfPumping(t *testing.T) {
 			}
 		})
 	}
+}
+
+// The rig's own low end, about 35 psi, with an indicator of 0.0005 in: a still
+// stretch cannot be told from friction, and the operator's mark can.
+func TestCoarseIndicatorNeedsTheOperatorsMark(t *testing.T) {
+	if testing.Short() {
+		t.Skip("integrates whole visits")
+	}
+	coarse := simrig.Sensor{Count: simrig.Count{Unit: "[in_i]", Mantissa: 5, Exponent: -4}}
+	set, p, truth := rehearsedSet(t, simrig.Config{Seed: 5, Indicator: coarse})
+	result := func() *analyze.Result {
+		r, err := analyze.Analyze(analyze.Input{Profile: p, Tensioner: "T-1", Band: "QW-6", Set: set})
+		if err != nil {
+			t.Fatal(err)
+		}
+		return r
+	}
+	r := result()
+	if text := warning(r, "zero-unknown"); !strings.Contains(text, "so coarse a count") || !strings.Contains(text, "Mark the zero on the slack band (z in a capture)") {
+		t.Errorf("without a mark: %q", text)
+	}
+	if why := r.Cycles[1].Zero.Why; !strings.Contains(why, "nobody marked the zero") {
+		t.Errorf("without a mark: %q", why)
+	}
+	set.Marks = []pairing.Mark{{T: 7, Kind: pairing.Zero}, {T: r.Points[r.Cycles[2].First].T, Kind: pairing.Zero}}
+	r = result()
+	if want := (analyze.ZeroMarks{Given: 2, Used: 2}); r.Marks != want || r.Cycles[1].ZeroFrom != "operator's mark" {
+		t.Errorf("marks %+v, want %+v; zero from %q", r.Marks, want, r.Cycles[1].ZeroFrom)
+	}
+	holds(t, "rising setting", r.AtRising.TrueSI, truth.RisingPa(9500*psi))
+	holds(t, "falling setting", r.AtFalling.TrueSI, truth.FallingPa(9500*psi))
+	set.Marks = []pairing.Mark{{T: r.Points[r.Cycles[1].Peak].T, Kind: pairing.Zero}, {T: 1e6, Kind: pairing.Zero}}
+	r = result()
+	if want := (analyze.ZeroMarks{Given: 2, Loaded: 1, Unread: 1}); r.Marks != want || !strings.Contains(r.Cycles[1].Zero.Why, "marked with the band loaded") {
+		t.Errorf("marks %+v, want %+v; %q", r.Marks, want, r.Cycles[1].Zero.Why)
+	}
+	if text := warning(r, "zero-mark-unused"); !strings.Contains(text, "1 of 2 zero marks not used: the stretch stood higher") {
+		t.Errorf("%q", text)
+	}
+}
+
+func warning(r *analyze.Result, code string) string {
+	for _, w := range r.Warnings {
+		if w.Code == code {
+			return w.Text
+		}
+	}
+	return ""
 }
 
 func TestFrictionLawOfTheRigMovesTheResult(t *testing.T) {

@@ -32,16 +32,16 @@ func (w *work) running() {
 	}
 	target := w.setup.TargetPa
 	other := func(from, to Direction) estimate.Estimate {
-		at := settingFigure(from, target)
-		return w.combine(func(r ramp, k constants) float64 {
-			return stressFigure(to, at(r, k))(r, k) - target
+		setting := settingFigure(from, target)
+		return w.reaching(from, setting).combine(func(r ramp, k constants) float64 {
+			return stressFigure(to, setting(r, k))(r, k) - target
 		}, wholeLoop, "not a finite number")
 	}
 	rise, fall := other(Rising, Falling), other(Falling, Rising)
 	rise, fall = w.within(rise, target+rise.Value), w.within(fall, target+fall.Value)
 	b.AfterRisingPa = [2]estimate.Estimate{none, rise}
 	b.AfterFallingPa = [2]estimate.Estimate{fall, none}
-	middle := w.combine(func(r ramp, k constants) float64 {
+	middle := w.reaching(Rising, settingFigure(Rising, target)).combine(func(r ramp, k constants) float64 {
 		return middleStress(r, k, settingFigure(Rising, target)(r, k))
 	}, wholeLoop, "not a finite number")
 	b.MiddlePa = w.within(middle, middle.Value)

@@ -3,6 +3,7 @@ package analyze
 import (
 	"fmt"
 	"math"
+	"time"
 
 	"tautramp/acquire/mill"
 	"tautramp/analyze/estimate"
@@ -25,6 +26,7 @@ type Setup struct {
 	CountSI       float64           // setting least count
 	SettingStd    float64           // SI, from the instrument's limit; 0 and a warning when not given
 	ExtensionSd   float64           // m, from the instrument's limit; 0 and a warning when not given
+	Overdue       []mill.Instrument // in use, and their check was due before the day
 }
 
 // Assumed where the profile does not say. The shares are common practice, no
@@ -62,17 +64,23 @@ func resolve(in Input) (Setup, error) {
 	}
 	if in.Set != nil {
 		s.CountM, s.CountSI = in.Set.Extension.CountSI, in.Set.Setting.CountSI
-		s.SettingStd = limitStd(p, mill.MeasuresSetting, t.SettingDim(), in.Set.Setting.Spec.Serial)
-		s.ExtensionSd = limitStd(p, mill.MeasuresExtension, mill.DimLength, in.Set.Extension.Spec.Serial)
+		gauge, hasGauge := p.FindInstrument(mill.MeasuresSetting, t.SettingDim(), in.Set.Setting.Spec.Serial)
+		indicator, hasIndicator := p.FindInstrument(mill.MeasuresExtension, mill.DimLength, in.Set.Extension.Spec.Serial)
+		s.SettingStd, s.ExtensionSd = limitStd(gauge), limitStd(indicator)
+		s.overdue(gauge, hasGauge, in.Day)
+		s.overdue(indicator, hasIndicator, in.Day)
 	}
 	return s, nil
 }
 
 // limitStd is an instrument's standard uncertainty, its largest permitted error
 // taken as a rectangular distribution (JCGM 100 4.3.7); 0 when not given.
-func limitStd(p *mill.Profile, measures string, d mill.Dim, serial string) float64 {
-	i, _ := p.FindInstrument(measures, d, serial)
-	return math.Abs(i.Limit.SI) / math.Sqrt(3)
+func limitStd(i mill.Instrument) float64 { return math.Abs(i.Limit.SI) / math.Sqrt(3) }
+
+func (s *Setup) overdue(i mill.Instrument, found bool, day time.Time) {
+	if found && !day.IsZero() && i.OverdueOn(day) {
+		s.Overdue = append(s.Overdue, i)
+	}
 }
 
 func given(value, std float64) estimate.Estimate {

@@ -12,7 +12,17 @@ type lull struct {
 	first, last int               // pairs searched
 	level       estimate.Estimate // m, extension of the slack band; unknown where it stayed taut
 	t           float64           // s, middle of the slack
+	why         notSlack          // why level is unknown
 }
+
+// notSlack is why a low end gives no slack band. The zero value is none.
+type notSlack int
+
+const (
+	neverStill notSlack = iota + 1 // the extension did not stand still
+	heldStill                      // no longer than friction holds a taut band still
+	countHides                     // longer, perhaps, but the count hides how long
+)
 
 // stillM is how far readings of a still extension may stray: to the
 // neighbouring count, and by noise.
@@ -65,6 +75,7 @@ type run struct {
 // reversal takes.
 func (w *work) lull(first, last int) lull {
 	l := lull{first: first, last: last, level: estimate.Unknown("the band was not slack, or not seen to be")}
+	l.why = neverStill
 	r, ok := w.stillRun(first, last)
 	if !ok {
 		return l
@@ -72,6 +83,9 @@ func (w *work) lull(first, last int) lull {
 	slope, reversal, ok := w.loopAt(r.level)
 	if !ok {
 		return l
+	}
+	if l.why = heldStill; 2*w.setup.CountM/slope > reversal/2 {
+		l.why = countHides
 	}
 	blur := w.stillM()/slope + 3*w.trace.noise
 	fellOn := r.inSI-r.lowSI > 2*blur

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 
+	"tautramp/acquire/mill"
 	"tautramp/analyze/estimate"
 )
 
@@ -33,13 +34,14 @@ func (r *Result) SettingAt(d Direction, stressPa float64) (TargetSetting, error)
 	}
 	b := r.branch(d)
 	if !(stressPa >= b.LowPa && stressPa <= b.HighPa) {
-		return TargetSetting{}, &OutOfRangeError{stressPa, b.LowPa, b.HighPa, "band stress, " + string(d)}
+		return TargetSetting{}, &OutOfRangeError{stressPa, b.LowPa, b.HighPa, "band stress, " + string(d), d, mill.RoleStress, ""}
 	}
 	return r.work.settingAt(d, stressPa), nil
 }
 
 func (w *work) settingAt(d Direction, stressPa float64) TargetSetting {
 	f := settingFigure(d, stressPa)
+	w = w.reaching(d, f)
 	all := w.combine(f, onePoint, "not a finite number")
 	t := TargetSetting{SettingSI: all, NextSI: w.next(f, all), TrueSI: all}
 	t.SettingSI.System = 0
@@ -114,7 +116,7 @@ func (w *work) aim() {
 		return
 	}
 	rising, falling := settingFigure(Rising, w.setup.TargetPa), settingFigure(Falling, w.setup.TargetPa)
-	w.res.ResetSI = w.combine(func(r ramp, k constants) float64 {
+	w.res.ResetSI = w.reaching(Rising, rising).reaching(Falling, falling).combine(func(r ramp, k constants) float64 {
 		return falling(r, k) - (rising(r, k)-falling(r, k))/2
 	}, wholeLoop, "not a finite number")
 }

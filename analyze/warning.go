@@ -3,6 +3,8 @@ package analyze
 import (
 	"fmt"
 	"math"
+
+	"tautramp/acquire/mill"
 )
 
 // Warning is something the reader must know beside the figures.
@@ -29,9 +31,16 @@ const (
 // the ordinary. Their order is fixed.
 func (w *work) warnings() {
 	for _, check := range []func(){
-		w.warnRamps, w.warnInstruments, w.warnZero, w.warnReturn, w.warnTarget, w.warnShape, w.warnPace, w.warnArea, w.warnWeight,
+		w.warnVisit, w.warnRamps, w.warnInstruments, w.warnZero, w.warnMarks, w.warnReturn, w.warnTarget, w.warnShape, w.warnPace, w.warnArea, w.warnWeight,
 	} {
 		check()
+	}
+}
+
+// warnVisit repeats what the operator was warned of at the time.
+func (w *work) warnVisit() {
+	for _, a := range w.set.Alarms {
+		w.warn("alarm", fmt.Sprintf("Alarm during the visit at %.0f s: %s", a.T, a.Text))
 	}
 }
 
@@ -56,6 +65,9 @@ func (w *work) warnInstruments() {
 	if w.setup.ExtensionSd == 0 {
 		w.warn("no-extension-instrument", "The profile gives no limit of error for the instrument that shows the stretch: its error is in no interval.")
 	}
+	for _, i := range w.setup.Overdue {
+		w.warn("check-overdue", fmt.Sprintf("The check of %s was due %s, before this was measured: its error may be larger than the limit that the intervals rest on.", instrumentName(i), i.Due))
+	}
 	if w.setup.Rig.Faces < 2 {
 		w.warn("one-face", "Stretch was measured on one face only: curl of the band shows as stretch and is in no interval. Measure the other face too.")
 	}
@@ -64,9 +76,19 @@ func (w *work) warnInstruments() {
 	}
 }
 
+func instrumentName(i mill.Instrument) string {
+	switch {
+	case i.Name != "" && i.Serial != "":
+		return i.Name + " (" + i.Serial + ")"
+	case i.Name+i.Serial != "":
+		return i.Name + i.Serial
+	}
+	return "the instrument that measures the " + i.Measures
+}
+
 func (w *work) warnZero() {
 	if !w.zeroKnown() {
-		w.warn("zero-unknown", "The stretch of the slack band was not recorded: no band stress can be given, nor a setting for the target. Let the band go slack before and after each ramp, or mark the zero on the slack band.")
+		w.warn("zero-unknown", "No band stress can be given, nor a setting for the target: "+w.noSlack()+".")
 		return
 	}
 	for _, i := range w.fitted {
@@ -74,6 +96,21 @@ func (w *work) warnZero() {
 			w.warn("zero-borrowed", fmt.Sprintf("The band was not slack before or after cycle %d: the zero of another cycle stands in.", i+1))
 		}
 	}
+}
+
+// noSlack says why the stretch of the slack band is not known, and what to do.
+func (w *work) noSlack() string {
+	worst := neverStill
+	for _, l := range w.lulls {
+		worst = max(worst, l.why)
+	}
+	switch worst {
+	case countHides:
+		return "the stretch stood still at the low end, but with so coarse a count of the indicator that cannot be told from friction holding the band. Mark the zero on the slack band (z in a capture), let the setting down further, or fit a finer indicator"
+	case heldStill:
+		return "the stretch stood still at the low end no longer than friction holds a loaded band. Let the setting down until the band is slack before and after each ramp, or mark the zero on the slack band (z in a capture)"
+	}
+	return "the stretch never stood still at the low end. Let the band go slack and rest before and after each ramp, or mark the zero on the slack band (z in a capture)"
 }
 
 // warnReturn tells of a mount that slipped or drifted.

@@ -50,28 +50,31 @@ func halfWidth(risingSI float64) figure {
 func (w *work) widths() {
 	low, high := w.common()
 	for n := range widthRows {
-		at := low + (high-low)*float64(n)/(widthRows-1)
-		row := WidthAt{StressPa: math.NaN(), RisingSI: at, HalfSI: w.combine(halfWidth(at), wholeLoop, "not a finite number")}
-		if w.zeroKnown() {
-			row.StressPa = w.combine(stressFigure(Rising, at), onePoint, "").Value
-		}
-		w.res.Widths = append(w.res.Widths, row)
-	}
-	ratio := func(at float64) figure {
-		h := halfWidth(at)
-		return func(r ramp, k constants) float64 { return h(r, k) / at }
+		w.res.Widths = append(w.res.Widths, w.widthAt(low+(high-low)*float64(n)/(widthRows-1)))
 	}
 	working, what := high, "the highest setting on both branches"
 	if w.zeroKnown() && w.setup.TargetPa > 0 {
-		if p := w.combine(settingFigure(Rising, w.setup.TargetPa), onePoint, "").Value; p >= low && p <= high {
+		if p := w.settingAt(Rising, w.setup.TargetPa).SettingSI.Value; p >= low && p <= high {
 			working, what = p, "the target's setting"
 		}
 	}
-	w.res.WidthRatio = w.combine(ratio(working), wholeLoop, "not a finite number")
+	w.res.Working = w.widthAt(working)
+	w.res.WidthRatio = w.reaching(Rising, at(working)).combine(func(r ramp, k constants) float64 {
+		return halfWidth(working)(r, k) / working
+	}, wholeLoop, "not a finite number")
 	if w.res.WidthRatio.Known() {
 		w.res.WidthRatio.Method += ", at " + what
 	}
 	w.grade()
+}
+
+func (w *work) widthAt(risingSI float64) WidthAt {
+	row := WidthAt{StressPa: math.NaN(), RisingSI: risingSI}
+	row.HalfSI = w.reaching(Rising, at(risingSI)).combine(halfWidth(risingSI), wholeLoop, "not a finite number")
+	if w.zeroKnown() {
+		row.StressPa = w.stressAt(Rising, risingSI).Value
+	}
+	return row
 }
 
 // common is the range of rising settings whose extension was captured on the

@@ -27,7 +27,8 @@ type work struct {
 	sources  []source
 	zeroStd  float64 // m, of the zero, what repeats
 	zeroFrom string
-	timeStd  float64 // of the setting, SI, from the time between the channels
+	marks    zeroMarks // the operator's
+	timeStd  float64   // of the setting, SI, from the time between the channels
 }
 
 // leastPairs is fewer than any real ramp has.
@@ -41,7 +42,7 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 		}
 		return nil, fmt.Errorf("analyze: %d pairs where %d are needed: %w", n, leastPairs, ErrTooFewPairs)
 	}
-	w := &work{setup: s, set: set, res: &Result{Setup: s}}
+	w := &work{setup: s, set: set, res: &Result{Setup: s, Simulated: set.Simulated, Ended: set.Ended}}
 	w.res.work = w
 	for i, q := range set.Pairs {
 		if !finite(q.T) || !finite(q.Setting) || !finite(q.Extension) {

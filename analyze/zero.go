@@ -3,8 +3,8 @@ package analyze
 import (
 	"math"
 
-	"tautramp/acquire/pairing"
 	"tautramp/analyze/estimate"
+	"tautramp/protocol"
 )
 
 // The conventions of the zero.
@@ -15,13 +15,27 @@ const (
 
 // zeroStdM is what a zero has in common with every other zero of the record:
 // one count hides it (rectangular, JCGM 100 F.2.2.1), and half a count more
-// where the display's rounding is not known.
+// where the display's rounding is not known. A display that cuts its digits off
+// shows 0 over two counts, from below zero to above (protocol SPEC 6.4).
 func (w *work) zeroStdM() float64 {
 	std := w.setup.CountM / math.Sqrt(12)
-	if !w.set.Extension.CutKnown() {
-		std = math.Hypot(std, w.setup.CountM/2/math.Sqrt(3))
+	switch {
+	case !w.set.Extension.CutKnown():
+		return math.Hypot(std, w.setup.CountM/2/math.Sqrt(3))
+	case w.set.Extension.Spec.Shows == protocol.ShowsTruncated && w.zeroOnNought():
+		return 2 * std
 	}
 	return std
+}
+
+// zeroOnNought is whether a cycle's zero is the display's own 0.
+func (w *work) zeroOnNought() bool {
+	for _, c := range w.res.Cycles {
+		if c.Zero.Known() && math.Abs(c.Zero.Value) <= w.setup.CountM/2 {
+			return true
+		}
+	}
+	return false
 }
 
 // findZeros gives each cycle its extension at zero tension: one value, shared
@@ -31,6 +45,7 @@ func (w *work) zeroStdM() float64 {
 // the band slack or not.
 func (w *work) findZeros() {
 	w.findLulls()
+	w.judgeMarks()
 	shared := 0.0
 	for i := range w.res.Cycles {
 		c := &w.res.Cycles[i]
@@ -61,7 +76,7 @@ func (w *work) borrowedZero(t float64) (zero estimate.Estimate, from string) {
 	if z := w.markedZero(t); z.Known() {
 		return z, operatorsMark
 	}
-	return estimate.Unknown("the band was never seen slack, and nobody marked the zero"), ""
+	return estimate.Unknown("the band was never seen slack, and " + w.marks.why()), ""
 }
 
 // betweenZeros is the zero of a cycle between two slack bands. What it drifted
@@ -105,40 +120,4 @@ func (w *work) nearestSlack(t float64) estimate.Estimate {
 		best.Method = "slack band of another cycle"
 	}
 	return best
-}
-
-// markedZero is the extension about the operator's zero mark nearest in time
-// that was made with the extension low: a mark on a loaded band is none.
-func (w *work) markedZero(t float64) (zero estimate.Estimate) {
-	const about = 1.0 // s
-	gap := math.Inf(1)
-	for _, m := range w.set.Marks {
-		if m.Kind != pairing.Zero || math.Abs(m.T-t) >= gap {
-			continue
-		}
-		var e []float64
-		for i, at := range w.t {
-			if math.Abs(at-m.T) <= about {
-				e = append(e, w.e[i])
-			}
-		}
-		if len(e) < 3 || estimate.Median(e) > w.lowestSeated() {
-			continue
-		}
-		gap = math.Abs(m.T - t)
-		_, sd := estimate.Mean(e)
-		zero = estimate.Estimate{Value: estimate.Median(e), Random: sd / math.Sqrt(float64(len(e))), DoF: float64(len(e) - 1), Method: "extension at the operator's zero mark"}
-	}
-	return zero
-}
-
-// lowestSeated is the lowest extension at which a band was seated, m.
-func (w *work) lowestSeated() float64 {
-	low := math.Inf(1)
-	for i := range w.legs {
-		if w.legs[i].ok {
-			low = math.Min(low, w.legs[i].seatEndM)
-		}
-	}
-	return low
 }

@@ -3,6 +3,7 @@ package analyze
 import (
 	"errors"
 	"math"
+	"strings"
 	"testing"
 
 	"tautramp/acquire/pairing"
@@ -194,6 +195,80 @@ func TestUnknownDisplayAddsHalfACountToTheZero(t *testing.T) {
 	b := newBench(28)
 	near(t, "rounded", std(protocol.ShowsRounded), b.countM/math.Sqrt(12), 1e-12)
 	near(t, "unknown", std(protocol.ShowsUnknown), math.Hypot(b.countM/math.Sqrt(12), b.countM/2/math.Sqrt(3)), 1e-12)
+}
+
+// A truncating display shows 0 from one count below zero to one above: SPEC 6.4.
+// Where it was zeroed on the slack band, that is what hides the zero.
+func TestZeroOfATruncatingDisplayHoldsTheTruth(t *testing.T) {
+	const rigs = 50
+	hits, wide := 0, 0
+	for seed := range uint64(rigs) {
+		b := newBench(seed + 400)
+		b.shows, b.plan = protocol.ShowsTruncated, pairing.Plan{Ramps: 1}
+		b.settingHz, b.extensionHz = 10, 5
+		b.zeroM = b.countM * (1.9*b.rng.Float64() - 0.95)
+		c := analyzed(t, b.measure(cycles(smooth, 1, 0, 860))).Cycles[0]
+		if lo, hi := c.Zero.Interval95(); lo <= b.zeroM && b.zeroM <= hi {
+			hits++
+		}
+		if c.Zero.System > 0.6*b.countM {
+			wide++
+		}
+		b = newBench(seed + 400)
+		b.shows, b.plan, b.zeroM = protocol.ShowsTruncated, pairing.Plan{Ramps: 1}, 12.3*b.countM
+		if c = analyzed(t, b.measure(cycles(smooth, 1, 0, 860))).Cycles[0]; math.Abs(c.Zero.System-b.countM/math.Sqrt(12)) > 1e-3*b.countM {
+			t.Fatalf("away from 0 the doubt is %.3f counts", c.Zero.System/b.countM)
+		}
+	}
+	// A count of noise-free doubt on either side: 0.58 counts standard.
+	if hits < leastHits(rigs) || wide > 0 {
+		t.Errorf("the interval holds the zero in %d of %d, is too wide in %d", hits, rigs, wide)
+	}
+}
+
+func TestMarksThatTheSlackBandBearsOutAreNotNeeded(t *testing.T) {
+	b := newBench(27)
+	set := b.measure(cycles(smooth, 3, 0, 860))
+	at := set.Pairs[20].T
+	set.Marks = []pairing.Mark{{T: at, Kind: pairing.Zero}}
+	r := analyzed(t, set)
+	if want := (ZeroMarks{Given: 1, Agree: 1}); r.Marks != want || warned(r, "zero-mark-unused") {
+		t.Errorf("%+v, want %+v: %v", r.Marks, want, r.Warnings)
+	}
+	for i := range set.Pairs { // the indicator was turned to 0 after the mark
+		if set.Pairs[i].T < at+2 {
+			set.Pairs[i].Extension -= 30e-6
+		}
+	}
+	r = analyzed(t, set)
+	if want := (ZeroMarks{Given: 1, Differ: 1}); r.Marks != want || !warned(r, "zero-mark-unused") {
+		t.Errorf("%+v, want %+v: %v", r.Marks, want, r.Warnings)
+	}
+}
+
+func TestUnknownZeroSaysWhatStoodInTheWay(t *testing.T) {
+	for _, c := range []struct {
+		name    string
+		lowPsi  float64
+		countIn float64
+		want    string
+	}{
+		{"a taut low end", 120, 0.00005, "no longer than friction holds a loaded band"},
+		{"a coarse count", 35, 0.0005, "so coarse a count"},
+	} {
+		b := newBench(22)
+		b.countM = c.countIn * inch
+		r := analyzed(t, b.measure(cycles(smooth, 4, c.lowPsi, 860)))
+		text := ""
+		for _, w := range r.Warnings {
+			if w.Code == "zero-unknown" {
+				text = w.Text
+			}
+		}
+		if !strings.Contains(text, c.want) || !strings.Contains(strings.ToLower(text), "mark the zero on the slack band") {
+			t.Errorf("%s: %q, want %q", c.name, text, c.want)
+		}
+	}
 }
 
 func TestWrongZeroInTheDataLeavesF0(t *testing.T) {

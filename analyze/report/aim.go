@@ -18,8 +18,7 @@ type aim struct {
 
 // interval is one of the three.
 type interval struct {
-	Name string // "fitted curve", "next setting", "band's true stress"
-	Says string // what it answers
+	Name string // for people
 	figure
 }
 
@@ -31,18 +30,22 @@ func aimOf(r *analyze.Result, d analyze.Direction, u units) aim {
 	if d == analyze.Falling {
 		at = r.AtFalling
 	}
+	count := r.Setup.CountSI
 	a := aim{
 		Direction: d,
 		How:       approach(d),
 		Set:       figureOf(at.TrueSI, u.setting),
 		Intervals: []interval{
-			{"fitted curve", "where this visit's line lies", figureOf(at.SettingSI, u.setting)},
-			{"next setting", "how well the next approach repeats", figureOf(at.NextSI, u.setting)},
-			{"band's true stress", "the setting at which the band truly has it", figureOf(at.TrueSI, u.setting)},
+			{"this visit's curve", figureRead(at.SettingSI, u.setting, count)},
+			{"next time you set it", figureRead(at.NextSI, u.setting, count)},
+			{"counting all doubt (use this for the card)", figureRead(at.TrueSI, u.setting, count)},
 		},
 	}
-	if a.Set.Why != "" {
+	if a.Set.Why != "" && at.SettingSI.Known() {
 		a.Set = figureOf(at.SettingSI, u.setting)
+	}
+	if a.Set.Why != "" { // said once, not three times more
+		a.Intervals = nil
 	}
 	a.Budget = budgetOf(at.Budget, u.setting)
 	return a
@@ -110,8 +113,7 @@ func limitText(r *analyze.Result, u units) string {
 func overshootText(r *analyze.Result, u units) string {
 	reset := figureOf(r.ResetSI, u.setting)
 	if reset.Why != "" {
-		return fmt.Sprintf("Overshot while rising: the number to drop to is %s: %s. "+
-			"Release well below the falling setting, then come up again.", notKnown, reset.Why)
+		return "Overshot while rising: the number to drop to is " + notKnown + ". Release well below the falling setting, then come up again."
 	}
 	return fmt.Sprintf("Overshot while rising: drop to %s, then come up again. Never back down to the number.", reset.short())
 }

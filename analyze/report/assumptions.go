@@ -1,6 +1,7 @@
 package report
 
 import (
+	"fmt"
 	"strings"
 
 	"tautramp/analyze"
@@ -79,7 +80,11 @@ func zeroText(r *analyze.Result) string {
 		}
 		return notKnown + ": no fitted cycle has one"
 	}
-	return "stretch at no wheel pull, one a cycle for both directions; from: " + strings.Join(from, ", ")
+	text := "stretch at no wheel pull, one a cycle for both directions; from: " + strings.Join(from, ", ")
+	if n := r.Marks.Agree; n > 0 {
+		text += fmt.Sprintf("; operator's zero marks that agree: %d", n)
+	}
+	return text
 }
 
 // unchecked is what nobody looked at, and the reader may think somebody did.

@@ -21,6 +21,24 @@ func figureOf(e estimate.Estimate, u unit) figure {
 	return figureBetween(e, low, high, u)
 }
 
+// figureRead is figureOf for what is read on an instrument of a least count: of
+// the two digits, none is kept that the instrument does not show, but always one
+// (JCGM 100 7.2.6 asks for at most two).
+func figureRead(e estimate.Estimate, u unit, countSI float64) figure {
+	low, high := e.Interval95()
+	f := figureBetween(e, low, high, u)
+	half, count := (u.show(high)-u.show(low))/2, u.show(countSI)
+	if f.PlusMinus == "" || !(count > 0) || !finite(count) {
+		return f
+	}
+	two := uncertaintyDecimals(half)
+	if decimals := max(two-1, min(two, uncertaintyDecimals(count)-1)); decimals != two {
+		number := func(x float64) string { return grouped(fixed(x, decimals)) }
+		f.Value, f.PlusMinus, f.Low, f.High = number(u.show(e.Value)), number(half), number(u.show(low)), number(u.show(high))
+	}
+	return f
+}
+
 func figureBetween(e estimate.Estimate, lowSI, highSI float64, u unit) figure {
 	if why := unknownWhy(e); why != "" {
 		return figure{Unit: u.name, Why: why}

@@ -45,17 +45,17 @@ func noVerdictWhy(r *analyze.Result, ratio figure) string {
 func frictionFacts(r *analyze.Result, u units) []fact {
 	f := r.Friction
 	facts := []fact{
-		{"Half-width", widthAtTarget(r, u)},
-		{"Half-width / setting", figureOf(r.WidthRatio, percent()).String()},
-		{"F0, constant", figureOf(f.F0N, u.force).String()},
-		{"mu, in proportion", figureOf(f.Mu, bare()).String()},
+		{"Half-width of the loop", widthText(r, u)},
+		{"Half-width, share of the setting", figureOf(r.WidthRatio, percent()).String()},
+		{"F0, friction that is always there", figureOf(f.F0N, u.force).String()},
+		{"mu, friction in proportion to load", figureOf(f.Mu, bare()).String()},
 		{"W, lifted weight", zeroEnters(figureOf(f.WeightN, u.force))},
-		{"F0 + mu W", zeroEnters(figureOf(f.F0MuWN, u.force))},
+		{"F0 + mu W, friction at no wheel pull", zeroEnters(figureOf(f.F0MuWN, u.force))},
 	}
 	if r.Setup.Tensioner.SetBy == mill.SetByPressure {
 		facts = append(facts,
 			fact{"A*, working area", figureOf(f.AreaM2, u.area).String()},
-			fact{"A* / by geometry", figureOf(f.AreaRatio, bare()).String()})
+			fact{"A*, share of geometry's", figureOf(f.AreaRatio, bare()).String()})
 	}
 	return facts
 }
@@ -68,29 +68,25 @@ func zeroEnters(f figure) string {
 	return f.String() + ", if the zero holds"
 }
 
-// widthAtTarget is the half-width nearest to the target stress, or where there
-// is no stress at the highest setting.
-func widthAtTarget(r *analyze.Result, u units) string {
+// widthText is the half-width at the working setting: the target's where it is
+// in range, else the highest one.
+func widthText(r *analyze.Result, u units) string {
+	at := r.Working
 	if len(r.Widths) == 0 {
 		return notKnown + ": no stretch was reached in both directions of one cycle"
 	}
-	best := r.Widths[len(r.Widths)-1]
-	for _, w := range r.Widths {
-		if distance(w.StressPa, r.Setup.TargetPa) < distance(best.StressPa, r.Setup.TargetPa) {
-			best = w
-		}
-	}
-	half := figureOf(best.HalfSI, u.setting)
+	half := figureOf(at.HalfSI, u.setting)
+	rising := r.AtRising.SettingSI
 	switch {
 	case half.Why != "":
 		return half.String()
-	case !finite(best.StressPa):
-		return fmt.Sprintf("%s at %s rising", half, u.setting.with(plain(u.setting.show(best.RisingSI), 3)))
+	case rising.Known() && rising.Value == at.RisingSI:
+		return half.String() + " at the target"
+	case finite(at.StressPa):
+		return fmt.Sprintf("%s at %s, the highest in both directions", half, u.stress.with(plain(u.stress.show(at.StressPa), 3)))
 	}
-	return fmt.Sprintf("%s at %s", half, u.stress.with(plain(u.stress.show(best.StressPa), 3)))
+	return fmt.Sprintf("%s at %s rising, the highest in both directions", half, u.setting.with(plain(u.setting.show(at.RisingSI), 3)))
 }
-
-func distance(a, b float64) float64 { return max(a-b, b-a) }
 
 func branchFact(d analyze.Direction, b analyze.Branch, u units) fact {
 	label := string(d) + " line"

@@ -24,9 +24,8 @@ type page struct {
 	Loop      picture
 	Width     picture
 	Residuals picture
-	Intervals []interval // for their explanations
-	Note      string     // below the table
-	Name      string     // of the file, for the title
+	Note      string // below the table
+	Name      string // of the file, for the title
 }
 
 // HTML writes the report as one page that needs nothing else: no scripts, no
@@ -42,7 +41,6 @@ func HTML(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 		Loop:      inline(loopChart(r, sh.Units), wide(), "loop"),
 		Width:     inline(widthChart(r, sh.Units), narrow(), "width"),
 		Residuals: inline(residualChart(r, sh.Units), narrow(), "residuals"),
-		Intervals: sh.Targets[0].Intervals,
 		Note:      cellNote(sh.Table.Rows),
 	}
 	var b bytes.Buffer
@@ -54,7 +52,7 @@ func HTML(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 }
 
 // wide and narrow are the pictures of the page at their size on paper.
-func wide() format   { return format{width: 343, height: 176, letters: 8} }
+func wide() format   { return format{width: 343, height: 150, letters: 8} }
 func narrow() format { return format{width: 166, height: 92, letters: 7.2} }
 
 // picture is a chart in the page. Its text is escaped where it is drawn, so it

@@ -45,12 +45,12 @@ func TestPageNeedsNothingElse(t *testing.T) {
 func TestPageSaysWhatMatters(t *testing.T) {
 	m := t1Meta()
 	m.ClockFactor = 60
-	out := joined(htmlOf(t, t1(t), m, mill.US))
+	out := strings.ReplaceAll(joined(htmlOf(t, t1(t), m, mill.US)), "&#39;", "'")
 	for _, want := range []string{
 		"REHEARSAL", "Quillfern Mill", "Brindlewick Saw &amp; Mill Service", "T-1 with band QW-6", "Setting for <span>9,500 band psi",
-		"fitted curve", "next setting", "true stress", "come up to it from below", "come down to it from above", "Overshot while rising", "Never above <b>950 gauge psi</b>",
+		"this visit's curve", "next time you set it", "counting all doubt (use this for the card)", "come up to it from below", "come down to it from above", "Overshot while rising", "Never above <b>950 gauge psi</b>",
 		"At round settings", "Friction", "<b>service</b>", "Running band, one-sided", "What this rests on", "modulus E", "Gauge length L", "back to gullet bottom",
-		"Faces measured", "slack band", "Not checked", "Cautions", m.Seal, "Name and signature", "@page", "quillfern-t1.ramp, complete",
+		"Faces measured", "slack band", "Not checked", "Cautions", m.Seal, "Name and signature", "@page", "quillfern-t1.ramp, whole",
 	} {
 		if !strings.Contains(out, want) {
 			t.Errorf("the page lacks %q", want)

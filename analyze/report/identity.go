@@ -3,18 +3,25 @@ package report
 import (
 	"fmt"
 	"strconv"
+	"strings"
 
 	"tautramp/acquire/mill"
 	"tautramp/analyze"
 )
 
 // rehearsalText says that nothing here was measured on a mill, if so.
-func rehearsalText(m Meta) string {
-	if !m.rehearsed() {
+func rehearsalText(r *analyze.Result, m Meta) string {
+	var why []string
+	if r.Simulated {
+		why = append(why, "a device says that what it measures is made up")
+	}
+	if m.scaled() {
+		why = append(why, fmt.Sprintf("the clock was scaled, %s recorded seconds in one real second", plain(m.ClockFactor, 3)))
+	}
+	if len(why) == 0 {
 		return ""
 	}
-	return fmt.Sprintf("REHEARSAL on a scaled clock, %s recorded seconds in one real second: "+
-		"these are no readings of a mill, set no tensioner by them.", plain(m.ClockFactor, 3))
+	return "REHEARSAL: " + strings.Join(why, ", and ") + ". These are no readings of a mill: set no tensioner by them."
 }
 
 func identity(r *analyze.Result, m Meta, u units) []fact {
@@ -26,7 +33,7 @@ func identity(r *analyze.Result, m Meta, u units) []fact {
 		{"Rig", noted(lengthText(r.Setup.Rig.GaugeLength, u.section)+" gauge length", r.Setup.Rig.Note)},
 		{"Measured", startedText(m)},
 		{"Cycles", cyclesText(r)},
-		{"Recording", recordingText(m)},
+		{"Recording", recordingText(r, m)},
 		{"Seal", m.seal()},
 		{"Computed by", named(m.Program, notKnown)},
 	}
@@ -62,10 +69,16 @@ func lengthText(l mill.Length, u unit) string {
 }
 
 func startedText(m Meta) string {
-	if m.Started.IsZero() {
+	const layout = "2006-01-02 15:04 -07:00"
+	switch {
+	case m.Imported && m.Started.IsZero():
+		return notKnown + ": the card carries no date"
+	case m.Imported:
+		return notKnown + ": the card carries no date; imported " + m.Started.Format(layout)
+	case m.Started.IsZero():
 		return notKnown + ": the recording states no time"
 	}
-	return m.Started.Format("2006-01-02 15:04 -07:00")
+	return m.Started.Format(layout)
 }
 
 func cyclesText(r *analyze.Result) string {
@@ -83,24 +96,62 @@ func cyclesText(r *analyze.Result) string {
 	return text
 }
 
-func recordingText(m Meta) string {
-	name := m.base()
-	if name == "" {
-		name = "name " + notKnown
+// recordingText is the file, how it ends, and how the visit did.
+func recordingText(r *analyze.Result, m Meta) string {
+	text := m.base()
+	if text == "" {
+		text = "name " + notKnown
 	}
-	switch {
-	case m.Outcome == "":
-		return name + ", how it ends is " + notKnown
-	case m.TailBytes > 0:
-		return fmt.Sprintf("%s, %s: the last %d bytes carry no seal and were not used", name, clean(m.Outcome, nameLength), m.TailBytes)
+	text += ", " + outcomeText(m.Outcome)
+	if m.TailBytes > 0 {
+		text += fmt.Sprintf(": the last %d bytes carry no seal and were not used", m.TailBytes)
 	}
-	return name + ", " + clean(m.Outcome, nameLength)
+	if ended := clean(r.Ended, textLength); ended != "" {
+		text += "; " + ended
+	}
+	return text
 }
 
-// warningTexts are the warnings of the analysis, then the notes of the way.
+// outcomeText is how reading the file ended, for people.
+func outcomeText(outcome string) string {
+	switch outcome {
+	case "complete":
+		return "whole"
+	case "torn":
+		return "end missing"
+	case "corrupt":
+		return "damaged"
+	case "":
+		return "how it ends is " + notKnown
+	}
+	return clean(outcome, nameLength)
+}
+
+// fileWarnings are what the file itself makes doubtful.
+func fileWarnings(m Meta) []analyze.Warning {
+	unused := "what came after the last good seal is not used"
+	if m.TailBytes > 0 {
+		unused = fmt.Sprintf("%d bytes after the last good seal are not used", m.TailBytes)
+	}
+	unused += ", and ramps after that are not in this result."
+	switch m.Outcome {
+	case "torn":
+		return []analyze.Warning{{Code: "end-missing", Text: "The end of the recording is missing: " + unused}}
+	case "corrupt":
+		return []analyze.Warning{{Code: "recording-damaged", Text: "The recording was altered or damaged: " + unused}}
+	}
+	return nil
+}
+
+// allWarnings are those of the file, then those of the analysis.
+func allWarnings(r *analyze.Result, m Meta) []analyze.Warning {
+	return append(fileWarnings(m), r.Warnings...)
+}
+
+// warningTexts are all warnings, then the notes of the way.
 func warningTexts(r *analyze.Result, m Meta) []string {
 	var texts []string
-	for _, w := range r.Warnings {
+	for _, w := range allWarnings(r, m) {
 		texts = append(texts, clean(w.Text, textLength))
 	}
 	for _, n := range m.Notes {

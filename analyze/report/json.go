@@ -35,9 +35,13 @@ func resultJSON(r *analyze.Result, m Meta) object {
 	return object{
 		{"schema_version", schemaVersion},
 		{"program", clean(m.Program, nameLength)},
-		{"recording", recordingJSON(m)},
+		{"recording", recordingJSON(r, m)},
 		{"setup", setupJSON(r.Setup, by)},
 		{"cycles", each(r.Cycles, func(c analyze.Cycle) object { return cycleJSON(c, by) })},
+		{"zero_marks", object{
+			{"given", r.Marks.Given}, {"used", r.Marks.Used}, {"agree", r.Marks.Agree},
+			{"differ", r.Marks.Differ}, {"loaded", r.Marks.Loaded}, {"unread", r.Marks.Unread},
+		}},
 		{"branches", object{{"rising", branchJSON(r.Rising, by)}, {"falling", branchJSON(r.Falling, by)}}},
 		{"target", object{
 			{"stress_pa", given(r.Setup.TargetPa)},
@@ -54,7 +58,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 		{"grade_says", v.Says},
 		{"running_band", runningJSON(r.Running)},
 		{"table", tableJSON(r, by)},
-		{"warnings", each(r.Warnings, func(w analyze.Warning) object {
+		{"warnings", each(allWarnings(r, m), func(w analyze.Warning) object {
 			return object{{"code", clean(w.Code, nameLength)}, {"text", clean(w.Text, textLength)}}
 		})},
 		{"cautions", Cautions()},
@@ -70,7 +74,7 @@ func each[T any](list []T, f func(T) object) []object {
 	return out
 }
 
-func recordingJSON(m Meta) object {
+func recordingJSON(r *analyze.Result, m Meta) object {
 	notes := make([]string, 0, len(m.Notes))
 	for _, n := range m.Notes {
 		notes = append(notes, clean(n, textLength))
@@ -86,7 +90,8 @@ func recordingJSON(m Meta) object {
 	return object{
 		{"file", m.base()}, {"seal", clean(m.Seal, sealLength)}, {"outcome", outcomeJSON(m.Outcome)},
 		{"bytes_after_seal", m.TailBytes}, {"recorder", clean(m.Recorder, nameLength)}, {"started", started},
-		{"clock_factor", number(factor)}, {"rehearsal", m.rehearsed()},
+		{"clock_factor", number(factor)}, {"imported", m.Imported}, {"ended", clean(r.Ended, textLength)},
+		{"rehearsal", rehearsed(r, m)}, {"simulated", r.Simulated},
 		{"continues", clean(m.Continues, sealLength)}, {"notes", notes},
 	}
 }
@@ -193,7 +198,7 @@ func frictionJSON(r *analyze.Result) object {
 	return object{
 		{"f0_n", estimateJSON(f.F0N)}, {"mu", estimateJSON(f.Mu)}, {"weight_n", estimateJSON(f.WeightN)},
 		{"f0_plus_mu_weight_n", estimateJSON(f.F0MuWN)}, {"area_m2", estimateJSON(area)},
-		{"area_ratio", estimateJSON(ratio)}, {"loop_energy_j", estimateJSON(f.LoopJ)},
+		{"area_ratio", estimateJSON(ratio)},
 	}
 }
 

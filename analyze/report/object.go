@@ -63,9 +63,11 @@ func estimateJSON(e estimate.Estimate) object {
 		return object{{"unknown", "the computation gave no finite uncertainty"}}
 	}
 	low, high := e.Interval95()
+	randomLow, randomHigh := e.RandomInterval95()
 	return object{
 		{"value", e.Value}, {"random_std", e.Random}, {"system_std", e.System}, {"dof", number(e.DoF)},
-		{"interval95_low", number(low)}, {"interval95_high", number(high)}, {"method", clean(e.Method, textLength)},
+		{"interval95_low", number(low)}, {"interval95_high", number(high)},
+		{"random95_half", number((randomHigh - randomLow) / 2)}, {"method", clean(e.Method, textLength)},
 	}
 }
 

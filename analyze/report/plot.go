@@ -87,15 +87,21 @@ type chart struct {
 
 func chartOf(r *analyze.Result, p Plot, s mill.System) (chart, error) {
 	u := unitsFor(r.Setup.Tensioner, s)
+	var c chart
 	switch p {
 	case PlotLoop:
-		return loopChart(r, u), nil
+		c = loopChart(r, u)
 	case PlotWidth:
-		return widthChart(r, u), nil
+		c = widthChart(r, u)
 	case PlotResiduals:
-		return residualChart(r, u), nil
+		c = residualChart(r, u)
+	default:
+		return chart{}, fmt.Errorf("no plot is called %q: choose one of %q", p, Plots())
 	}
-	return chart{}, fmt.Errorf("no plot is called %q: choose one of %q", p, Plots())
+	if r.Simulated { // a picture alone has no ribbon
+		c.keys = append([]key{{words: "REHEARSAL: made up", line: stroke(ink(), 4, 3, 2)}}, c.keys...)
+	}
+	return c, nil
 }
 
 // draw lays the key out on top and the axes with the data below.

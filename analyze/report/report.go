@@ -11,6 +11,8 @@ package report
 import (
 	"strings"
 	"time"
+
+	"tautramp/analyze"
 )
 
 // Meta is what a report says of the recording and of the program, beside the
@@ -18,18 +20,25 @@ import (
 type Meta struct {
 	File        string    // name of the recording; folders before it are dropped
 	Seal        string    // last good seal, identifies the data
-	Outcome     string    // "complete", "torn" or "corrupt", as reading the file ended
+	Outcome     string    // "complete", "torn" or "corrupt", as reading the file ended; people read "whole", "end missing", "damaged"
 	TailBytes   int64     // bytes after the last good seal, not used
 	Program     string    // name and version of the program that computes the result
 	Recorder    string    // name and version of the program that made the recording
-	Started     time.Time // wall clock at the recording's start, with the zone it was written in
+	Started     time.Time // wall clock at the recording's start, with the zone it was written in; of an imported card, when it was imported
+	Imported    bool      // the lines came from a card or text file: it carries no date
 	ClockFactor float64   // recorded seconds per real second; 0 and 1 are real time, anything else is a rehearsal
 	Continues   string    // seal of the file that this one continues
 	Notes       []string  // what went wrong on the way: lost lines, restarts, clocks
+
+	CautionsShown bool // the reader of Text has had the cautions on the same screen: they are not repeated there
 }
 
-// rehearsed tells a recording made on a scaled clock.
-func (m Meta) rehearsed() bool { return m.ClockFactor != 0 && m.ClockFactor != 1 }
+// scaled tells a recording made on a scaled clock.
+func (m Meta) scaled() bool { return m.ClockFactor != 0 && m.ClockFactor != 1 }
+
+// rehearsed tells that nothing was measured on a mill: a device said so itself,
+// or the clock was scaled.
+func rehearsed(r *analyze.Result, m Meta) bool { return r.Simulated || m.scaled() }
 
 // base is the file's name without folders, whichever way they are written.
 func (m Meta) base() string {

@@ -10,19 +10,22 @@ import (
 
 // runningNote keeps the running band apart from the intervals.
 func runningNote() string {
-	return "Friction lets the band stress wander to one side once it is set. This stands beside the intervals and is not added to them."
+	return "Once it is set, friction lets the band stress drift to one side. This stands beside the intervals and is not added to them."
 }
 
 func runningFacts(r *analyze.Result, u units) []fact {
 	run := r.Running
+	if up, down := run.AfterRisingPa[1], run.AfterFallingPa[0]; !up.Known() && !down.Known() && up.Why == down.Why && !run.MiddlePa.Known() {
+		return []fact{{"After setting it", notKnown + ": " + unknownWhy(up)}, {"Held by", holdText(run.Hold)}}
+	}
 	middle := figureOf(run.MiddlePa, u.stress).String()
 	if run.Hold != mill.HoldMaintained {
 		middle += ", where the pressure is kept up"
 	}
 	return []fact{
-		{"Set rising: change", oneSided(run.AfterRisingPa, u.stress)},
-		{"Set falling: change", oneSided(run.AfterFallingPa, u.stress)},
-		{"Vibration brings to", middle},
+		{"Set rising, may drift by", oneSided(run.AfterRisingPa, u.stress)},
+		{"Set falling, may drift by", oneSided(run.AfterFallingPa, u.stress)},
+		{"Vibration brings it to", middle},
 		{"Held by", holdText(run.Hold)},
 	}
 }
@@ -35,7 +38,7 @@ func oneSided(change [2]estimate.Estimate, u unit) string {
 			return f.String()
 		}
 	}
-	return "from " + signed(low) + " to " + u.with(signed(high))
+	return signed(low) + " to " + u.with(signed(high))
 }
 
 func signed(f figure) string {

@@ -1,6 +1,8 @@
 package report
 
 import (
+	"errors"
+
 	"tautramp/acquire/mill"
 	"tautramp/analyze"
 )
@@ -16,6 +18,7 @@ type sheet struct {
 	Identity    []fact
 	TargetText  string // "9,500 band psi"
 	Limit       string // of the setting
+	NoTarget    string // why there is no setting in either direction; "" where there is one
 	Targets     []aim  // rising, falling
 	Budget      []budgetLine
 	Overshoot   string    // what to do after passing the number
@@ -35,13 +38,14 @@ type sheet struct {
 // newSheet words a result.
 func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 	u := unitsFor(r.Setup.Tensioner, s)
-	rising := aimOf(r, analyze.Rising, u)
+	rising, falling := aimOf(r, analyze.Rising, u), aimOf(r, analyze.Falling, u)
 	return sheet{
 		Title:       titleText(r),
-		Rehearsal:   rehearsalText(m),
+		Rehearsal:   rehearsalText(r, m),
 		Identity:    identity(r, m, u),
 		TargetText:  targetText(r, u),
-		Targets:     []aim{rising, aimOf(r, analyze.Falling, u)},
+		NoTarget:    noTarget(r, rising, falling, s),
+		Targets:     []aim{rising, falling},
 		Budget:      rising.Budget,
 		Limit:       limitText(r, u),
 		Overshoot:   overshootText(r, u),
@@ -57,6 +61,17 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		Cautions:    Cautions(),
 		Units:       u,
 	}
+}
+
+// noTarget is the one reason why neither direction has a setting.
+func noTarget(r *analyze.Result, rising, falling aim, s mill.System) string {
+	if rising.Set.Why == "" || rising.Set.Why != falling.Set.Why {
+		return ""
+	}
+	if out, ok := errors.AsType[*analyze.OutOfRangeError](r.TargetError()); ok {
+		return Explain(out, s)
+	}
+	return rising.Set.Why
 }
 
 func titleText(r *analyze.Result) string {

@@ -34,7 +34,11 @@ func Text(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	p.budget(sh)
 	p.list("Warnings", sh.Warnings)
 	p.list("Not checked", sh.Unchecked)
+	if m.CautionsShown {
+		sh.Cautions = []string{"As shown at the start: they hold for all work on the band, not for this visit alone."}
+	}
 	p.list("Cautions", sh.Cautions)
+	p.answer(sh)
 	return p.w.Flush()
 }
 
@@ -84,6 +88,10 @@ func at(lines []string, i int) string {
 func (p *printer) targets(sh sheet) {
 	p.heading("Setting for the target")
 	p.facts([]fact{{"band stress wanted", sh.TargetText}})
+	if sh.NoTarget != "" {
+		p.facts([]fact{{"set to", notKnown + ": " + sh.NoTarget}, {"never above", sh.Limit}})
+		return
+	}
 	for _, a := range sh.Targets {
 		p.line("")
 		p.para(2, strings.ToUpper(string(a.Direction))+": "+a.How+".")
@@ -95,6 +103,41 @@ func (p *printer) targets(sh sheet) {
 	p.line("")
 	p.para(2, sh.Overshoot)
 	p.facts([]fact{{"never above", sh.Limit}})
+}
+
+// answer repeats what the visit was for, so that it stands at the bottom of the
+// screen.
+func (p *printer) answer(sh sheet) {
+	p.heading("In short")
+	if sh.Rehearsal != "" {
+		p.para(2, "REHEARSAL: set no tensioner by this.")
+	}
+	if sh.NoTarget != "" {
+		p.short("SET TO", notKnown+": "+sh.NoTarget)
+	} else {
+		for i, from := range []string{", come up from below", ", come down from above"} {
+			text := sh.Targets[i].Set.short()
+			if sh.Targets[i].Set.Why == "" {
+				text += from
+			}
+			p.short(strings.ToUpper(string(sh.Targets[i].Direction)), text)
+		}
+	}
+	p.short("NEVER ABOVE", sh.Limit)
+	grade := sh.Verdict.Word
+	if n := len(sh.Warnings); n > 0 {
+		grade += fmt.Sprintf("; %d warnings above", n)
+	}
+	p.short("GRADE", strings.Replace(grade, " 1 warnings", " 1 warning", 1))
+}
+
+// short is a line of the answer; a long value is wrapped.
+func (p *printer) short(label, value string) {
+	const labelWidth = 14
+	lines := wrap(value, columns-labelWidth-2)
+	for i, l := range lines {
+		p.line(fmt.Sprintf("  %-*s%s", labelWidth, map[bool]string{true: label}[i == 0], l))
+	}
 }
 
 func intervalText(i interval) string {

@@ -94,7 +94,7 @@ func TestWithoutZeroEveryStressSaysWhy(t *testing.T) {
 		}
 	}
 	out := joined(string(written(t, func(b *bytes.Buffer) error { return Text(b, r, t1Meta(), mill.US) })))
-	for _, want := range []string{"set to not known:", "the number to drop to is not known:", "Zero not known", "W, lifted weight not known:", "mu, in proportion 0.04"} {
+	for _, want := range []string{"set to not known:", "Zero not known", "W, lifted weight not known:", "mu, friction in proportion 0.04"} {
 		if !strings.Contains(out, want) {
 			t.Errorf("lacks %q", want)
 		}
