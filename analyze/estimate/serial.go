@@ -2,16 +2,6 @@ package estimate
 
 import "math"
 
-// Lag1 is the lag-1 autocorrelation of a series about its mean; 0 where it does
-// not vary.
-func Lag1(v []float64) float64 {
-	r, ok := autocorrelation(v)
-	if !ok || len(v) < 2 {
-		return 0
-	}
-	return r(1)
-}
-
 // autocorrelation gives the correlation at a lag; ok is false where the series
 // does not vary.
 func autocorrelation(v []float64) (at func(lag int) float64, ok bool) {
