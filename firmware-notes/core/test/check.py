@@ -248,6 +248,26 @@ class Conduct(unittest.TestCase):
                 self.assertEqual(d.hear(line[:cut]), b"")
                 self.assertEqual(records(d.hear(line[cut:])), [["echo", "5a", "00000000"]])
 
+    def test_no_answer_to_what_is_no_line_or_no_word(self):
+        bodies = (b"jump 01 \x07", b"jump 01 \x7f", b"jump 01 \xe9", b"abcdefghi 01", b"j 01", b"jump 0A", b"jump 0`", b" jump 01")
+        with desk() as d:
+            d.boot(running=1)
+            for body in bodies:
+                self.assertEqual(d.command(body), b"", body)
+            self.assertEqual(records(d.command("abcdefgh 01")), [["wont", "01", "abcdefgh", "unknown"]])
+            beat = of("beat", records(d.do("pass 1000000 1000")))[0]
+            self.assertEqual(int(beat[4], 16), sum(len(b) + 6 for b in bodies))
+
+    def test_a_second_command_waits_for_the_answer_to_the_first(self):
+        with desk() as d:
+            d.boot()
+            d.do("room 0")
+            d.do("hear " + sealed("echo 11").hex())
+            d.do("hear " + sealed("run 22").hex())  # given up by the board's own ring
+            d.do("room 255")
+            self.assertEqual(records(d.do("poll")), [["echo", "11", "00000000"]])
+            self.assertEqual(records(d.command("rest 33")), [["did", "33", "rest"]])
+
     def test_bytes_lost_on_the_board_are_counted(self):
         with desk() as d:
             d.boot(running=1)
