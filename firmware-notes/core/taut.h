@@ -146,7 +146,8 @@ void taut_start(struct taut *t, enum taut_cause cause, uint8_t running);
 uint8_t taut_hear(struct taut *t, char byte, uint32_t tick);
 
 /* Counts n bytes from the host that were lost on the board. They are part of
- * commands that get no answer. */
+ * commands that get no answer. Hear an LF in their place, so that half a command
+ * does not spoil the next. */
 void taut_lost(struct taut *t, uint8_t n);
 
 /* 1 while samples are wanted. */

@@ -16,7 +16,7 @@
 
 static volatile char in[IN_SIZE], out[256];
 static volatile uint8_t in_head, in_tail, out_head, out_tail; /* head: where the next goes */
-static volatile uint8_t lost;
+static volatile uint8_t gap, lost;
 static volatile uint32_t line_tick;
 
 void uart_start(void)
@@ -27,10 +27,19 @@ void uart_start(void)
 	UCSR0B = _BV(RXEN0) | _BV(TXEN0) | _BV(RXCIE0);
 }
 
+/* An LF takes the place of the first of the bytes that are lost in a row, so that
+ * half a command does not spoil the next one. */
 static void lose_one(void)
 {
-	if (lost != 255)
+	if (!gap)
+		gap = 1;
+	else if (lost != 255)
 		lost++;
+}
+
+static uint8_t in_room(void)
+{
+	return (uint8_t)(IN_SIZE - (uint8_t)(in_head - in_tail));
 }
 
 /* The error bits belong to the byte that is read after them; both must be read, or
@@ -42,7 +51,11 @@ ISR(USART_RX_vect)
 
 	if (errors & _BV(DOR0))
 		lose_one();
-	if ((uint8_t)(in_head - in_tail) == IN_SIZE) {
+	if (gap && in_room() >= 2) {
+		in[in_head++ & (IN_SIZE - 1)] = '\n';
+		gap = 0;
+	}
+	if (gap || !in_room()) {
 		lose_one();
 		return;
 	}

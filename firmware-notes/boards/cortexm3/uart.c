@@ -17,7 +17,7 @@ enum { OUT_DONE = 1, IN_DONE = 2 };                             /* interrupt */
 struct in_ring {
 	char byte[IN_SIZE];
 	uint32_t tick[IN_SIZE];
-	uint8_t head, tail;
+	uint8_t head, tail, gap;
 };
 
 static struct in_ring in[2];
@@ -42,10 +42,26 @@ void uart_start(void)
 	interrupt_enable(2);
 }
 
+static uint8_t room_in(const struct in_ring *ring)
+{
+	return (uint8_t)(IN_SIZE - (uint8_t)(ring->head - ring->tail));
+}
+
+/* An LF takes the place of the first of the bytes that are lost in a row, so that
+ * half a command does not spoil the next one. */
 static void lose_one(int n)
 {
-	if (n == HOST && lost != 255)
+	if (!in[n].gap)
+		in[n].gap = 1;
+	else if (n == HOST && lost != 255)
 		lost++;
+}
+
+static void put_in(struct in_ring *ring, char byte)
+{
+	ring->byte[ring->head % IN_SIZE] = byte;
+	ring->tick[ring->head % IN_SIZE] = clock_now();
+	ring->head++;
 }
 
 static void byte_in(int n)
@@ -61,13 +77,14 @@ static void byte_in(int n)
 			lose_one(n);
 		}
 		byte = (char)LINE(n)->data;
-		if ((uint8_t)(ring->head - ring->tail) == IN_SIZE) {
-			lose_one(n);
-			continue;
+		if (ring->gap && room_in(ring) >= 2) {
+			put_in(ring, '\n');
+			ring->gap = 0;
 		}
-		ring->byte[ring->head % IN_SIZE] = byte;
-		ring->tick[ring->head % IN_SIZE] = clock_now();
-		ring->head++;
+		if (ring->gap || !room_in(ring))
+			lose_one(n);
+		else
+			put_in(ring, byte);
 	}
 }
 
