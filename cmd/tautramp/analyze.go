@@ -28,10 +28,11 @@ func runAnalyze(_ context.Context, args []string, e env) error {
 	if err != nil {
 		return err
 	}
-	return analyzeFile(fs.Arg(0), r, system, target, e)
+	return analyzeFile(fs.Arg(0), r, system, target, false, e)
 }
 
-func analyzeFile(path string, r resultFlags, system mill.System, target mill.Pressure, e env) error {
+// analyzeFile computes a recording's result and puts it where the flags say.
+func analyzeFile(path string, r resultFlags, system mill.System, target mill.Pressure, cautionsShown bool, e env) error {
 	if err := refuseSame(path, r.outputs()...); err != nil {
 		return err
 	}
@@ -39,11 +40,22 @@ func analyzeFile(path string, r resultFlags, system mill.System, target mill.Pre
 	if err != nil {
 		return err
 	}
+	meta.CautionsShown = cautionsShown
 	if err := r.write(res, meta, system, e); err != nil {
 		return err
 	}
 	if err := res.TargetError(); err != nil {
-		return fmt.Errorf("%s: %w", path, err) // written all the same: the rest of the figures stands
+		// What was written stands: the other figures are good.
+		return fmt.Errorf("%s: %w", path, &explainedError{report.Explain(err, system), err})
 	}
 	return nil
 }
+
+// explainedError is an error told in the reader's units.
+type explainedError struct {
+	text string
+	err  error
+}
+
+func (e *explainedError) Error() string { return e.text }
+func (e *explainedError) Unwrap() error { return e.err }

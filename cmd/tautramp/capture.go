@@ -5,7 +5,6 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"io"
 	"os"
 	"path/filepath"
 	"strings"
@@ -90,7 +89,7 @@ func finish(path string, visitErr error, r resultFlags, system mill.System, targ
 	if visitErr != nil && !onlyAlarm(visitErr) {
 		return visitErr
 	}
-	return errors.Join(analyzeFile(path, r, system, target, e), visitErr)
+	return errors.Join(analyzeFile(path, r, system, target, true, e), visitErr)
 }
 
 // onlyAlarm is true where the visit itself went well but for an alarm.

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"path/filepath"
+	"time"
 
 	"github.com/spf13/pflag"
 
@@ -95,7 +96,7 @@ func computeResult(path string, target mill.Pressure) (*analyze.Result, report.M
 	}
 	res, err := analyze.Analyze(analyze.Input{
 		Profile: rec.Header.Parsed, Tensioner: rec.Header.Tensioner, Band: rec.Header.Band,
-		Target: target, Set: set,
+		Target: target, Set: set, Day: measuredOn(rec.Header),
 	})
 	if err != nil {
 		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
@@ -103,11 +104,19 @@ func computeResult(path string, target mill.Pressure) (*analyze.Result, report.M
 	return res, reportMeta(path, rec, set), nil
 }
 
+// measuredOn is the day of the measurement; a memory card carries none.
+func measuredOn(h recording.Header) time.Time {
+	if h.Source == recording.Imported {
+		return time.Time{}
+	}
+	return h.Started
+}
+
 func reportMeta(path string, rec *recording.Recording, set *pairing.Set) report.Meta {
 	meta := report.Meta{
 		File: filepath.Base(path), Seal: rec.Seal, Outcome: string(rec.Outcome), TailBytes: rec.TailBytes,
 		Program: programVersion(), Recorder: rec.Header.Program,
-		Started: rec.Header.Started, ClockFactor: rec.Header.ClockFactor, Continues: rec.Header.Continues,
+		Started: rec.Header.Started, Imported: rec.Header.Source == recording.Imported, ClockFactor: rec.Header.ClockFactor, Continues: rec.Header.Continues,
 		Notes: append([]string(nil), set.Warnings...),
 	}
 	for _, c := range set.Counters {
