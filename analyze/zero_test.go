@@ -200,7 +200,10 @@ func TestUnknownDisplayAddsHalfACountToTheZero(t *testing.T) {
 // A truncating display shows 0 from one count below zero to one above: SPEC 6.4.
 // Where it was zeroed on the slack band, that is what hides the zero.
 func TestZeroOfATruncatingDisplayHoldsTheTruth(t *testing.T) {
-	const rigs = 50
+	rigs := 50
+	if testing.Short() {
+		rigs = 25
+	}
 	hits, wide := 0, 0
 	for seed := range uint64(rigs) {
 		b := newBench(seed + 400)
@@ -214,12 +217,10 @@ func TestZeroOfATruncatingDisplayHoldsTheTruth(t *testing.T) {
 		if c.Zero.System > 0.6*b.countM {
 			wide++
 		}
-		b = newBench(seed + 400)
-		b.shows, b.plan, b.zeroM = protocol.ShowsTruncated, pairing.Plan{Ramps: 1}, 12.3*b.countM
-		if c = analyzed(t, b.measure(cycles(smooth, 1, 0, 860))).Cycles[0]; math.Abs(c.Zero.System-b.countM/math.Sqrt(12)) > 1e-3*b.countM {
-			t.Fatalf("away from 0 the doubt is %.3f counts", c.Zero.System/b.countM)
-		}
 	}
+	b := newBench(400)
+	b.shows, b.zeroM = protocol.ShowsTruncated, 12.3*b.countM
+	near(t, "doubt away from 0", analyzed(t, b.measure(cycles(smooth, 3, 0, 860))).Cycles[1].Zero.System, b.countM/math.Sqrt(12), 1e-9)
 	// A count of noise-free doubt on either side: 0.58 counts standard.
 	if hits < leastHits(rigs) || wide > 0 {
 		t.Errorf("the interval holds the zero in %d of %d, is too wide in %d", hits, rigs, wide)

@@ -21,6 +21,7 @@ func textOf(t testing.TB, r *analyze.Result, m Meta, s mill.System) string {
 // A rehearsal must not look like a mill, whatever clock it ran on.
 func TestRehearsalIsSaidForEitherReason(t *testing.T) {
 	const made, scaled = "a device says that what it measures is made up", "the clock was scaled, 60 recorded seconds in one real second"
+	r := t1(t)
 	for _, c := range []struct {
 		simulated bool
 		factor    float64
@@ -28,7 +29,7 @@ func TestRehearsalIsSaidForEitherReason(t *testing.T) {
 	}{
 		{false, 1, nil}, {false, 0, nil}, {true, 1, []string{made}}, {false, 60, []string{scaled}}, {true, 60, []string{made, scaled}},
 	} {
-		r, m := t1(t), t1Meta()
+		m := t1Meta()
 		r.Simulated, m.ClockFactor = c.simulated, c.factor
 		for _, name := range []string{"text", "html", "loop", "json", "csv"} {
 			out := joined(string(written(t, func(b *bytes.Buffer) error { return writers(mill.US, m)[name](b, r) })))
@@ -72,6 +73,7 @@ func TestImportedCardHasNoDate(t *testing.T) {
 }
 
 func TestFileAndVisitSayHowTheyEnded(t *testing.T) {
+	r := t1(t)
 	for _, c := range []struct {
 		outcome string
 		tail    int64
@@ -86,7 +88,7 @@ func TestFileAndVisitSayHowTheyEnded(t *testing.T) {
 		{"torn", 0, "", "end missing", "end-missing", "what came after the last good seal is not used"},
 		{"corrupt", 9, "", "damaged: the last 9 bytes", "recording-damaged", "9 bytes after the last good seal are not used"},
 	} {
-		r, m := t1(t), t1Meta()
+		m := t1Meta()
 		r.Ended, m.Outcome, m.TailBytes = c.ended, c.outcome, c.tail
 		if out := joined(textOf(t, r, m, mill.US)); !strings.Contains(out, c.says) || !strings.Contains(out, c.warning) {
 			t.Errorf("%s: lacks %q or %q", c.outcome, c.says, c.warning)
