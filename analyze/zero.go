@@ -4,7 +4,6 @@ import (
 	"math"
 
 	"tautramp/analyze/estimate"
-	"tautramp/protocol"
 )
 
 // The conventions of the zero.
@@ -22,7 +21,7 @@ func (w *work) zeroStdM() float64 {
 	switch {
 	case !w.set.Extension.CutKnown():
 		return math.Hypot(std, w.setup.CountM/2/math.Sqrt(3))
-	case w.set.Extension.Spec.Shows == protocol.ShowsTruncated && w.zeroOnNought():
+	case w.set.Extension.CutsOff() && w.zeroOnNought():
 		return 2 * std
 	}
 	return std

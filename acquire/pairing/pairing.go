@@ -113,8 +113,12 @@ type Set struct {
 // are.
 type Plan struct{ Exercise, Ramps int }
 
+// CutsOff tells whether the channel's display is known to cut off its last
+// digit: its 0 then stands for two counts, from below zero to above (SPEC 6.4).
+func (c Channel) CutsOff() bool { return c.Spec.Shows == protocol.ShowsTruncated }
+
 // CutKnown tells whether the channel's display is known to round or to cut off
 // its last digit. Where it is not, half a count more is in doubt.
 func (c Channel) CutKnown() bool {
-	return c.Spec.Shows == protocol.ShowsRounded || c.Spec.Shows == protocol.ShowsTruncated
+	return c.Spec.Shows == protocol.ShowsRounded || c.CutsOff()
 }
