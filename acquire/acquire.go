@@ -74,8 +74,8 @@ func (c *Config) leastWaits() {
 		usual, real time.Duration
 	}{
 		{&c.BootWait, 2500 * time.Millisecond, 0},
-		{&c.AnswerWait, time.Second, 250 * time.Millisecond},
-		{&c.SilentAfter, 3 * time.Second, 100 * time.Millisecond},
+		{&c.AnswerWait, time.Second, time.Second},
+		{&c.SilentAfter, 3 * time.Second, 2 * time.Second},
 		{&c.GiveUpAfter, 20 * time.Second, 2 * time.Second},
 		{&c.EchoEvery, 30 * time.Second, 500 * time.Millisecond},
 	} {

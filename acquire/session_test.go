@@ -305,7 +305,7 @@ func TestWaitsOfAFastClockStayReal(t *testing.T) {
 	for factor, want := range map[float64]Config{
 		1: {BootWait: 2500 * time.Millisecond, AnswerWait: time.Second, SilentAfter: 3 * time.Second,
 			GiveUpAfter: 20 * time.Second, EchoEvery: 30 * time.Second},
-		100: {BootWait: 2500 * time.Millisecond, AnswerWait: 25 * time.Second, SilentAfter: 10 * time.Second,
+		100: {BootWait: 2500 * time.Millisecond, AnswerWait: 100 * time.Second, SilentAfter: 200 * time.Second,
 			GiveUpAfter: 200 * time.Second, EchoEvery: 50 * time.Second},
 	} {
 		got := Config{Clock: NewClock(factor)}

@@ -14,7 +14,8 @@ const (
 	underClear  = 0.10 // of the limit: by so much the setting must come down after an under-reading
 	blindS      = 1.5  // without a good reading
 	blindPeriod = 5.0  // or so many sample periods, whichever is longer
-	blindHeldS  = 0.3  // real s that this must last: what waited in a queue comes at once
+	blindHeldS  = 0.3  // real s that this must last: what waited in a queue comes at once,
+	rehearsedS  = 2.0  // and so many on a faster clock, where every hiccup of the computer is long
 	risingS     = 3.0  // the setting counts as rising for so long after it last did
 )
 
@@ -99,7 +100,7 @@ func (a *alarms) short(setting float64) { a.raise(UnderReading, setting, a.site.
 
 // missing is a channel that cannot be read, or nil: unseen for long enough.
 func (a *alarms) missing(now float64) *seen {
-	if now-a.lackAt >= blindHeldS*a.factor {
+	if now-a.lackAt >= a.heldS() {
 		return a.unseen(now)
 	}
 	return nil // also while nothing lacks: lackAt is not a number then
@@ -113,6 +114,14 @@ func (a *alarms) unseen(now float64) *seen {
 		}
 	}
 	return nil
+}
+
+// heldS is how long readings must stay away, in seconds of the clock.
+func (a *alarms) heldS() float64 {
+	if a.factor > 1 {
+		return rehearsedS * a.factor
+	}
+	return blindHeldS * a.factor
 }
 
 func (s *seen) patience() float64 { return max(blindS, blindPeriod*s.period) }
@@ -130,7 +139,7 @@ func (a *alarms) time(now float64) {
 	}
 	a.stays(Blind)
 	a.lackAt = orElse(a.lackAt, now)
-	if a.missing(now) != nil && now-a.rising <= risingS+s.patience()+blindHeldS*a.factor {
+	if a.missing(now) != nil && now-a.rising <= risingS+s.patience()+a.heldS() {
 		a.raise(Blind, math.NaN(), a.site.blindText(*s))
 	}
 }
