@@ -28,6 +28,9 @@ func TestPhaseAgreesWithTheRate(t *testing.T) {
 				if math.IsNaN(rate) {
 					return
 				}
+				if k.stage == atRest && (k.phase == analyze.Loading || k.phase == analyze.Seating) {
+					t.Fatalf("at %.2f s: %q before the rise has begun", now, k.phase)
+				}
 				if b, ok := signs[k.phase]; ok && (rate < b[0] || rate > b[1]) {
 					moving[k.phase]++
 					if moving[k.phase] == 1 {
