@@ -36,6 +36,7 @@ func rooms() map[string][]string {
 		"acquire/port/porttest": {"acquire/port"},
 		"acquire/simrig":        {"protocol", "acquire/mill"},
 		"acquire":               {"protocol", "acquire/mill", "acquire/recording"},
+		"firmware-notes/sim":    {"protocol", "acquire/mill", "acquire/simrig", sys},
 		"analyze/estimate":      {gonum},
 		"analyze":               {"acquire/mill", "acquire/pairing", "analyze/estimate"},
 		"analyze/report":        {"acquire/mill", "analyze", "analyze/estimate", gonum, plot},
