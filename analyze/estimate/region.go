@@ -1,0 +1,134 @@
+package estimate
+
+import (
+	"fmt"
+	"math"
+)
+
+// Shape is what a region is taken for.
+type Shape string
+
+// The shapes. A region is curved when its bend is told from none at 1 % and is
+// worth telling, straight when its bend's 95 % interval stays within what is not
+// worth telling, and else unsettled.
+const (
+	Unsettled Shape = "unsettled"
+	Straight  Shape = "straight"
+	Curved    Shape = "curved"
+)
+
+// Region is the part of a series that one line describes.
+type Region struct {
+	From, To float64 // of x; a change of slope lies below From or above To, or the data end there
+	Found    Segments
+	Shape    Shape
+	// Bend is how far a parabola through the region leaves its own chord in the
+	// middle, as a share of the range of y there: positive when it sags below.
+	Bend Estimate
+}
+
+// worthTelling is the bend that matters, as a share of the range of y.
+const worthTelling = 0.005
+
+// StraightWithin is the straight part of a series with a toe below or an end
+// stop or knee above it, or both: the widest of up to three lines (FitSegments),
+// its low end moved up and its high end moved down past what is rounded there
+// (StraightAbove). x and y are in the order in which they were read. Errors as
+// FitStick.
+func StraightWithin(x, y []float64) (Region, error) {
+	found, err := FitSegments(x, y)
+	if err != nil {
+		return Region{}, err
+	}
+	r := Region{Found: found, From: Quantile(x, 0), To: Quantile(x, 1), Shape: Unsettled}
+	i := found.Main(r.From, r.To)
+	_, r.To = found.ends(i, r.From, r.To)
+	if i > 0 {
+		bx, by := between(x, y, r.From, r.To)
+		if r.From, _, err = StraightAbove(bx, by); err != nil {
+			return Region{}, err
+		}
+	}
+	if i+1 < len(found.Lines) {
+		bx, by := between(x, y, r.From, r.To)
+		for k := range bx {
+			bx[k] = -bx[k]
+		}
+		low, _, err := StraightAbove(bx, by)
+		if err != nil {
+			return Region{}, err
+		}
+		r.To = -low
+	}
+	bx, by := between(x, y, r.From, r.To)
+	if r.Bend, err = FitBend(bx, by); err != nil {
+		return Region{}, err
+	}
+	r.Shape = shapeOf(r.Bend)
+	return r, nil
+}
+
+func between(x, y []float64, from, to float64) (bx, by []float64) {
+	for i := range x {
+		if x[i] >= from && x[i] <= to {
+			bx, by = append(bx, x[i]), append(by, y[i])
+		}
+	}
+	return bx, by
+}
+
+func shapeOf(bend Estimate) Shape {
+	lo, hi := bend.RandomInterval95()
+	told := math.Abs(bend.Value) > Student(0.99, bend.DoF)*bend.Random
+	switch {
+	case told && math.Abs(bend.Value) > worthTelling:
+		return Curved
+	case lo > -worthTelling && hi < worthTelling:
+		return Straight
+	}
+	return Unsettled
+}
+
+// FitBend is how far a least-squares parabola leaves its chord at the middle of
+// x, as a share of the range of y, serial dependence allowed for. The ratio of
+// its value to Random is the t, and its square the F, of the parabola against
+// the line. Needs five points. Errors as FitLine.
+func FitBend(x, y []float64) (Estimate, error) {
+	l, err := FitLine(x, y)
+	if err != nil {
+		return Estimate{}, err
+	}
+	if len(x) < 5 {
+		return Estimate{}, fmt.Errorf("fit a bend: %d points where 5 are needed: %w", len(x), ErrTooFew)
+	}
+	low, high := Quantile(x, 0), Quantile(x, 1)
+	square := make([]float64, len(x)) // 1 at the ends, 0 in the middle, less its own line
+	for i := range x {
+		u := (2*x[i] - low - high) / (high - low)
+		square[i] = u * u
+	}
+	own, err := FitLine(x, square)
+	if err != nil {
+		return Estimate{}, err
+	}
+	square, rest := residuals(x, square, own.A, own.B), residuals(x, y, l.A, l.B)
+	var qq, qr float64
+	for i, q := range square {
+		qq += q * q
+		qr += q * rest[i]
+	}
+	if !(qq > 0) {
+		return Estimate{}, fmt.Errorf("fit a bend: %w", ErrNoSpread)
+	}
+	c, rss := qr/qq, 0.0
+	for i := range rest {
+		rest[i] -= c * square[i]
+		rss += rest[i] * rest[i]
+	}
+	tau := Dependence(rest)
+	span := math.Max(Quantile(y, 1)-Quantile(y, 0), math.SmallestNonzeroFloat64)
+	return Estimate{
+		Value: c / span, Random: math.Sqrt(rss/float64(len(x)-3)*tau/qq) / span,
+		DoF: math.Max(1, float64(len(x))/tau-3), Method: "parabola against the line",
+	}, nil
+}
