@@ -40,7 +40,7 @@ func (s Signals) Readings(done <-chan struct{}, w io.Writer, untilS float64) ([]
 			return list, nil
 		}
 		pressure, extension := s.At(now)
-		fed := []Fed{{now, 'a', int32(math.Round(pressure / (0.05 * psiPa)))}}
+		fed := []Fed{{now, 'a', int32(math.Round((pressure + s.NoisePa*rng.NormFloat64()) / (0.05 * psiPa)))}}
 		if i%displayEvery == 0 {
 			fed = append(fed, Fed{now, 'b', int32(math.Round((extension + s.ZeroM + s.NoiseM*rng.NormFloat64()) / 1e-6))})
 		}

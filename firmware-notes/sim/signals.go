@@ -21,6 +21,7 @@ type Signals struct {
 	StartS  float64
 	ZeroM   float64 // what the indicator shows of a slack band
 	NoiseM  float64 // of the indicator, standard deviation
+	NoisePa float64 // of a digital pressure sensor, standard deviation
 	Seed    uint64  // of that noise
 }
 

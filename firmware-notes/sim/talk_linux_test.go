@@ -180,7 +180,9 @@ func countRefused(stream []byte) (n int) {
 }
 
 // TestImagesOutliveAFlood sends 500 commands without waiting for an answer, which
-// no host may (SPEC 7.1). Each is answered or its bytes are counted.
+// no host may (SPEC 7.1). The board lives on, answers the next good command, and has
+// counted bytes of those that it has not answered, and no others. How many it
+// cannot know: an overrun of the receiver hides how much it has lost.
 func TestImagesOutliveAFlood(t *testing.T) {
 	onEveryBoard(t, func(k *talk) {
 		k.booted()
@@ -208,9 +210,10 @@ func TestImagesOutliveAFlood(t *testing.T) {
 		// Where the last LF was lost the next line is spoiled too: this one. It is
 		// empty and not counted otherwise.
 		k.say([]byte("\n"))
-		refused := int(k.beat().Refused) - (commands-echoes)*bytesEach
-		if refused != 0 && refused != 1 || echoes == 0 {
-			k.Errorf("%d bytes more refused than were not answered", refused)
+		refused, unanswered := int(k.beat().Refused), (commands-echoes)*bytesEach
+		k.Logf("%d bytes refused of %d that were not answered", refused, unanswered)
+		if echoes == 0 || refused > unanswered+1 || unanswered > 0 && refused < unanswered/3 {
+			k.Error("that is too many or too few")
 		}
 	})
 }

@@ -260,6 +260,7 @@ func TestACortexMMeasuresATensioner(t *testing.T) {
 		d.Ramps, d.RatePaS, d.LowPa, d.ExercisePa, d.RestS, d.HoldTopS, d.HoldLowS = 1, 50*psi, psi, 250*psi, 3, 2, 4
 	})
 	s := signals(t, rig, 6)
+	s.NoisePa = psi / 2
 	pair, err := port.NewPair()
 	if err != nil {
 		t.Skip(err)
