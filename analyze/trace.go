@@ -81,9 +81,20 @@ func (tr *trace) mean(a, b float64) float64 {
 	return tr.base + (tr.sum[j]-tr.sum[i])/float64(j-i)
 }
 
-// smooth is the setting about t.
+// smooth is the setting about t; in a hole wider than the window it lies on
+// the line between the values on both sides.
 func (tr *trace) smooth(t float64) float64 {
-	return tr.mean(t-tr.windowS/2, t+tr.windowS/2)
+	if m := tr.mean(t-tr.windowS/2, t+tr.windowS/2); finite(m) {
+		return m
+	}
+	i := tr.at(t)
+	switch last := len(tr.t) - 1; {
+	case i < 0:
+		return tr.p[0]
+	case i >= last:
+		return tr.p[last]
+	}
+	return tr.p[i] + (tr.p[i+1]-tr.p[i])*(t-tr.t[i])/(tr.t[i+1]-tr.t[i])
 }
 
 // gain is how much the setting changes about t: the mean over the window after

@@ -25,6 +25,10 @@ const (
 	demoBand      = "QW-6"
 )
 
+// queueBytes may wait for the line on each board in life; a faster clock lets as
+// much more wait.
+const queueBytes = 1 << 18
+
 // rigOptions is one rehearsal rig as asked for on the command line; the demo
 // uses them too.
 type rigOptions struct {
@@ -111,6 +115,10 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 		Law:    simrig.Law{Kind: simrig.LawKind(o.law)},
 		Drive:  simrig.Drive{Shape: simrig.Shape(o.shape), Exercise: noneIfZero(o.exercise), Ramps: noneIfZero(o.ramps), Repeat: true},
 		Boards: make([]simrig.BoardSpec, o.boards),
+	}
+	for i := range c.Boards {
+		// A computer that is busy for a second holds a fast rehearsal up for a minute.
+		c.Boards[i].QueueBytes = int(queueBytes * max(1, o.speed))
 	}
 	if o.boards == 2 {
 		c.Boards[1].TickPPM = o.ppm
