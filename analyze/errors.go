@@ -38,6 +38,14 @@ func (e *OutOfRangeError) Error() string {
 		}
 		return strconv.FormatFloat(unit.FromSI(si), 'f', 1, 64) + " " + unit.Name
 	}
-	return fmt.Sprintf("%s: %s lies outside the captured range, %s to %s: ramp far enough past it, never past the maker's limit",
-		e.What, show(e.Want), show(e.Low), show(e.High))
+	return fmt.Sprintf("%s: %s lies outside the captured range, %s to %s: %s",
+		e.What, show(e.Want), show(e.Low), show(e.High), e.Advice())
+}
+
+// Advice is what to do about it.
+func (e *OutOfRangeError) Advice() string {
+	if e.Want < e.Low {
+		return "no straight line was captured so low; ask for more"
+	}
+	return "ramp far enough past it, never past the maker's limit"
 }

@@ -129,7 +129,7 @@ func (w *work) warnTarget() {
 		return
 	}
 	if _, ok := w.res.TargetError().(*OutOfRangeError); ok {
-		w.warn("target-out-of-range", "The target lies outside the captured range on one branch or both. Ramp further past it, never past the maker's limit.")
+		w.warn("target-out-of-range", "The target lies outside the captured range on one branch or both. One above it needs a longer ramp, never past the maker's limit; one below it lies where the band is still seating.")
 	}
 	if at := w.res.AtRising.SettingSI; w.setup.LimitSI > 0 && at.Known() && at.Value > w.setup.LimitSI {
 		w.warn("target-over-limit", "The setting for the target lies above the tensioner's limit: do not set it.")

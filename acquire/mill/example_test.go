@@ -123,7 +123,7 @@ func TestCautionsNameTheDoubt(t *testing.T) {
 		{"short rig", `gauge_length = "20.00 in"`, `gauge_length = "20 mm"`, "gauge length 20 mm"},
 		{"aluminium bar", `material = "steel"`, `material = "aluminium"`, "a bar of aluminium"},
 		{"no limit", `limit = "0.003 mm"`, ``, "instrument digital indicator: no limit"},
-		{"no due day", `due = "2026-12-01"`, ``, "instrument digital indicator: no day"},
+		{"no due day", `due = "2027-02-01"`, ``, "instrument digital indicator: no day"},
 		{"no instrument", `measures = "extension"`, `measures = "setting"`, "no instrument for the stretch"},
 	} {
 		t.Run(c.name, func(t *testing.T) {

@@ -36,14 +36,26 @@ func (d *device) warnings() []string {
 	if d.counters.Backward > 0 {
 		say("%d readings were not later than the one before and are left out", d.counters.Backward)
 	}
-	if len(d.segments) > 1 {
+	if parts := d.sampledParts(); parts > 1 {
 		if d.seg.hasAt {
-			say("its clock ran in %d parts; nothing is interpolated between them", len(d.segments))
+			say("its clock ran in %d parts; nothing is interpolated between them", parts)
 		} else {
-			say("its clock ran in %d parts; how long it was off between them is not known", len(d.segments))
+			say("its clock ran in %d parts; how long it was off between them is not known", parts)
 		}
 	}
 	return out
+}
+
+// sampledParts counts the stretches of the clock that hold readings. A boot line
+// that waited in the port since before the capture makes one that holds none.
+func (d *device) sampledParts() int {
+	n := 0
+	for _, s := range d.segments {
+		if s.after != [letters]int64{} {
+			n++
+		}
+	}
+	return n
 }
 
 func rateWarnings(clocks []ClockFit) []string {

@@ -22,7 +22,7 @@ const SyncInterval = 500 * time.Millisecond
 
 const (
 	flushBytes = 64 << 10 // buffered bytes handed to the file early
-	blockBytes = 1 << 20  // a block this long is sealed without waiting for Tick
+	blockBytes = 1 << 16  // a block this long is sealed without waiting for Tick
 )
 
 // Writer writes one recording. It is for one goroutine. The first error of the

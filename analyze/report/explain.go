@@ -27,6 +27,6 @@ func Explain(err error, s mill.System) string {
 		return err.Error()
 	}
 	show := func(x float64) string { return grouped(fixed(x, uncertaintyDecimals(largest)+2)) } // four digits of the largest
-	return fmt.Sprintf("%s lies outside %s to %s, the range captured %s: ramp far enough past it, never past the maker's limit",
-		in.with(show(want)), show(low), in.with(show(high)), out.Direction)
+	return fmt.Sprintf("%s lies outside %s to %s, the range captured %s: %s",
+		in.with(show(want)), show(low), in.with(show(high)), out.Direction, out.Advice())
 }

@@ -270,7 +270,7 @@ func operatorKeys(e env) (<-chan recording.Event, func()) {
 }
 
 // keyHelp stands above every capture.
-const keyHelp = "KEYS  z Enter: the band is slack now   m Enter: mark   u Enter: undo   Ctrl-C: end"
+const keyHelp = "KEYS  z Enter: band slack now  m Enter: mark  u Enter: undo  Ctrl-C: end"
 
 func keyEvent(key string) (recording.Event, bool) {
 	switch {

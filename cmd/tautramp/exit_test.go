@@ -36,6 +36,7 @@ func TestEachClassOfErrorHasItsExitCode(t *testing.T) {
 		{&recording.CorruptError{Offset: 9}, 8},
 		{analyze.ErrTooFewPairs, 9},
 		{analyze.ErrNoCycle, 9},
+		{analyze.ErrNoZero, 14},
 		{pairing.ErrNoExtension, 9},
 		{pairing.ErrNoTime, 9},
 		{&analyze.OutOfRangeError{What: "band stress"}, 10},

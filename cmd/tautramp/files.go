@@ -51,10 +51,11 @@ func checkOutputs(paths []string) error {
 		if path == "" {
 			continue
 		}
-		if seen[path] {
+		clean := filepath.Clean(path)
+		if seen[clean] {
 			return &usageError{fmt.Sprintf("two results cannot both go to %s", path)}
 		}
-		seen[path] = true
+		seen[clean] = true
 		if path == "-" {
 			continue
 		}

@@ -78,7 +78,7 @@ func (s *screen) redraws() bool { return s.e.columns > 0 }
 // fall.
 func (s *screen) paint(now visit.Status) string {
 	if now.Alarm == visit.NoAlarm {
-		return s.cut(s.figures(now))
+		return s.cut(s.fitting(now))
 	}
 	text := "STOP  " + s.show(now.SettingSI, s.role, 0, "gauge") + "  release slowly"
 	return "\a\x1b[7m" + s.cut(text) + "\x1b[0m"
@@ -119,10 +119,28 @@ func (s *screen) line(text string) {
 		fmt.Fprint(s.e.stderr, "\r\x1b[K")
 		s.open = false
 	}
-	fmt.Fprintln(s.e.stderr, text)
+	width := s.e.columns - 1
+	if !s.redraws() {
+		width = len(text) + 1
+	}
+	for _, line := range wrap(text, width) {
+		fmt.Fprintln(s.e.stderr, line)
+	}
 }
 
-func (s *screen) figures(now visit.Status) string {
+func (s *screen) figures(now visit.Status) string { return strings.Join(s.fields(now), "  ") }
+
+// fitting is as many whole figures as stand in one row: half a number misleads.
+func (s *screen) fitting(now visit.Status) string {
+	fields := s.fields(now)
+	for len(fields) > 1 && len(strings.Join(fields, "  ")) >= s.e.columns {
+		fields = fields[:len(fields)-1]
+	}
+	return strings.Join(fields, "  ")
+}
+
+// fields are the figures, the ones to go without last.
+func (s *screen) fields(now visit.Status) []string {
 	cycle := fmt.Sprintf("cycle %d", now.Cycle)
 	if now.Planned > 0 {
 		cycle += fmt.Sprintf(" of %d", now.Planned)
@@ -145,7 +163,7 @@ func (s *screen) figures(now visit.Status) string {
 	if now.Lost > 0 || now.Rejected > 0 {
 		fields = append(fields, fmt.Sprintf("lost %d, refused %d", now.Lost, now.Rejected))
 	}
-	return strings.Join(fields, "  ")
+	return fields
 }
 
 // show writes one number for the screen in US digits: decimals below zero
@@ -171,5 +189,5 @@ func (s *screen) show(si float64, role mill.Role, usDecimals int, word string) s
 
 // end closes the line and says how the visit ended.
 func (s *screen) end(sum visit.Summary) {
-	s.line(fmt.Sprintf("%s; %d cycles closed", sum.Reason, sum.Cycles))
+	s.line(fmt.Sprintf("%s; cycles closed: %d", sum.Reason, sum.Cycles))
 }

@@ -95,7 +95,7 @@ func TestTheRedrawnLineFitsTheTerminal(t *testing.T) {
 func TestEveryKeyIsAnswered(t *testing.T) {
 	for reply, want := range map[visit.Reply]string{
 		{Kind: visit.ZeroTaken, SettingSI: 34 * psi}:             "key: zero taken, at 34 gauge psi",
-		{Kind: visit.ZeroRefused, SettingSI: 724 * psi}:          "key: not taken: the band is not slack, at 724 gauge psi",
+		{Kind: visit.ZeroRefused, SettingSI: 724 * psi}:          "key: kept for the result, not used here: the band is not surely slack, at 724 gauge psi",
 		{Kind: visit.MarkTaken, SettingSI: 500 * psi, Number: 2}: "key: mark 2 taken, at 500 gauge psi",
 	} {
 		s, out := testScreen(t, 0)

@@ -67,9 +67,9 @@ type ReplyKind string
 // The replies.
 const (
 	ZeroTaken   ReplyKind = "zero taken"
-	ZeroRefused ReplyKind = "not taken: the band is not slack" // for the live figures; the event is recorded all the same
+	ZeroRefused ReplyKind = "kept for the result, not used here: the band is not surely slack" // for the live figures; the event is recorded all the same
 	MarkTaken   ReplyKind = "mark taken"
-	Undone      ReplyKind = "undone"
+	Undone      ReplyKind = "last mark taken back"
 	NothingToDo ReplyKind = "nothing to undo"
 )
 
