@@ -46,6 +46,15 @@ func (c ramped) draw(r *rand.Rand) (out Readings, a, b float64) {
 	return out, a, b
 }
 
+// state tells the fit a share of the true noise, in the variable that it is in.
+func (c ramped) state(r *Readings, share float64) {
+	if c.inX {
+		r.XStd = share * c.noise
+	} else {
+		r.YStd = share * c.noise
+	}
+}
+
 // trials is how many simulated ramps a test draws: few by default, as many as
 // TAUTRAMP_TRIALS says when the figures are wanted.
 func trials(few int) int {
@@ -53,7 +62,7 @@ func trials(few int) int {
 		return n
 	}
 	if testing.Short() {
-		return few / 5
+		return max(2, few/8)
 	}
 	return few
 }
@@ -83,14 +92,14 @@ func TestBranchIntervalsHoldTheTruth(t *testing.T) {
 		{"fine, slow", ramped{count: 1, noise: 2.4, step: 0.8, rho: 0.9}, 0.9, 0.925, 0.965},
 		{"fine, noise of the setting", ramped{count: 1, noise: 2.4, step: 0.8, inX: true}, 0.9, 0.935, 0.965},
 	} {
-		n := trials(50)
+		n := trials(32)
 		r := rand.New(rand.NewPCG(1, uint64(c.noise*1000+c.count)))
 		slope, level := 0, 0
 		var bias, square float64
 		methods := map[Method]int{}
 		for range n {
 			d, a, b := c.draw(r)
-			d.XStd = c.stated * c.noise
+			c.state(&d, c.stated)
 			f, err := FitBranch(d)
 			if err != nil {
 				t.Fatalf("%s: %v", c.name, err)
@@ -137,6 +146,65 @@ func (c ramped) bound(d Readings, a, b float64) float64 {
 	return i0 / (i0*i2 - i1*i1)
 }
 
+// handDriven is a ramp in pieces: strokes of a hand pump with sag, or a staircase
+// of holds, of which the readings at the setting's highest value so far are kept
+// while it moves. The noise is the transducer's: the display does not see it.
+func handDriven(r *rand.Rand, count, noise float64, strokes bool) (out Readings, a, b float64) {
+	a, b = 1000*r.Float64(), 1+0.02*r.Float64()
+	period, moves, rise, sag := 10.0, 3.0, 74.0, 0.0
+	if strokes {
+		period, moves, rise, sag = 2, 0.6, 14.8, 0.01
+	}
+	low := rampLow + 10*r.Float64()
+	top := 0.0
+	var y []float64
+	for i := range 1000 {
+		t := float64(i) * 0.1
+		part := math.Mod(t, period)
+		p := low + rise*(math.Floor(t/period)+math.Min(1, part/moves))
+		if part > moves {
+			p -= sag * p * (part - moves) / (period - moves)
+		}
+		if part <= moves && p > top {
+			out.X = append(out.X, p+noise*r.NormFloat64())
+			y = append(y, math.Round((a+b*p)/count)*count)
+		}
+		top = math.Max(top, p)
+	}
+	out.Lo, out.Hi = Rounded(y, count, 0)
+	out.XStd = 0.9 * noise
+	return out, a, b
+}
+
+func TestBranchOfStrokesAndStaircases(t *testing.T) {
+	for _, c := range []struct {
+		count, noise float64
+		strokes      bool
+	}{{47, 1, true}, {4.7, 1, true}, {47, 1, false}, {4.7, 1, false}} {
+		n, slope, level, bias := trials(40), 0, 0, 0.0
+		for k := range n {
+			d, a, b := handDriven(rand.New(rand.NewPCG(uint64(k), 8)), c.count, c.noise, c.strokes)
+			f, err := FitBranch(d)
+			if err != nil {
+				t.Fatal(err)
+			}
+			factor := Student95(f.DoF)
+			if math.Abs(f.B-b) <= factor*math.Sqrt(f.VarB) {
+				slope++
+			}
+			if y, std := f.At(rampTarget); math.Abs(y-a-b*rampTarget) <= factor*std {
+				level++
+			}
+			bias += (f.B - b) / float64(n)
+		}
+		ps, pl := float64(slope)/float64(n), float64(level)/float64(n)
+		t.Logf("%+v: slope %.3f, level %.3f, bias %+.4f %%", c, ps, pl, 100*bias)
+		if math.Min(ps, pl) < 0.93-chance(0.93, n) || math.Abs(bias) > 0.001 {
+			t.Errorf("%+v: slope %.3f, level %.3f, bias %+.4f %%", c, ps, pl, 100*bias)
+		}
+	}
+}
+
 func TestBranchReachesTheLimit(t *testing.T) {
 	// Variance of the slope against the Cramer-Rao bound, averaged over where the
 	// counts lie, for noise from 0.3 of the change a reading on.
@@ -145,12 +213,12 @@ func TestBranchReachesTheLimit(t *testing.T) {
 		{count: 47, noise: 2.4, step: 0.8}, {count: 37, noise: 1.35, step: 2.7}, {count: 4.7, noise: 1.2, step: 2.7},
 		{count: 2, noise: 2.4, step: 0.8},
 	} {
-		n := trials(80)
+		n := trials(24)
 		r := rand.New(rand.NewPCG(2, uint64(c.noise*1000+c.count)))
 		var square, bound float64
 		for range n {
 			d, a, b := c.draw(r)
-			d.XStd = 0.9 * c.noise
+			c.state(&d, 0.9)
 			f, err := FitBranch(d)
 			if err != nil {
 				t.Fatal(err)
@@ -170,7 +238,7 @@ func TestBranchBeatsLeastSquaresOnTheSamePairs(t *testing.T) {
 	// 0.0005 in, 2.4 psi of noise on the setting, 0.8 psi a reading, T-1's whole
 	// way. The ratio hangs on how the ends of the way fall within a count.
 	c := ramped{count: 47, noise: 2.4, step: 0.8, inX: true}
-	n := trials(80)
+	n := trials(40)
 	r := rand.New(rand.NewPCG(3, 3))
 	var ours, plain float64
 	for range n {

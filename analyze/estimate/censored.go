@@ -16,6 +16,7 @@ type censored struct {
 	columns [][]float64 // one value a reading each
 	lo, hi  []float64
 	weight  []float64 // nil: ones
+	fixed   bool      // the noise stays as it starts
 }
 
 // slopesOf is the log likelihood at a point with its gradient and the negative
@@ -71,7 +72,10 @@ func (c *censored) maximise(start []float64, limit float64) (best censoredFit, o
 	at[p] = math.Min(at[p], limit)
 	logL, g, info := c.slopesOf(at)
 	for range steps {
-		held := at[p] >= limit && g[p] >= 0
+		held := c.fixed || at[p] >= limit && g[p] >= 0
+		if flat(g, held) {
+			return censoredFit{at: at, logL: logL, info: info, atLimit: held}, true
+		}
 		move, gain, ok := climb(info, g, held)
 		if !ok {
 			return censoredFit{}, false
@@ -100,6 +104,21 @@ func (c *censored) maximise(start []float64, limit float64) (best censoredFit, o
 		at = next
 	}
 	return censoredFit{}, false
+}
+
+// flat is whether no free coordinate gains anything: every reading is certain.
+func flat(g []float64, held bool) bool {
+	const nothing = 1e-9
+	n := len(g)
+	if held {
+		n--
+	}
+	for _, v := range g[:n] {
+		if math.Abs(v) > nothing {
+			return false
+		}
+	}
+	return true
 }
 
 type censoredFit struct {

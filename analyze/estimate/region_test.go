@@ -99,7 +99,7 @@ func TestRegionLeavesOutToeAndEndStop(t *testing.T) {
 		{"both, on a display", 0.2, 0.9, 0.002, 0.005, 0.1, 0.35, 0.85, 0.92, 3},
 	} {
 		wrong := 0
-		for seed := range uint64(20) {
+		for seed := range uint64(trials(16)) {
 			x, y := bentRamp(rand.New(rand.NewPCG(seed, 3)), 300, c.toe, c.stop, 0, c.noise, c.count)
 			r, err := StraightWithin(x, y)
 			if err != nil {
@@ -116,7 +116,7 @@ func TestRegionLeavesOutToeAndEndStop(t *testing.T) {
 			}
 		}
 		if wrong > 1 {
-			t.Errorf("%s: wrong in %d of 20", c.name, wrong)
+			t.Errorf("%s: wrong in %d", c.name, wrong)
 		}
 	}
 }

@@ -85,9 +85,9 @@ func robustStart(x, y []float64) (a, b float64, err error) {
 	for i := 0; i < len(x); i += step {
 		tx, ty = append(tx, x[i]), append(ty, y[i])
 	}
-	m, err := TheilSen(tx, ty)
-	if err != nil { // thinned until nothing was left: take all
-		m, err = TheilSen(x[:min(len(x), 2*most)], y[:min(len(x), 2*most)])
+	if m, err := TheilSen(tx, ty); err == nil {
+		return m.A, m.Slope, nil
 	}
-	return m.A, m.Slope, err
+	l, err := FitLine(x, y) // the few taken have one x between them
+	return l.A, l.B, err
 }
