@@ -287,63 +287,34 @@ func TestACortexMMeasuresATensioner(t *testing.T) {
 	sampledCortexM(t, list, samples)
 }
 
-// sampledCortexM wants each sample of a Cortex-M to be a reading that it was
-// given shortly before, later than that of the sample before. Its clock starts
-// some while before the feeding; how much the highest pressure shows.
+// sampledCortexM wants the samples of each channel to be readings that the
+// board was given, in their order. The board's clock starts some while before
+// the feeding; that while must be the same for all, but for what a busy
+// computer delays.
 func sampledCortexM(t *testing.T, list []sim.Fed, samples []protocol.Val) {
 	t.Helper()
-	offset := clockOffset(list, samples)
+	const jitterS = 1.0
 	count, next := map[byte]int{}, map[byte]int{}
+	early, late := math.Inf(1), math.Inf(-1)
 	for _, v := range samples {
-		at := float64(v.Tick)/1e6 + offset
-		i := max(next[v.Channel], from(list, at-0.3))
-		for i < len(list) && list[i].AtS < at+0.03 && (list[i].Channel != v.Channel || list[i].Count != v.Count) {
+		i := next[v.Channel]
+		for i < len(list) && (list[i].Channel != v.Channel || list[i].Count != v.Count) {
 			i++
 		}
-		if v.Status != protocol.Good || i == len(list) || list[i].AtS >= at+0.03 {
-			t.Errorf("%+v at %.3f s is no reading that it was given", v, at)
-			continue
+		if v.Status != protocol.Good || i == len(list) {
+			t.Errorf("%+v is no reading that it was given after the one before", v)
+			return
 		}
+		before := list[i].AtS - float64(v.Tick)/1e6
+		early, late = min(early, before), max(late, before)
 		next[v.Channel] = i + 1
 		count[v.Channel]++
 	}
-	t.Logf("%d pressures, %d displays, clock %+.3f s", count['a'], count['b'], offset)
+	t.Logf("%d pressures, %d displays, clocks apart by %.3f to %.3f s", count['a'], count['b'], early, late)
 	if count['a'] < 1000 || count['b'] < 250 {
 		t.Error("too few samples")
 	}
-}
-
-func from(list []sim.Fed, at float64) int {
-	for i, f := range list {
-		if f.AtS >= at {
-			return i
-		}
+	if late-early > jitterS {
+		t.Errorf("the clocks go apart by %.3f s", late-early)
 	}
-	return len(list)
-}
-
-// clockOffset finds the shift at which the highest pressure of both falls together.
-func clockOffset(list []sim.Fed, samples []protocol.Val) float64 {
-	top := func(n int, at func(int) (float64, int32)) float64 {
-		best, when := int32(math.MinInt32), 0.0
-		for i := range n {
-			if t, c := at(i); c > best {
-				best, when = c, t
-			}
-		}
-		return when
-	}
-	fed := top(len(list), func(i int) (float64, int32) {
-		if list[i].Channel != 'a' {
-			return 0, math.MinInt32
-		}
-		return list[i].AtS, list[i].Count
-	})
-	said := top(len(samples), func(i int) (float64, int32) {
-		if samples[i].Channel != 'a' {
-			return 0, math.MinInt32
-		}
-		return float64(samples[i].Tick) / 1e6, samples[i].Count
-	})
-	return fed - said
 }
