@@ -146,8 +146,9 @@ void taut_start(struct taut *t, enum taut_cause cause, uint8_t running);
 uint8_t taut_hear(struct taut *t, char byte, uint32_t tick);
 
 /* Counts n bytes from the host that were lost on the board. They are part of
- * commands that get no answer. Hear an LF in their place, so that half a command
- * does not spoil the next. */
+ * commands that get no answer. A line of which some is lost must not be heard as a
+ * whole one, nor spoil the next: after what was heard of it hear a 0 in place of the
+ * first byte lost, and its LF, and count only the others. */
 void taut_lost(struct taut *t, uint8_t n);
 
 /* 1 while samples are wanted. */

@@ -108,6 +108,7 @@ type Figures struct {
 	Boots, Conversions int
 	Edges              int // of the driven pins
 	Sent, Received     int // bytes
+	WaitedCycles       int // most that a byte received has waited for its interrupt
 }
 
 // Stop ends the simulator, if it has not ended, and frees everything. Called
@@ -165,6 +166,6 @@ func figures(said string) (f Figures) {
 	return Figures{
 		SimulatedS: number["simulated"], WallS: number["wall"], LatestS: number["latest"],
 		Boots: int(number["boots"]), Conversions: int(number["conversions"]), Edges: int(number["edges"]),
-		Sent: int(number["sent"]), Received: int(number["received"]),
+		Sent: int(number["sent"]), Received: int(number["received"]), WaitedCycles: int(number["waited"]),
 	}
 }

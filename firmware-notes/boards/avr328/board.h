@@ -29,7 +29,7 @@ uint8_t uart_waiting(void);      /* bytes that have come in */
 char uart_peek(void);            /* the oldest of them */
 void uart_drop(void);            /* done with it */
 uint32_t uart_line_tick(void);   /* at which the last LF came in */
-uint8_t uart_lost(void);         /* bytes lost since it was asked before */
+uint8_t uart_lost(void);         /* bytes lost and not told yet; the rest of more than 255 next time */
 
 /* boots.c: the boot counter, in EEPROM */
 uint32_t boots_raise(void);

@@ -77,12 +77,13 @@ static enum taut_cause cause(void)
 	return TAUT_UNKNOWN;
 }
 
+/* Only what waits now: in a flood there is always more, and the loop must go on. */
 static void hear_host(void)
 {
-	uint8_t lost = uart_lost();
+	uint8_t n = uart_waiting();
 
-	taut_lost(&device, lost);
-	while (uart_waiting() && taut_hear(&device, uart_peek(), uart_line_tick()))
+	taut_lost(&device, uart_lost());
+	while (n-- && taut_hear(&device, uart_peek(), uart_line_tick()))
 		uart_drop();
 }
 

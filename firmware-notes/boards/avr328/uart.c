@@ -16,7 +16,8 @@
 
 static volatile char in[IN_SIZE], out[256];
 static volatile uint8_t in_head, in_tail, out_head, out_tail; /* head: where the next goes */
-static volatile uint8_t gap, lost;
+static uint8_t spoilt; /* 1: the line that is coming in has lost a byte */
+static volatile uint16_t lost;
 static volatile uint32_t line_tick;
 
 void uart_start(void)
@@ -27,41 +28,54 @@ void uart_start(void)
 	UCSR0B = _BV(RXEN0) | _BV(TXEN0) | _BV(RXCIE0);
 }
 
-/* An LF takes the place of the first of the bytes that are lost in a row, so that
- * half a command does not spoil the next one. */
-static void lose_one(void)
+static void put(char byte)
 {
-	if (!gap)
-		gap = 1;
-	else if (lost != 255)
-		lost++;
+	in[in_head++ & (IN_SIZE - 1)] = byte;
 }
 
-static uint8_t in_room(void)
+static uint8_t between_lines(void)
 {
-	return (uint8_t)(IN_SIZE - (uint8_t)(in_head - in_tail));
+	return in[(uint8_t)(in_head - 1) & (IN_SIZE - 1)] == '\n';
+}
+
+/* Of a line that has lost a byte no more is taken up to its LF. What the ring has of
+ * it gets a byte that no command has in place of the first lost one, and its LF: so
+ * the core refuses it and counts it. All else is counted here. */
+static void lose_one(void)
+{
+	if (spoilt || between_lines())
+		lost++;
+	else
+		put('\0');
+	spoilt = 1;
 }
 
 /* The error bits belong to the byte that is read after them; both must be read, or
- * the interrupt comes again at once. */
+ * the interrupt comes again at once. An overrun has lost one byte or more, before this
+ * one; the part does not say how many, so one is counted. A line that has been begun
+ * keeps two places, for what lose_one puts and for its LF. */
 ISR(USART_RX_vect)
 {
 	uint8_t errors = UCSR0A;
 	char byte = (char)UDR0;
+	uint8_t room = (uint8_t)(IN_SIZE - (uint8_t)(in_head - in_tail));
 
 	if (errors & _BV(DOR0))
 		lose_one();
-	if (gap && in_room() >= 2) {
-		in[in_head++ & (IN_SIZE - 1)] = '\n';
-		gap = 0;
-	}
-	if (gap || !in_room()) {
-		lose_one();
+	if (byte != '\n') {
+		if (spoilt || room < 3)
+			lose_one();
+		else
+			put(byte);
 		return;
 	}
-	in[in_head++ & (IN_SIZE - 1)] = byte;
-	if (byte == '\n')
+	if (spoilt && between_lines()) {
+		lost++;
+	} else if (room) { /* there is, but for an empty line, which does not count */
+		put('\n');
 		line_tick = clock_now_locked();
+	}
+	spoilt = 0;
 }
 
 ISR(USART_UDRE_vect)
@@ -114,8 +128,8 @@ uint8_t uart_lost(void)
 	uint8_t n;
 
 	ATOMIC_BLOCK(ATOMIC_RESTORESTATE) {
-		n = lost;
-		lost = 0;
+		n = (uint8_t)(lost < 255 ? lost : 255);
+		lost = (uint16_t)(lost - n);
 	}
 	return n;
 }

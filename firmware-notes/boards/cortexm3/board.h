@@ -31,7 +31,7 @@ void uart_send(char byte);             /* to the host */
 uint8_t uart_waiting(int line);        /* bytes that have come in */
 char uart_peek(int line, uint32_t *tick); /* the oldest, and when it came in */
 void uart_drop(int line);              /* done with it */
-uint8_t uart_lost(void);               /* bytes of the host lost since it was asked before */
+uint8_t uart_lost(void);               /* bytes of the host lost and not told yet; the rest of more than 255 next time */
 
 /* stimulus.c: what the sensors last said */
 enum { NOTHING, READING, NO_ANSWER, FAULT };

@@ -39,13 +39,14 @@ static struct taut device = { .config = { &sheet, periods, ring, 31, 0, now, roo
 static struct taut_sensor pressure = { .name = 'a' }, indicator = { .name = 'b' };
 static struct taut_button foot;
 
+/* Only what waits now: in a flood there is always more, and the loop must go on. */
 static void hear_host(void)
 {
-	uint8_t n = uart_lost();
+	uint8_t n = uart_waiting(HOST);
 	uint32_t tick;
 
-	taut_lost(&device, n);
-	while (uart_waiting(HOST)) {
+	taut_lost(&device, uart_lost());
+	while (n--) {
 		char byte = uart_peek(HOST, &tick);
 
 		if (!taut_hear(&device, byte, tick))

@@ -43,7 +43,8 @@ static void take_record(void)
 	if (length < 3 || record[1] != ' ')
 		return;
 	if (record[0] == '1') {
-		pushed = record[2] == 'd';
+		if (record[2] == 'd' || record[2] == 'u')
+			pushed = record[2] == 'd';
 		return;
 	}
 	if (record[0] != 'a' && record[0] != 'b')

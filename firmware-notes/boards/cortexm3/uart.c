@@ -17,13 +17,14 @@ enum { OUT_DONE = 1, IN_DONE = 2 };                             /* interrupt */
 struct in_ring {
 	char byte[IN_SIZE];
 	uint32_t tick[IN_SIZE];
-	uint8_t head, tail, gap;
+	uint32_t lost;   /* bytes, and not told yet */
+	uint8_t head, tail;
+	uint8_t spoilt;  /* 1: the line that is coming in has lost a byte */
 };
 
 static struct in_ring in[2];
 static char out[OUT_SIZE];
 static uint32_t out_head, out_tail;
-static uint8_t lost;
 
 void host_in_interrupt(void);
 void host_out_interrupt(void);
@@ -42,21 +43,6 @@ void uart_start(void)
 	interrupt_enable(2);
 }
 
-static uint8_t room_in(const struct in_ring *ring)
-{
-	return (uint8_t)(IN_SIZE - (uint8_t)(ring->head - ring->tail));
-}
-
-/* An LF takes the place of the first of the bytes that are lost in a row, so that
- * half a command does not spoil the next one. */
-static void lose_one(int n)
-{
-	if (!in[n].gap)
-		in[n].gap = 1;
-	else if (n == HOST && lost != 255)
-		lost++;
-}
-
 static void put_in(struct in_ring *ring, char byte)
 {
 	ring->byte[ring->head % IN_SIZE] = byte;
@@ -64,27 +50,53 @@ static void put_in(struct in_ring *ring, char byte)
 	ring->head++;
 }
 
-static void byte_in(int n)
+static int between_lines(const struct in_ring *ring)
 {
-	struct in_ring *ring = &in[n];
+	return ring->byte[(uint8_t)(ring->head - 1) % IN_SIZE] == '\n';
+}
 
-	LINE(n)->interrupt = IN_DONE;
-	while (LINE(n)->state & IN_FULL) {
-		char byte;
+/* Of a line that has lost a byte no more is taken up to its LF. What the ring has of
+ * it gets a byte that no command has in place of the first lost one, and its LF: so
+ * the core refuses it and counts it. All else is counted here. */
+static void lose_one(struct in_ring *ring)
+{
+	if (ring->spoilt || between_lines(ring))
+		ring->lost++;
+	else
+		put_in(ring, '\0');
+	ring->spoilt = 1;
+}
 
-		if (LINE(n)->state & IN_OVERRUN) {
-			LINE(n)->state = IN_OVERRUN;
-			lose_one(n);
-		}
-		byte = (char)LINE(n)->data;
-		if (ring->gap && room_in(ring) >= 2) {
-			put_in(ring, '\n');
-			ring->gap = 0;
-		}
-		if (ring->gap || !room_in(ring))
-			lose_one(n);
+/* A line that has been begun keeps two places, for what lose_one puts and for its LF. */
+static void take_in(struct in_ring *ring, char byte)
+{
+	uint8_t room = (uint8_t)(IN_SIZE - (uint8_t)(ring->head - ring->tail));
+
+	if (byte != '\n') {
+		if (ring->spoilt || room < 3)
+			lose_one(ring);
 		else
 			put_in(ring, byte);
+		return;
+	}
+	if (ring->spoilt && between_lines(ring))
+		ring->lost++;
+	else if (room) /* there is, but for an empty line, which does not count */
+		put_in(ring, '\n');
+	ring->spoilt = 0;
+}
+
+/* An overrun has lost one byte or more; how many the part does not say, so one is
+ * counted. */
+static void byte_in(int n)
+{
+	LINE(n)->interrupt = IN_DONE;
+	while (LINE(n)->state & IN_FULL) {
+		if (LINE(n)->state & IN_OVERRUN) {
+			LINE(n)->state = IN_OVERRUN;
+			lose_one(&in[n]);
+		}
+		take_in(&in[n], (char)LINE(n)->data);
 	}
 }
 
@@ -156,8 +168,8 @@ uint8_t uart_lost(void)
 	uint8_t n;
 
 	interrupts_off();
-	n = lost;
-	lost = 0;
+	n = (uint8_t)(in[HOST].lost < 255 ? in[HOST].lost : 255);
+	in[HOST].lost -= n;
 	interrupts_on();
 	return n;
 }

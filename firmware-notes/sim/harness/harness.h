@@ -65,7 +65,8 @@ struct harness {
 	unsigned in_at, in_n;
 	uint8_t out[4096];
 	unsigned out_n;
-	unsigned long sent, received;
+	unsigned long sent, received, waited; /* waited: most cycles between a byte and its interrupt */
+	uint64_t byte_in;                     /* when that which waits came in, or 0 */
 	int hung_up;
 
 	int boots, ended;

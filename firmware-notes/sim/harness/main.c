@@ -166,8 +166,9 @@ static int simulate(struct harness *h, double speed)
 		latest = late > latest ? late : latest;
 	}
 	serial_turn(h);
-	fprintf(stderr, "simulated=%.3f wall=%.3f latest=%.3f boots=%d conversions=%lu edges=%lu sent=%lu received=%lu\n",
-	        (double)harness_cycle(h) / CLOCK_HZ, seconds() - began, latest, h->boots, h->conversions, h->edges, h->sent, h->received);
+	fprintf(stderr, "simulated=%.3f wall=%.3f latest=%.3f boots=%d conversions=%lu edges=%lu sent=%lu received=%lu waited=%lu\n",
+	        (double)harness_cycle(h) / CLOCK_HZ, seconds() - began, latest, h->boots, h->conversions, h->edges, h->sent, h->received,
+	        h->waited);
 	return good;
 }
 

@@ -10,6 +10,8 @@
 
 #include "harness.h"
 
+enum { RX_VECTOR = 18 };
+
 static void flush(struct harness *h)
 {
 	unsigned at = 0;
@@ -39,7 +41,8 @@ static void on_byte(struct avr_irq_t *irq, uint32_t value, void *param)
 }
 
 /* Bytes that the simulated receiver has no place for would be lost in the simulator,
- * not on the line: they wait until it says that it takes more. */
+ * not on the line: they wait until it says that it takes more. Its receiver holds more
+ * than the part's two: that it would overrun shows only in how long a byte waits. */
 static void on_xon(struct avr_irq_t *irq, uint32_t value, void *param)
 {
 	struct harness *h = param;
@@ -60,6 +63,21 @@ static void on_xoff(struct avr_irq_t *irq, uint32_t value, void *param)
 	(void)irq;
 	(void)value;
 	((struct harness *)param)->xon = 0;
+}
+
+/* Called with 1 when a byte has come in, with 0 when its interrupt begins. */
+static void on_pending(struct avr_irq_t *irq, uint32_t value, void *param)
+{
+	struct harness *h = param;
+	uint64_t now = harness_cycle(h);
+
+	(void)irq;
+	if (!value && h->byte_in && now - h->byte_in > h->waited)
+		h->waited = (unsigned long)(now - h->byte_in);
+	if (!value)
+		h->byte_in = 0;
+	else if (!h->byte_in)
+		h->byte_in = now;
 }
 
 void serial_give(struct harness *h, const uint8_t *bytes, int n)
@@ -98,6 +116,7 @@ void serial_boot(struct harness *h)
 	flags &= ~(uint32_t)(AVR_UART_FLAG_STDIO | AVR_UART_FLAG_POLL_SLEEP);
 	avr_ioctl(h->avr, AVR_IOCTL_UART_SET_FLAGS('0'), &flags);
 	h->xon = 0;
+	h->byte_in = 0;
 }
 
 void serial_attach(struct harness *h)
@@ -106,9 +125,11 @@ void serial_attach(struct harness *h)
 		int irq;
 		avr_irq_notify_t call;
 	} calls[] = { { UART_IRQ_OUTPUT, on_byte }, { UART_IRQ_OUT_XON, on_xon }, { UART_IRQ_OUT_XOFF, on_xoff } };
+	avr_irq_t *received = avr_get_interrupt_irq(h->avr, RX_VECTOR);
 	unsigned i;
 
 	h->to_board = avr_io_getirq(h->avr, AVR_IOCTL_UART_GETIRQ('0'), UART_IRQ_INPUT);
 	for (i = 0; i < sizeof calls / sizeof *calls; i++)
 		avr_irq_register_notify(avr_io_getirq(h->avr, AVR_IOCTL_UART_GETIRQ('0'), calls[i].irq), calls[i].call, h);
+	avr_irq_register_notify(received + AVR_INT_IRQ_PENDING, on_pending, h);
 }
