@@ -66,13 +66,7 @@ func (s scores) blockMeans(length int) (x, y, w []float64) {
 		if count < length || i+1 < len(s.x) && s.cell != nil && s.cell[i+1] == s.cell[i] {
 			continue
 		}
-		if sw > 0 && len(s.x)-i > length/2 || len(x) == 0 {
-			x, y, w = append(x, sx), append(y, sy), append(w, sw)
-		} else {
-			x[len(x)-1] += sx
-			y[len(x)-1] += sy
-			w[len(x)-1] += sw
-		}
+		x, y, w = append(x, sx), append(y, sy), append(w, sw)
 		sx, sy, sw, count = 0, 0, 0, 0
 	}
 	if n := len(x) - 1; n >= 0 {

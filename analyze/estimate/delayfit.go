@@ -178,5 +178,19 @@ func (f *delayFit) betweenRuns(alone, rest []float64) Component {
 		}
 		std, dof = math.Sqrt(sumSquares(mean)/float64(room)), float64(room)
 	}
+	std = math.Hypot(std, f.roundingOfRun(rest))
 	return Component{Std: std * math.Sqrt(sumSquares(weight)) / sumSquares(alone), DoF: dof}
+}
+
+// roundingOfRun is what a display's saw-tooth leaves in the mean of a run, about
+// its spread over how many teeth there are.
+func (f *delayFit) roundingOfRun(rest []float64) float64 {
+	crossings := 1.0
+	for i := 1; i < len(rest); i++ {
+		if f.run[i] == f.run[i-1] && rest[i] > 0 != (rest[i-1] > 0) {
+			crossings++
+		}
+	}
+	teeth := math.Max(1, crossings/2/float64(len(f.runs)))
+	return math.Sqrt(sumSquares(rest)/float64(len(rest))) / teeth
 }

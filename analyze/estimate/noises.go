@@ -18,24 +18,33 @@ func (f *intervalFit) byAllNoises() Line {
 			b.add(x, f.lo[i], f.hi[i])
 		}
 	}
-	w, sd := f.roundWindow()
+	w, k := f.roundWindow()
 	phi := newLnPhi()
-	nodes := f.march(b, w, sd, noiseRatio, phi)
-	nodes = append(nodes, f.march(b, nodes[0].window, sd/noiseRatio, 1/noiseRatio, phi)...)
+	nodes := f.march(b, w, k, 1, phi)
+	nodes = append(nodes, f.march(b, nodes[0].window, k-1, -1, phi)...)
 	return mixed(nodes)
 }
 
-const noiseRatio = 1.5
+// noise is the k-th noise of the integral, in equal steps of its logarithm from
+// the floor.
+func (f *intervalFit) noise(k int) float64 {
+	const ratio = 1.5
+	return f.floor * math.Pow(ratio, float64(k))
+}
 
-// march integrates at one noise after the other until they count for nothing.
-func (f *intervalFit) march(b bounds, w window, sd, ratio float64, phi *lnPhi) []noiseNode {
+// march integrates at one noise after the other, up or down, until they count
+// for nothing. The first is always there.
+func (f *intervalFit) march(b bounds, w window, k, step int, phi *lnPhi) []noiseNode {
 	const nothing = 7.0
 	var nodes []noiseNode
 	best := math.Inf(-1)
-	for ; sd >= f.floor && sd < 1; sd *= ratio {
+	for ; k >= 0 && (f.noise(k) < 1 || len(nodes) == 0); k += step {
+		sd := f.noise(k)
 		next, mass := b.settled(w, sd, phi)
-		n := noiseNode{next, sd, mass}
-		n.logWeight += f.belief() * math.Log(sd)
+		n := noiseNode{next, sd, mass + f.belief()*math.Log(sd)}
+		if k == 0 { // the end of the integral: half a step
+			n.logWeight -= math.Ln2
+		}
 		nodes = append(nodes, n)
 		best = math.Max(best, n.logWeight)
 		if n.logWeight < best-nothing {
@@ -58,17 +67,21 @@ func (f *intervalFit) belief() float64 {
 	return 1
 }
 
-// roundWindow is a first guess of the lines' spread, from the information at a
-// noise large enough for that to say something.
-func (f *intervalFit) roundWindow() (window, float64) {
-	for sd := math.Max(f.sd, f.floor); ; sd *= noiseRatio {
+// roundWindow is a first guess of the lines' spread, from the information at the
+// smallest noise from the fitted one on that lets that say something.
+func (f *intervalFit) roundWindow() (w window, k int) {
+	for ; ; k++ {
+		sd := f.noise(k)
+		if sd < f.sd/1.2 {
+			continue
+		}
 		fit := f.at(sd)
 		if fit.info.At(0, 0) < f.crossings && sd < 1 {
 			continue
 		}
 		fit.atLimit = true
 		if cov := fit.covariance(); cov != nil {
-			return window{f.a, f.b, cov.At(0, 0), cov.At(1, 1), cov.At(0, 1)}, sd
+			return window{f.a, f.b, cov.At(0, 0), cov.At(1, 1), cov.At(0, 1)}, k
 		}
 	}
 }

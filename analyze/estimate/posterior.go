@@ -51,15 +51,15 @@ func (w window) axes() (tilt, lift [2]float64) {
 // spread integrates the likelihood at one noise over the window, a flat prior
 // on A and B. logMass is the log of the integral.
 func (b bounds) spread(w window, sd float64, phi *lnPhi) (out window, logMass float64) {
-	const side = 2*windowSteps + 1
+	const side, nothing = 2*windowSteps + 1, 30.0
 	tilt, lift := w.axes()
 	act := b.near(w, sd)
 	step := windowReach / windowSteps
 	var l [side * side]float64
-	best := math.Inf(-1)
+	best := act.logL(w.a, w.b, sd, phi, math.Inf(-1))
 	for k := range l {
 		u, v := float64(k/side-windowSteps)*step, float64(k%side-windowSteps)*step
-		l[k] = act.logL(w.a+u*tilt[0]+v*lift[0], w.b+u*tilt[1], sd, phi)
+		l[k] = act.logL(w.a+u*tilt[0]+v*lift[0], w.b+u*tilt[1], sd, phi, best-nothing)
 		best = math.Max(best, l[k])
 	}
 	var m, mu, mv, uu, uv, vv float64
@@ -79,11 +79,14 @@ func (b bounds) spread(w window, sd float64, phi *lnPhi) (out window, logMass fl
 	return out, best + math.Log(m*step*step*tilt[1]*lift[0])
 }
 
-// logL is the log likelihood of a line, as far as these bounds tell.
-func (b bounds) logL(a, slope, sd float64, phi *lnPhi) float64 {
-	sum := 0.0
+// logL is the log likelihood of a line, as far as these bounds tell; below
+// least it is of no account how far.
+func (b bounds) logL(a, slope, sd float64, phi *lnPhi, least float64) float64 {
+	sum, per := 0.0, 1/sd
 	for i, x := range b.x {
-		sum += phi.at(b.side[i] * (a + slope*x - b.y[i]) / sd)
+		if sum += phi.at(b.side[i] * (a + slope*x - b.y[i]) * per); sum < least {
+			break
+		}
 	}
 	return sum
 }
