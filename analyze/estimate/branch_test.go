@@ -93,7 +93,7 @@ func TestBranchIntervalsHoldTheTruth(t *testing.T) {
 		{"fine, slow", ramped{count: 1, noise: 2.4, step: 0.8, rho: 0.9}, 0.9},
 		{"fine, noise of the setting", ramped{count: 1, noise: 2.4, step: 0.8, inX: true}, 0.9},
 	} {
-		n := trials(32)
+		n := trials(24)
 		r := rand.New(rand.NewPCG(1, uint64(c.noise*1000+c.count)))
 		slope, level := 0, 0
 		var bias, square float64

@@ -129,7 +129,7 @@ func TestDelayIsFoundWhereTheDataTellIt(t *testing.T) {
 		if testing.Short() && c.loops.drift == 0 && !c.loops.strokes {
 			continue
 		}
-		n := min(trials(4), 8)
+		n := min(trials(3), 8)
 		hits := 0
 		for k := range n {
 			setting, y, runs := c.loops.draw(rand.New(rand.NewPCG(uint64(k), 31)))

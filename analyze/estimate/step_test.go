@@ -70,7 +70,7 @@ func TestStepsAreFoundWhereTheyAre(t *testing.T) {
 		if c.count > 4 {
 			c.slip = 3 * c.count
 		}
-		n := trials(24)
+		n := trials(16)
 		found := 0
 		var off float64
 		for k := range n {
@@ -103,7 +103,7 @@ func TestStepsAreFoundWhereTheyAre(t *testing.T) {
 
 func TestStepsAreNotInvented(t *testing.T) {
 	for name, c := range slippings() {
-		for k := range trials(40) {
+		for k := range trials(24) {
 			r := rand.New(rand.NewPCG(uint64(k), 22))
 			d, _ := c.draw(r)
 			steps, err := FindSteps(d, StepSearch{})
@@ -151,7 +151,7 @@ func TestStepsRefuseBadReadings(t *testing.T) {
 
 func TestStepsAreNotSeenInAReversal(t *testing.T) {
 	// A whole loop: the setting turns, and y waits for 100 psi before it follows.
-	for k := range trials(24) {
+	for k := range trials(16) {
 		r := rand.New(rand.NewPCG(uint64(k), 24))
 		var d Readings
 		var y []float64
