@@ -61,14 +61,7 @@ type Repeated struct {
 // One ramp gives no Next, and its Mean rests on the scatter inside it, with dof
 // degrees of freedom. NaN values are left out.
 func Repeat(values, vars []float64, dof float64) Repeated {
-	var kept []float64
-	inside := 0.0
-	for i, v := range values {
-		if finite(v) && finite(vars[i]) {
-			kept = append(kept, v)
-			inside += vars[i]
-		}
-	}
+	kept, inside := known(values, vars)
 	n := float64(len(kept))
 	switch {
 	case n == 0:

@@ -12,14 +12,7 @@ import "math"
 // inside the ramps gives; Method says which was used. With one ramp only the
 // latter exists. NaN values are left out.
 func OverRamps(values, vars []float64, dof float64) Estimate {
-	var kept []float64
-	inside := 0.0
-	for i, v := range values {
-		if finite(v) && finite(vars[i]) {
-			kept = append(kept, v)
-			inside += vars[i]
-		}
-	}
+	kept, inside := known(values, vars)
 	n := float64(len(kept))
 	if n == 0 {
 		return Unknown("no ramp gives it")
@@ -35,4 +28,16 @@ func OverRamps(values, vars []float64, dof float64) Estimate {
 		return within
 	}
 	return between
+}
+
+// known is the values that are numbers, with variances that are, and the sum of
+// those variances.
+func known(values, vars []float64) (kept []float64, sum float64) {
+	for i, v := range values {
+		if finite(v) && finite(vars[i]) {
+			kept = append(kept, v)
+			sum += vars[i]
+		}
+	}
+	return kept, sum
 }
