@@ -33,15 +33,6 @@ type Cycle struct {
 	SeatingEndSI float64           // setting above which the rising branch is straight; NaN where it was not found
 }
 
-// Fit is one branch of one fitted cycle: extension = Line.A + Line.B * setting,
-// SI. Points is 0 in a cycle that is not fitted.
-type Fit struct {
-	Line   estimate.Line
-	LowSI  float64 // range of setting fitted
-	HighSI float64
-	Points int
-}
-
 const (
 	// A rise below this share of the largest is no cycle: wiggles, strokes with
 	// sag, a staircase. Judgement.
@@ -112,7 +103,8 @@ func (w *work) assignRoles() (closed int) {
 	return closed
 }
 
-// chooseWindow smooths for the mean rate of the fitted rises.
+// chooseWindow smooths the setting for the mean rate of the fitted rises, and
+// sees how the extension's noise looks then.
 func (w *work) chooseWindow() {
 	var rates []float64
 	for _, i := range w.fitted {
@@ -121,6 +113,11 @@ func (w *work) chooseWindow() {
 	}
 	w.rate = estimate.Median(rates)
 	w.trace.smoothFor(w.rate)
+	w.x = make([]float64, len(w.t))
+	for i, t := range w.t {
+		w.x[i] = w.trace.smooth(t)
+	}
+	w.noiseM = w.stillNoise()
 }
 
 // meanRate is a cycle's rise over the time it took, rests left out: the middle

@@ -12,7 +12,8 @@ type legs struct {
 	rise, fall  []bool  // pairs First..Peak and Peak..Last that lead the setting
 	seatEndSI   float64 // rising branch is straight above
 	seatEndM    float64 // extension there; the falling branch is straight above it too
-	fallSeatSI  float64 // falling branch is straight above
+	foundSeatSI float64 // falling branch is straight above, as found in the data
+	fallSeatSI  float64 // and as fitted: no lower than the rising branch's extension there
 	foundKneeSI float64 // and below, as found in the data
 	kneeSI      float64 // and below, as fitted
 	curved      bool    // a line was fitted to what is bent
@@ -20,9 +21,6 @@ type legs struct {
 }
 
 const (
-	// A line needs so many pairs and this share of the cycle's rise. Judgement.
-	leastPoints = 8
-	leastShare  = 0.2
 	// Points on which the straight part is looked for; more are averaged.
 	mostPoints = 300
 	// The fall of the setting at the top that is left out, in reversal lengths:
@@ -43,11 +41,39 @@ func (w *work) fitCycles() {
 		l.fall = w.trace.leading(w.t[c.Peak], w.t[c.Peak:c.Last+1], -1)
 		l.ok = w.searchRising(c, l) && c.Role != Incomplete && w.searchFalling(c, l)
 	}
-	if seat, ok := w.commonSeat(); ok {
-		for i := range w.res.Cycles {
-			w.seatAbove(&w.res.Cycles[i], &w.legs[i], seat)
+	seat, ok := w.commonSeat()
+	for i := range w.res.Cycles {
+		c, l := &w.res.Cycles[i], &w.legs[i]
+		if ok {
+			w.seatAbove(c, l, seat)
+		}
+		if c.Role == Ramp && l.ok {
+			w.refine(c, l)
 		}
 	}
+}
+
+// refine puts the branches' own estimator in the place of the quick lines by
+// which they were found.
+func (w *work) refine(c *Cycle, l *legs) {
+	rise, okRise := w.fitBranch(w.onRising(c, l))
+	fall, okFall := w.fitBranch(w.onFalling(c, l))
+	if l.ok = okRise && okFall; !l.ok {
+		return
+	}
+	c.Rising, c.Falling = rise, fall
+	l.seatEndM, _ = rise.Line.At(l.seatEndSI)
+	c.ReversalSI = w.reversal(c)
+}
+
+// onRising is the pairs of the rising branch's straight part.
+func (w *work) onRising(c *Cycle, l *legs) []int {
+	return leaders(c.First, l.rise, func(i int) bool { return w.x[i] >= l.seatEndSI })
+}
+
+// onFalling is the pairs of the falling branch's straight part.
+func (w *work) onFalling(c *Cycle, l *legs) []int {
+	return leaders(c.Peak, l.fall, func(i int) bool { return w.unloads(l, i) })
 }
 
 // commonSeat is the rising setting above which the band is seated: the upper
@@ -97,11 +123,12 @@ func (w *work) searchRising(c *Cycle, l *legs) bool {
 }
 
 func (w *work) fitRising(c *Cycle, l *legs, fromSI float64) bool {
-	fit, ok := w.fitPairs(c, leaders(c.First, l.rise, func(i int) bool { return w.p[i] >= fromSI }))
+	l.seatEndSI = fromSI
+	fit, ok := w.quickFit(c, w.onRising(c, l))
 	if !ok {
 		return false
 	}
-	c.Rising, c.SeatingEndSI, l.seatEndSI = fit, fromSI, fromSI
+	c.Rising, c.SeatingEndSI = fit, fromSI
 	l.seatEndM, _ = fit.Line.At(fromSI)
 	return true
 }
@@ -115,17 +142,18 @@ func (w *work) searchFalling(c *Cycle, l *legs) bool {
 		return false
 	}
 	l.foundKneeSI = -from
-	below := leaders(c.Peak, l.fall, func(i int) bool { return w.e[i] >= l.seatEndM && w.p[i] <= l.foundKneeSI })
-	if l.fallSeatSI, err = w.straightAbove(below, +1); err != nil {
+	below := leaders(c.Peak, l.fall, func(i int) bool { return w.e[i] >= l.seatEndM && w.x[i] <= l.foundKneeSI })
+	if l.foundSeatSI, err = w.straightAbove(below, +1); err != nil {
 		return false
 	}
+	l.fallSeatSI = l.foundSeatSI
 	return w.fitFalling(c, l)
 }
 
 // straightAbove looks for the straight part of pairs, from the low end of their
 // settings for sign +1 and from the high end for -1.
 func (w *work) straightAbove(at []int, sign float64) (from float64, err error) {
-	p := pick(w.p, at)
+	p := pick(w.x, at)
 	for i := range p {
 		p[i] *= sign
 	}
@@ -135,7 +163,7 @@ func (w *work) straightAbove(at []int, sign float64) (from float64, err error) {
 
 // bent is whether the pairs that a line was fitted to are bent.
 func (w *work) bent(at []int) bool {
-	return estimate.Bent(grouped(pick(w.p, at), mostPoints), grouped(pick(w.e, at), mostPoints))
+	return estimate.Bent(grouped(pick(w.x, at), mostPoints), grouped(pick(w.e, at), mostPoints))
 }
 
 // fitFalling leaves out the reversal at the top and the seating at the bottom:
@@ -144,11 +172,13 @@ func (w *work) bent(at []int) bool {
 func (w *work) fitFalling(c *Cycle, l *legs) bool {
 	l.kneeSI = l.foundKneeSI
 	for pass := 0; ; pass++ {
-		fit, ok := w.fitPairs(c, leaders(c.Peak, l.fall, func(i int) bool { return w.onFalling(l, i) }))
+		fit, ok := w.quickFit(c, w.onFalling(c, l))
 		if !ok {
 			return false
 		}
 		c.Falling = fit
+		seat, _ := fit.Line.InverseAt(l.seatEndM)
+		l.fallSeatSI = math.Max(l.foundSeatSI, seat)
 		c.ReversalSI = w.reversal(c)
 		if pass == 2 {
 			return true
@@ -157,10 +187,10 @@ func (w *work) fitFalling(c *Cycle, l *legs) bool {
 	}
 }
 
-// onFalling is whether a pair lies within the straight part of the falling
+// unloads is whether a pair lies within the straight part of the falling
 // branch.
-func (w *work) onFalling(l *legs, i int) bool {
-	return w.e[i] >= l.seatEndM && w.p[i] >= l.fallSeatSI && w.p[i] <= l.kneeSI
+func (w *work) unloads(l *legs, i int) bool {
+	return w.x[i] >= l.fallSeatSI && w.x[i] <= l.kneeSI
 }
 
 // topSI is the highest setting of a cycle, its noise smoothed.
@@ -178,20 +208,4 @@ func (w *work) reversal(c *Cycle) estimate.Estimate {
 		Value: top - knee, Random: math.Hypot(std, w.trace.doubt(w.trace.windowS)),
 		DoF: math.Min(c.Rising.Line.DoF, c.Falling.Line.DoF), Method: "from the top to the falling line at the top's extension",
 	}
-}
-
-func (w *work) fitPairs(c *Cycle, at []int) (Fit, bool) {
-	p := pick(w.p, at)
-	if len(p) < leastPoints {
-		return Fit{}, false
-	}
-	low, high := estimate.Quantile(p, 0), estimate.Quantile(p, 1)
-	if high-low < leastShare*(c.TopSI-w.p[c.First]) {
-		return Fit{}, false
-	}
-	l, err := estimate.FitSerial(p, pick(w.e, at))
-	if err != nil || !(l.B > 0) {
-		return Fit{}, false
-	}
-	return Fit{Line: l, LowSI: low, HighSI: high, Points: len(p)}, true
 }

@@ -43,14 +43,14 @@ func (w *work) place(pt *Point, i int, c *Cycle, l *legs) {
 	case w.slack[i]:
 	case i < c.Peak && l.rise[i-c.First]:
 		pt.Phase = Loading
-		if !(w.p[i] >= l.seatEndSI) {
+		if !(w.x[i] >= l.seatEndSI) {
 			pt.Phase = Seating
 		}
 	case i >= c.Peak && l.fall[i-c.Peak]:
 		switch {
-		case !l.ok || w.p[i] > l.kneeSI:
+		case !l.ok || w.x[i] > l.kneeSI:
 			pt.Phase = Inside
-		case !w.onFalling(l, i):
+		case !w.unloads(l, i):
 			pt.Phase = Seating
 		default:
 			pt.Phase = Unloading
@@ -89,6 +89,6 @@ func (w *work) markFitted(c *Cycle, l *legs) {
 			w.res.Points[i].Fitted = true
 		}
 	}
-	mark(leaders(c.First, l.rise, func(i int) bool { return w.p[i] >= l.seatEndSI }))
-	mark(leaders(c.Peak, l.fall, func(i int) bool { return w.onFalling(l, i) }))
+	mark(w.onRising(c, l))
+	mark(w.onFalling(c, l))
 }

@@ -9,13 +9,15 @@ import (
 
 // work is one analysis under way.
 type work struct {
-	res     *Result
-	setup   Setup
-	set     *pairing.Set
-	t, p, e []float64 // of the pairs: s, setting SI, extension m
-	trace   *trace
-	noiseM  float64 // standard deviation of one extension reading, m
-	rate    float64 // of the fitted rises, mean, SI/s
+	res       *Result
+	setup     Setup
+	set       *pairing.Set
+	t, p, e   []float64 // of the pairs: s, setting SI, extension m
+	x         []float64 // of the pairs: setting, smoothed
+	trace     *trace
+	pairStepS float64 // median time between pairs
+	noiseM    float64 // standard deviation of one extension reading, m
+	rate      float64 // of the fitted rises, mean, SI/s
 
 	legs   []legs // parallel to the cycles
 	lulls  []lull // low ends: before the first top, between tops, after the last
@@ -53,6 +55,11 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 		}
 		w.t, w.p, w.e = append(w.t, q.T), append(w.p, q.Setting), append(w.e, q.Extension)
 	}
+	steps := make([]float64, 0, len(w.t))
+	for i := 1; i < len(w.t); i++ {
+		steps = append(steps, w.t[i]-w.t[i-1])
+	}
+	w.pairStepS = estimate.Median(steps)
 	w.k = constants{s.ModulusPa.Value, s.GaugeM.Value, s.NetAreaM2}
 	w.trace = newTrace(set, s.CountSI)
 	w.slack = make([]bool, len(w.t))

@@ -88,7 +88,7 @@ func TestFitsRefuseBadPoints(t *testing.T) {
 		if _, err := FitStick(c.x, c.y); !errors.Is(err, c.want) {
 			t.Errorf("%s: stick: %v, want %v", c.name, err, c.want)
 		}
-		if _, err := FitSerial(c.x, c.y); !errors.Is(err, c.want) {
+		if _, err := fitSerial(c.x, c.y); !errors.Is(err, c.want) {
 			t.Errorf("%s: serial: %v, want %v", c.name, err, c.want)
 		}
 		if _, _, err := StraightAbove(c.x, c.y); !errors.Is(err, c.want) {

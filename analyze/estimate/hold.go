@@ -52,7 +52,7 @@ const (
 // evidence (Kass and Raftery, JASA 90 (1995) 773-795). t counts from the start
 // of the hold. Needs five values. Errors as FitLine.
 func FitHold(t, y []float64) (Hold, error) {
-	line, err := FitSerial(t, y)
+	line, err := fitSerial(t, y)
 	if err != nil {
 		return Hold{}, err
 	}

@@ -40,11 +40,11 @@ func Dependence(v []float64) float64 {
 	return tau
 }
 
-// FitSerial is FitLine for points in the order in which they were read, whose
+// fitSerial is FitLine for points in the order in which they were read, whose
 // errors depend on their neighbours' (a display's counts, slow noise): the
 // covariance is raised by the residuals' Dependence, and the degrees of freedom
 // lowered by it. Errors as FitLine.
-func FitSerial(x, y []float64) (Line, error) {
+func fitSerial(x, y []float64) (Line, error) {
 	l, err := FitLine(x, y)
 	if err != nil {
 		return Line{}, err

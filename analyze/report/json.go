@@ -162,7 +162,8 @@ func fitJSON(f analyze.Fit, by setBy) any {
 	return object{
 		{"points", f.Points}, {"low", by.inSetting(number(f.LowSI))}, {"high", by.inSetting(number(f.HighSI))},
 		{"intercept_m", number(f.Line.A)}, {"slope_m_per", by.inSetting(number(f.Line.B))},
-		{"residual_std_m", number(f.Line.ResidualSD)},
+		{"residual_std_m", number(f.Line.ResidualSD)}, {"method", clean(string(f.Method), nameLength)},
+		{"outliers", f.Outliers}, {"dependence", given(f.Dependence)},
 	}
 }
 

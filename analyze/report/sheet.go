@@ -29,6 +29,7 @@ type sheet struct {
 	Branches    []fact    // the two lines
 	Table       roundRows // both branches at round settings
 	Assumptions []fact
+	Fitted      []fact // in the text only
 	Warnings    []string
 	Unchecked   []string
 	Cautions    []string
@@ -56,6 +57,7 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		Branches:    []fact{branchFact(analyze.Rising, r.Rising, u), branchFact(analyze.Falling, r.Falling, u)},
 		Table:       rowsOf(r, u),
 		Assumptions: assumptions(r, u),
+		Fitted:      fitted(r),
 		Warnings:    warningTexts(r, m),
 		Unchecked:   unchecked(),
 		Cautions:    Cautions(),

@@ -31,6 +31,7 @@ func Text(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	p.table(sh)
 	p.heading("What this rests on")
 	p.facts(sh.Assumptions)
+	p.facts(sh.Fitted)
 	p.budget(sh)
 	p.list("Warnings", sh.Warnings)
 	p.list("Not checked", sh.Unchecked)
