@@ -1,6 +1,7 @@
 package mill
 
 import (
+	"fmt"
 	"slices"
 	"strings"
 	"testing"
@@ -97,6 +98,22 @@ func TestExampleExplainsEveryKey(t *testing.T) {
 			rehearsal := &table{faults: f, path: sub.at("rehearsal"), values: sub.values["rehearsal"].(map[string]any)}
 			readRehearsal(rehearsal)
 			explained(rehearsal)
+		}
+	}
+	known := map[string]bool{}
+	for i, values := range root["gauge_limit"].([]map[string]any) {
+		sub := &table{faults: f, path: fmt.Sprintf("gauge_limit.%d", i), values: values}
+		readGaugeLimit(sub)
+		for _, key := range sub.known {
+			known[key] = known[key] || sub.has(key)
+			if line := lineOf(f.lines, sub.at(key)); sub.has(key) && !strings.Contains(lines[line-1], "#") {
+				t.Errorf("%s is not explained", sub.at(key))
+			}
+		}
+	}
+	for key, stands := range known {
+		if !stands {
+			t.Errorf("gauge_limit.%s is not in the example", key)
 		}
 	}
 	if len(f.found) != 0 {

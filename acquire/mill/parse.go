@@ -16,15 +16,12 @@ const largestFile = 256 << 10
 // line order, and after them one for each measure that can be read and is more
 // often a slip: otherwise one fault would hide it until the next try.
 func Parse(text []byte) (*Profile, error) {
-	if len(text) > largestFile {
-		return nil, &ProfileError{Problem: fmt.Sprintf("%d bytes is too long for a mill.toml", len(text)), Hint: "is it the right file?"}
+	t, err := readTable(text, "mill.toml")
+	if err != nil {
+		return nil, err
 	}
-	root := map[string]any{}
-	if _, err := toml.Decode(string(text), &root); err != nil {
-		return nil, syntaxFault(string(text), err)
-	}
-	f := &faults{lines: keyLines(strings.TrimPrefix(string(text), "\ufeff"))}
-	p := readProfile(&table{faults: f, values: root})
+	f := t.faults
+	p := readProfile(t)
 	checkNames(f, p)
 	if len(f.found) == 0 {
 		return p, nil
@@ -33,6 +30,18 @@ func Parse(text []byte) (*Profile, error) {
 		f.found = append(f.found, &ProfileError{Problem: "look again too: " + doubt})
 	}
 	return nil, f.err()
+}
+
+// readTable is the top table of a text; what names its kind for a message.
+func readTable(text []byte, what string) (*table, error) {
+	if len(text) > largestFile {
+		return nil, &ProfileError{Problem: fmt.Sprintf("%d bytes is too long for a %s", len(text), what), Hint: "is it the right file?"}
+	}
+	root := map[string]any{}
+	if _, err := toml.Decode(string(text), &root); err != nil {
+		return nil, syntaxFault(string(text), err)
+	}
+	return &table{faults: &faults{lines: keyLines(strings.TrimPrefix(string(text), "\ufeff"))}, values: root}, nil
 }
 
 func readProfile(t *table) *Profile {
@@ -51,6 +60,9 @@ func readProfile(t *table) *Profile {
 	}
 	for _, e := range t.list("instrument") {
 		p.Instruments = append(p.Instruments, readInstrument(e))
+	}
+	for _, e := range t.list("gauge_limit") {
+		p.GaugeLimits = append(p.GaugeLimits, readGaugeLimit(e))
 	}
 	t.needTable("mill", "write [mill] with its name")
 	t.needTable("tensioner", "write at least one [[tensioner]]")
@@ -223,5 +235,8 @@ func checkNames(f *faults, p *Profile) {
 	}
 	for i, e := range p.Instruments {
 		check("instrument", i, e.Name)
+	}
+	for i, e := range p.GaugeLimits {
+		check("gauge_limit", i, e.Name)
 	}
 }

@@ -13,6 +13,7 @@ type Profile struct {
 	Bands       []Band      // [[band]]
 	Rig         Rig
 	Instruments []Instrument // [[instrument]]
+	GaugeLimits []GaugeLimit // [[gauge_limit]]
 }
 
 // Mill is whose tensioners these are.
@@ -92,4 +93,16 @@ type Instrument struct {
 	Measures string  // "setting" or "extension"
 	Limit    Setting // largest error by its certificate or class; standard uncertainty = limit / sqrt 3
 	Due      string  // next check, YYYY-MM-DD
+}
+
+// GaugeLimit is a limit of error for bench tests that the user wrote down: his
+// own, or one that replaces a built-in one of the same name.
+type GaugeLimit struct {
+	Name            string
+	Error           Setting    // largest error, absolute
+	ErrorShare      [3]float64 // error_percent / 100, of the span: lower quarter, middle half, upper quarter
+	Hysteresis      Setting    // largest difference between falling and rising; optional
+	HysteresisShare float64    // hysteresis_percent / 100, of the span; optional
+	Repeatability   Setting    // largest spread of like readings; optional
+	Source          string     // where it was read
 }

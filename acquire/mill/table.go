@@ -108,6 +108,11 @@ func (t *table) orZero(key string, dims ...Dim) Quantity {
 	if !ok {
 		return Quantity{}
 	}
+	return t.parse(key, v, 0, dims...)
+}
+
+// parse reads the value of a key as a quantity, in SI no less than least.
+func (t *table) parse(key string, v any, least float64, dims ...Dim) Quantity {
 	text, ok := v.(string)
 	if !ok {
 		hint := fmt.Sprintf("write the number with its unit between quote marks: %s", unitNames(dims))
@@ -120,7 +125,7 @@ func (t *table) orZero(key string, dims ...Dim) Quantity {
 		t.faults.add(t.at(key), bad.Hint, "%q: %s", bad.Text, bad.Problem)
 		return Quantity{}
 	}
-	if q.SI < 0 {
+	if q.SI < least {
 		t.faults.add(t.at(key), "check the sign", "%q must not be negative", q.Entered)
 		return Quantity{}
 	}
