@@ -53,6 +53,10 @@ type Config struct {
 	// sees those too; only the last entry, by Out.Close, it does not see. While it works the capture waits: the lines stay in the
 	// operating system's buffers. It may be nil.
 	OnEntry func(recording.Entry) []recording.Event
+	// Fits looks at what all boards declare before any of them is started; its
+	// error ends the capture. nil wants the setting of the header's tensioner and
+	// the extension, as a calibration does.
+	Fits func(channels []protocol.Chan) error
 	// Operator carries marks and the like; nil when nobody can press a key.
 	Operator <-chan recording.Event
 
@@ -86,17 +90,25 @@ func (c *Config) leastWaits() {
 	}
 }
 
-// check fills in the defaults and says what the setting's channel measures.
-func (c *Config) check() (setting protocol.Quantity, err error) {
+// check fills in the defaults.
+func (c *Config) check() error {
 	if c.Clock == nil || c.Out == nil {
-		return "", errors.New("start a capture: it needs a clock and a recording")
+		return errors.New("start a capture: it needs a clock and a recording")
 	}
 	if n := len(c.Out.Header().Devices); len(c.Devices) == 0 || len(c.Devices) != n {
-		return "", fmt.Errorf("start a capture: %d boards, but the recording names %d", len(c.Devices), n)
+		return fmt.Errorf("start a capture: %d boards, but the recording names %d", len(c.Devices), n)
 	}
-	if setting, err = c.Out.Header().SettingQuantity(); err != nil {
-		return "", fmt.Errorf("start a capture: %w", err)
+	if c.Fits == nil {
+		setting, err := c.Out.Header().SettingQuantity()
+		if err != nil {
+			return fmt.Errorf("start a capture: %w", err)
+		}
+		want := []protocol.Quantity{setting, protocol.Extension}
+		if c.Out.Header().Presses.As == recording.PressStep {
+			want = want[1:] // the presses tell the setting
+		}
+		c.Fits = measures(want...)
 	}
 	c.leastWaits()
-	return setting, nil
+	return nil
 }

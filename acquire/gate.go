@@ -16,17 +16,32 @@ type gate struct {
 	mu      sync.Mutex
 	present [][]protocol.Chan // by device; nil: not identified, or lost again
 	opened  bool
-	setting protocol.Quantity
+	fits    func([]protocol.Chan) error
 }
 
-func newGate(devices int, setting protocol.Quantity) *gate {
-	return &gate{
-		open: make(chan struct{}), present: make([][]protocol.Chan, devices), setting: setting,
+func newGate(devices int, fits func([]protocol.Chan) error) *gate {
+	return &gate{open: make(chan struct{}), present: make([][]protocol.Chan, devices), fits: fits}
+}
+
+// measures wants a channel of each quantity.
+func measures(want ...protocol.Quantity) func([]protocol.Chan) error {
+	return func(all []protocol.Chan) error {
+		for _, q := range want {
+			if slices.ContainsFunc(all, func(c protocol.Chan) bool { return c.Quantity == q }) {
+				continue
+			}
+			what := string(q)
+			if q == protocol.Extension {
+				what = "the stretch (extension)"
+			}
+			return fmt.Errorf("%w: no channel measures %s; the boards declare %s", ErrNotOurs, what, namesOf(all))
+		}
+		return nil
 	}
 }
 
 // arrive says that a device is identified. The one that completes the set
-// checks that together they measure what a calibration needs.
+// checks that together they measure what is needed.
 func (g *gate) arrive(device int, channels []protocol.Chan) error {
 	g.mu.Lock()
 	defer g.mu.Unlock()
@@ -39,15 +54,8 @@ func (g *gate) arrive(device int, channels []protocol.Chan) error {
 			return nil
 		}
 	}
-	all := slices.Concat(g.present...)
-	for _, want := range []protocol.Quantity{g.setting, protocol.Extension} {
-		if !slices.ContainsFunc(all, func(c protocol.Chan) bool { return c.Quantity == want }) {
-			what := string(want)
-			if want == protocol.Extension {
-				what = "the stretch (extension)"
-			}
-			return fmt.Errorf("%w: no channel measures %s; the boards declare %s", ErrNotOurs, what, namesOf(all))
-		}
+	if err := g.fits(slices.Concat(g.present...)); err != nil {
+		return err
 	}
 	g.opened = true
 	close(g.open)

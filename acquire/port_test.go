@@ -117,7 +117,7 @@ func TestOddPortsAreLostPorts(t *testing.T) {
 func TestWhatWasReadBeforeTheDropIsKept(t *testing.T) {
 	synctest.Test(t, func(t *testing.T) {
 		r := newRig(t, oneBoard())
-		s := newSession(t.Context(), r.cfg, newGate(1, protocol.Pressure))
+		s := newSession(t.Context(), r.cfg, newGate(1, measures(protocol.Pressure, protocol.Extension)))
 		defer s.waitTicks()
 		host, far := net.Pipe()
 		l := newLink(s, 0)

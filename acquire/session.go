@@ -15,11 +15,10 @@ import (
 // error, at once, when that cannot be written. Everything heard up to the end
 // is in the recording; Run does not close it.
 func Run(ctx context.Context, cfg Config) error {
-	setting, err := cfg.check()
-	if err != nil {
+	if err := cfg.check(); err != nil {
 		return err
 	}
-	s := newSession(ctx, cfg, newGate(len(cfg.Devices), setting))
+	s := newSession(ctx, cfg, newGate(len(cfg.Devices), cfg.Fits))
 	defer s.waitTicks()
 	var links sync.WaitGroup
 	for i := range cfg.Devices {

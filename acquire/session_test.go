@@ -91,7 +91,7 @@ func TestLastWordsAreTaken(t *testing.T) {
 		r := newRig(t, oneBoard())
 		operator := make(chan recording.Event, 2)
 		r.cfg.Operator = operator
-		s := newSession(t.Context(), r.cfg, newGate(1, protocol.Pressure))
+		s := newSession(t.Context(), r.cfg, newGate(1, measures(protocol.Pressure, protocol.Extension)))
 		defer s.waitTicks()
 		close(s.items)
 		operator <- recording.Event{Kind: recording.Mark}
@@ -113,7 +113,7 @@ func TestEntriesOutOfOrderAreNoSleep(t *testing.T) {
 			}
 			return nil
 		}
-		s := newSession(t.Context(), r.cfg, newGate(1, protocol.Pressure))
+		s := newSession(t.Context(), r.cfg, newGate(1, measures(protocol.Pressure, protocol.Extension)))
 		defer s.waitTicks()
 		start := time.Now()
 		for _, e := range []struct{ at, wall time.Duration }{

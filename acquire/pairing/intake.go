@@ -37,6 +37,13 @@ func (s sample) reading() Reading {
 	return r
 }
 
+// edge is one edge of a button.
+type edge struct {
+	record protocol.Button
+	seg    *segment
+	tick   int64
+}
+
 // source names a channel.
 type source struct {
 	device  int
@@ -50,6 +57,7 @@ type intake struct {
 	telling telling
 	plan    recording.Plan
 	news    bool // a declaration came; whoever acts on it clears it
+	edge    edge // the button's edge in the last entry; seg is nil where it held none
 }
 
 func newIntake(h recording.Header, keep bool) *intake {
@@ -62,13 +70,14 @@ func newIntake(h recording.Header, keep bool) *intake {
 		in.devices[i] = device{counters: Counters{Device: i}, factor: factor, keep: keep}
 	}
 	if keep {
-		in.marks = &marks{}
+		in.marks = &marks{presses: h.Presses}
 	}
 	return in
 }
 
 // take reads one entry; ok is true where it held a usable sample.
 func (in *intake) take(e recording.Entry) (from source, s sample, ok bool) {
+	in.edge = edge{}
 	if e.Event != nil {
 		in.event(e)
 		return source{}, sample{}, false
@@ -95,6 +104,7 @@ func (in *intake) take(e recording.Entry) (from source, s sample, ok bool) {
 	case protocol.Button:
 		t.tick = r.Tick
 		seg, tick := d.numbered(r.Seq, t)
+		in.edge = edge{r, seg, tick}
 		in.marks.button(r, seg, tick)
 	case protocol.Here:
 		t.tick = r.Up

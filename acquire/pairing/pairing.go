@@ -7,7 +7,10 @@
 // unloading, friction or stress.
 package pairing
 
-import "tautramp/protocol"
+import (
+	"tautramp/acquire/recording"
+	"tautramp/protocol"
+)
 
 // Reading is one sample in SI on the host timeline.
 type Reading struct {
@@ -40,6 +43,10 @@ type Mark struct {
 	T    float64 // s
 	Kind MarkKind
 	Text string
+	// What a press stands for where the recording declares it (recording.Presses);
+	// "" for every other mark.
+	As       recording.PressAs
+	Declared string // the quantity as declared, such as "600 psi"
 }
 
 // MarkKind is the kind of a mark.

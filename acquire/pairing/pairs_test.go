@@ -331,7 +331,7 @@ func TestMarksStandOnTheHostTimeline(t *testing.T) {
 	for i := range set.Marks {
 		set.Marks[i].T = math.Round(set.Marks[i].T*1e4) / 1e4
 	}
-	want := []Mark{{9.9, Button, "1"}, {11, Zero, ""}, {12, Operator, "pump squeals"}}
+	want := []Mark{{T: 9.9, Kind: Button, Text: "1"}, {T: 11, Kind: Zero}, {T: 12, Kind: Operator, Text: "pump squeals"}}
 	if !reflect.DeepEqual(set.Marks, want) {
 		t.Errorf("marks %v, want %v", set.Marks, want)
 	}

@@ -40,7 +40,7 @@ func TestAlarmsOfTheVisitAreKept(t *testing.T) {
 	set := build(t, header(t, 1), append(oneBoard(t, 5).lines,
 		event(-1, 12*time.Second, recording.Alarm, "limit: above the limit"),
 		event(-1, 13*time.Second, recording.Undo, ""))) // takes back a mark, never an alarm
-	if want := []Mark{{12, Alarm, "limit: above the limit"}}; !reflect.DeepEqual(set.Alarms, want) || len(set.Marks) != 0 {
+	if want := []Mark{{T: 12, Kind: Alarm, Text: "limit: above the limit"}}; !reflect.DeepEqual(set.Alarms, want) || len(set.Marks) != 0 {
 		t.Errorf("alarms %v, marks %v", set.Alarms, set.Marks)
 	}
 }

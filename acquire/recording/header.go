@@ -40,6 +40,15 @@ func appendHeader(dst []byte, h Header) ([]byte, error) {
 	put("band", h.Band)
 	put("exercise", strconv.Itoa(h.Plan.Exercise))
 	put("ramps", strconv.Itoa(h.Plan.Ramps))
+	if h.Presses.As != "" {
+		put("presses", h.Presses.text())
+	}
+	if h.Presses.Doubt != "" {
+		put("press-doubt", h.Presses.Doubt)
+	}
+	if h.Bench != nil {
+		h.Bench.appendTo(put)
+	}
 	for _, line := range bytes.Split(h.Profile, []byte{'\n'}) {
 		dst = append(dst, profileTag...)
 		dst = appendEscaped(dst, line)
@@ -63,6 +72,12 @@ func checkHeader(h Header) error {
 	case h.Plan.Exercise < 0 || h.Plan.Ramps < 0:
 		return errors.New("its plan has fewer than no cycles")
 	}
+	if err := h.Presses.check(); err != nil {
+		return err
+	}
+	if h.Bench != nil {
+		return h.Bench.check(h)
+	}
 	return nil
 }
 
@@ -83,6 +98,9 @@ func isSeal(text string) bool {
 // headerParser collects the lines of the header block.
 type headerParser struct {
 	h       Header
+	kind    string
+	bench   Bench
+	presses Presses
 	seen    map[string]bool
 	profile [][]byte
 }
@@ -137,6 +155,14 @@ func (p *headerParser) set(key, value string) (err error) {
 		h.Plan.Exercise, err = parseCount(value)
 	case "ramps":
 		h.Plan.Ramps, err = parseCount(value)
+	case "kind":
+		p.kind = value
+	case "presses":
+		p.presses, err = parsePresses(value)
+	case "press-doubt":
+		h.Presses.Doubt = value
+	default:
+		p.bench.set(key, value)
 	}
 	return err
 }
@@ -161,5 +187,13 @@ func (p *headerParser) header() (Header, error) {
 		return Header{}, errors.New("the header holds no profile")
 	}
 	p.h.Profile = bytes.Join(p.profile, []byte{'\n'})
+	p.h.Presses.As, p.h.Presses.Marks = p.presses.As, p.presses.Marks
+	switch p.kind {
+	case kindVisit, "":
+	case kindBench:
+		p.h.Bench = &p.bench
+	default:
+		return Header{}, fmt.Errorf("it is a recording of kind %q, which this program does not know", p.kind)
+	}
 	return p.h, checkHeader(p.h)
 }

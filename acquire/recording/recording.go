@@ -23,6 +23,8 @@ type Header struct {
 	Tensioner   string        // name in the profile
 	Band        string        // name in the profile
 	Plan        Plan          // cycles asked for
+	Presses     Presses       // what each press stands for; the zero value: plain marks
+	Bench       *Bench        // of a bench test; nil: a visit to a tensioner
 	Profile     []byte        // mill.toml as it was, byte for byte
 	Parsed      *mill.Profile // Profile parsed; filled by Read, ignored by writers
 }
@@ -78,7 +80,10 @@ const (
 	Interrupt  EventKind = "stopped"  // ended by the operator
 	Abandoned  EventKind = "gave-up"  // ended by the program; Text says why
 	WallTime   EventKind = "wall"     // wall clock, RFC 3339, in every block
-	PlanClosed EventKind = "complete" // all planned cycles are closed
+	PlanClosed EventKind = "complete" // all planned cycles, or points, are closed
+	Taken      EventKind = "taken"    // bench: a point was taken; Text says which
+	Refused    EventKind = "refused"  // bench: a press was refused; Text says why
+	Again      EventKind = "again"    // bench: a series starts afresh; Text says why
 )
 
 // Outcome is how a file ends. The zero value is no verdict.
