@@ -36,13 +36,7 @@ func (d *Document) Number(key string, low, high float64) float64 { return d.t.nu
 func (d *Document) Whole(key string, low, high int) int { return d.t.whole(key, low, high) }
 
 // Signed takes a quantity of any sign; the zero value when it is absent.
-func (d *Document) Signed(key string, dims ...Dim) Quantity {
-	v, ok := d.t.take(key)
-	if !ok {
-		return Quantity{}
-	}
-	return d.t.parse(key, v, math.Inf(-1), dims...)
-}
+func (d *Document) Signed(key string, dims ...Dim) Quantity { return d.t.signed(key, dims...) }
 
 // SignedList takes a list of quantities of any sign.
 func (d *Document) SignedList(key string, dims ...Dim) []Quantity {

@@ -87,9 +87,8 @@ func TestExampleExplainsEveryKey(t *testing.T) {
 		explained(sub)
 	}
 	for kind, read := range map[string]func(*table){
-		"tensioner":  func(t *table) { readTensioner(t) },
-		"band":       func(t *table) { readBand(t) },
-		"instrument": func(t *table) { readInstrument(t) },
+		"tensioner": func(t *table) { readTensioner(t) },
+		"band":      func(t *table) { readBand(t) },
 	} {
 		sub := &table{faults: f, path: kind + ".0", values: root[kind].([]map[string]any)[0]}
 		read(sub)
@@ -98,26 +97,58 @@ func TestExampleExplainsEveryKey(t *testing.T) {
 			rehearsal := &table{faults: f, path: sub.at("rehearsal"), values: sub.values["rehearsal"].(map[string]any)}
 			readRehearsal(rehearsal)
 			explained(rehearsal)
+			dial := &table{faults: f, path: sub.at("dial"), values: sub.values["dial"].(map[string]any)}
+			readDialFace(dial, Tensioner{SetBy: SetByPressure})
+			explained(dial)
 		}
 	}
-	known := map[string]bool{}
-	for i, values := range root["gauge_limit"].([]map[string]any) {
-		sub := &table{faults: f, path: fmt.Sprintf("gauge_limit.%d", i), values: values}
-		readGaugeLimit(sub)
-		for _, key := range sub.known {
-			known[key] = known[key] || sub.has(key)
-			if line := lineOf(f.lines, sub.at(key)); sub.has(key) && !strings.Contains(lines[line-1], "#") {
-				t.Errorf("%s is not explained", sub.at(key))
-			}
+	for kind, read := range map[string]func(*table){
+		"instrument":  func(t *table) { readInstrument(t) },
+		"gauge_limit": func(t *table) { readGaugeLimit(t) },
+	} {
+		var all []*table
+		for i, values := range root[kind].([]map[string]any) {
+			sub := &table{faults: f, path: fmt.Sprintf("%s.%d", kind, i), values: values}
+			read(sub)
+			all = append(all, sub)
 		}
+		explainedBetween(t, all, lines)
 	}
-	for key, stands := range known {
-		if !stands {
-			t.Errorf("gauge_limit.%s is not in the example", key)
+	for i, values := range root["instrument"].([]map[string]any) {
+		bench, ok := values["bench"].(map[string]any)
+		if !ok {
+			continue
 		}
+		sub := &table{faults: f, path: fmt.Sprintf("instrument.%d.bench", i), values: bench}
+		readBench(sub, []Dim{DimPressure})
+		explained(sub)
+		point := &table{faults: f, path: sub.at("point.0"), values: bench["point"].([]map[string]any)[0]}
+		readBenchPoint(point, nil, []Dim{DimPressure})
+		explained(point)
 	}
 	if len(f.found) != 0 {
 		t.Errorf("faults in the example: %v", f.err())
+	}
+}
+
+// explainedBetween asks that each key of a kind stands in one of its tables,
+// explained.
+func explainedBetween(t *testing.T, all []*table, lines []string) {
+	t.Helper()
+	stands := map[string]bool{}
+	for _, sub := range all {
+		for _, key := range sub.known {
+			line := ""
+			if sub.has(key) {
+				line = lines[lineOf(sub.faults.lines, sub.at(key))-1]
+			}
+			stands[key] = stands[key] || strings.HasPrefix(line, "[") || strings.Contains(line, "#")
+		}
+	}
+	for key, ok := range stands {
+		if !ok {
+			t.Errorf("%s is nowhere explained in the example", all[0].at(key))
+		}
 	}
 }
 

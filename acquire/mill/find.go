@@ -16,6 +16,7 @@ var ErrUnknownName = errors.New("unknown name")
 const (
 	MeasuresSetting   = "setting"
 	MeasuresExtension = "extension"
+	MeasuresReference = "reference" // what others are compared with on the bench; no figure of a mill rests on it
 )
 
 // FindTensioner finds a tensioner by its name; "" is the only one. The error is

@@ -96,6 +96,9 @@ func readTensioner(t *table) Tensioner {
 	s.LiftedWeight = Force{t.orZero("lifted_weight", DimForce)}
 	s.Hold = oneOf(t, "hold", HoldMaintained, HoldLocked)
 	s.Note = t.text("note")
+	if d, ok := t.one("dial"); ok {
+		s.Dial = readDialFace(d, s)
+	}
 	if r, ok := t.one("rehearsal"); ok {
 		s.Rehearsal = readRehearsal(r)
 	}
@@ -197,25 +200,6 @@ func readRig(t *table) Rig {
 			"%s is too much for a gauge length of %s", r.GaugeLengthStd, r.GaugeLength)
 	}
 	return r
-}
-
-func readInstrument(t *table) Instrument {
-	defer t.rest()
-	i := Instrument{
-		Name:     t.need("name", "write what it is called in the shop"),
-		Serial:   t.text("serial"),
-		Measures: oneOf(t, "measures", MeasuresSetting, MeasuresExtension),
-	}
-	if !t.has("measures") {
-		t.faults.add(t.at("measures"), "write setting or extension", missing)
-	}
-	dims := []Dim{DimLength}
-	if i.Measures != MeasuresExtension {
-		dims = []Dim{DimPressure, DimTorque, DimAngle, DimLength}
-	}
-	i.Limit = Setting{t.quantity("limit", dims...)}
-	i.Due = t.date("due")
-	return i
 }
 
 // checkNames refuses a name that stands twice in its list.

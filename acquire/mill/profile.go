@@ -53,7 +53,15 @@ type Tensioner struct {
 	LiftedWeight Force      // W; optional
 	Hold         Hold       // optional
 	Note         string     // for the report
+	Dial         *DialFace  // [tensioner.dial]: the mill's own dial, that cards are read on; optional
 	Rehearsal    *Rehearsal // what the simulated rig pretends; never read by the analysis
+}
+
+// DialFace is what a mill's own dial shows: its numbers are what people set by.
+type DialFace struct {
+	Name       string
+	Unit       string  // "psi", "bar", "kgf/cm2" and the like, or "divisions": a bare scale
+	Graduation float64 // from mark to mark, in its unit
 }
 
 // Rehearsal is the hidden truth of a simulated tensioner. Band and target
@@ -84,15 +92,6 @@ type Rig struct {
 	Material       string // of the bar; text for the report
 	Faces          int    // faces measured, 1 or 2; 0 means 1
 	Note           string // place and face on the band, for the report
-}
-
-// Instrument is one sensor or gauge as certified.
-type Instrument struct {
-	Name     string
-	Serial   string
-	Measures string  // "setting" or "extension"
-	Limit    Setting // largest error by its certificate or class; standard uncertainty = limit / sqrt 3
-	Due      string  // next check, YYYY-MM-DD
 }
 
 // GaugeLimit is a limit of error for bench tests that the user wrote down: his

@@ -102,6 +102,15 @@ func (t *table) quantity(key string, dims ...Dim) Quantity {
 	return q
 }
 
+// signed takes a quantity of any sign.
+func (t *table) signed(key string, dims ...Dim) Quantity {
+	v, ok := t.take(key)
+	if !ok {
+		return Quantity{}
+	}
+	return t.parse(key, v, math.Inf(-1), dims...)
+}
+
 // orZero takes a quantity of zero or more.
 func (t *table) orZero(key string, dims ...Dim) Quantity {
 	v, ok := t.take(key)
