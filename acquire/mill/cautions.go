@@ -28,13 +28,29 @@ func (p *Profile) gaps() []string {
 	var c cautions
 	for _, t := range p.Tensioners {
 		place := "tensioner " + t.Name
-		if t.SetBy == SetByPressure && t.GeometryAreaM2() == 0 {
-			c.about(place, "without cylinders and bore the measured slope cannot be checked against geometry")
+		if what := t.lacks(); what != "" {
+			c.about(place, "%s", what)
 		}
 		c.instrument(p, place, MeasuresSetting, t.SettingDim())
 	}
 	c.instrument(p, "rig", MeasuresExtension, DimLength)
 	return c
+}
+
+// lacks says what the profile does not give of how the setting becomes wheel
+// pull, and what cannot be done without it.
+func (t Tensioner) lacks() string {
+	switch {
+	case t.SetBy == SetByPressure && t.GeometryAreaM2() == 0:
+		return "without cylinders and bore the measured slope cannot be checked against geometry"
+	case t.SetBy == SetByTorque && t.Screw == nil:
+		return "without [tensioner.screw] the friction of its screw cannot be worked out"
+	case t.SetBy == SetByTurns && t.WheelTravelM() == 0:
+		return "without [tensioner.turns] and its lead the turns cannot be checked against what gives way"
+	case t.SetBy == SetBySpring && t.Spring == nil:
+		return "without [tensioner.spring] nothing says which way its length goes under load: a capture by spring length is refused"
+	}
+	return ""
 }
 
 // cautions collects sentences; about puts the place before each.
@@ -54,14 +70,27 @@ func (c *cautions) outside(place, what string, q Quantity, low, high float64, us
 func (c *cautions) tensioner(t Tensioner) {
 	place := "tensioner " + t.Name
 	c.outside(place, "bore", t.Bore.Quantity, 0.5*inchM, 20*inchM, "0.5 to 20 in (13 to 508 mm)")
-	switch t.SetBy {
-	case SetByPressure: // from an air bag to a press; what a mill's hoses and gauges are made for lies between
+	if t.SetBy == SetByPressure { // from an air bag to a press; what a mill's hoses and gauges are made for lies between
 		c.outside(place, "setting limit", t.SettingLimit.Quantity, 20*psiPa, 10000*psiPa, "20 to 10,000 psi (1.4 to 690 bar)")
-	case SetBySpring:
-		c.about(place, "a spring gets shorter as its load rises, and the limit would be on the wrong side: a capture by spring length is not handled")
 	}
 	if t.TravelRatio != 0 && (t.TravelRatio < 0.2 || t.TravelRatio > 5) {
-		c.about(place, "travel ratio %g is unusual: it is cylinder travel / wheel travel", t.TravelRatio)
+		c.about(place, "travel ratio %g is unusual: it is cylinder, screw or spring travel / wheel travel", t.TravelRatio)
+	}
+	c.drivetrain(place, t)
+}
+
+func (c *cautions) drivetrain(place string, t Tensioner) {
+	if s := t.Screw; s != nil {
+		c.outside(place, "screw diameter", s.Diameter.Quantity, 8e-3, 120e-3, "0.3 to 4.7 in (8 to 120 mm)")
+		if !s.PitchDiameter.Given() && s.Lead.SI > 0.3*s.Diameter.SI { // one start has 0.13 to 0.25 of the diameter (ISO 2904; from memory)
+			c.about(place, "a lead of %s is much for one start on %s: give the pitch_diameter of a thread of several starts", s.Lead, s.Diameter)
+		}
+	}
+	if s := t.Spring; s != nil {
+		c.outside(place, "spring rate", s.Rate.Quantity, 1e3, 1e9, "1 N/mm to 1,000 kN/mm (6 lbf/in to 5.7 million lbf/in)")
+		if s.UnderLoad == Shorter && t.SetBy == SetBySpring && t.SettingLimit.SI < s.BindLength.SI {
+			c.about(place, "the setting limit %s lies beyond the length %s at which the spring binds", t.SettingLimit, s.BindLength)
+		}
 	}
 }
 

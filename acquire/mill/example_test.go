@@ -2,6 +2,7 @@ package mill
 
 import (
 	"fmt"
+	"math"
 	"slices"
 	"strings"
 	"testing"
@@ -46,8 +47,15 @@ func TestExampleIsTheInventedMill(t *testing.T) {
 			t.Error(err)
 		}
 	}
-	if t2, err := p.FindTensioner("T-2"); err != nil || t2.SetBy != SetByTorque {
-		t.Errorf("T-2 is set by %q, %v", t2.SetBy, err)
+	t2, err := p.FindTensioner("T-2")
+	if err != nil || t2.SetBy != SetByTorque || t2.Screw == nil || t2.Turns == nil || t2.Spring == nil {
+		t.Fatalf("T-2 is %+v, %v", t2, err)
+	}
+	if s := t2.Screw; s.Diameter.SI != 0.024 || s.Lead.SI != 0.005 || math.Abs(s.PitchDiameterM()-0.0215) > 1e-15 || s.ThreadFriction != 0.1 || s.CollarFriction != 0.02 || s.CollarRadius.SI != 0.014 || s.RestTorque.SI != 0.3 {
+		t.Errorf("T-2 has the screw %+v", s)
+	}
+	if r := t2.Rehearsal; r.FrictionThread != 0.1 || r.FrictionCollar != 0.02 || r.RestTorque.SI != 0.3 || math.Abs(r.Play.SI-0.1*math.Pi) > 1e-15 {
+		t.Errorf("T-2 pretends %+v", r)
 	}
 	if c := p.Cautions(); len(c) != 0 {
 		t.Errorf("the example itself raises doubts: %q", c)
@@ -62,92 +70,67 @@ func TestExampleExplainsEveryKey(t *testing.T) {
 		t.Fatal(err)
 	}
 	f := &faults{lines: keyLines(string(Example()))}
-	lines := strings.Split(string(Example()), "\n")
-	explained := func(read *table) {
-		for _, key := range read.known {
-			path := read.at(key)
-			if !read.has(key) {
-				t.Errorf("%s is not in the example", path)
-				continue
-			}
-			if line := lines[lineOf(f.lines, path)-1]; !strings.HasPrefix(line, "[") && !strings.Contains(line, "#") {
-				t.Errorf("%s is not explained: %s", path, line)
+	explained := map[string]bool{} // by the path without numbers; false while it has not been seen
+	take := func(path string, values any, read func(*table)) {
+		table := &table{faults: f, path: path, values: values.(map[string]any)}
+		read(table)
+		explainedAt(t, f.lines, table, explained)
+	}
+	below := func(kind, key string, read func(*table)) {
+		for i, values := range root[kind].([]map[string]any) {
+			if sub, ok := values[key]; ok {
+				take(fmt.Sprintf("%s.%d.%s", kind, i, key), sub, read)
 			}
 		}
 	}
-	top := &table{faults: f, values: root}
-	readProfile(top)
-	explained(top)
+	take("", root, func(t *table) { readProfile(t) })
+	take("mill", root["mill"], func(t *table) { readMill(t) })
+	take("rig", root["rig"], func(t *table) { readRig(t) })
 	for kind, read := range map[string]func(*table){
-		"mill": func(t *table) { readMill(t) },
-		"rig":  func(t *table) { readRig(t) },
-	} {
-		sub := &table{faults: f, path: kind, values: root[kind].(map[string]any)}
-		read(sub)
-		explained(sub)
-	}
-	for kind, read := range map[string]func(*table){
-		"tensioner": func(t *table) { readTensioner(t) },
-		"band":      func(t *table) { readBand(t) },
-	} {
-		sub := &table{faults: f, path: kind + ".0", values: root[kind].([]map[string]any)[0]}
-		read(sub)
-		explained(sub)
-		if kind == "tensioner" {
-			rehearsal := &table{faults: f, path: sub.at("rehearsal"), values: sub.values["rehearsal"].(map[string]any)}
-			readRehearsal(rehearsal)
-			explained(rehearsal)
-			dial := &table{faults: f, path: sub.at("dial"), values: sub.values["dial"].(map[string]any)}
-			readDialFace(dial, Tensioner{SetBy: SetByPressure})
-			explained(dial)
-		}
-	}
-	for kind, read := range map[string]func(*table){
+		"tensioner":   func(t *table) { readTensioner(t) },
+		"band":        func(t *table) { readBand(t) },
 		"instrument":  func(t *table) { readInstrument(t) },
 		"gauge_limit": func(t *table) { readGaugeLimit(t) },
 	} {
-		var all []*table
 		for i, values := range root[kind].([]map[string]any) {
-			sub := &table{faults: f, path: fmt.Sprintf("%s.%d", kind, i), values: values}
-			read(sub)
-			all = append(all, sub)
+			take(fmt.Sprintf("%s.%d", kind, i), values, read)
 		}
-		explainedBetween(t, all, lines)
 	}
-	for i, values := range root["instrument"].([]map[string]any) {
-		bench, ok := values["bench"].(map[string]any)
-		if !ok {
-			continue
+	below("tensioner", "screw", func(t *table) { readScrew(t) })
+	below("tensioner", "turns", func(t *table) { readTurns(t) })
+	below("tensioner", "spring", func(t *table) { readSpring(t) })
+	below("tensioner", "rehearsal", func(t *table) { readRehearsal(t) })
+	below("tensioner", "dial", func(t *table) { readDialFace(t, Tensioner{SetBy: SetByPressure}) })
+	below("instrument", "bench", func(t *table) {
+		readBench(t, []Dim{DimPressure})
+		for i, point := range t.values["point"].([]map[string]any) {
+			take(t.at(fmt.Sprintf("point.%d", i)), point, func(t *table) { readBenchPoint(t, nil, []Dim{DimPressure}) })
 		}
-		sub := &table{faults: f, path: fmt.Sprintf("instrument.%d.bench", i), values: bench}
-		readBench(sub, []Dim{DimPressure})
-		explained(sub)
-		point := &table{faults: f, path: sub.at("point.0"), values: bench["point"].([]map[string]any)[0]}
-		readBenchPoint(point, nil, []Dim{DimPressure})
-		explained(point)
+	})
+	for path, seen := range explained {
+		if !seen {
+			t.Errorf("%s is not in the example", path)
+		}
 	}
 	if len(f.found) != 0 {
 		t.Errorf("faults in the example: %v", f.err())
 	}
 }
 
-// explainedBetween asks that each key of a kind stands in one of its tables,
-// explained.
-func explainedBetween(t *testing.T, all []*table, lines []string) {
+// explainedAt notes the keys that the table knows, and demands a remark where
+// one stands first.
+func explainedAt(t *testing.T, at map[string]int, read *table, seen map[string]bool) {
 	t.Helper()
-	stands := map[string]bool{}
-	for _, sub := range all {
-		for _, key := range sub.known {
-			line := ""
-			if sub.has(key) {
-				line = lines[lineOf(sub.faults.lines, sub.at(key))-1]
-			}
-			stands[key] = stands[key] || strings.HasPrefix(line, "[") || strings.Contains(line, "#")
+	lines := strings.Split(string(Example()), "\n")
+	for _, key := range read.known {
+		path := withoutNumbers(read.at(key))
+		before := seen[path]
+		seen[path] = before || read.has(key)
+		if before || !read.has(key) {
+			continue
 		}
-	}
-	for key, ok := range stands {
-		if !ok {
-			t.Errorf("%s is nowhere explained in the example", all[0].at(key))
+		if line := lines[lineOf(at, read.at(key))-1]; !strings.HasPrefix(line, "[") && !strings.Contains(line, "#") {
+			t.Errorf("%s is not explained: %s", read.at(key), line)
 		}
 	}
 }
@@ -161,7 +144,9 @@ func TestCautionsNameTheDoubt(t *testing.T) {
 		{"psi typed as bar", `setting_limit = "950 psi"`, `setting_limit = "950 bar"`, "setting limit 950 bar is outside"},
 		{"stress of another kind", `target = "9500 psi"`, `target = "45000 psi"`, "target 45000 psi is outside"},
 		{"bore in mm as inches", `bore = "2.5 in"`, `bore = "63 in"`, "bore 63 in is outside"},
-		{"set by spring length", "set_by = \"torque\"                # a screw, turned with a torque wrench\nsetting_limit = \"40 lbf ft\"", "set_by = \"spring\"\nsetting_limit = \"4 in\"", "tensioner T-2: a spring gets shorter"},
+		{"limit beyond the binding spring", "set_by = \"torque\"                # a screw, turned with a torque wrench\nsetting_limit = \"40 lbf ft\"", "set_by = \"spring\"\nsetting_limit = \"65 mm\"", "tensioner T-2: the setting limit 65 mm lies beyond the length 68 mm"},
+		{"a thick screw", `diameter = "24 mm" `, `diameter = "0.24 m" `, "tensioner T-2: screw diameter 0.24 m is outside"},
+		{"a soft spring", `rate = "1.2 kN/mm" `, `rate = "1.2 N/m" `, "tensioner T-2: spring rate 1.2 N/m is outside"},
 		{"inches typed as mm", `thickness = "0.058 in"`, `thickness = "0.058 mm"`, "band QW-6: thickness 0.058 mm is outside"},
 		{"width in mm as inches", "net_width = \"1.73 in\"\ngross_width = \"2.00 in\"", "net_width = \"133 in\"", "net width 133 in is outside"},
 		{"teeth too deep", `net_width = "5.25 in"`, `net_width = "4.1 in"`, "more than 30 % below"},

@@ -106,11 +106,7 @@ func (t Tensioner) GeometryAreaM2() float64 {
 	if t.SetBy != SetByPressure {
 		return 0
 	}
-	ratio := t.TravelRatio
-	if ratio == 0 {
-		ratio = 1
-	}
-	return float64(t.Cylinders) * math.Pi / 4 * t.Bore.SI * t.Bore.SI * ratio
+	return float64(t.Cylinders) * math.Pi / 4 * t.Bore.SI * t.Bore.SI * t.Ratio()
 }
 
 // NetAreaM2 is thickness times net width in m2: the steel of one span that

@@ -95,6 +95,7 @@ func readTensioner(t *table) Tensioner {
 	s.TravelRatio = t.number("travel_ratio", 0.001, 1000)
 	s.LiftedWeight = Force{t.orZero("lifted_weight", DimForce)}
 	s.Hold = oneOf(t, "hold", HoldMaintained, HoldLocked)
+	t.readDrivetrain(&s)
 	s.Note = t.text("note")
 	if d, ok := t.one("dial"); ok {
 		s.Dial = readDialFace(d, s)
@@ -141,6 +142,14 @@ func readRehearsal(t *table) *Rehearsal {
 		FrictionProportional: t.number("friction_proportional", 0, 0.9),
 		Weight:               Force{t.orZero("weight", DimForce)},
 		BandLoop:             Length{t.quantity("band_loop", DimLength)},
+		FrictionThread:       t.number("friction_thread", 0, 0.9),
+		FrictionCollar:       t.number("friction_collar", 0, 0.9),
+		RestTorque:           Torque{t.orZero("rest_torque", DimTorque)},
+		Play:                 Angle{t.orZero("play", DimAngle)},
+		GiveStiffness:        Stiffness{t.quantity("give_stiffness", DimStiffness)},
+		SpringRate:           Stiffness{t.quantity("spring_rate", DimStiffness)},
+		SpringFree:           Length{t.quantity("spring_free", DimLength)},
+		SpringBind:           Length{t.quantity("spring_bind", DimLength)},
 	}
 }
 

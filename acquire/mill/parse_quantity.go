@@ -208,6 +208,8 @@ func largest(d Dim) float64 {
 		return 1e13
 	case DimForce, DimTorque:
 		return 1e9
+	case DimStiffness:
+		return 1e12
 	}
 	return 1e6
 }

@@ -46,15 +46,18 @@ const (
 type Tensioner struct {
 	Name         string
 	SetBy        SetBy
-	SettingLimit Setting    // mandatory; the maker's, or lower
-	Cylinders    int        // N, pressure-set
-	Bore         Length     // of one cylinder
-	TravelRatio  float64    // R = cylinder travel / wheel travel; 0 means 1
-	LiftedWeight Force      // W; optional
-	Hold         Hold       // optional
-	Note         string     // for the report
-	Dial         *DialFace  // [tensioner.dial]: the mill's own dial, that cards are read on; optional
-	Rehearsal    *Rehearsal // what the simulated rig pretends; never read by the analysis
+	SettingLimit Setting     // mandatory; the maker's, or lower
+	Cylinders    int         // N, pressure-set
+	Bore         Length      // of one cylinder
+	TravelRatio  float64     // R = cylinder, screw or spring travel / wheel travel; 0 means 1
+	LiftedWeight Force       // W; optional
+	Hold         Hold        // optional
+	Screw        *Screw      // [tensioner.screw]; optional
+	Turns        *TurnsChain // [tensioner.turns]; optional
+	Spring       *Spring     // [tensioner.spring]; optional
+	Note         string      // for the report
+	Dial         *DialFace   // [tensioner.dial]: the mill's own dial, that cards are read on; optional
+	Rehearsal    *Rehearsal  // what the simulated rig pretends; never read by the analysis
 }
 
 // DialFace is what a mill's own dial shows: its numbers are what people set by.
@@ -71,6 +74,15 @@ type Rehearsal struct {
 	FrictionProportional float64 // mu
 	Weight               Force   // W
 	BandLoop             Length  // length of the band
+
+	FrictionThread float64   // of the screw's thread, coefficient; set by torque
+	FrictionCollar float64   // of its collar, coefficient
+	RestTorque     Torque    // T0 of the screw
+	Play           Angle     // turns lost at each reversal
+	GiveStiffness  Stiffness // of frame and tyres together; 0 means they do not give
+	SpringRate     Stiffness // of one spring; 0 means no springs
+	SpringFree     Length
+	SpringBind     Length // 0 means that they never touch
 }
 
 // Band is one band section.

@@ -20,11 +20,12 @@ type Dim string
 
 // The dimensions that quantities may have, with their SI unit.
 const (
-	DimLength   Dim = "length"   // m
-	DimPressure Dim = "pressure" // Pa, gauge pressure and band stress
-	DimForce    Dim = "force"    // N
-	DimTorque   Dim = "torque"   // N.m
-	DimAngle    Dim = "angle"    // rad
+	DimLength    Dim = "length"    // m
+	DimPressure  Dim = "pressure"  // Pa, gauge pressure and band stress
+	DimForce     Dim = "force"     // N
+	DimTorque    Dim = "torque"    // N.m
+	DimAngle     Dim = "angle"     // rad
+	DimStiffness Dim = "stiffness" // N/m
 )
 
 // Length is a Quantity in metres.
@@ -35,6 +36,15 @@ type Pressure struct{ Quantity }
 
 // Force is a Quantity in newtons.
 type Force struct{ Quantity }
+
+// Torque is a Quantity in newton metres.
+type Torque struct{ Quantity }
+
+// Angle is a Quantity in radians.
+type Angle struct{ Quantity }
+
+// Stiffness is a Quantity in newtons per metre.
+type Stiffness struct{ Quantity }
 
 // Setting is a Quantity of whatever a tensioner is set by, or an instrument
 // measures: any dimension.
@@ -63,4 +73,5 @@ const (
 	RoleExtension Role = "extension" // in, mm
 	RoleSection   Role = "section"   // in, mm (thickness, width, bore, gauge length)
 	RoleForce     Role = "force"     // lbf, kN
+	RoleStiffness Role = "stiffness" // lbf/in, kN/mm
 )

@@ -48,6 +48,10 @@ func units() []Unit {
 		{"rad", DimAngle, 1},
 		{"deg", DimAngle, math.Pi / 180},
 		{"turn", DimAngle, 2 * math.Pi},
+		{"N/m", DimStiffness, 1},
+		{"N/mm", DimStiffness, 1e3},
+		{"kN/mm", DimStiffness, 1e6},
+		{"lbf/in", DimStiffness, lbfN / inchM},
 	}
 }
 
@@ -73,6 +77,8 @@ func alias(name string) string {
 		return "lbf ft"
 	case "lbf in", "in lbf", "lb in", "in lb", "in lbs":
 		return "lbf in"
+	case "lb/in", "lbs/in":
+		return "lbf/in"
 	case "degree", "degrees", "\u00b0":
 		return "deg"
 	case "turns", "rev":
@@ -141,6 +147,8 @@ func displayNames(r Role) (us, si string) {
 		return "in", "mm"
 	case RoleForce:
 		return "lbf", "kN"
+	case RoleStiffness:
+		return "lbf/in", "kN/mm"
 	}
 	return "", ""
 }

@@ -30,6 +30,9 @@ func TestFactorsAreTheDefinedOnes(t *testing.T) {
 		"kN":      1e3,                   // exact, SI
 		"lbf in":  0.1129848290276167,    // exact to these digits
 		"lbf ft":  1.3558179483314,       // exact to these digits
+		"lbf/in":  175.1268352464764,     // derived from lbf and inch
+		"kN/mm":   1e6,                   // exact, SI
+		"N/mm":    1e3,                   // exact, SI
 		"turn":    2 * math.Pi,
 		"deg":     math.Pi / 180,
 	} {
@@ -108,7 +111,7 @@ func TestUnitsByTheNamesThatPeopleWrite(t *testing.T) {
 		"lbf.ft": "lbf ft", "ft-lb": "lbf ft", "ft lbf": "lbf ft", "ft\u00b7lbf": "lbf ft",
 		"lbf in": "lbf in", "in-lb": "lbf in", "lbf.in": "lbf in", "in lbs": "lbf in",
 		"inch": "in", "inches": "in", `"`: "in", "feet": "ft", "\u00b5m": "um", "\u03bcm": "um",
-		"lb": "lbf", "lbs": "lbf", "PSI": "psi", "psig": "psi", "kgf/cm\u00b2": "kgf/cm2",
+		"lb": "lbf", "lbs": "lbf", "lb/in": "lbf/in", "PSI": "psi", "psig": "psi", "kgf/cm\u00b2": "kgf/cm2",
 		"turns": "turn", "degrees": "deg", "\u00b0": "deg",
 	} {
 		if got, ok := findUnit(written); !ok || got.Name != want {
@@ -135,6 +138,7 @@ func TestSystemsShowEachRoleInItsUnit(t *testing.T) {
 		{RoleExtension, "in", "mm"},
 		{RoleSection, "in", "mm"},
 		{RoleForce, "lbf", "kN"},
+		{RoleStiffness, "lbf/in", "kN/mm"},
 	} {
 		if us, si := US.Unit(c.role).Name, SI.Unit(c.role).Name; us != c.us || si != c.si {
 			t.Errorf("%s: %q and %q, want %q and %q", c.role, us, si, c.us, c.si)
