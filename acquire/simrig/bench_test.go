@@ -11,3 +11,15 @@ func BenchmarkDrive(b *testing.B) {
 		}
 	}
 }
+
+// A whole visit, one exercise and three ramps, 900 s, into readings.
+func BenchmarkVisit(b *testing.B) {
+	c := t1(b)
+	c.Drive = Drive{}
+	r := mustNew(b, c)
+	for b.Loop() {
+		if _, err := r.Samples(); err != nil {
+			b.Fatal(err)
+		}
+	}
+}

@@ -178,21 +178,29 @@ func (b *Board) window(c *channel) float64 {
 // sample is one half of a channel's sampling: it opens the window, or closes
 // it and sends the mean with the tick of the window's middle.
 func (b *Board) sample(c *channel, v view) float64 {
+	now := v.t
+	if c.DelayS > 0 {
+		v = b.rig.world.at(now - c.DelayS)
+	}
 	if w := b.window(c); w > 0 && !c.open {
 		c.begin(v)
-		return max(v.t, b.instant(c.tick)+w/2)
+		return max(now, b.instant(c.tick)+w/2)
 	}
 	val := protocol.Val{Channel: c.spec.ID, Tick: b.stamp(c.tick)}
 	val.Count, val.Status = c.read(v)
 	val.HasCount = val.Status != protocol.Absent
 	val.Seq = b.number()
-	b.numbered(val)
+	if c.kept != nil {
+		*c.kept = append(*c.kept, Sample{T: b.instant(c.tick), Count: val.Count, Status: val.Status})
+	} else {
+		b.numbered(val)
+	}
 	period := int64(c.spec.Period)
 	if !val.HasCount {
 		period = max(period, int64(b.spec.TickHz)) // SPEC 6.5
 	}
 	c.tick += period
-	return b.opening(c, v.t)
+	return b.opening(c, now)
 }
 
 func (b *Board) beat(v view) float64 {

@@ -162,7 +162,7 @@ func TestRebootStartsEverythingAfreshButTheDrive(t *testing.T) {
 	d := newDesk(t, t1(t))
 	d.ask(0, protocol.Command{Verb: protocol.Run, Token: 1})
 	d.pass(60)
-	moved := d.rig.world.wheel.pullN()
+	moved := d.rig.world.wheel.pullN
 	d.hear(0)
 	d.rig.boards[0].boot(d.s, protocol.CauseBrown)
 	list := d.hear(0)
@@ -179,7 +179,7 @@ func TestRebootStartsEverythingAfreshButTheDrive(t *testing.T) {
 	if v := only[protocol.Val](d.hear(0)); v[0].Seq != 0 || v[0].Tick > 6_000_000 {
 		t.Errorf("first sample after a boot: %+v", v[0])
 	}
-	if now := d.rig.world.wheel.pullN(); moved <= 0 || now <= moved {
+	if now := d.rig.world.wheel.pullN; moved <= 0 || now <= moved {
 		t.Errorf("pull %g N before, %g N after: the drive did not go on", moved, now)
 	}
 }
@@ -294,7 +294,7 @@ func TestDriveWaitsForEveryBoardAndMayRepeat(t *testing.T) {
 	}
 	d.ask(1, run)
 	d.pass(10)
-	if d.rig.world.wheel.pullN() == 0 {
+	if d.rig.world.wheel.pullN == 0 {
 		t.Fatal("nothing moves")
 	}
 	select {
@@ -313,7 +313,7 @@ func TestDriveWaitsForEveryBoardAndMayRepeat(t *testing.T) {
 		d.ask(board, run)
 	}
 	d.pass(10)
-	if d.rig.world.wheel.pullN() == 0 {
+	if d.rig.world.wheel.pullN == 0 {
 		t.Error("told to run again, nothing moves")
 	}
 }

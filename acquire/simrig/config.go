@@ -23,22 +23,43 @@ type Config struct {
 	Seed      uint64 // of all noise and arbitrary offsets
 
 	Law        Law
+	Seals      Seals
+	Oil        Oil
+	Chain      Chain
+	Heat       Heat
+	Vary       Vary
 	AreaFactor float64 // true A* / geometry's; 0 means 1
+
+	SectionFactor float64 // true net section of the band / profile's; 0 means 1
+	ModulusFactor float64 // true modulus of the band / profile's; 0 means 1
+
 	SlackM     float64 // travel between the wheel's stop and the taut band; 0 means 3 mm
 	SlackTimeS float64 // s that the pump takes over it; 0 means 8
 	Stretch    Stretch
 	Drive      Drive
 
-	Pressure    Sensor // default: 50 a second, 0.05 psi counts, 1 psi of noise, to 1,500 psi
-	Indicator   Sensor // default: 10 a second, 0.00005 in counts, 0.1 um of noise, +-0.5 in
-	Temperature Sensor // default: 1 a second, 0.1 degC counts
-	Thermometer bool   // fit the temperature sensor, on the first board
+	Pressure       Sensor // default: 50 a second, 0.05 psi counts, 1 psi of noise, to 1,500 psi
+	Indicator      Sensor // default: 10 a second, 0.00005 in counts, 0.1 um of noise, +-0.5 in
+	Temperature    Sensor // default: 1 a second, 0.1 degC counts
+	Thermometer    bool   // fit the temperature sensor of the band, on the first board
+	RigThermometer bool   // and that of the measuring bar after it
+	Second         Second // fit a second indicator, on the last board
 
 	Boards   []BoardSpec // one: all sensors; two: pressure on the first, indicator on the second. nil means one
 	Load     int         // above 0: lines a second of each board, spread over its sensors
 	StrangeS float64     // s between lines of record types that version 1 has not; 0 means 7, negative none
 	Presses  []Press
 }
+
+// Second is a second indicator on the band.
+type Second string
+
+// Where a second indicator may sit. The first is on face A of span 1.
+const (
+	NoSecond   Second = ""
+	SecondFace Second = "face" // on face B at the same place
+	SecondSpan Second = "span" // on span 2
+)
 
 // BoardSpec is one board.
 type BoardSpec struct {
@@ -65,79 +86,24 @@ type rehearsal struct {
 	given     Config // as it came
 	tensioner mill.Tensioner
 	band      mill.Band
-	plant     plant
-	gauge     gauge
+	start     wheel // without what pushes it
+	oil       oil
+	heat      heat
+	gauges    [2]gauge
 	driver    driver // at the start of its drive
+	varies    []variation
 	truth     Truth
 }
 
 // resolve fills in what was left to default, and refuses what cannot be.
 func resolve(c Config) (rehearsal, error) {
 	r := rehearsal{Config: c, given: c}
-	for _, step := range []func() error{r.find, r.mechanics, r.operator, r.pump, r.layout} {
+	for _, step := range []func() error{r.find, r.mechanics, r.operator, r.pump, r.vary, r.layout} {
 		if err := step(); err != nil {
 			return rehearsal{}, err
 		}
 	}
 	return r, nil
-}
-
-func (r *rehearsal) find() (err error) {
-	if r.Profile == nil {
-		return fmt.Errorf("%w: no profile given", ErrConfig)
-	}
-	if r.tensioner, err = r.Profile.FindTensioner(r.Tensioner); err != nil {
-		return err
-	}
-	if r.band, err = r.Profile.FindBand(r.Band); err != nil {
-		return err
-	}
-	name := r.tensioner.Name
-	if r.tensioner.SetBy != mill.SetByPressure {
-		return fmt.Errorf("%w: %s is set by %s, the rehearsal rig knows pressure only; name another", ErrNotRehearsable, name, r.tensioner.SetBy)
-	}
-	if r.tensioner.Rehearsal == nil {
-		return fmt.Errorf("%w: add a [tensioner.rehearsal] table below %s in mill.toml", ErrNotRehearsable, name)
-	}
-	return nil
-}
-
-// mechanics makes the plant and what is true of it. The band is two straight
-// halves of its loop side by side, each stretched by the wheel's travel:
-// F = 2 sigma A_b and x = (sigma/E) loop/2.
-func (r *rehearsal) mechanics() error {
-	hidden := r.tensioner.Rehearsal
-	area := r.tensioner.GeometryAreaM2() * orElse(r.AreaFactor, 1)
-	net, loop, modulus := r.band.NetAreaM2(), hidden.BandLoop.SI, r.band.Modulus.SI
-	length := r.Profile.Rig.GaugeLength.SI
-	for _, must := range []struct {
-		name string
-		si   float64
-	}{
-		{"cylinder area", area}, {"net section of the band", net}, {"length of the band", loop},
-		{"modulus of the band", modulus}, {"gauge length", length},
-	} {
-		if !(must.si > 0) || math.IsInf(must.si, 0) {
-			return fmt.Errorf("%w: %s with %s: the %s is %g; give it in mill.toml", ErrConfig, r.tensioner.Name, r.band.Name, must.name, must.si)
-		}
-	}
-	friction, err := r.Law.newBristle(hidden.FrictionConstant.SI, hidden.FrictionProportional)
-	if err != nil {
-		return err
-	}
-	r.plant = plant{
-		areaM2:   area,
-		weightN:  hidden.Weight.SI,
-		bandNM:   4 * modulus * net / loop,
-		slackM:   orElse(r.SlackM, 3e-3),
-		friction: friction,
-	}
-	r.gauge = newGauge(r.Stretch, length, modulus, net)
-	r.truth = Truth{
-		F0N: friction.f0N, Mu: friction.mu, WeightN: hidden.Weight.SI, AreaM2: area,
-		ModulusPa: modulus, GaugeM: length, NetAreaM2: net,
-	}
-	return nil
 }
 
 // operator fills in the drive.
@@ -154,7 +120,7 @@ func (r *rehearsal) operator() error {
 		return fmt.Errorf("%w: a drive from %.0f to %.0f kPa at %.1f kPa/s", ErrConfig, d.LowPa/1e3, d.TopPa/1e3, d.RatePaS/1e3)
 	}
 	var err error
-	r.driver, err = newDriver(*d)
+	r.driver, err = newDriver(*d, course{low: d.LowPa, top: d.TopPa, exercise: d.ExercisePa, rate: d.RatePaS, sags: true, near: 1})
 	return err
 }
 
@@ -179,24 +145,6 @@ func (r *rehearsal) defaultTopPa(limit float64) float64 {
 		top = min(top, 0.95*limit)
 	}
 	return top
-}
-
-// pump sizes the pump so that the wheel crosses the slack at a walk while it
-// never holds back the ramp, the oil so stiff that a stroke soon makes good a
-// sag, and the drag so that neither shows: 0.02 % of the
-// top pull at the slack's speed, and far less on the ramp.
-func (r *rehearsal) pump() error {
-	p, d := &r.plant, r.Drive
-	time := orElse(r.SlackTimeS, 8)
-	if !(p.slackM > 0) || !(time > 0) {
-		return fmt.Errorf("%w: a slack of %g m crossed in %g s", ErrConfig, p.slackM, time)
-	}
-	ramp := d.RatePaS * p.areaM2 / p.bandNM
-	speed := max(p.slackM/time, 10*ramp)
-	p.flowM3S = p.areaM2 * speed
-	p.oilM3Pa = 0.03 * p.flowM3S / d.RatePaS
-	p.dragNsM = 2e-4 * p.areaM2 * d.TopPa / speed
-	return nil
 }
 
 // layout fills in boards and sensors.

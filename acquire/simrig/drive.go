@@ -19,14 +19,18 @@ const (
 // Shapes lists the shapes, the default first.
 func Shapes() []Shape { return []Shape{Smooth, Strokes, Stairs, Still} }
 
-// Drive is what the pretended operator does. Pressures are gauge, in Pa.
+// Drive is what the pretended operator does. Pressures are gauge, in Pa, and
+// of a tensioner set by pressure; another is driven by its own setting.
 type Drive struct {
 	Shape   Shape   // "" means Smooth
 	TopPa   float64 // top of the ramps; 0 means that of 1.22 times the band's target, or 0.95 of the limit if lower
 	LowPa   float64 // low end, where the band is slack; 0 means 0.6 of the falling slack lift
 	RatePaS float64 // Pa/s; 0 means TopPa in 107.5 s
 
-	Exercise   int     // cycles to ExercisePa first; 0 means 1, negative none
+	TopSI    float64 // not by pressure: top of the ramps in N m, rad or m; 0 means as TopPa
+	TurnRadS float64 // not by pressure: speed of the screw, rad/s; 0 means the top in 107.5 s
+
+	Exercise   int     // cycles to half the target first; 0 means 1, negative none
 	ExercisePa float64 // top of those; 0 means the setting for half of the band's target
 	Ramps      int     // cycles to the top; 0 means 3, negative none
 	Repeat     bool    // start over when all boards are told to run after the drive has ended
@@ -41,47 +45,77 @@ type Drive struct {
 	StepHoldS float64 // Stairs: s on each step; 0 means 6, negative none
 }
 
-// leg is one piece of a drive: go to a pressure, or wait.
+// leg is one piece of a drive: go to a mark, or wait.
 type leg struct {
-	toPa    float64
-	ratePaS float64
+	mark    mark
+	to      float64 // SI
+	rate    float64 // SI of the hand's quantity a second, without a sign
+	up      bool
 	strokes bool
 	waitS   float64 // above 0: wait instead
+	cycle   int     // from 0
 }
 
-// driver follows the legs. It sees the pressure, so a wheel that takes all the
+// mark is what the operator looks at to know that a leg is done.
+type mark byte
+
+const (
+	byHand    mark = iota // what the hand works on: pressure of the oil, turn of the screw
+	bySetting             // torque of the hand, or the length of the spring
+)
+
+// seen is what the operator sees of the rig.
+type seen struct{ hand, setting float64 }
+
+// driver follows the legs. It sees the rig, so a wheel that takes all the
 // pump gives only makes a leg longer.
 type driver struct {
 	legs    []leg
 	sag     float64
 	strokeS float64
+	near    float64 // a mark is met within this, SI of the hand
 	at      int
 	begunS  float64 // start of the leg; NaN before it
 
 	strokeT  float64 // start of the stroke
 	pressing bool    // else the pump is drawing back
-	peakPa   float64 // pressure at the end of the last stroke
+	peak     float64 // what the hand had at the end of the last stroke
 }
 
 // strokePart is the part of a stroke's time in which the pump presses.
 const strokePart = 0.3
 
-func newDriver(d Drive) (driver, error) {
-	r := driver{sag: orNone(d.SagPart, 0.01), strokeS: orElse(d.StrokeS, 2), begunS: math.NaN()}
-	r.wait(orNone(d.RestS, 10))
+// course is a drive in SI of what the hand works on and of what it looks at.
+type course struct {
+	low, top, exercise float64 // tops are of the mark
+	mark               mark    // of the tops
+	rate               float64 // of the hand
+	sags               bool    // pressure leaks back between strokes; a screw stays
+	near               float64
+}
+
+func newDriver(d Drive, c course) (driver, error) {
+	r := driver{strokeS: orElse(d.StrokeS, 2), near: c.near, begunS: math.NaN()}
+	if c.sags {
+		r.sag = orNone(d.SagPart, 0.01)
+	}
+	r.wait(orNone(d.RestS, 10), 0)
 	if d.Shape == Still {
-		r.wait(math.Inf(1))
+		r.wait(math.Inf(1), 0)
 		return r, nil
 	}
+	cycle := 0
 	for range cycles(d.Exercise, 1) {
-		if err := r.cycle(d, d.ExercisePa); err != nil {
+		if err := r.cycle(d, c, c.exercise, cycle); err != nil {
 			return driver{}, err
 		}
+		cycle++
 	}
 	for range cycles(d.Ramps, 3) {
-		if err := r.cycle(d, d.TopPa); err != nil {
+		if err := r.cycle(d, c, c.top, cycle); err != nil {
 			return driver{}, err
 		}
+		cycle++
 	}
 	return r, nil
 }
@@ -95,7 +129,7 @@ func cycles(n, otherwise int) int {
 }
 
 // cycle adds one rise to the top and one release, with their holds.
-func (r *driver) cycle(d Drive, topPa float64) error {
+func (r *driver) cycle(d Drive, c course, top float64, cycle int) error {
 	steps := 1
 	switch d.Shape {
 	case Smooth, "":
@@ -108,91 +142,123 @@ func (r *driver) cycle(d Drive, topPa float64) error {
 	default:
 		return fmt.Errorf("%w: no drive shape %q; known: %v", ErrConfig, d.Shape, Shapes())
 	}
-	level := func(i int) float64 { return d.LowPa + (topPa-d.LowPa)*float64(i)/float64(steps) }
+	low := c.low
+	if c.mark == bySetting {
+		low = 0 // a loose screw has neither torque nor squeeze
+	}
+	level := func(i int) float64 { return low + (top-low)*float64(i)/float64(steps) }
 	stepHold := orNone(d.StepHoldS, 6)
 	for i := 1; i <= steps; i++ {
-		r.legs = append(r.legs, leg{toPa: level(i), ratePaS: d.RatePaS, strokes: d.Shape == Strokes})
+		r.legs = append(r.legs, leg{mark: c.mark, to: level(i), rate: c.rate, up: true, strokes: d.Shape == Strokes, cycle: cycle})
 		if i < steps {
-			r.wait(stepHold)
+			r.wait(stepHold, cycle)
 		}
 	}
-	r.wait(orNone(d.HoldTopS, 5))
-	for i := steps - 1; i >= 0; i-- {
-		r.legs = append(r.legs, leg{toPa: level(i), ratePaS: d.RatePaS})
-		if i > 0 {
-			r.wait(stepHold)
+	r.wait(orNone(d.HoldTopS, 5), cycle)
+	for i := steps - 1; i > 0; i-- {
+		if c.mark == bySetting {
+			break // loosened in one go: what is looked at has jumped
 		}
+		r.legs = append(r.legs, leg{to: level(i), rate: c.rate, cycle: cycle})
+		r.wait(stepHold, cycle)
 	}
-	r.wait(orNone(d.HoldLowS, 10))
+	r.legs = append(r.legs, leg{to: c.low, rate: c.rate, cycle: cycle})
+	r.wait(orNone(d.HoldLowS, 10), cycle)
 	return nil
 }
 
-func (r *driver) wait(s float64) {
+func (r *driver) wait(s float64, cycle int) {
 	if s > 0 {
-		r.legs = append(r.legs, leg{waitS: s})
+		r.legs = append(r.legs, leg{waitS: s, cycle: cycle})
 	}
 }
 
 // over tells whether every leg is done.
 func (r *driver) over() bool { return r.at == len(r.legs) }
 
-// ratePaS is the rate of pressure wanted now, t seconds into the drive, for
-// the next dt seconds.
-func (r *driver) ratePaS(pressurePa, t, dt float64) float64 {
+// cycleNow is the cycle of the leg that is on.
+func (r *driver) cycleNow() int {
+	if len(r.legs) == 0 {
+		return 0
+	}
+	return r.legs[min(r.at, len(r.legs)-1)].cycle
+}
+
+// next is what the hand does now, t seconds into the drive, and for how long
+// at most it goes on so.
+func (r *driver) next(s seen, t float64) (command, float64) {
 	for !r.over() {
 		l := r.legs[r.at]
 		if math.IsNaN(r.begunS) {
 			r.begunS = t
-			r.strokeT, r.pressing, r.peakPa = t, true, pressurePa
+			r.strokeT, r.pressing, r.peak = t, true, s.hand
 		}
-		if !l.reached(pressurePa, t-r.begunS) {
-			return r.legRate(l, pressurePa, t, dt)
+		if !r.reached(l, s, t-r.begunS) {
+			return r.legCommand(l, s, t)
 		}
 		r.at++
 		r.begunS = math.NaN()
 	}
-	return 0
+	return command{hold: true}, math.Inf(1)
 }
 
-// reached tells whether a leg is done after s seconds.
-func (l leg) reached(pressurePa, s float64) bool {
-	if l.waitS > 0 {
-		return s >= l.waitS
+// reached tells whether a leg is done after so many seconds.
+func (r *driver) reached(l leg, s seen, after float64) bool {
+	switch {
+	case l.waitS > 0:
+		return after >= l.waitS-1e-9
+	case l.mark == bySetting:
+		return s.setting >= l.to
+	case l.up:
+		return s.hand >= l.to-r.near
 	}
-	return math.Abs(pressurePa-l.toPa) < 1 // a pascal; the last step lands on the mark
+	return s.hand <= l.to+r.near
 }
 
-func (r *driver) legRate(l leg, pressurePa, t, dt float64) float64 {
-	if l.waitS > 0 {
-		return 0
+func (r *driver) legCommand(l leg, s seen, t float64) (command, float64) {
+	switch {
+	case l.waitS > 0:
+		return command{hold: true}, r.begunS + l.waitS - t
+	case l.strokes:
+		return r.strokeCommand(l, s, t)
 	}
-	rest := (l.toPa - pressurePa) / dt
-	rate := l.ratePaS
-	if l.strokes {
-		rate = r.strokeRate(l, pressurePa, t, dt)
+	c := command{rate: l.rate, toSI: l.to}
+	if l.mark == bySetting {
+		c.toSI = math.Inf(1)
+		return c, math.Inf(1)
 	}
-	if rate <= 0 {
-		return rate // the sag between strokes
+	if !l.up {
+		c.rate = -l.rate
 	}
-	return math.Copysign(min(rate, math.Abs(rest)), rest)
+	return c, math.Abs(l.to-s.hand) / l.rate
 }
 
-// strokeRate is a pump's: it presses up to its next peak, then oil leaks back
-// through the valve until the next stroke. Peaks rise at the leg's rate.
-func (r *driver) strokeRate(l leg, pressurePa, t, dt float64) float64 {
-	if t-r.strokeT >= r.strokeS {
+// strokeCommand is a pump's or a wrench's: it presses up to its next peak,
+// then oil leaks back through the valve, or the wrench takes a new grip, until
+// the next stroke. Peaks rise at the leg's rate.
+func (r *driver) strokeCommand(l leg, s seen, t float64) (command, float64) {
+	const instant = 1e-9
+	if t-r.strokeT >= r.strokeS-instant {
 		r.strokeT += r.strokeS
 		r.pressing = true
 	}
 	press := strokePart * r.strokeS
 	since := t - r.strokeT
-	if r.pressing && since >= press {
-		r.pressing, r.peakPa = false, pressurePa
+	if r.pressing && since >= press-instant {
+		r.pressing, r.peak = false, s.hand
 	}
 	if r.pressing {
-		goal := r.peakPa + l.ratePaS*r.strokeS
-		return max(0, (goal-pressurePa)/max(press-since, dt))
+		goal := r.peak + l.rate*r.strokeS
+		if l.mark == byHand {
+			goal = min(goal, l.to)
+		}
+		left := max(press-since, instant)
+		return command{rate: max(0, goal-s.hand) / left, toSI: goal}, left
 	}
-	floor := r.peakPa * (1 - r.sag)
-	return -max(0, pressurePa-floor) * 4 / (r.strokeS - press)
+	rest := r.strokeT + r.strokeS - t
+	floor := r.peak * (1 - r.sag)
+	if r.sag == 0 || s.hand <= floor {
+		return command{hold: true}, rest
+	}
+	return command{rate: -(s.hand - floor) * 4 / (r.strokeS - press), toSI: floor, sags: true}, rest
 }

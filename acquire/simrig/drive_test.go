@@ -27,14 +27,11 @@ func TestDefaultDriveOfT1(t *testing.T) {
 	near(t, "rate, psi/s", d.RatePaS/psiPa, 8, 1e-6)
 	near(t, "exercise, psi", d.ExercisePa/psiPa, r.Truth().RisingPa(4750*psiPa)/psiPa, 1e-6)
 	near(t, "low end, psi", d.LowPa/psiPa, 0.6*58.375, 0.1)
-	driver, err := newDriver(d)
-	if err != nil {
-		t.Fatal(err)
-	}
+	driver := r.conf.driver
 	var tops []float64
 	for i := 1; i+1 < len(driver.legs); i++ {
-		if l := driver.legs[i]; l.waitS == 0 && l.toPa > d.LowPa {
-			tops = append(tops, l.toPa)
+		if l := driver.legs[i]; l.waitS == 0 && l.to > d.LowPa {
+			tops = append(tops, l.to)
 		}
 	}
 	if len(tops) != 4 || tops[0] != d.ExercisePa || tops[1] != d.TopPa || tops[3] != d.TopPa {
@@ -128,7 +125,7 @@ func TestStairsHoldOnEachStep(t *testing.T) {
 	_, trace := mustTrace(t, c)
 	holds, still := map[int]float64{}, 0
 	for i := 1; i < len(trace); i++ {
-		if trace[i].PressurePa == trace[i-1].PressurePa {
+		if math.Abs(trace[i].PressurePa-trace[i-1].PressurePa) < 1 {
 			still++
 			continue
 		}
@@ -146,13 +143,10 @@ func TestStairsHoldOnEachStep(t *testing.T) {
 func TestStillNeverMoves(t *testing.T) {
 	c := t1(t)
 	c.Drive.Shape = Still
-	d, err := newDriver(mustNew(t, c).conf.Drive)
-	if err != nil {
-		t.Fatal(err)
-	}
+	d := mustNew(t, c).conf.driver
 	for _, s := range []float64{0, 5, 100, 1e6} {
-		if rate := d.ratePaS(1e5, s, stepS); rate != 0 || d.over() {
-			t.Errorf("after %g s rate %g, over %t", s, rate, d.over())
+		if now, _ := d.next(seen{hand: 1e5}, s); !now.hold || d.over() {
+			t.Errorf("after %g s %+v, over %t", s, now, d.over())
 		}
 	}
 }

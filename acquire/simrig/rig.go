@@ -1,7 +1,7 @@
 // Package simrig is a simulated rig: a pressure-set tensioner, its band and
 // the sensors on it, integrated over time, and boards that speak the device
-// side of the wire. Start with New; then Serve each of the Boards, or WriteLog
-// for the text of a memory card.
+// side of the wire. Start with New; then Serve each of the Boards, WriteLog
+// for the text of a memory card, or Samples for the readings without a wire.
 //
 // The physics is a force balance and a friction state, stepped in time.
 // Deliberately absent: any closed form of the two branches, any splitter or
@@ -12,8 +12,9 @@ package simrig
 import (
 	"fmt"
 	"io"
-	"math"
 	"sync"
+
+	"tautramp/acquire/mill"
 )
 
 // Rig is one simulated rig. Its methods may be called from any goroutine.
@@ -23,7 +24,7 @@ type Rig struct {
 	done   chan struct{}
 
 	mu     sync.Mutex // guards all below and the boards' state
-	world  world
+	world  *world
 	closed bool // done is closed
 }
 
@@ -50,6 +51,14 @@ func (r *Rig) Boards() []*Board { return append([]*Board(nil), r.boards...) }
 
 // Truth is what was planted.
 func (r *Rig) Truth() Truth { return r.conf.truth }
+
+// Tensioner is the one that is rehearsed, as the profile describes it.
+func (r *Rig) Tensioner() mill.Tensioner { return r.conf.tensioner }
+
+// Plan is how many cycles the drive has: for exercise, and to the top.
+func (r *Rig) Plan() (exercise, ramps int) {
+	return cycles(r.conf.Drive.Exercise, 1), cycles(r.conf.Drive.Ramps, 3)
+}
 
 // Done is closed when the drive has ended. The boards stream on at rest.
 func (r *Rig) Done() <-chan struct{} { return r.done }
@@ -111,17 +120,12 @@ func (r *Rig) WriteLog(w io.Writer) error {
 	b := fresh.boards[0]
 	b.plugged = true
 	b.bootLogging(0)
-	end := math.Inf(1)
-	for s := 0.0; s < end; s++ {
-		fresh.advance(s)
-		if math.IsInf(end, 1) && fresh.world.drive.over() {
-			end = s + logTailS
-		}
+	return fresh.runOut(func() error {
 		if _, err := w.Write(b.take(nil)); err != nil {
 			return fmt.Errorf("writing the log: %w", err)
 		}
-	}
-	return nil
+		return nil
+	})
 }
 
 // Moment is one instant of what really happened, for tests.
@@ -136,17 +140,8 @@ type Moment struct {
 // Trace runs the drive flat out and tells what really happened, every so many
 // seconds. It takes nothing from the boards.
 func (r *Rig) Trace(everyS float64) ([]Moment, error) {
-	if !(everyS >= stepS) || r.conf.Drive.Shape == Still {
+	if !(everyS >= leastStepS) || r.conf.Drive.Shape == Still {
 		return nil, fmt.Errorf("%w: a trace every %g s of drive shape %q", ErrConfig, everyS, r.conf.Drive.Shape)
 	}
-	w := newWorld(r.conf)
-	w.start(0)
-	var list []Moment
-	for i := 0; !w.drive.over(); i++ {
-		t := float64(i) * everyS
-		w.advance(t)
-		v := w.at(t)
-		list = append(list, Moment{v.driveS, v.pressurePa, w.wheel.pullN(), v.extensionM, w.wheel.travelM})
-	}
-	return list, nil
+	return newWorld(r.conf).trace(everyS), nil
 }

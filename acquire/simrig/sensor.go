@@ -20,6 +20,19 @@ type Sensor struct {
 	Shows      protocol.Shows // how it cuts to its count; "" means rounded
 	Serial     string         // "" means the profile's instrument, if there is one
 	Face       byte           // 'A' or 'B' of the band; 0 says nothing
+	OnSpan     byte           // run of the band that it says it is on, 1 or 2; 0 says nothing
+	LagS       float64        // s by which it follows slowly, as through a snubber or a filter; 0 means none
+	DelayS     float64        // s by which it is late, up to 2; 0 means none
+	NoiseS     float64        // s over which its noise hangs together (autoregressive, first order); 0 means not at all
+	DriftS     float64        // drift of its zero, SI/s from the start of the drive; 0 means none
+	SpanDriftS float64        // drift of its span, part/s; 0 means none
+	BowSI      float64        // most by which it strays from straight, halfway up its range; 0 means none
+	RippleSI   float64        // error that comes again every RippleM: a scale's pitch or a pinion; 0 means none
+	RippleM    float64        // SI; 0 means 1/50 of the range
+	StickSI    float64        // a pointer that sticks: it follows when it is off by more; 0 means none
+	ClipSI     float64        // the sensor gives no more than this, and says nothing of it; 0 means none
+	Scatter    float64        // display: standard deviation of each step's place, counts; 0 means none
+	Backstep   float64        // display: counts by which it steps later on the way back; 0 means none
 	Absent     bool           // not connected
 	AbsentAtS  float64        // s after the start of the drive at which it falls out
 	AbsentForS float64        // s until it is back; 0 means that it does not fall out
@@ -39,6 +52,8 @@ const (
 	streamTick = iota + 1
 	streamZero
 	streamNoise
+	streamVary
+	streamScatter
 )
 
 func newRand(seed uint64, stream, index int) *rand.Rand {
@@ -49,10 +64,14 @@ func newRand(seed uint64, stream, index int) *rand.Rand {
 type view struct {
 	t            float64 // s on the rig's timeline
 	driveS       float64 // s into the drive; negative before it
+	pullN        float64 // of both spans
+	travelM      float64 // of the wheel
 	pressurePa   float64
-	extensionM   float64
-	extensionSum float64 // m s: its integral since the rig was made
-	temperatureK float64
+	torqueNM     float64
+	angleRad     float64
+	springM      float64
+	extensionM   [2]float64 // of the first and the second indicator
+	extensionSum [2]float64 // m s: integrals since the rig was made
 }
 
 // channel is a sensor at work on a board.
@@ -67,20 +86,30 @@ type channel struct {
 
 	builtPeriod uint32 // ticks; spec.Period is the one now
 
-	task    *task // while running
-	tick    int64 // ticks since boot at the middle of the next sample
-	open    bool  // inside the window
+	kept    *[]Sample // readings kept instead of sent; nil: they are sent
+	task    *task     // while running
+	tick    int64     // ticks since boot at the middle of the next sample
+	open    bool      // inside the window
 	openT   float64
 	openSum float64
+
+	begun     bool // there is a reading before this one
+	lastT     float64
+	lastSI    float64 // true value at the last reading
+	lagSI     float64 // what the lag has let through
+	pointerSI float64 // where a pointer that sticks stands
+	noiseSI   float64
+	display   display
 }
 
 // prepare works out the scale and the range in counts.
-func (c *channel) prepare() {
+func (c *channel) prepare(seed uint64, index int) {
 	c.baseSI = protocol.ToSI(c.spec, 0)
 	c.unitSI = protocol.ToSI(c.spec, 1) - c.baseSI
 	c.spec.Low = int32(math.Round((c.LowSI - c.baseSI) / c.unitSI))
 	c.spec.High = int32(math.Round((c.HighSI - c.baseSI) / c.unitSI))
-	c.spec.Shows, c.spec.Face, c.spec.Serial = c.Shows, c.Face, c.Serial
+	c.spec.Shows, c.spec.Face, c.spec.Span, c.spec.Serial = c.Shows, c.Face, c.OnSpan, c.Serial
+	c.display = display{truncates: c.Shows == protocol.ShowsTruncated, scatter: c.Scatter, back: c.Backstep, seed: seed, index: index}
 }
 
 // begin opens the averaging window.
@@ -94,11 +123,65 @@ func (c *channel) read(v view) (count int32, status protocol.Status) {
 		si = (c.sum(v) - c.openSum) / (v.t - c.openT)
 	}
 	c.open = false
-	noise := c.rng.NormFloat64() * c.NoiseSI // drawn even when absent: one draw a sample
-	if c.missing(v.driveS) {
+	shown := c.sense(si, v) + c.noise(v.t)
+	c.begun, c.lastT, c.lastSI = true, v.t, si
+	if c.missing(v.driveS) { // noise is drawn even then: one draw a sample
 		return 0, protocol.Absent
 	}
-	return c.cut(si*c.Span + c.OffsetSI + noise)
+	if c.ClipSI != 0 {
+		shown = min(shown, c.ClipSI)
+	}
+	return c.cut(shown)
+}
+
+// sense is what the sensor makes of a true value, without noise.
+func (c *channel) sense(si float64, v view) float64 {
+	si = c.lagged(si, v.t)
+	t := max(0, v.driveS)
+	out := si*(c.Span+c.SpanDriftS*t) + c.OffsetSI + c.DriftS*t
+	if c.BowSI != 0 {
+		u := si / c.HighSI
+		out += c.BowSI * 4 * u * (1 - u)
+	}
+	if c.RippleSI != 0 {
+		out += c.RippleSI * math.Sin(2*math.Pi*si/orElse(c.RippleM, c.HighSI/50))
+	}
+	if c.StickSI > 0 {
+		if !c.begun {
+			c.pointerSI = out
+		}
+		// The tube pulls the pointer along once it is off by more than its friction holds.
+		c.pointerSI = max(out-c.StickSI, min(out+c.StickSI, c.pointerSI))
+		out = c.pointerSI
+	}
+	return out
+}
+
+// noise is the next of the channel's noise.
+func (c *channel) noise(t float64) float64 {
+	fresh := c.rng.NormFloat64() * c.NoiseSI
+	if c.NoiseS <= 0 {
+		return fresh
+	}
+	keeps := 0.0
+	if c.begun {
+		keeps = math.Exp(-(t - c.lastT) / c.NoiseS)
+	}
+	c.noiseSI = keeps*c.noiseSI + math.Sqrt(1-keeps*keeps)*fresh
+	return c.noiseSI
+}
+
+// lagged is what a lag of the first order lets through of a value that went
+// straight from the last reading to this one.
+func (c *channel) lagged(si, t float64) float64 {
+	if c.LagS <= 0 || !c.begun || t <= c.lastT {
+		c.lagSI = si
+		return si
+	}
+	dt := t - c.lastT
+	rate := (si - c.lastSI) / dt
+	c.lagSI = si - rate*c.LagS + (c.lagSI-c.lastSI+rate*c.LagS)*math.Exp(-dt/c.LagS)
+	return c.lagSI
 }
 
 func (c *channel) missing(driveS float64) bool {
@@ -108,12 +191,7 @@ func (c *channel) missing(driveS float64) bool {
 
 // cut brings a value to counts and says whether it is within the range.
 func (c *channel) cut(si float64) (int32, protocol.Status) {
-	counts := (si - c.baseSI) / c.unitSI
-	if c.Shows == protocol.ShowsTruncated {
-		counts = math.Trunc(counts)
-	} else {
-		counts = math.Round(counts)
-	}
+	counts := c.display.show((si - c.baseSI) / c.unitSI)
 	switch {
 	case counts <= float64(c.spec.Low):
 		return c.spec.Low, protocol.Low

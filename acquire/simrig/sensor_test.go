@@ -13,7 +13,7 @@ func flat(s Sensor, valueSI float64) *channel {
 	s.NoiseSI = 0
 	c := &channel{Sensor: s, value: func(view) float64 { return valueSI }, rng: newRand(1, 1, 1)}
 	c.spec = protocol.Chan{Quantity: protocol.Extension, Unit: s.Count.Unit, Mantissa: s.Count.Mantissa, Exponent: s.Count.Exponent, Res: 1}
-	c.prepare()
+	c.prepare(1, 1)
 	return c
 }
 
@@ -58,10 +58,10 @@ func TestSensorFallsOutForAWhile(t *testing.T) {
 // the value in the window's middle.
 func TestIndicatorAveragesItsWindow(t *testing.T) {
 	c := flat(Sensor{}, 0)
-	c.value = func(v view) float64 { return v.extensionM }
-	c.sum = func(v view) float64 { return v.extensionSum }
-	c.begin(view{t: 2, extensionM: 100e-6, extensionSum: 0})
-	count, _ := c.read(view{t: 2.5, extensionM: 300e-6, extensionSum: 0.5 * 200e-6})
+	c.value = func(v view) float64 { return v.extensionM[0] }
+	c.sum = func(v view) float64 { return v.extensionSum[0] }
+	c.begin(view{t: 2, extensionM: [2]float64{100e-6}})
+	count, _ := c.read(view{t: 2.5, extensionM: [2]float64{300e-6}, extensionSum: [2]float64{0.5 * 200e-6}})
 	if count != 200 {
 		t.Errorf("got %d um, want the mean 200", count)
 	}

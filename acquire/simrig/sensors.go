@@ -35,6 +35,10 @@ func (r *rehearsal) sensors() error {
 		if s.PerSecond > 1000 || !(s.PerSecond > 0) || s.Span <= 0 {
 			return fmt.Errorf("%w: a sensor with %g samples a second and span %g; up to 1000, above 0", ErrConfig, s.PerSecond, s.Span)
 		}
+		if s.LagS < 0 || s.DelayS < 0 || s.DelayS > 2 || s.NoiseS < 0 || s.StickSI < 0 || s.Scatter < 0 || s.Backstep < 0 {
+			return fmt.Errorf("%w: a sensor with lag %g s, delay %g s (up to 2), noise over %g s, stick %g, scatter %g and backstep %g counts; none below 0",
+				ErrConfig, s.LagS, s.DelayS, s.NoiseS, s.StickSI, s.Scatter, s.Backstep)
+		}
 	}
 	return nil
 }
@@ -77,7 +81,7 @@ func (r *rehearsal) channels(board int) ([]*channel, error) {
 		c := &channel{Sensor: s, value: value, sum: sum, rng: newRand(r.Seed, streamNoise, index)}
 		c.spec = protocol.Chan{ID: byte('a' + len(list)), Quantity: q, Unit: s.Count.Unit,
 			Mantissa: s.Count.Mantissa, Exponent: s.Count.Exponent, Res: 1}
-		c.prepare()
+		c.prepare(r.Seed, index)
 		list = append(list, c)
 	}
 	last := len(r.Boards) - 1
@@ -85,11 +89,13 @@ func (r *rehearsal) channels(board int) ([]*channel, error) {
 		add(0, protocol.Pressure, r.Pressure, func(v view) float64 { return v.pressurePa }, nil)
 	}
 	if board == last {
-		sum := func(v view) float64 { return v.extensionSum }
-		add(1, protocol.Extension, r.Indicator, func(v view) float64 { return v.extensionM }, sum)
+		r.indicators(add)
 	}
 	if board == 0 && r.Thermometer {
-		add(2, protocol.Temperature, r.Temperature, func(v view) float64 { return v.temperatureK }, nil)
+		add(2, protocol.Temperature, r.Temperature, func(v view) float64 { return r.heat.bandK(v.driveS) }, nil)
+	}
+	if board == 0 && r.RigThermometer {
+		add(3, protocol.Temperature, r.Temperature, func(v view) float64 { return r.heat.rigK(v.driveS) }, nil)
 	}
 	if r.Load > 1000*len(list) {
 		return nil, fmt.Errorf("%w: a load of %d lines a second; board %d makes %d at most", ErrConfig, r.Load, board, 1000*len(list))
@@ -106,4 +112,32 @@ func (r *rehearsal) channels(board int) ([]*channel, error) {
 		}
 	}
 	return list, nil
+}
+
+// indicatorCount is how many indicators sit on the band.
+func (r *rehearsal) indicatorCount() int {
+	if r.Second == NoSecond {
+		return 1
+	}
+	return 2
+}
+
+// indicators adds the indicator, and the second one where there is one: of the
+// same make, with its own zero and noise.
+func (r *rehearsal) indicators(add func(int, protocol.Quantity, Sensor, func(view) float64, func(view) float64)) {
+	first, second := r.Indicator, r.Indicator
+	second.OffsetSI = 2e-4 + 4e-4*newRand(r.Seed, streamZero, 1).Float64()
+	second.Serial = ""
+	switch r.Second {
+	case SecondFace:
+		first.Face, second.Face = 'A', 'B'
+	case SecondSpan:
+		first.OnSpan, second.OnSpan = 1, 2
+	}
+	add(1, protocol.Extension, first,
+		func(v view) float64 { return v.extensionM[0] }, func(v view) float64 { return v.extensionSum[0] })
+	if r.Second != NoSecond {
+		add(4, protocol.Extension, second,
+			func(v view) float64 { return v.extensionM[1] }, func(v view) float64 { return v.extensionSum[1] })
+	}
 }

@@ -2,77 +2,88 @@ package simrig
 
 import "math"
 
-// stepS is the fixed step of the integration, s.
-const stepS = 0.0005
-
-// plant is what a tensioner with a band is made of. All SI.
-type plant struct {
-	areaM2   float64 // A* = N A_c R, true
-	weightN  float64 // W, carried by the oil wherever the wheel is above its stop
-	bandNM   float64 // wheel pull per metre of travel with the band taut
-	slackM   float64 // travel between the stop and the taut band
-	dragNsM  float64 // viscous drag of the wheel
-	oilM3Pa  float64 // give of oil, hose and gauge: volume per pascal
-	flowM3S  float64 // most that the pump gives, or its release valve takes
-	friction bristle // at rest, without history
-}
-
-// wheel is the moving state: oil pressure, travel, and the friction's strain.
-// Travel is 0 where the band is just taut, and -slackM on the stop.
+// wheel is the slide with the band on its wheel, what pushes it, and what rubs
+// on it. Travel is 0 where the band is just taut, and -slackM on the lower
+// stop. All SI.
 type wheel struct {
-	plant
-	pressurePa float64
-	travelM    float64
+	actuator
+	chain
+	weightN float64 // W, carried wherever the wheel is above its stop
+	slackM  float64 // travel between the stop and the taut band
+	dragNsM float64 // viscous drag of the slide
+	slide   contact // of the ways: F0 + mu S
+	seals   contact // of the rods: constant, and with the pressure
+
+	travelM float64
+	speedMS float64 // over the last step
 }
 
-// newWheel is a wheel at rest on its stop.
-func newWheel(p plant, pressurePa float64) wheel {
-	return wheel{plant: p, pressurePa: pressurePa, travelM: -p.slackM}
-}
-
-// pullN is F, the pull of both spans on the wheel.
-func (w *wheel) pullN() float64 { return w.bandNM * max(0, w.travelM) }
-
-// loadN is S = F + W.
-func (w *wheel) loadN() float64 { return w.pullN() + w.weightN }
-
-// step integrates over dt seconds in which the pump tries to change the
-// pressure at the given rate (Pa/s). The force balance is
+// step integrates over dt seconds of a command. The force balance is
 //
-//	drag v = p A* - S(x) - friction
+//	drag v = push - S(x) - friction
 //
 // with inertia left out: a wheel of 400 kg takes under a newton where it moves
-// off, and nothing on a steady ramp. It is stiff, so the step is linearly
-// implicit in x and, where the pump gives all it can, in p as well:
-//
-//	dp/dt = (flow - A* v) / give
-func (w *wheel) step(ratePaS, dt float64) {
-	level := w.friction.levelN(w.loadN())
-	held := w.loadN() + level*w.friction.strain
-	p := w.pressurePa + ratePaS*dt
-	v := w.speedMS(p*w.areaM2-held, level, 0, dt)
-	flow := w.oilM3Pa*ratePaS + w.areaM2*v
-	if math.Abs(flow) > w.flowM3S {
-		flow = math.Copysign(w.flowM3S, flow)
-		given := w.pressurePa + flow*dt/w.oilM3Pa
-		v = w.speedMS(given*w.areaM2-held, level, w.areaM2*w.areaM2/w.oilM3Pa, dt)
-		p = given - w.areaM2*v*dt/w.oilM3Pa
-	}
-	dx := max(v*dt, -w.slackM-w.travelM)
-	w.pressurePa = max(0, p)
+// off, and nothing on a steady ramp. All forces are those at the end of the
+// step, so that it may be long: what follows the travel alone is exact.
+func (w *wheel) step(c command, dt float64) {
+	w.actuator.begin(c, dt)
+	w.chain.begin(dt)
+	dx := w.settle(dt)
+	w.actuator.end(dx)
 	w.travelM += dx
-	w.friction.move(dx, dt)
+	w.speedMS = dx / dt
+	w.chain.end(w.travelM)
+	w.slide.move(dx, dt)
+	w.seals.move(dx, dt)
 }
 
-// speedMS is the wheel's speed under a force left over, with the stiffness of
-// band, friction and oil (extraNM) that builds up against it within dt.
-func (w *wheel) speedMS(excessN, levelN, extraNM, dt float64) float64 {
-	if excessN < 0 && w.travelM <= -w.slackM {
-		return 0 // the stop carries the rest
+const (
+	leftN     = 0.01 // force that a step may leave over, N
+	mostTries = 200
+)
+
+// settle finds the travel of the step that leaves no force over: Newton's rule,
+// kept between the travels already known to be too little and too much. The
+// force left over grows with the travel.
+func (w *wheel) settle(dt float64) float64 {
+	least := -w.slackM - w.travelM // down to the stop
+	little, much := math.Inf(-1), math.Inf(1)
+	dx := max(least, w.speedMS*dt)
+	for range mostTries {
+		over, slope := w.over(dx, dt)
+		switch {
+		case math.Abs(over) < leftN, over > 0 && dx == least:
+			return dx
+		case over > 0:
+			much = dx
+		default:
+			little = dx
+		}
+		next := max(least, dx-over/slope)
+		if !(next > little && next < much) {
+			next = (max(little, least) + much) / 2
+		}
+		if next == dx {
+			return dx
+		}
+		dx = next
 	}
-	stiff := levelN*w.friction.slope(w.friction.strain, math.Copysign(1, excessN)) + extraNM
-	if w.travelM > 0 {
-		stiff += w.bandNM * (1 + w.friction.mu*w.friction.strain)
+	return dx
+}
+
+// over is what holds the wheel back at the end of a step of dx less what
+// pushes it, and how it grows with dx.
+func (w *wheel) over(dx, dt float64) (forceN, slopeNM float64) {
+	pull, pullNM := w.chain.pull(w.travelM + dx)
+	stop, stopNM := w.endStop(w.travelM + dx)
+	push, fallNM := w.force(dx)
+	load := pull + stop + w.weightN
+	rub, rubNM := w.slide.forceN(dx, dt, load, pullNM+stopNM)
+	forceN = w.dragNsM*dx/dt + load + rub - push
+	slopeNM = w.dragNsM/dt + pullNM + stopNM + rubNM + fallNM
+	if w.seals.f0N > 0 || w.seals.mu > 0 {
+		rub, rubNM := w.seals.forceN(dx, dt, push, 0)
+		forceN, slopeNM = forceN+rub, slopeNM+rubNM
 	}
-	return excessN / (w.dragNsM + dt*stiff)
+	return forceN, slopeNM
 }

@@ -5,6 +5,9 @@ import (
 	"testing"
 )
 
+// stressPa is the band stress under a pull of both spans.
+func (t Truth) stressPa(pullN float64) float64 { return pullN / (2 * t.NetAreaM2) }
+
 // crossings are the pressures at which the pull passes a band stress.
 func crossings(trace []Moment, pullN float64, rising bool) (pa []float64) {
 	for i := 1; i < len(trace); i++ {
@@ -19,7 +22,7 @@ func crossings(trace []Moment, pullN float64, rising bool) (pa []float64) {
 
 // slackPressures are the pressures halfway through the slack travel.
 func slackPressures(r *Rig, trace []Moment, rising bool) (pa []float64) {
-	half := -r.conf.plant.slackM / 2
+	half := -r.conf.start.slackM / 2
 	for i := 1; i < len(trace); i++ {
 		a, b := trace[i-1], trace[i]
 		if (a.TravelM < half) != (b.TravelM < half) && (b.TravelM > a.TravelM) == rising {
@@ -74,7 +77,7 @@ func checkTwoPulls(t *testing.T, r *Rig, trace []Moment) {
 	var up, down, travel float64
 	for i := 1; i < len(trace); i++ {
 		a, b := trace[i-1], trace[i]
-		stress := r.conf.gauge.stressPa(b.PullN) / psiPa
+		stress := r.Truth().stressPa(b.PullN) / psiPa
 		if a.PressurePa < 724.5*psiPa && b.PressurePa >= 724.5*psiPa {
 			up = stress
 		}
@@ -91,7 +94,7 @@ func checkTwoPulls(t *testing.T, r *Rig, trace []Moment) {
 // The work that the oil leaves behind in a closed cycle is friction's: 2 F0
 // times the way, and mu times the load along the way (energy balance).
 func checkLoopWork(t *testing.T, r *Rig, trace []Moment) {
-	truth, p := r.Truth(), r.conf.plant
+	truth, p := r.Truth(), r.conf.start
 	var work, top float64
 	for i := 1; i < len(trace); i++ {
 		a, b := trace[i-1], trace[i]
@@ -184,7 +187,7 @@ func checkReversal(t *testing.T, r *Rig, trace []Moment) {
 		}
 	}
 	last := trace[len(trace)-1]
-	if last.PullN != 0 || last.TravelM != -r.conf.plant.slackM {
+	if last.PullN != 0 || last.TravelM != -r.conf.start.slackM {
 		t.Errorf("ends with pull %g N at %g m, want slack on the stop", last.PullN, last.TravelM)
 	}
 }
@@ -194,12 +197,12 @@ func checkReversal(t *testing.T, r *Rig, trace []Moment) {
 func checkToe(t *testing.T, r *Rig, trace []Moment) {
 	seen, last := 0.0, 0.0
 	for _, m := range trace {
-		hooke := r.Truth().ExtensionM(r.conf.gauge.stressPa(m.PullN))
+		hooke := r.Truth().ExtensionM(r.Truth().stressPa(m.PullN))
 		short := hooke - m.ExtensionM
 		if m.PressurePa < 230*psiPa {
 			seen = max(seen, short)
 		}
-		if r.conf.gauge.stressPa(m.PullN) >= 6000*psiPa {
+		if r.Truth().stressPa(m.PullN) >= 6000*psiPa {
 			last = max(last, short/hooke)
 		}
 		if m.PullN == 0 && m.ExtensionM != 0 {

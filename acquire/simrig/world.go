@@ -2,22 +2,40 @@ package simrig
 
 import "math"
 
+// Steps of the integration, s: as long as nothing sudden happens, and never
+// shorter than the least. All that follows the travel is exact over a step.
+const (
+	longStepS  = 0.02
+	leastStepS = 0.0005
+)
+
+// pastViews is how many views are kept: a second of the shortest steps, for
+// sensors that lag behind.
+const pastViews = 512
+
 // world is the wheel, the drive that moves it, and time.
 type world struct {
 	conf   *rehearsal
 	wheel  wheel
 	drive  *driver // nil before the drive
 	startS float64 // of the drive
-	before view    // at the last step but one
-	now    view    // at the last step
+	past   [pastViews]view
+	last   int // index of the view after the last step
+	cycle  int // whose friction the wheel has
+	stepS  float64
 }
 
-func newWorld(conf rehearsal) world {
-	w := world{conf: &conf, wheel: newWheel(conf.plant, conf.Drive.LowPa)}
+func newWorld(conf rehearsal) *world {
+	w := &world{conf: &conf, wheel: conf.wheel(), stepS: longStepS, cycle: -1}
 	w.observe(0)
-	w.before = w.now
+	for i := range w.past {
+		w.past[i] = *w.now()
+	}
 	return w
 }
+
+// now is the view after the last step.
+func (w *world) now() *view { return &w.past[w.last] }
 
 // start begins the drive. Until then nothing moves.
 func (w *world) start(s float64) {
@@ -28,54 +46,107 @@ func (w *world) start(s float64) {
 // advance steps until time s is reached or just passed.
 func (w *world) advance(s float64) {
 	if w.drive == nil {
-		w.wait(s)
+		if s > w.now().t {
+			w.observe(s)
+		}
 		return
 	}
-	for w.now.t < s {
-		w.before = w.now
-		rate := w.drive.ratePaS(w.wheel.pressurePa, w.now.t-w.startS, stepS)
-		w.wheel.step(rate, stepS)
-		w.observe(w.now.t + stepS)
+	for w.now().t < s {
+		t := w.now().t
+		c, forS := w.drive.next(w.seen(), t-w.startS)
+		if n := w.drive.cycleNow(); n != w.cycle {
+			w.cycle = n
+			w.conf.varied(&w.wheel, n)
+		}
+		dt := max(leastStepS, min(w.stepS, forS, w.sudden()))
+		w.wheel.warmM = w.conf.heat.bandM(t + dt - w.startS)
+		w.wheel.step(c, dt)
+		w.observe(t + dt)
 	}
 }
 
-// wait lets time pass for a rig at rest, however much.
-func (w *world) wait(s float64) {
-	if s > w.now.t {
-		w.before = w.now
-		w.observe(s)
+// trace runs the drive from its start and notes what happens.
+func (w *world) trace(everyS float64) (list []Moment) {
+	w.start(0)
+	for i := 0; !w.drive.over(); i++ {
+		t := float64(i) * everyS
+		w.advance(t)
+		v := w.at(t)
+		list = append(list, Moment{v.driveS, v.pressurePa, v.pullN, v.extensionM[0], v.travelM})
 	}
+	return list
 }
 
-// observe notes what can be seen of the rig at time s.
+// sudden is the longest step that follows a wheel breaking loose.
+func (w *world) sudden() float64 {
+	h := math.Inf(1)
+	for _, c := range []*contact{&w.wheel.slide, &w.wheel.seals} {
+		if v := math.Abs(w.wheel.speedMS); c.law.restRatio > 1 && v > 0 {
+			h = min(h, c.law.renewM/4/v)
+		}
+	}
+	return h
+}
+
+// seen is what the operator looks at.
+func (w *world) seen() seen {
+	if o, ok := w.wheel.actuator.(*oil); ok {
+		return seen{hand: o.pressurePa}
+	}
+	return seen{}
+}
+
+// observe notes what can be seen of the rig at time s, in the place of the
+// oldest view.
 func (w *world) observe(s float64) {
-	last := w.now
-	w.now = view{t: s, driveS: -1, pressurePa: w.wheel.pressurePa}
+	before := w.now()
+	w.last = (w.last + 1) % pastViews
+	v := w.now()
+	*v = view{t: s, driveS: -1, pullN: w.wheel.pullN, travelM: w.wheel.travelM}
 	gaugeS := 0.0
 	if w.drive != nil {
-		w.now.driveS = s - w.startS
-		gaugeS = w.now.driveS
+		v.driveS = s - w.startS
+		gaugeS = v.driveS
 	}
-	w.now.extensionM = w.conf.gauge.extensionM(w.wheel.pullN(), gaugeS)
-	w.now.extensionSum = last.extensionSum + (s-last.t)*(last.extensionM+w.now.extensionM)/2
+	w.wheel.show(v)
+	for i := range w.conf.gauges[:w.conf.indicatorCount()] {
+		g := &w.conf.gauges[i]
+		v.extensionM[i] = g.extensionM(w.wheel.spanN(g.span), gaugeS)
+		v.extensionSum[i] = before.extensionSum[i] + (s-before.t)*(before.extensionM[i]+v.extensionM[i])/2
+	}
 }
 
-// warmingK is the temperature of the band: a morning that warms up slowly.
-func warmingK(s float64) float64 { return iceK + 18 + 0.8*(1-math.Exp(-s/1800)) }
-
-// at is the view between the last two steps.
+// at is the view at an instant of the last steps, or the oldest kept.
 func (w *world) at(s float64) view {
-	a, b := w.before, w.now
+	i := w.last
+	for n := 1; n < pastViews-1; n++ {
+		before := (i + pastViews - 1) % pastViews
+		if w.past[before].t <= s {
+			break
+		}
+		i = before
+	}
+	a, b := &w.past[(i+pastViews-1)%pastViews], &w.past[i]
 	part := 1.0
 	if b.t > a.t {
 		part = max(0, min(1, (s-a.t)/(b.t-a.t)))
 	}
+	return between(a, b, part, s)
+}
+
+func between(a, b *view, part, s float64) view {
 	mix := func(from, to float64) float64 { return from + part*(to-from) }
-	return view{
+	v := view{
 		t: s, driveS: mix(a.driveS, b.driveS),
-		pressurePa:   mix(a.pressurePa, b.pressurePa),
-		extensionM:   mix(a.extensionM, b.extensionM),
-		extensionSum: mix(a.extensionSum, b.extensionSum),
-		temperatureK: warmingK(s),
+		pullN: mix(a.pullN, b.pullN), travelM: mix(a.travelM, b.travelM),
+		pressurePa: mix(a.pressurePa, b.pressurePa),
+		torqueNM:   mix(a.torqueNM, b.torqueNM),
+		angleRad:   mix(a.angleRad, b.angleRad),
+		springM:    mix(a.springM, b.springM),
 	}
+	for i := range v.extensionM {
+		v.extensionM[i] = mix(a.extensionM[i], b.extensionM[i])
+		v.extensionSum[i] = mix(a.extensionSum[i], b.extensionSum[i])
+	}
+	return v
 }

@@ -1,0 +1,131 @@
+package simrig
+
+import (
+	"fmt"
+	"math"
+
+	"tautramp/acquire/mill"
+)
+
+// find looks up tensioner and band.
+func (r *rehearsal) find() (err error) {
+	if r.Profile == nil {
+		return fmt.Errorf("%w: no profile given", ErrConfig)
+	}
+	if r.tensioner, err = r.Profile.FindTensioner(r.Tensioner); err != nil {
+		return err
+	}
+	if r.band, err = r.Profile.FindBand(r.Band); err != nil {
+		return err
+	}
+	name := r.tensioner.Name
+	if r.tensioner.SetBy != mill.SetByPressure {
+		return fmt.Errorf("%w: %s is set by %s, the rehearsal rig knows pressure only; name another", ErrNotRehearsable, name, r.tensioner.SetBy)
+	}
+	if r.tensioner.Rehearsal == nil {
+		return fmt.Errorf("%w: add a [tensioner.rehearsal] table below %s in mill.toml", ErrNotRehearsable, name)
+	}
+	return nil
+}
+
+// mechanics makes the wheel and what is true of it. The band is two straight
+// halves of its loop side by side, each stretched by the wheel's travel:
+// F = 2 sigma A_b and x = (sigma/E) loop/2.
+func (r *rehearsal) mechanics() error {
+	hidden := r.tensioner.Rehearsal
+	area := r.tensioner.GeometryAreaM2() * orElse(r.AreaFactor, 1)
+	net, loop := r.band.NetAreaM2()*orElse(r.SectionFactor, 1), hidden.BandLoop.SI
+	modulus := r.band.Modulus.SI * orElse(r.ModulusFactor, 1)
+	length := r.Profile.Rig.GaugeLength.SI * orElse(r.Stretch.LengthFactor, 1)
+	for _, must := range []struct {
+		name string
+		si   float64
+	}{
+		{"cylinder area", area}, {"net section of the band", net}, {"length of the band", loop},
+		{"modulus of the band", modulus}, {"gauge length", length},
+	} {
+		if !(must.si > 0) || math.IsInf(must.si, 0) {
+			return fmt.Errorf("%w: %s with %s: the %s is %g; give it in mill.toml", ErrConfig, r.tensioner.Name, r.band.Name, must.name, must.si)
+		}
+	}
+	r.heat = newHeat(r.Heat, loop)
+	for i := range r.gauges {
+		r.gauges[i] = newGauge(r.Stretch, length, modulus, net)
+		r.gauges[i].heat = r.heat
+	}
+	switch r.Second {
+	case SecondFace:
+		r.gauges[1].CurlM = -r.gauges[1].CurlM
+	case SecondSpan:
+		r.gauges[1].span = 2
+	}
+	start := wheel{weightN: hidden.Weight.SI, slackM: orElse(r.SlackM, 3e-3)}
+	start.chain = newChain(r.Chain, 4*modulus*net/loop)
+	var err error
+	if start.slide, err = r.Law.newContact(hidden.FrictionConstant.SI, hidden.FrictionProportional); err != nil {
+		return err
+	}
+	if start.seals, err = r.Seals.newContact(area); err != nil {
+		return err
+	}
+	r.start = start
+	r.truth = Truth{
+		F0N: start.slide.f0N + start.seals.f0N, Mu: start.slide.mu, SealPart: start.seals.mu, WeightN: hidden.Weight.SI, AreaM2: area,
+		ModulusPa: modulus, GaugeM: length, NetAreaM2: net,
+	}
+	return nil
+}
+
+// wheel is a wheel at rest on its stop, with nothing of what has happened yet.
+func (r *rehearsal) wheel() wheel {
+	w := r.start
+	w.travelM = -w.slackM
+	o := r.oil
+	o.pressurePa, o.gaugePa = r.Drive.LowPa, r.Drive.LowPa
+	w.actuator = &o
+	return w
+}
+
+// Seals is the friction of the rods' seals, beside that of the ways.
+type Seals struct {
+	ConstantN   float64 // drag that is always there; 0 means none
+	Part        float64 // drag that grows with the pressure, part of the push; 0 means none
+	PreslidingM float64 // m of travel over which it builds up; 0 means 0.06 mm: seals give before they slide
+	RestRatio   float64 // drag at a breakaway after a long rest / drag when sliding; 0 means 1
+	RestS       float64 // s of rest after which half of the excess is there; 0 means 60
+}
+
+// newContact makes their friction. Its load is the push of the oil.
+func (s Seals) newContact(areaM2 float64) (contact, error) {
+	return Law{PreslidingM: orElse(s.PreslidingM, 6e-5), RestRatio: s.RestRatio, RestS: orElse(s.RestS, 60),
+		RenewM: 2e-4}.newContact(s.ConstantN, s.Part)
+}
+
+func newChain(c Chain, bandNM float64) chain {
+	c.ToeN = orElse(c.ToeN, 1500)
+	return chain{Chain: c, bandNM: bandNM}
+}
+
+// pump sizes the pump so that the wheel crosses the slack at a walk while it
+// never holds back the ramp, the oil so stiff that a stroke soon makes good a
+// sag, and the drag so that neither shows: 0.02 % of the
+// top pull at the slack's speed, and far less on the ramp.
+func (r *rehearsal) pump() error {
+	p, d := &r.start, r.Drive
+	time := orElse(r.SlackTimeS, 8)
+	if !(p.slackM > 0) || !(time > 0) {
+		return fmt.Errorf("%w: a slack of %g m crossed in %g s", ErrConfig, p.slackM, time)
+	}
+	area := r.truth.AreaM2
+	ramp := d.RatePaS * area / p.bandNM
+	speed := max(p.slackM/time, 10*ramp)
+	flow := area * speed
+	r.oil = oil{Oil: r.Oil, areaM2: area, flowM3S: flow, giveM3P: 0.03 * flow / d.RatePaS}
+	r.oil.AirS, r.oil.HoseS = orElse(r.Oil.AirS, 1.5), orElse(r.Oil.HoseS, 4)
+	r.oil.VolumeM3 = orElse(r.Oil.VolumeM3, 6e-4)
+	if r.Oil.HosePart < 0 || r.Oil.HosePart > 0.9 || r.Oil.AirM3 < 0 || r.Oil.LeakPerS < 0 || r.Oil.TeePerS < 0 {
+		return fmt.Errorf("%w: oil side %+v", ErrConfig, r.Oil)
+	}
+	p.dragNsM = 2e-4 * area * d.TopPa / speed
+	return nil
+}
