@@ -17,6 +17,8 @@ type Fit struct {
 	Outliers   int                // of these, pairs that the line does not explain: they have no weight in it
 	Method     estimate.Method    // chosen by how the count compares with the noise
 	Dependence float64            // factor already in Line's covariance from neighbouring readings' common errors
+	Shape      estimate.Shape     // of what was fitted
+	Bend       estimate.Estimate  // how far the pairs leave the line's chord in the middle, share of the range of extension
 	Feasible   *estimate.Feasible // all lines through every reading, where there are any; else nil
 }
 
@@ -50,9 +52,14 @@ func (w *work) fitBranch(at []int) (f Fit, ok bool) {
 	if err != nil || !(b.B > 0) {
 		return Fit{}, false
 	}
+	x, y := w.outline(at)
+	shape, bend, err := estimate.ShapeOf(x, y)
+	if err != nil {
+		bend = estimate.Unknown("too few steps of the display to tell")
+	}
 	return Fit{
 		Line: b.Line, LowSI: estimate.Quantile(r.X, 0), HighSI: estimate.Quantile(r.X, 1), Points: len(at),
-		Outliers: b.Outliers, Method: b.Method, Dependence: b.Dependence, Feasible: b.Feasible,
+		Outliers: b.Outliers, Method: b.Method, Dependence: b.Dependence, Shape: shape, Bend: bend, Feasible: b.Feasible,
 	}, true
 }
 

@@ -11,18 +11,16 @@ import (
 type legs struct {
 	rise, fall  []bool  // pairs First..Peak and Peak..Last that lead the setting
 	seatEndSI   float64 // rising branch is straight above
+	stopSI      float64 // and below; +Inf where it is so to its top
 	seatEndM    float64 // extension there; the falling branch is straight above it too
 	foundSeatSI float64 // falling branch is straight above, as found in the data
 	fallSeatSI  float64 // and as fitted: no lower than the rising branch's extension there
 	foundKneeSI float64 // and below, as found in the data
 	kneeSI      float64 // and below, as fitted
-	curved      bool    // a line was fitted to what is bent
 	ok          bool    // both branches have a line
 }
 
 const (
-	// Points on which the straight part is looked for; more are averaged.
-	mostPoints = 300
 	// The fall of the setting at the top that is left out, in reversal lengths:
 	// presliding rounds the knee. Judgement.
 	reversalShare = 1.15
@@ -36,6 +34,7 @@ func (w *work) fitCycles() {
 	w.legs = make([]legs, len(w.res.Cycles))
 	for i := range w.res.Cycles {
 		c, l := &w.res.Cycles[i], &w.legs[i]
+		c.StopSI, c.StopRatio = math.Inf(1), math.NaN()
 		c.SeatingEndSI, c.ReversalSI = math.NaN(), estimate.Unknown("the cycle has no straight stretch on both branches")
 		l.rise = w.trace.leading(w.t[c.First], w.t[c.First:c.Peak+1], +1)
 		l.fall = w.trace.leading(w.t[c.Peak], w.t[c.Peak:c.Last+1], -1)
@@ -63,12 +62,12 @@ func (w *work) refine(c *Cycle, l *legs) {
 	}
 	c.Rising, c.Falling = rise, fall
 	l.seatEndM, _ = rise.Line.At(l.seatEndSI)
-	c.ReversalSI = w.reversal(c)
+	c.ReversalSI = w.reversal(c, l.stopSI)
 }
 
 // onRising is the pairs of the rising branch's straight part.
 func (w *work) onRising(c *Cycle, l *legs) []int {
-	return leaders(c.First, l.rise, func(i int) bool { return w.x[i] >= l.seatEndSI })
+	return leaders(c.First, l.rise, func(i int) bool { return w.x[i] >= l.seatEndSI && w.x[i] <= l.stopSI })
 }
 
 // onFalling is the pairs of the falling branch's straight part.
@@ -110,16 +109,16 @@ func leaders(first int, leads []bool, pass func(i int) bool) []int {
 	return at
 }
 
-// searchRising finds where the rising branch is straight, the band seated, and
-// fits it from there to the top.
+// searchRising finds where the rising branch is straight, the band seated and
+// nothing at its end, and fits it there.
 func (w *work) searchRising(c *Cycle, l *legs) bool {
-	l.seatEndSI, l.kneeSI = math.Inf(1), math.Inf(-1)
-	at := leaders(c.First, l.rise, func(int) bool { return true })
-	from, err := w.straightAbove(at, +1)
+	l.seatEndSI, l.stopSI, l.kneeSI = math.Inf(1), math.Inf(1), math.Inf(-1)
+	s, err := w.straight(leaders(c.First, l.rise, func(int) bool { return true }), Rising)
 	if err != nil {
 		return false
 	}
-	return w.fitRising(c, l, from)
+	l.stopSI, c.StopSI, c.StopRatio = s.toSI, s.toSI, s.beyond
+	return w.fitRising(c, l, s.fromSI)
 }
 
 func (w *work) fitRising(c *Cycle, l *legs, fromSI float64) bool {
@@ -136,34 +135,12 @@ func (w *work) fitRising(c *Cycle, l *legs, fromSI float64) bool {
 // searchFalling finds the knee of the reversal at the top, and where the
 // branch leaves its straight part at the bottom.
 func (w *work) searchFalling(c *Cycle, l *legs) bool {
-	at := leaders(c.Peak, l.fall, func(i int) bool { return w.e[i] >= l.seatEndM })
-	from, err := w.straightAbove(at, -1)
+	s, err := w.straight(leaders(c.Peak, l.fall, func(i int) bool { return w.e[i] >= l.seatEndM }), Falling)
 	if err != nil {
 		return false
 	}
-	l.foundKneeSI = -from
-	below := leaders(c.Peak, l.fall, func(i int) bool { return w.e[i] >= l.seatEndM && w.x[i] <= l.foundKneeSI })
-	if l.foundSeatSI, err = w.straightAbove(below, +1); err != nil {
-		return false
-	}
-	l.fallSeatSI = l.foundSeatSI
+	l.foundKneeSI, l.foundSeatSI, l.fallSeatSI = s.toSI, s.fromSI, s.fromSI
 	return w.fitFalling(c, l)
-}
-
-// straightAbove looks for the straight part of pairs, from the low end of their
-// settings for sign +1 and from the high end for -1.
-func (w *work) straightAbove(at []int, sign float64) (from float64, err error) {
-	p := pick(w.x, at)
-	for i := range p {
-		p[i] *= sign
-	}
-	from, _, err = estimate.StraightAbove(grouped(p, mostPoints), grouped(pick(w.e, at), mostPoints))
-	return from, err
-}
-
-// bent is whether the pairs that a line was fitted to are bent.
-func (w *work) bent(at []int) bool {
-	return estimate.Bent(grouped(pick(w.x, at), mostPoints), grouped(pick(w.e, at), mostPoints))
 }
 
 // fitFalling leaves out the reversal at the top and the seating at the bottom:
@@ -179,11 +156,12 @@ func (w *work) fitFalling(c *Cycle, l *legs) bool {
 		c.Falling = fit
 		seat, _ := fit.Line.InverseAt(l.seatEndM)
 		l.fallSeatSI = math.Max(l.foundSeatSI, seat)
-		c.ReversalSI = w.reversal(c)
+		c.ReversalSI = w.reversal(c, l.stopSI)
 		if pass == 2 {
 			return true
 		}
-		l.kneeSI = math.Min(l.foundKneeSI, w.topSI(c)-reversalShare*c.ReversalSI.Value)
+		knee := w.topSI(c) - c.ReversalSI.Value
+		l.kneeSI = math.Min(l.foundKneeSI, knee-(reversalShare-1)*(math.Min(w.topSI(c), l.stopSI)-knee))
 	}
 }
 
@@ -200,9 +178,9 @@ func (w *work) topSI(c *Cycle) float64 {
 
 // reversal is the fall of the setting at the top before the extension follows:
 // from the top to where the falling line has the top's extension.
-func (w *work) reversal(c *Cycle) estimate.Estimate {
+func (w *work) reversal(c *Cycle, stopSI float64) estimate.Estimate {
 	top := w.topSI(c)
-	eTop, stdTop := c.Rising.Line.At(top)
+	eTop, stdTop := c.Rising.Line.At(math.Min(top, stopSI))
 	knee, std := c.Falling.Line.Inverse(eTop, stdTop)
 	return estimate.Estimate{
 		Value: top - knee, Random: math.Hypot(std, w.trace.doubt(w.trace.windowS)),

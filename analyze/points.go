@@ -43,8 +43,11 @@ func (w *work) place(pt *Point, i int, c *Cycle, l *legs) {
 	case w.slack[i]:
 	case i < c.Peak && l.rise[i-c.First]:
 		pt.Phase = Loading
-		if !(w.x[i] >= l.seatEndSI) {
+		switch {
+		case !(w.x[i] >= l.seatEndSI):
 			pt.Phase = Seating
+		case w.x[i] > l.stopSI:
+			pt.Phase = Inside
 		}
 	case i >= c.Peak && l.fall[i-c.Peak]:
 		switch {
@@ -84,7 +87,6 @@ func (w *work) still(i int) bool {
 
 func (w *work) markFitted(c *Cycle, l *legs) {
 	mark := func(at []int) {
-		l.curved = l.curved || w.bent(at)
 		for _, i := range at {
 			w.res.Points[i].Fitted = true
 		}

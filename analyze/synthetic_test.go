@@ -26,6 +26,7 @@ type bench struct {
 	zeroM                    float64 // indicated with a slack band
 	slackOffM                float64 // added while it is slack: a zero that lies
 	toePa                    float64 // stress held back while the band seats, at most
+	stopPa, beyond           float64 // above this stress, where it is not 0, the band takes this share of what it would
 	countM, noiseM           float64
 	countSI, noiseSI         float64
 	settingHz, extensionHz   float64
@@ -62,6 +63,9 @@ func (b *bench) settle(pPa float64) float64 {
 	stress := math.Max(0, b.loadN-b.weightN) / (2 * b.netM2)
 	if stress == 0 {
 		return b.zeroM + b.slackOffM
+	}
+	if b.stopPa > 0 && stress > b.stopPa {
+		stress = b.stopPa + b.beyond*(stress-b.stopPa)
 	}
 	u := stress / (400 * psi)
 	e := b.zeroM + b.gaugeM/b.modulusPa*(stress-b.toePa*u*math.Exp(1-u)) + between(b.extensionErrM, stress/(10000*psi))
@@ -242,6 +246,11 @@ func (b *bench) stressAt(d Direction, settingPa float64) float64 {
 		sign = -1
 	}
 	return ((q-sign*b.f0N)/(1+sign*b.mu) - b.weightN) / (2 * b.netM2)
+}
+
+// settingPerM is by how much the setting rises for a metre of stretch.
+func (b *bench) settingPerM() float64 {
+	return 2 * b.netM2 * (1 + b.mu) / b.areaM2 * b.modulusPa / b.gaugeM
 }
 
 // halfAt is half of what the setting truly differs at the stretch of a rising

@@ -14,6 +14,7 @@ import (
 type trace struct {
 	t, p    []float64 // s, SI
 	sum     []float64 // of the first i values of p, less base
+	when    []float64 // of the first i times, less the first one
 	base    float64
 	noise   float64 // standard deviation of one value
 	stepS   float64 // median time between values
@@ -38,10 +39,11 @@ func newTrace(set *pairing.Set, countSI float64) *trace {
 		}
 	}
 	tr.base = tr.p[0]
-	tr.sum = make([]float64, len(tr.p)+1)
+	tr.sum, tr.when = make([]float64, len(tr.p)+1), make([]float64, len(tr.p)+1)
 	steps := make([]float64, 0, len(tr.t))
 	for i, p := range tr.p {
 		tr.sum[i+1] = tr.sum[i] + p - tr.base
+		tr.when[i+1] = tr.when[i] + tr.t[i] - tr.t[0]
 		if i > 0 {
 			steps = append(steps, tr.t[i]-tr.t[i-1])
 		}
@@ -70,21 +72,35 @@ func (tr *trace) at(t float64) int {
 	return sort.Search(len(tr.t), func(i int) bool { return tr.t[i] > t }) - 1
 }
 
-// mean is the mean over the times from a to b, both included; NaN where there
-// is no value.
-func (tr *trace) mean(a, b float64) float64 {
+// mean is the mean over the times from a to b, both included, and the mean of
+// the times that it has values for; NaN where there is none.
+func (tr *trace) mean(a, b float64) (m, t float64) {
 	i := sort.Search(len(tr.t), func(i int) bool { return tr.t[i] >= a })
 	j := tr.at(b) + 1
 	if j <= i {
-		return math.NaN()
+		return math.NaN(), math.NaN()
 	}
-	return tr.base + (tr.sum[j]-tr.sum[i])/float64(j-i)
+	n := float64(j - i)
+	return tr.base + (tr.sum[j]-tr.sum[i])/n, tr.t[0] + (tr.when[j]-tr.when[i])/n
+}
+
+// about is the setting by the values of the window about t, moved along the
+// present rate to where the window has no value in its middle. NaN where it has
+// none at all.
+func (tr *trace) about(t float64) float64 {
+	m, at := tr.mean(t-tr.windowS/2, t+tr.windowS/2)
+	before, tBefore := tr.mean(t-tr.windowS, t)
+	after, tAfter := tr.mean(t, t+tr.windowS)
+	if rate := (after - before) / (tAfter - tBefore); finite(rate) {
+		return m + rate*(t-at)
+	}
+	return m
 }
 
 // smooth is the setting about t; in a hole wider than the window it lies on
 // the line between the values on both sides.
 func (tr *trace) smooth(t float64) float64 {
-	if m := tr.mean(t-tr.windowS/2, t+tr.windowS/2); finite(m) {
+	if m := tr.about(t); finite(m) {
 		return m
 	}
 	i := tr.at(t)
@@ -97,11 +113,30 @@ func (tr *trace) smooth(t float64) float64 {
 	return tr.p[i] + (tr.p[i+1]-tr.p[i])*(t-tr.t[i])/(tr.t[i+1]-tr.t[i])
 }
 
-// gain is how much the setting changes about t: the mean over the window after
-// it less the mean over the window before it. NaN at the ends.
-func (tr *trace) gain(t, window float64) float64 {
+// sides is the means over a window before t and after it. NaN at the ends.
+func (tr *trace) sides(t, window float64) (before, after float64) {
 	const apart = 1e-9 // s; t itself belongs to neither side
-	return tr.mean(t+apart, t+window) - tr.mean(t-window, t-apart)
+	before, _ = tr.mean(t-window, t-apart)
+	after, _ = tr.mean(t+apart, t+window)
+	return before, after
+}
+
+// gain is how much the setting changes about t: from the window before it to
+// the window after it. NaN at the ends.
+func (tr *trace) gain(t, window float64) float64 {
+	before, after := tr.sides(t, window)
+	return after - before
+}
+
+// turns is whether the setting changes its rate within a window of t by more
+// than noise: a stroke begins or ends there, and the smoothed setting lies off
+// the true one.
+func (tr *trace) turns(t float64) bool {
+	const beyond = 2.0
+	before, after := tr.sides(t, tr.windowS)
+	// Three means, the middle one made of halves of the others but for t itself.
+	own := math.Min(1, tr.stepS/tr.windowS)
+	return math.Abs(before+after-2*tr.about(t)) > beyond*math.Sqrt(2+4*own)*tr.doubt(tr.windowS)
 }
 
 // doubt is the standard deviation of a mean over a window.
@@ -112,7 +147,7 @@ func (tr *trace) doubt(window float64) float64 {
 // leading says, for each of the given times in order, whether the smoothed
 // setting leads: for sign +1 it rises and is above all that it was since the
 // time from, up to one window ago; for -1 it falls and is below. Anything else
-// lies inside the loop: after a stroke the pressure sags while friction holds
+// lies inside the loop, and so does where it turns: after a stroke the pressure sags while friction holds
 // the band, and the next stroke has to win that back first. The last window is
 // left out so that a steady ramp is not asked to beat its own noise.
 func (tr *trace) leading(from float64, times []float64, sign float64) []bool {
@@ -124,7 +159,7 @@ func (tr *trace) leading(from float64, times []float64, sign float64) []bool {
 		for ; next < len(tr.t) && tr.t[next] <= t-tr.windowS; next++ {
 			best = math.Max(best, sign*tr.smooth(tr.t[next]))
 		}
-		out[k] = sign*tr.smooth(t) >= best && sign*tr.gain(t, tr.windowS) > still
+		out[k] = sign*tr.smooth(t) >= best && sign*tr.gain(t, tr.windowS) > still && !tr.turns(t)
 	}
 	return out
 }

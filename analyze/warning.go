@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"tautramp/acquire/mill"
+	"tautramp/analyze/estimate"
 )
 
 // Warning is something the reader must know beside the figures.
@@ -31,7 +32,7 @@ const (
 // the ordinary. Their order is fixed.
 func (w *work) warnings() {
 	for _, check := range []func(){
-		w.warnVisit, w.warnRamps, w.warnInstruments, w.warnZero, w.warnMarks, w.warnReturn, w.warnTarget, w.warnShape, w.warnOutliers, w.warnPace, w.warnArea, w.warnWeight,
+		w.warnVisit, w.warnRamps, w.warnInstruments, w.warnZero, w.warnMarks, w.warnReturn, w.warnTarget, w.warnShape, w.warnStop, w.warnOutliers, w.warnPace, w.warnArea, w.warnWeight,
 	} {
 		check()
 	}
@@ -138,15 +139,28 @@ func (w *work) warnTarget() {
 
 func (w *work) warnShape() {
 	for _, i := range w.fitted {
-		if w.legs[i].curved {
-			w.warn("branch-curved", fmt.Sprintf("Cycle %d is not straight over most of its range: only its straightest part is fitted.", i+1))
-		}
 		c := w.res.Cycles[i]
+		if c.Rising.Shape == estimate.Curved || c.Falling.Shape == estimate.Curved {
+			w.warn("branch-curved", fmt.Sprintf("Cycle %d bends over its whole range: a straight line does not describe it.", i+1))
+		}
 		for k := c.First + 1; k <= c.Last; k++ {
 			if w.set.Pairs[k].Part != w.set.Pairs[k-1].Part {
 				w.warn("gap", fmt.Sprintf("Cycle %d has a gap in its readings.", i+1))
 				break
 			}
+		}
+	}
+}
+
+// warnStop tells of a branch that bends near its top.
+func (w *work) warnStop() {
+	for i, c := range w.res.Cycles {
+		how := "less"
+		if c.StopRatio > 1 {
+			how = "more"
+		}
+		if !math.IsInf(c.StopSI, 1) {
+			w.warn("branch-ends", fmt.Sprintf("Cycle %d: near the top the stretch follows the setting %s than before: the end of the travel, or a spring gone solid. That part is not fitted. Go no higher until the cause is found.", i+1, how))
 		}
 	}
 }

@@ -74,18 +74,3 @@ func pick(v []float64, at []int) []float64 {
 	}
 	return out
 }
-
-// grouped averages neighbours so that at most so many points are left.
-func grouped(v []float64, most int) []float64 {
-	size := (len(v) + most - 1) / most
-	if size <= 1 {
-		return v
-	}
-	var out []float64
-	for len(v) > 0 {
-		n := min(size, len(v))
-		mean, _ := estimate.Mean(v[:n])
-		out, v = append(out, mean), v[n:]
-	}
-	return out
-}

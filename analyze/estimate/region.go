@@ -60,12 +60,18 @@ func StraightWithin(x, y []float64) (Region, error) {
 		}
 		r.To = -low
 	}
-	bx, by := between(x, y, r.From, r.To)
-	if r.Bend, err = FitBend(bx, by); err != nil {
-		return Region{}, err
+	r.Shape, r.Bend, err = ShapeOf(between(x, y, r.From, r.To))
+	return r, err
+}
+
+// ShapeOf is what a series is taken for, and its bend (FitBend). Errors as
+// FitBend.
+func ShapeOf(x, y []float64) (Shape, Estimate, error) {
+	bend, err := FitBend(x, y)
+	if err != nil {
+		return Unsettled, Estimate{}, err
 	}
-	r.Shape = shapeOf(r.Bend)
-	return r, nil
+	return shapeOf(bend), bend, nil
 }
 
 func between(x, y []float64, from, to float64) (bx, by []float64) {

@@ -149,6 +149,7 @@ func cycleJSON(c analyze.Cycle, by setBy) object {
 		{"zero_m", estimateJSON(c.Zero)}, {"zero_from", clean(c.ZeroFrom, nameLength)},
 		{"return_m", estimateJSON(c.ReturnM)}, {"reversal", by.inSetting(estimateJSON(c.ReversalSI))},
 		{"rate_per_s", by.inSetting(given(c.RateSI))}, {"seating_end", by.inSetting(given(c.SeatingEndSI))},
+		{"straight_to", by.inSetting(given(c.StopSI))}, {"slope_ratio_above", number(c.StopRatio)},
 		{"rising", fitJSON(c.Rising, by)}, {"falling", fitJSON(c.Falling, by)},
 	}
 }
@@ -164,7 +165,16 @@ func fitJSON(f analyze.Fit, by setBy) any {
 		{"intercept_m", number(f.Line.A)}, {"slope_m_per", by.inSetting(number(f.Line.B))},
 		{"residual_std_m", number(f.Line.ResidualSD)}, {"method", clean(string(f.Method), nameLength)},
 		{"outliers", f.Outliers}, {"dependence", given(f.Dependence)},
+		{"shape", shapeJSON(f.Shape)}, {"bend", estimateJSON(f.Bend)},
 	}
+}
+
+func shapeJSON(s estimate.Shape) string {
+	switch s {
+	case estimate.Straight, estimate.Curved:
+		return string(s)
+	}
+	return string(estimate.Unsettled)
 }
 
 func branchJSON(b analyze.Branch, by setBy) object {
