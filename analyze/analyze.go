@@ -43,8 +43,9 @@ type Result struct {
 	Running    RunningBand
 	Warnings   []Warning
 	Marks      ZeroMarks
-	Simulated  bool   // a device said that what it measures is made up: nothing may be set by these figures
-	Ended      string // how the visit ended, in words; "" where the recording does not say
+	Predicted  *Prediction // how, where the figures are for another band than was measured; else nil
+	Simulated  bool        // a device said that what it measures is made up: nothing may be set by these figures
+	Ended      string      // how the visit ended, in words; "" where the recording does not say
 
 	work *work
 }

@@ -31,14 +31,24 @@ func (r ramp) line(d Direction) estimate.Line {
 }
 
 // constants turn a ramp into stress and force.
-type constants struct{ modulusPa, gaugeM, areaM2 float64 }
+type constants struct {
+	modulusPa, gaugeM, areaM2 float64 // of the band that was measured
+	otherM2                   float64 // net section of the band that the stress is for; 0: the measured one
+}
 
-// paPerM is the band stress of one metre of stretch: E / L.
-func (k constants) paPerM() float64 { return k.modulusPa / k.gaugeM }
+// paPerM is the band stress of one metre of the measured band's stretch: E / L;
+// in another band the same wheel pull makes a stress in the ratio of the net
+// sections.
+func (k constants) paPerM() float64 {
+	if k.otherM2 > 0 {
+		return k.modulusPa / k.gaugeM * k.areaM2 / k.otherM2
+	}
+	return k.modulusPa / k.gaugeM
+}
 
 // pullPerM is the wheel pull of one metre of stretch over both spans, N/m:
-// F = 2 sigma A_b.
-func (k constants) pullPerM() float64 { return 2 * k.areaM2 * k.paPerM() }
+// F = 2 sigma A_b, whichever band it is asked for.
+func (k constants) pullPerM() float64 { return 2 * k.areaM2 * (k.modulusPa / k.gaugeM) }
 
 // figure computes one number from one ramp; NaN where it cannot.
 type figure func(r ramp, k constants) float64

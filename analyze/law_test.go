@@ -52,7 +52,7 @@ func exactRamp(b *bench) ramp {
 
 func TestForceBalanceIsInverted(t *testing.T) {
 	b := newBench(1)
-	k := constants{b.modulusPa, b.gaugeM, b.netM2}
+	k := constants{modulusPa: b.modulusPa, gaugeM: b.gaugeM, areaM2: b.netM2}
 	r := exactRamp(b)
 	got := balanceOf(r, k)
 	near(t, "mu", got.mu(), b.mu, 1e-12)
@@ -74,7 +74,7 @@ func TestFrictionAloneConstantAndAloneProportional(t *testing.T) {
 	for _, c := range []struct{ f0N, mu float64 }{{20, 0}, {0, 0.05}} {
 		b := newBench(1)
 		b.f0N, b.mu = c.f0N, c.mu
-		got := balanceOf(exactRamp(b), constants{b.modulusPa, b.gaugeM, b.netM2})
+		got := balanceOf(exactRamp(b), constants{modulusPa: b.modulusPa, gaugeM: b.gaugeM, areaM2: b.netM2})
 		if math.Abs(got.f0N()-c.f0N) > 1e-8 || math.Abs(got.mu()-c.mu) > 1e-12 {
 			t.Errorf("F0 %v and mu %v, want %v and %v", got.f0N(), got.mu(), c.f0N, c.mu)
 		}
@@ -83,7 +83,7 @@ func TestFrictionAloneConstantAndAloneProportional(t *testing.T) {
 
 func TestZeroErrorMovesWeightAndNothingElse(t *testing.T) {
 	b := newBench(1)
-	k := constants{b.modulusPa, b.gaugeM, b.netM2}
+	k := constants{modulusPa: b.modulusPa, gaugeM: b.gaugeM, areaM2: b.netM2}
 	r := exactRamp(b)
 	for _, offIn := range []float64{-0.0004, 0.0002, 0.001} {
 		shifted := r
@@ -99,7 +99,7 @@ func TestZeroErrorMovesWeightAndNothingElse(t *testing.T) {
 func TestT1AtRoundStresses(t *testing.T) {
 	// The invented T-1 with QW-6, gauge psi rising and falling.
 	b := newBench(1)
-	k := constants{b.modulusPa, b.gaugeM, b.netM2}
+	k := constants{modulusPa: b.modulusPa, gaugeM: b.gaugeM, areaM2: b.netM2}
 	r := exactRamp(b)
 	for _, c := range []struct{ stress, up, down float64 }{
 		{2000, 238, 177}, {6000, 498, 414}, {9500, 724, 621}, {11000, 822, 710},

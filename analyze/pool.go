@@ -16,6 +16,14 @@ func (w *work) pool() error {
 	}
 	w.markPoints()
 	w.timeStd = w.medianTimeStd()
+	w.early = len(w.res.Warnings)
+	w.figures()
+	w.warnings()
+	return nil
+}
+
+// figures works out everything from the fitted ramps.
+func (w *work) figures() {
 	w.res.Rising.Direction, w.res.Falling.Direction = Rising, Falling
 	w.captured(&w.res.Rising)
 	w.captured(&w.res.Falling)
@@ -26,8 +34,6 @@ func (w *work) pool() error {
 	w.widths()
 	w.aim()
 	w.running()
-	w.warnings()
-	return nil
 }
 
 // keepRamps keeps the cycles that have both lines.

@@ -26,6 +26,7 @@ type Setup struct {
 	CountSI       float64           // setting least count
 	SettingStd    float64           // SI, from the instrument's limit; 0 and a warning when not given
 	ExtensionSd   float64           // m, from the instrument's limit; 0 and a warning when not given
+	Bands         []mill.Band       // all on file
 	Overdue       []mill.Instrument // in use, and their check was due before the day
 }
 
@@ -57,7 +58,7 @@ func resolve(in Input) (Setup, error) {
 		NetAreaM2: b.NetAreaM2(), SectionRelStd: assumedSectionStd,
 		ModulusPa: given(b.Modulus.SI, b.Modulus.SI*orElse(b.ModulusStd, assumedModulusStd)),
 		GaugeM:    given(p.Rig.GaugeLength.SI, orElse(p.Rig.GaugeLengthStd.SI, p.Rig.GaugeLength.SI*assumedGaugeStd)),
-		TargetPa:  b.Target.SI, LimitSI: t.SettingLimit.SI, GeometryM2: t.GeometryAreaM2(),
+		TargetPa:  b.Target.SI, LimitSI: t.LimitSI(), GeometryM2: t.GeometryAreaM2(), Bands: p.Bands,
 	}
 	if in.Target.Given() {
 		s.TargetPa = in.Target.SI

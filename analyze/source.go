@@ -37,7 +37,7 @@ func (w *work) systematics() []source {
 	lowSI, highSI, spanM := w.reach()
 	middle, spanSI := (lowSI+highSI)/2, highSI-lowSI
 	limit := "limit of its error / sqrt 3"
-	return []source{
+	return w.ofOther([]source{
 		{name: "modulus of the steel", from: s.ModulusPa.Method, move: func(r ramp, k constants, sign float64) (ramp, constants) {
 			k.modulusPa += sign * s.ModulusPa.System
 			return r, k
@@ -46,7 +46,7 @@ func (w *work) systematics() []source {
 			k.gaugeM += sign * s.GaugeM.System
 			return r, k
 		}},
-		{name: "thickness and net width", from: "assumed 1 %", forces: true, move: func(r ramp, k constants, sign float64) (ramp, constants) {
+		{name: ofSection, from: "assumed 1 %", forces: true, move: func(r ramp, k constants, sign float64) (ramp, constants) {
 			k.areaM2 *= 1 + sign*s.SectionRelStd
 			return r, k
 		}},
@@ -61,7 +61,7 @@ func (w *work) systematics() []source {
 			return r, k
 		}},
 		{name: "time alignment", from: "time between the channels x rate of the setting", move: shiftSetting(w.timeStd, true)},
-	}
+	})
 }
 
 func (w *work) zeroDoubt() string {

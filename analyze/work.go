@@ -31,6 +31,7 @@ type work struct {
 	zeroFrom string
 	marks    zeroMarks // the operator's
 	timeStd  float64   // of the setting, SI, from the time between the channels
+	early    int       // warnings raised before the figures
 }
 
 // leastPairs is fewer than any real ramp has.
@@ -60,7 +61,7 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 		steps = append(steps, w.t[i]-w.t[i-1])
 	}
 	w.pairStepS = estimate.Median(steps)
-	w.k = constants{s.ModulusPa.Value, s.GaugeM.Value, s.NetAreaM2}
+	w.k = constants{modulusPa: s.ModulusPa.Value, gaugeM: s.GaugeM.Value, areaM2: s.NetAreaM2}
 	w.trace = newTrace(set, s.CountSI)
 	w.slack = make([]bool, len(w.t))
 	return w, nil
