@@ -62,7 +62,7 @@ func (r *rehearsal) mechanics() error {
 	start := wheel{weightN: hidden.Weight.SI, slackM: orElse(r.SlackM, 3e-3)}
 	start.chain = newChain(r.Chain, 4*modulus*net/loop)
 	var err error
-	if start.slide, err = r.Law.newContact(hidden.FrictionConstant.SI, hidden.FrictionProportional); err != nil {
+	if start.slide, err = r.Law.newContact(hidden.FrictionConstant.SI+r.MoreF0N, hidden.FrictionProportional+r.MoreMu); err != nil {
 		return err
 	}
 	if start.seals, err = r.Seals.newContact(area); err != nil {
@@ -120,10 +120,10 @@ func (r *rehearsal) pump() error {
 	ramp := d.RatePaS * area / p.bandNM
 	speed := max(p.slackM/time, 10*ramp)
 	flow := area * speed
-	r.oil = oil{Oil: r.Oil, areaM2: area, flowM3S: flow, giveM3P: 0.03 * flow / d.RatePaS}
+	r.oil = oil{Oil: r.Oil, areaM2: area, flowM3S: flow, giveM3P: 0.03 * flow / d.RatePaS * orElse(r.Oil.Give, 1)}
 	r.oil.AirS, r.oil.HoseS = orElse(r.Oil.AirS, 1.5), orElse(r.Oil.HoseS, 4)
 	r.oil.VolumeM3 = orElse(r.Oil.VolumeM3, 6e-4)
-	if r.Oil.HosePart < 0 || r.Oil.HosePart > 0.9 || r.Oil.AirM3 < 0 || r.Oil.LeakPerS < 0 || r.Oil.TeePerS < 0 {
+	if r.Oil.Give < 0 || r.Oil.Give > 10 || r.Oil.HosePart < 0 || r.Oil.HosePart > 0.9 || r.Oil.AirM3 < 0 || r.Oil.LeakPerS < 0 || r.Oil.TeePerS < 0 {
 		return fmt.Errorf("%w: oil side %+v", ErrConfig, r.Oil)
 	}
 	p.dragNsM = 2e-4 * area * d.TopPa / speed

@@ -30,6 +30,9 @@ type Config struct {
 	Vary       Vary
 	AreaFactor float64 // true A* / geometry's; 0 means 1
 
+	MoreF0N float64 // friction on top of the rehearsal table's: constant, N
+	MoreMu  float64 // and proportional to the load
+
 	SectionFactor float64 // true net section of the band / profile's; 0 means 1
 	ModulusFactor float64 // true modulus of the band / profile's; 0 means 1
 

@@ -13,6 +13,7 @@ type Oil struct {
 	LeakPerS  float64 // part of the pressure that leaks out of the cylinder each second while nothing moves; 0 means none
 	CheckTee  bool    // the transducer sits on the pump's side of the check valve
 	TeePerS   float64 // CheckTee: part of the reading lost each second behind the shut valve
+	Give      float64 // give of oil and hoses, times that of stiff ones; 0 means 1
 	VolumeM3  float64 // of oil locked in, for its warmth; 0 means 0.6 litres
 	WarmingKS float64 // K/s of the oil from the start of the drive; 0 means none
 }
