@@ -94,9 +94,10 @@ type Conditions struct {
 // Test is a whole bench test as captured.
 type Test struct {
 	Plan        Plan
-	Points      []Point // in the order captured; undone ones left out
-	ZeroBefore  []Zero  // one for each series, run and repeat
-	ZeroAfter   []Zero  // parallel to ZeroBefore; a missing one is not there
+	Points      []Point    // in the order captured; undone ones left out
+	Reversals   []Reversal // where both instruments were read through a turn; may be empty
+	ZeroBefore  []Zero     // one for each series, run and repeat
+	ZeroAfter   []Zero     // parallel to ZeroBefore; a missing one is not there
 	Instruments Instruments
 	Conditions  Conditions
 	Seal        string            // of the recording that holds the raw readings
