@@ -12,6 +12,7 @@ type RunningBand struct {
 	AfterFallingPa [2]estimate.Estimate // down and -0
 	MiddlePa       estimate.Estimate    // where vibration brings it, pressure maintained
 	Hold           mill.Hold            // as the profile states; "" = not stated, both cases apply
+	Locked         LockedBand           // after it was set rising and the oil shut in
 }
 
 // running works out the band. At the setting reached by rising, friction holds
@@ -28,6 +29,7 @@ func (w *work) running() {
 	}
 	if !w.res.AtRising.SettingSI.Known() || !w.res.AtFalling.SettingSI.Known() {
 		set(estimate.Unknown("the target's settings on both branches are needed"))
+		b.Locked = LockedBand{b.MiddlePa, b.MiddlePa}
 		return
 	}
 	target := w.setup.TargetPa
@@ -45,6 +47,7 @@ func (w *work) running() {
 		return middleStress(r, k, settingFigure(Rising, target)(r, k))
 	}, wholeLoop, "not a finite number")
 	b.MiddlePa = w.within(middle, middle.Value)
+	b.Locked = w.locked(w.res.AtRising.SettingSI.Value)
 }
 
 // within refuses a figure that leads to a stress that the ramps did not go

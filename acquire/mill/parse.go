@@ -95,6 +95,7 @@ func readTensioner(t *table) Tensioner {
 	s.TravelRatio = t.number("travel_ratio", 0.001, 1000)
 	s.LiftedWeight = Force{t.orZero("lifted_weight", DimForce)}
 	s.Hold = oneOf(t, "hold", HoldMaintained, HoldLocked)
+	s.OilVolume = Volume{t.quantity("oil_volume", DimVolume)}
 	t.readDrivetrain(&s)
 	s.Note = t.text("note")
 	if d, ok := t.one("dial"); ok {
@@ -119,7 +120,7 @@ func (t *table) settingLimit(s Tensioner) Quantity {
 // checkHydraulic refuses half a cylinder, and cylinders where none can be.
 func (t *table) checkHydraulic(s Tensioner) {
 	if s.SetBy != SetByPressure && s.SetBy != "" {
-		for _, key := range []string{"cylinders", "bore", "hold"} {
+		for _, key := range []string{"cylinders", "bore", "hold", "oil_volume"} {
 			if t.has(key) {
 				t.faults.add(t.at(key), "take the line out, or write set_by = \"pressure\"",
 					"belongs to a tensioner set by pressure, this one is set by %s", s.SetBy)
@@ -163,6 +164,7 @@ func readBand(t *table) Band {
 		Target:     Pressure{t.quantity("target", DimPressure)},
 		Modulus:    Pressure{t.needQuantity("modulus", `write Young's modulus of the band steel, such as "29.0 Mpsi" or "200 GPa"`, DimPressure)},
 		ModulusStd: t.number("modulus_uncertainty", 0, 0.5),
+		Loop:       Length{t.quantity("loop", DimLength)},
 		Note:       t.text("note"),
 	}
 	if b.GrossWidth.Given() && b.NetWidth.SI >= b.GrossWidth.SI {

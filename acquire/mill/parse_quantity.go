@@ -210,6 +210,8 @@ func largest(d Dim) float64 {
 		return 1e9
 	case DimStiffness:
 		return 1e12
+	case DimVolume:
+		return 10
 	}
 	return 1e6
 }

@@ -52,6 +52,7 @@ type Tensioner struct {
 	TravelRatio  float64     // R = cylinder, screw or spring travel / wheel travel; 0 means 1
 	LiftedWeight Force       // W; optional
 	Hold         Hold        // optional
+	OilVolume    Volume      // shut in behind the locking valve, in cylinders and hose; optional
 	Screw        *Screw      // [tensioner.screw]; optional
 	Turns        *TurnsChain // [tensioner.turns]; optional
 	Spring       *Spring     // [tensioner.spring]; optional
@@ -94,6 +95,7 @@ type Band struct {
 	Target     Pressure // band stress wanted; the user's or the maker's
 	Modulus    Pressure // Young's modulus E
 	ModulusStd float64  // modulus_uncertainty: relative, standard; 0 means 0.01
+	Loop       Length   // all the way round; optional
 	Note       string   // for the report
 }
 

@@ -26,6 +26,7 @@ const (
 	DimTorque    Dim = "torque"    // N.m
 	DimAngle     Dim = "angle"     // rad
 	DimStiffness Dim = "stiffness" // N/m
+	DimVolume    Dim = "volume"    // m3
 )
 
 // Length is a Quantity in metres.
@@ -45,6 +46,9 @@ type Angle struct{ Quantity }
 
 // Stiffness is a Quantity in newtons per metre.
 type Stiffness struct{ Quantity }
+
+// Volume is a Quantity in cubic metres.
+type Volume struct{ Quantity }
 
 // Setting is a Quantity of whatever a tensioner is set by, or an instrument
 // measures: any dimension.

@@ -52,6 +52,10 @@ func units() []Unit {
 		{"N/mm", DimStiffness, 1e3},
 		{"kN/mm", DimStiffness, 1e6},
 		{"lbf/in", DimStiffness, lbfN / inchM},
+		{"m3", DimVolume, 1},
+		{"L", DimVolume, 1e-3},
+		{"mL", DimVolume, 1e-6},
+		{"in3", DimVolume, inchM * inchM * inchM},
 	}
 }
 
@@ -77,6 +81,12 @@ func alias(name string) string {
 		return "lbf ft"
 	case "lbf in", "in lbf", "lb in", "in lb", "in lbs":
 		return "lbf in"
+	case "l", "liter", "litre", "liters", "litres", "dm3":
+		return "L"
+	case "ml", "cm3", "cc":
+		return "mL"
+	case "cu in", "in\u00b3":
+		return "in3"
 	case "lb/in", "lbs/in":
 		return "lbf/in"
 	case "degree", "degrees", "\u00b0":

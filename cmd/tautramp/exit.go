@@ -13,6 +13,7 @@ import (
 	"tautramp/acquire/simrig"
 	"tautramp/analyze"
 	"tautramp/analyze/estimate"
+	"tautramp/analyze/report"
 )
 
 // usageError is a command line that cannot be obeyed.
@@ -64,6 +65,7 @@ func exitTable() []exitRow {
 		{8, "a recording was altered or damaged", "go back to the original file; figures from a damaged one prove nothing", as[*recording.CorruptError]()},
 		{9, "the recording holds too little to compute a result", "record at least one full rise and fall, with both sensors reading; tautramp check FILE shows what is there", is(analyze.ErrTooFewPairs, analyze.ErrNoCycle, pairing.ErrNoSetting, pairing.ErrNoExtension, pairing.ErrNoTime, pairing.ErrNoPairs, estimate.ErrBadValue)},
 		{10, "the target lies outside what was captured", "ramp past the target, never past the maker's limit, or give a --target inside the range", as[*analyze.OutOfRangeError]()},
+		{15, "a card is refused", "a wrong card is worse than none: follow what the line above says", as[*report.CardError]()},
 		{13, "a recording has no end", "analyze uses what is sealed; record again if a ramp is missing", as[*tornError]()},
 		{1, "something that should not happen", "please report it with the recording", func(error) bool { return true }},
 	}

@@ -60,6 +60,7 @@ func verbs() []verb {
 		{"ports", "list the serial ports of this computer", runPorts},
 		{"capture", "record a visit: ramp up and down, then the result", runCapture},
 		{"analyze", "compute the result of a recording again", runAnalyze},
+		{"card", "write the card for the mill from a recording", runCard},
 		{"import", "make a recording from a text file of wire lines", runImport},
 		{"check", "check a recording, a mill.toml or a wire log", runCheck},
 		{"rig", "run a simulated mill to rehearse on", runRig},

@@ -1,0 +1,104 @@
+package report
+
+import (
+	"bytes"
+	"errors"
+	"os/exec"
+	"strings"
+	"testing"
+
+	"tautramp/acquire/mill"
+	"tautramp/analyze"
+	"tautramp/analyze/estimate"
+)
+
+func cardOfT1(t *testing.T, r *analyze.Result, o CardOrder, s mill.System) (string, error) {
+	t.Helper()
+	var b bytes.Buffer
+	err := Card(&b, r, t1Meta(), o, s)
+	return b.String(), err
+}
+
+func TestCardSaysDirectionNumberAndWhatToDoAfterwards(t *testing.T) {
+	text, err := cardOfT1(t, t1(t), CardOrder{Direction: analyze.Rising}, mill.US)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, want := range []string{"Come up to it from below and stop on it", "72", "gauge psi", "gauge bar", "Went past it? Drop to 5", "to this side only", "Never above <b>950 gauge psi",
+		"one face only", "Not checked by a fresh approach", "Void after", "manual"} {
+		if !strings.Contains(text, want) {
+			t.Errorf("the card lacks %q", want)
+		}
+	}
+	for _, no := range []string{"safe", "NaN", "tension<"} {
+		if strings.Contains(text, no) {
+			t.Errorf("the card says %q", no)
+		}
+	}
+	sameBytes(t, "t1-card.html", []byte(text))
+}
+
+func TestCardFromAboveAsksToLoadFirst(t *testing.T) {
+	text, err := cardOfT1(t, t1(t), CardOrder{Direction: analyze.Falling, Hold: mill.HoldLocked}, mill.SI)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, want := range []string{"Come down to it from above", "First load up to", "gauge bar", "a valve that locks the oil in"} {
+		if !strings.Contains(text, want) {
+			t.Errorf("the card lacks %q", want)
+		}
+	}
+}
+
+func TestLockedOilIsToldInsteadOfTheDrift(t *testing.T) {
+	text, err := cardOfT1(t, t1(t), CardOrder{Direction: analyze.Rising, Hold: mill.HoldLocked}, mill.US)
+	if err != nil || !strings.Contains(text, "vibration adds up to") || strings.Contains(text, "to this side only") {
+		t.Errorf("locked oil: %v\n%s", err, text)
+	}
+}
+
+func TestCardIsRefused(t *testing.T) {
+	rising := CardOrder{Direction: analyze.Rising}
+	for _, c := range []struct {
+		name   string
+		order  CardOrder
+		change func(r *analyze.Result)
+		reason string
+	}{
+		{"without a direction", CardOrder{}, nil, "no direction"},
+		{"without a setting", rising, func(r *analyze.Result) { r.AtRising.SettingSI = estimate.Unknown("nobody ramped") }, "nobody ramped"},
+		{"above the limit", rising, func(r *analyze.Result) { r.Setup.LimitSI = 700 * psi }, "above the tensioner's limit"},
+		{"scatter", rising, func(r *analyze.Result) { r.Setup.TargetPa /= 1e4 }, "stray"},
+		{"a falling card that needs more than the limit", CardOrder{Direction: analyze.Falling}, func(r *analyze.Result) { r.Setup.LimitSI = 725 * psi }, "past the tensioner's limit"},
+		{"a fresh approach that differs", CardOrder{Direction: analyze.Rising, Proof: &analyze.Approach{Agreement: analyze.Differs}}, nil, "outside the interval"},
+		{"nothing said of the hold", rising, func(r *analyze.Result) { r.Setup.Tensioner.Hold = "" }, "what holds the pressure"},
+	} {
+		r := t1(t)
+		if c.change != nil {
+			c.change(r)
+		}
+		_, err := cardOfT1(t, r, c.order, mill.US)
+		refused, ok := errors.AsType[*CardError](err)
+		if !ok || !strings.Contains(refused.Reason, c.reason) || refused.Next == "" {
+			t.Errorf("%s: %v", c.name, err)
+		}
+	}
+}
+
+func TestCardPrintsOnOnePage(t *testing.T) {
+	browser, err := exec.LookPath("chromium")
+	if err != nil || testing.Short() {
+		t.Skip("no chromium at hand, or a short run: the printed card is not counted")
+	}
+	m := t1Meta()
+	m.ClockFactor = 60
+	for _, o := range []CardOrder{{Direction: analyze.Rising}, {Direction: analyze.Falling}} {
+		var b bytes.Buffer
+		if err := Card(&b, t1(t), m, o, mill.US); err != nil {
+			t.Fatal(err)
+		}
+		if n := printedPages(t, browser, b.String()); n != 1 {
+			t.Errorf("%s: %d pages", o.Direction, n)
+		}
+	}
+}
