@@ -51,7 +51,11 @@ type Board struct {
 }
 
 func newBoard(r *Rig, index int) (*Board, error) {
-	channels, err := r.conf.channels(index)
+	makes := r.conf.channels
+	if r.bench != nil {
+		makes = r.bench.channels
+	}
+	channels, err := makes(index)
 	if err != nil {
 		return nil, err
 	}
@@ -180,7 +184,7 @@ func (b *Board) window(c *channel) float64 {
 func (b *Board) sample(c *channel, v view) float64 {
 	now := v.t
 	if c.DelayS > 0 {
-		v = b.rig.world.at(now - c.DelayS)
+		v = b.rig.look(now - c.DelayS)
 	}
 	if w := b.window(c); w > 0 && !c.open {
 		c.begin(v)

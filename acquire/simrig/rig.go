@@ -24,8 +24,9 @@ type Rig struct {
 	done   chan struct{}
 
 	mu     sync.Mutex // guards all below and the boards' state
-	world  *world
-	closed bool // done is closed
+	world  *world     // nil for a bench
+	bench  *bench     // nil for a mill
+	closed bool       // done is closed
 }
 
 // New builds a rig at rest. Its errors are ErrConfig, ErrNotRehearsable,
@@ -70,6 +71,12 @@ func (r *Rig) boardRuns(s float64) {
 			return
 		}
 	}
+	if r.bench != nil {
+		if r.bench.begin(s) {
+			r.boards[0].watchSwitch(s)
+		}
+		return
+	}
 	if r.world.drive != nil && !(r.conf.Drive.Repeat && r.world.drive.over()) {
 		return
 	}
@@ -92,14 +99,39 @@ func (r *Rig) advance(toS float64) {
 		if first == nil || first.dueS > toS {
 			break
 		}
-		r.world.advance(first.dueS)
-		first.dueS = first.fire(r.world.at(first.dueS))
+		r.pass(first.dueS)
+		first.dueS = first.fire(r.look(first.dueS))
 	}
-	r.world.advance(toS)
-	if d := r.world.drive; d != nil && d.over() && !r.closed {
+	r.pass(toS)
+	if r.over() && !r.closed {
 		r.closed = true
 		close(r.done)
 	}
+}
+
+// pass lets time go by for what the boards measure.
+func (r *Rig) pass(s float64) {
+	if r.bench != nil {
+		r.bench.advance(s)
+		return
+	}
+	r.world.advance(s)
+}
+
+// look is what there is to measure at an instant.
+func (r *Rig) look(s float64) view {
+	if r.bench != nil {
+		return r.bench.at(s)
+	}
+	return r.world.at(s)
+}
+
+// over tells whether the drive, or the operator's work, is done.
+func (r *Rig) over() bool {
+	if r.bench != nil {
+		return r.bench.begun && r.bench.hand.over()
+	}
+	return r.world.drive != nil && r.world.drive.over()
 }
 
 // logTailS is how long a log goes on after its drive has ended, s.
@@ -108,10 +140,10 @@ const logTailS = 2
 // WriteLog runs the whole drive flat out, without a clock, and writes what one
 // board would have put on a memory card. The rig itself is left as it is, so
 // the same text comes each time. A rig of two boards or with a drive that
-// never ends has no such log: ErrConfig.
+// never ends has no such log: ErrConfig; nor has a bench.
 func (r *Rig) WriteLog(w io.Writer) error {
-	if len(r.boards) != 1 || r.conf.Drive.Shape == Still {
-		return fmt.Errorf("%w: a log needs one board and a drive that ends", ErrConfig)
+	if r.bench != nil || len(r.boards) != 1 || r.conf.Drive.Shape == Still {
+		return fmt.Errorf("%w: a log needs a mill, one board and a drive that ends", ErrConfig)
 	}
 	fresh, err := New(r.conf.given)
 	if err != nil {
@@ -140,7 +172,7 @@ type Moment struct {
 // Trace runs the drive flat out and tells what really happened, every so many
 // seconds. It takes nothing from the boards.
 func (r *Rig) Trace(everyS float64) ([]Moment, error) {
-	if !(everyS >= leastStepS) || r.conf.Drive.Shape == Still {
+	if r.bench != nil || !(everyS >= leastStepS) || r.conf.Drive.Shape == Still {
 		return nil, fmt.Errorf("%w: a trace every %g s of drive shape %q", ErrConfig, everyS, r.conf.Drive.Shape)
 	}
 	return newWorld(r.conf).trace(everyS), nil

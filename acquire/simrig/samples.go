@@ -27,8 +27,8 @@ type Sample struct {
 // same counts as WriteLog's, for a fraction of the time. The rig itself is left as it
 // is. A drive that never ends is ErrConfig.
 func (r *Rig) Samples() ([]Samples, error) {
-	if r.conf.Drive.Shape == Still {
-		return nil, fmt.Errorf("%w: a drive that never ends has no end of its samples", ErrConfig)
+	if r.bench != nil || r.conf.Drive.Shape == Still {
+		return nil, fmt.Errorf("%w: a bench, or a drive that never ends, has no end of its samples", ErrConfig)
 	}
 	fresh, err := New(r.conf.given)
 	if err != nil {

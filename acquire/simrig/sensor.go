@@ -54,6 +54,7 @@ const (
 	streamNoise
 	streamVary
 	streamScatter
+	streamBench
 )
 
 func newRand(seed uint64, stream, index int) *rand.Rand {
@@ -72,6 +73,8 @@ type view struct {
 	springM      float64
 	extensionM   [2]float64 // of the first and the second indicator
 	extensionSum [2]float64 // m s: integrals since the rig was made
+	referenceSI  float64    // of a bench: what is true
+	testedSI     float64    // and what the tested instrument shows
 }
 
 // channel is a sensor at work on a board.

@@ -42,9 +42,10 @@ func rooms() map[string][]string {
 		"analyze":                {"acquire/mill", "acquire/pairing", "analyze/estimate"},
 		"analyze/gauge":          {"acquire/mill", "acquire/pairing", "analyze/estimate"},
 		"analyze/report":         {"acquire/mill", "analyze", "analyze/estimate", "analyze/gauge", gonum, plot},
+		"cmd/tautramp/station":   {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze/estimate", "analyze/gauge"},
 		"cmd/tautramp/visit":     {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze", "analyze/estimate"},
 		"cmd/tautramp": {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "acquire/port", "acquire/simrig",
-			"analyze", "analyze/estimate", "analyze/gauge", "analyze/report", "cmd/tautramp/visit", "github.com/spf13/pflag", sys},
+			"analyze", "analyze/estimate", "analyze/gauge", "analyze/report", "cmd/tautramp/station", "cmd/tautramp/visit", "github.com/spf13/pflag", sys},
 	}
 }
 
