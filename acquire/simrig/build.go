@@ -18,12 +18,27 @@ func (r *rehearsal) find() (err error) {
 	if r.band, err = r.Profile.FindBand(r.Band); err != nil {
 		return err
 	}
-	name := r.tensioner.Name
-	if r.tensioner.SetBy != mill.SetByPressure {
-		return fmt.Errorf("%w: %s is set by %s, the rehearsal rig knows pressure only; name another", ErrNotRehearsable, name, r.tensioner.SetBy)
-	}
 	if r.tensioner.Rehearsal == nil {
-		return fmt.Errorf("%w: add a [tensioner.rehearsal] table below %s in mill.toml", ErrNotRehearsable, name)
+		return fmt.Errorf("%w: add a [tensioner.rehearsal] table below %s in mill.toml", ErrNotRehearsable, r.tensioner.Name)
+	}
+	return nil
+}
+
+// byOil tells whether oil lifts the wheel; else a screw does.
+func (r *rehearsal) byOil() bool { return r.tensioner.SetBy == mill.SetByPressure }
+
+// measure is a length, area or the like that must be there.
+type measure struct {
+	name string
+	si   float64
+}
+
+// must refuses a measure that is missing.
+func (r *rehearsal) must(list ...measure) error {
+	for _, m := range list {
+		if !(m.si > 0) || math.IsInf(m.si, 0) {
+			return fmt.Errorf("%w: %s with %s: the %s is %g; give it in mill.toml", ErrConfig, r.tensioner.Name, r.band.Name, m.name, m.si)
+		}
 	}
 	return nil
 }
@@ -37,16 +52,12 @@ func (r *rehearsal) mechanics() error {
 	net, loop := r.band.NetAreaM2()*orElse(r.SectionFactor, 1), hidden.BandLoop.SI
 	modulus := r.band.Modulus.SI * orElse(r.ModulusFactor, 1)
 	length := r.Profile.Rig.GaugeLength.SI * orElse(r.Stretch.LengthFactor, 1)
-	for _, must := range []struct {
-		name string
-		si   float64
-	}{
-		{"cylinder area", area}, {"net section of the band", net}, {"length of the band", loop},
-		{"modulus of the band", modulus}, {"gauge length", length},
-	} {
-		if !(must.si > 0) || math.IsInf(must.si, 0) {
-			return fmt.Errorf("%w: %s with %s: the %s is %g; give it in mill.toml", ErrConfig, r.tensioner.Name, r.band.Name, must.name, must.si)
-		}
+	if err := r.must(measure{"net section of the band", net}, measure{"length of the band", loop},
+		measure{"modulus of the band", modulus}, measure{"gauge length", length}); err != nil {
+		return err
+	}
+	if err := r.must(measure{"cylinder area", area}); err != nil && r.byOil() {
+		return err
 	}
 	r.heat = newHeat(r.Heat, loop)
 	for i := range r.gauges {
@@ -61,25 +72,38 @@ func (r *rehearsal) mechanics() error {
 	}
 	start := wheel{weightN: hidden.Weight.SI, slackM: orElse(r.SlackM, 3e-3)}
 	start.chain = newChain(r.Chain, 4*modulus*net/loop)
+	if !r.byOil() {
+		start.chain.FrameNM = orElse(r.Chain.FrameNM, hidden.GiveStiffness.SI)
+	}
 	var err error
 	if start.slide, err = r.Law.newContact(hidden.FrictionConstant.SI+r.MoreF0N, hidden.FrictionProportional+r.MoreMu); err != nil {
 		return err
 	}
-	if start.seals, err = r.Seals.newContact(area); err != nil {
+	if start.seals, err = r.Seals.newContact(); err != nil {
 		return err
 	}
 	r.start = start
 	r.truth = Truth{
-		F0N: start.slide.f0N + start.seals.f0N, Mu: start.slide.mu, SealPart: start.seals.mu, WeightN: hidden.Weight.SI, AreaM2: area,
+		SetBy: r.tensioner.SetBy,
+		F0N:   start.slide.f0N + start.seals.f0N, Mu: start.slide.mu, SealPart: start.seals.mu, WeightN: hidden.Weight.SI, AreaM2: area,
 		ModulusPa: modulus, GaugeM: length, NetAreaM2: net,
 	}
-	return nil
+	if r.byOil() {
+		return nil
+	}
+	return r.turning()
 }
 
 // wheel is a wheel at rest on its stop, with nothing of what has happened yet.
 func (r *rehearsal) wheel() wheel {
 	w := r.start
 	w.travelM = -w.slackM
+	if !r.byOil() {
+		s := r.screw
+		s.wheelM = w.travelM
+		w.actuator = &s
+		return w
+	}
 	o := r.oil
 	o.pressurePa, o.gaugePa = r.Drive.LowPa, r.Drive.LowPa
 	w.actuator = &o
@@ -96,7 +120,7 @@ type Seals struct {
 }
 
 // newContact makes their friction. Its load is the push of the oil.
-func (s Seals) newContact(areaM2 float64) (contact, error) {
+func (s Seals) newContact() (contact, error) {
 	return Law{PreslidingM: orElse(s.PreslidingM, 6e-5), RestRatio: s.RestRatio, RestS: orElse(s.RestS, 60),
 		RenewM: 2e-4}.newContact(s.ConstantN, s.Part)
 }
@@ -106,19 +130,30 @@ func newChain(c Chain, bandNM float64) chain {
 	return chain{Chain: c, bandNM: bandNM}
 }
 
+// push sizes what pushes the wheel.
+func (r *rehearsal) push() error {
+	time := orElse(r.SlackTimeS, 8)
+	if !(r.start.slackM > 0) || !(time > 0) {
+		return fmt.Errorf("%w: a slack of %g m crossed in %g s", ErrConfig, r.start.slackM, time)
+	}
+	if r.byOil() {
+		return r.pump(time)
+	}
+	// As for the oil: a drag that does not show.
+	speed := r.Drive.TurnRadS * r.screw.leadM / (2 * math.Pi)
+	r.start.dragNsM = 1e-4 * r.truth.PullN(r.workStressPa()) / speed
+	return nil
+}
+
 // pump sizes the pump so that the wheel crosses the slack at a walk while it
 // never holds back the ramp, the oil so stiff that a stroke soon makes good a
 // sag, and the drag so that neither shows: 0.02 % of the
 // top pull at the slack's speed, and far less on the ramp.
-func (r *rehearsal) pump() error {
+func (r *rehearsal) pump(slackS float64) error {
 	p, d := &r.start, r.Drive
-	time := orElse(r.SlackTimeS, 8)
-	if !(p.slackM > 0) || !(time > 0) {
-		return fmt.Errorf("%w: a slack of %g m crossed in %g s", ErrConfig, p.slackM, time)
-	}
 	area := r.truth.AreaM2
 	ramp := d.RatePaS * area / p.bandNM
-	speed := max(p.slackM/time, 10*ramp)
+	speed := max(p.slackM/slackS, 10*ramp)
 	flow := area * speed
 	r.oil = oil{Oil: r.Oil, areaM2: area, flowM3S: flow, giveM3P: 0.03 * flow / d.RatePaS * orElse(r.Oil.Give, 1)}
 	r.oil.AirS, r.oil.HoseS = orElse(r.Oil.AirS, 1.5), orElse(r.Oil.HoseS, 4)

@@ -10,7 +10,7 @@ import (
 
 // Why a profile or a drive is refused, beside ErrConfig.
 var (
-	ErrNotRehearsable = errors.New("this tensioner cannot be rehearsed") // not set by pressure, or no rehearsal table
+	ErrNotRehearsable = errors.New("this tensioner cannot be rehearsed") // no rehearsal table
 	ErrOverLimit      = errors.New("the drive goes past the tensioner's setting limit")
 )
 
@@ -25,6 +25,7 @@ type Config struct {
 	Law        Law
 	Seals      Seals
 	Oil        Oil
+	Screw      Screw
 	Chain      Chain
 	Heat       Heat
 	Vary       Vary
@@ -42,6 +43,9 @@ type Config struct {
 	Drive      Drive
 
 	Pressure       Sensor // default: 50 a second, 0.05 psi counts, 1 psi of noise, to 1,500 psi
+	Torque         Sensor // set by torque. Default: 50 a second, 0.01 N m counts, 0.05 N m of noise, +-200 N m
+	Turns          Sensor // all with a screw. Default: 50 a second, 0.0001 turn counts, 0.0002 turn of noise
+	Spring         Sensor // set by spring length. Default: 50 a second, 0.01 mm counts, 0.005 mm of noise
 	Indicator      Sensor // default: 10 a second, 0.00005 in counts, 0.1 um of noise, +-0.5 in
 	Temperature    Sensor // default: 1 a second, 0.1 degC counts
 	Thermometer    bool   // fit the temperature sensor of the band, on the first board
@@ -90,6 +94,7 @@ type rehearsal struct {
 	tensioner mill.Tensioner
 	band      mill.Band
 	start     wheel // without what pushes it
+	screw     screw
 	oil       oil
 	heat      heat
 	gauges    [2]gauge
@@ -101,7 +106,7 @@ type rehearsal struct {
 // resolve fills in what was left to default, and refuses what cannot be.
 func resolve(c Config) (rehearsal, error) {
 	r := rehearsal{Config: c, given: c}
-	for _, step := range []func() error{r.find, r.mechanics, r.operator, r.pump, r.vary, r.layout} {
+	for _, step := range []func() error{r.find, r.mechanics, r.operator, r.push, r.vary, r.layout} {
 		if err := step(); err != nil {
 			return rehearsal{}, err
 		}
@@ -111,6 +116,9 @@ func resolve(c Config) (rehearsal, error) {
 
 // operator fills in the drive.
 func (r *rehearsal) operator() error {
+	if !r.byOil() {
+		return r.turned()
+	}
 	d, limit := &r.Drive, r.tensioner.SettingLimit.SI
 	d.TopPa = orElse(d.TopPa, r.defaultTopPa(limit))
 	d.ExercisePa = min(d.TopPa, orElse(d.ExercisePa, r.defaultExercisePa()))

@@ -123,7 +123,7 @@ func TestSealsRoundTheReversal(t *testing.T) {
 			}
 		}
 		tr := r.Truth()
-		half := trace[top].PressurePa - (tr.RisingPa(tr.stressPa(trace[top].PullN)) - tr.FallingPa(tr.stressPa(trace[top].PullN)))*0.9
+		half := trace[top].PressurePa - (tr.RisingPa(tr.stressPa(trace[top].PullN))-tr.FallingPa(tr.stressPa(trace[top].PullN)))*0.9
 		for _, m := range trace[top:] {
 			if m.PressurePa < half {
 				return trace[top].TravelM - m.TravelM

@@ -1,5 +1,5 @@
-// Package simrig is a simulated rig: a pressure-set tensioner, its band and
-// the sensors on it, integrated over time, and boards that speak the device
+// Package simrig is a simulated rig: a tensioner with oil or a screw, its band
+// and the sensors on it, integrated over time, and boards that speak the device
 // side of the wire. Start with New; then Serve each of the Boards, WriteLog
 // for the text of a memory card, or Samples for the readings without a wire.
 //
@@ -167,6 +167,9 @@ type Moment struct {
 	PullN      float64 // F, both spans
 	ExtensionM float64 // between the clamps, true
 	TravelM    float64 // of the wheel; 0 where the band is just taut
+	TorqueNM   float64 // of the hand at the screw
+	TurnRad    float64 // of the hand
+	SqueezeM   float64 // of the springs
 }
 
 // Trace runs the drive flat out and tells what really happened, every so many

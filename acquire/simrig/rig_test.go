@@ -121,6 +121,10 @@ func TestRigRefusesWhatItCannotBe(t *testing.T) {
 	noLoop.Tensioners[0].Rehearsal.BandLoop.SI = 0
 	thin := exampleProfile(t)
 	thin.Bands[0].Thickness.SI = 0
+	noLead := exampleProfile(t)
+	noLead.Tensioners[1].Screw, noLead.Tensioners[1].Turns = nil, nil
+	noTarget := exampleProfile(t)
+	noTarget.Bands[2].Target = mill.Pressure{}
 	good := exampleProfile(t)
 	base := Config{Profile: good, Tensioner: "T-1", Band: "QW-6"}
 	with := func(edit func(*Config)) Config {
@@ -134,7 +138,9 @@ func TestRigRefusesWhatItCannotBe(t *testing.T) {
 		says   string
 	}{
 		"no profile":       {Config{}, ErrConfig, "no profile"},
-		"torque-set":       {with(func(c *Config) { c.Tensioner = "T-2" }), ErrNotRehearsable, "T-2"},
+		"no lead":          {with(func(c *Config) { c.Profile, c.Tensioner, c.Band = noLead, "T-2", "QN-17" }), ErrConfig, "lead of the screw"},
+		"no target":        {with(func(c *Config) { c.Profile, c.Tensioner, c.Band = noTarget, "T-2", "QN-17" }), ErrConfig, "target"},
+		"over the torque":  {with(func(c *Config) { c.Tensioner, c.Band, c.Drive.TopSI = "T-2", "QN-17", 60 }), ErrOverLimit, "limit"},
 		"unknown name":     {with(func(c *Config) { c.Tensioner = "T-9" }), mill.ErrUnknownName, "T-9"},
 		"unknown band":     {with(func(c *Config) { c.Band = "QZ" }), mill.ErrUnknownName, "QZ"},
 		"no table":         {Config{Profile: noTable, Tensioner: "T-1", Band: "QW-6"}, ErrNotRehearsable, "[tensioner.rehearsal]"},

@@ -28,10 +28,22 @@ func (r *rehearsal) sensors() error {
 	r.Temperature.fill(Sensor{
 		Count: Count{"Cel", 1, -1}, PerSecond: 1, LowSI: iceK - 40, HighSI: iceK + 85, NoiseSI: 0.03,
 	})
-	r.Pressure.WindowS, r.Temperature.WindowS = 0, 0
+	turning := mill.MeasuresSetting
+	r.Torque.fill(Sensor{
+		Count: Count{"N.m", 1, -2}, PerSecond: 50, LowSI: -200, HighSI: 200, NoiseSI: 0.05, Serial: r.serialOf(turning, mill.DimTorque),
+	})
+	r.Turns.fill(Sensor{
+		Count: Count{"circ", 1, -4}, PerSecond: 50, LowSI: -200 * 2 * math.Pi, HighSI: 200 * 2 * math.Pi, NoiseSI: 2e-4 * 2 * math.Pi, Serial: r.serialOf(turning, mill.DimAngle),
+	})
+	r.Spring.fill(Sensor{
+		Count: Count{"mm", 1, -2}, PerSecond: 50, LowSI: -0.001, HighSI: 1, NoiseSI: 5e-6, Serial: r.serialOf(turning, mill.DimLength),
+	})
+	for _, s := range []*Sensor{&r.Pressure, &r.Torque, &r.Turns, &r.Spring, &r.Temperature} {
+		s.WindowS = 0
+	}
 	r.Indicator.OffsetSI += 2e-4 + 4e-4*newRand(r.Seed, streamZero, 0).Float64()
 	r.truth.ZeroM, r.truth.ZeroPa = r.Indicator.OffsetSI, r.Pressure.OffsetSI
-	for _, s := range []*Sensor{&r.Pressure, &r.Indicator, &r.Temperature} {
+	for _, s := range []*Sensor{&r.Pressure, &r.Torque, &r.Turns, &r.Spring, &r.Indicator, &r.Temperature} {
 		if s.PerSecond > 1000 || !(s.PerSecond > 0) || s.Span <= 0 {
 			return fmt.Errorf("%w: a sensor with %g samples a second and span %g; up to 1000, above 0", ErrConfig, s.PerSecond, s.Span)
 		}
@@ -86,7 +98,7 @@ func (r *rehearsal) channels(board int) ([]*channel, error) {
 	}
 	last := len(r.Boards) - 1
 	if board == 0 {
-		add(0, protocol.Pressure, r.Pressure, func(v view) float64 { return v.pressurePa }, nil)
+		r.settings(add)
 	}
 	if board == last {
 		r.indicators(add)
@@ -112,6 +124,24 @@ func (r *rehearsal) channels(board int) ([]*channel, error) {
 		}
 	}
 	return list, nil
+}
+
+// settings adds what the tensioner is set by, and the turns beside a torque or
+// a spring.
+func (r *rehearsal) settings(add func(int, protocol.Quantity, Sensor, func(view) float64, func(view) float64)) {
+	turns := func(v view) float64 { return v.angleRad }
+	switch r.tensioner.SetBy {
+	case mill.SetByTorque:
+		add(0, protocol.Torque, r.Torque, func(v view) float64 { return v.torqueNM }, nil)
+		add(5, protocol.Angle, r.Turns, turns, nil)
+	case mill.SetByTurns:
+		add(0, protocol.Angle, r.Turns, turns, nil)
+	case mill.SetBySpring:
+		add(0, protocol.Spring, r.Spring, func(v view) float64 { return r.springLengthM(v.springM) }, nil)
+		add(5, protocol.Angle, r.Turns, turns, nil)
+	default:
+		add(0, protocol.Pressure, r.Pressure, func(v view) float64 { return v.pressurePa }, nil)
+	}
 }
 
 // indicatorCount is how many indicators sit on the band.

@@ -1,6 +1,10 @@
 package simrig
 
-import "math"
+import (
+	"math"
+
+	"tautramp/acquire/mill"
+)
 
 // Steps of the integration, s: as long as nothing sudden happens, and never
 // shorter than the least. All that follows the travel is exact over a step.
@@ -72,7 +76,7 @@ func (w *world) trace(everyS float64) (list []Moment) {
 		t := float64(i) * everyS
 		w.advance(t)
 		v := w.at(t)
-		list = append(list, Moment{v.driveS, v.pressurePa, v.pullN, v.extensionM[0], v.travelM})
+		list = append(list, Moment{v.driveS, v.pressurePa, v.pullN, v.extensionM[0], v.travelM, v.torqueNM, v.angleRad, v.springM})
 	}
 	return list
 }
@@ -90,8 +94,14 @@ func (w *world) sudden() float64 {
 
 // seen is what the operator looks at.
 func (w *world) seen() seen {
-	if o, ok := w.wheel.actuator.(*oil); ok {
-		return seen{hand: o.pressurePa}
+	switch a := w.wheel.actuator.(type) {
+	case *oil:
+		return seen{hand: a.pressurePa}
+	case *screw:
+		if w.conf.tensioner.SetBy == mill.SetBySpring {
+			return seen{hand: a.handRad, setting: a.squeezeM}
+		}
+		return seen{hand: a.handRad, setting: a.torqueNM}
 	}
 	return seen{}
 }

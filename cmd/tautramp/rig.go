@@ -79,8 +79,8 @@ func (o *rigOptions) add(fs *pflag.FlagSet) {
 	fs.StringVar(&o.law, "friction", string(simrig.Dahl), "friction law of the wheel: "+join(simrig.Laws()))
 	fs.IntVar(&o.exercise, "exercise", 1, "exercise cycles first, to half of the top")
 	fs.IntVar(&o.ramps, "ramps", 3, "ramps after them")
-	fs.StringVar(&o.rate, "rate", "", "pressure a second, such as \"8 psi\"")
-	fs.StringVar(&o.top, "top", "", "pressure at the top of a ramp, such as \"860 psi\"")
+	fs.StringVar(&o.rate, "rate", "", "pressure a second, such as \"8 psi\"; of a screw the turn, such as \"10 deg\"")
+	fs.StringVar(&o.top, "top", "", "setting at the top of a ramp, such as \"860 psi\" or \"20 N m\"")
 	fs.StringVar(&o.leastCount, "least-count", "", "of the indicator, such as \"0.0005 in\" (default 0.00005 in)")
 	fs.Float64Var(&o.ppm, "ppm", 300, "parts per million by which the second board's clock runs fast")
 	fs.Uint64Var(&o.seed, "seed", 1, "of all noise")
@@ -123,18 +123,8 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 	if o.boards == 2 {
 		c.Boards[1].TickPPM = o.ppm
 	}
-	for _, q := range []struct {
-		flag, text string
-		to         *float64
-	}{{"--rate", o.rate, &c.Drive.RatePaS}, {"--top", o.top, &c.Drive.TopPa}} {
-		if q.text == "" {
-			continue
-		}
-		pressure, err := mill.ParseQuantity(q.text, mill.DimPressure)
-		if err != nil {
-			return nil, &usageError{q.flag + ": " + err.Error()}
-		}
-		*q.to = pressure.SI
+	if err := o.pace(s.tensioner, &c.Drive); err != nil {
+		return nil, err
 	}
 	if o.leastCount != "" {
 		if c.Indicator.Count, err = parseLeastCount(o.leastCount); err != nil {
@@ -146,6 +136,32 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 		err = &usageError{err.Error()}
 	}
 	return rig, err
+}
+
+// pace takes rate and top in the quantities that the tensioner is worked by.
+func (o *rigOptions) pace(t mill.Tensioner, d *simrig.Drive) error {
+	rate, top, rateDim := &d.RatePaS, &d.TopPa, mill.DimPressure
+	if t.SetBy != mill.SetByPressure {
+		rate, top, rateDim = &d.TurnRadS, &d.TopSI, mill.DimAngle
+	}
+	for _, q := range []struct {
+		flag, text string
+		dim        mill.Dim
+		to         *float64
+	}{{"--rate", o.rate, rateDim, rate}, {"--top", o.top, t.SettingDim(), top}} {
+		if q.text == "" {
+			continue
+		}
+		quantity, err := mill.ParseQuantity(q.text, q.dim)
+		if err != nil {
+			return &usageError{q.flag + ": " + err.Error()}
+		}
+		*q.to = quantity.SI
+	}
+	if d.TopSI != 0 {
+		d.TopSI = t.Rising(d.TopSI)
+	}
+	return nil
 }
 
 // noneIfZero turns the command line's "0 = none" into the rig's "negative =
