@@ -64,6 +64,9 @@ func readProfile(t *table) *Profile {
 	for _, e := range t.list("gauge_limit") {
 		p.GaugeLimits = append(p.GaugeLimits, readGaugeLimit(e))
 	}
+	if m, ok := t.one("thresholds"); ok {
+		p.OwnThresholds = readThresholds(m)
+	}
 	t.needTable("mill", "write [mill] with its name")
 	t.needTable("tensioner", "write at least one [[tensioner]]")
 	t.needTable("band", "write at least one [[band]]")
@@ -95,6 +98,7 @@ func readTensioner(t *table) Tensioner {
 	s.TravelRatio = t.number("travel_ratio", 0.001, 1000)
 	s.LiftedWeight = Force{t.orZero("lifted_weight", DimForce)}
 	s.Hold = oneOf(t, "hold", HoldMaintained, HoldLocked)
+	s.OffLoadDrag = Pressure{t.quantity("off_load_drag", DimPressure)}
 	s.OilVolume = Volume{t.quantity("oil_volume", DimVolume)}
 	t.readDrivetrain(&s)
 	s.Note = t.text("note")

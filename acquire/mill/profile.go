@@ -14,6 +14,8 @@ type Profile struct {
 	Rig         Rig
 	Instruments []Instrument // [[instrument]]
 	GaugeLimits []GaugeLimit // [[gauge_limit]]
+
+	OwnThresholds map[ThresholdKey]float64 // [thresholds]: limits of the findings that this mill sets itself
 }
 
 // Mill is whose tensioners these are.
@@ -52,6 +54,7 @@ type Tensioner struct {
 	TravelRatio  float64     // R = cylinder, screw or spring travel / wheel travel; 0 means 1
 	LiftedWeight Force       // W; optional
 	Hold         Hold        // optional
+	OffLoadDrag  Pressure    // setting that just moves the cylinders with nothing on them, by the maker's test; optional
 	OilVolume    Volume      // shut in behind the locking valve, in cylinders and hose; optional
 	Screw        *Screw      // [tensioner.screw]; optional
 	Turns        *TurnsChain // [tensioner.turns]; optional

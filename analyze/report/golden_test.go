@@ -71,7 +71,7 @@ func TestPicturesAreAsLastLookedAt(t *testing.T) {
 	}
 	r := t1(t)
 	for _, p := range Plots() {
-		sameBytes(t, "t1-"+string(p)+".svg", written(t, func(b *bytes.Buffer) error { return SVG(b, r, p, mill.US) }))
+		sameBytes(t, "t1-"+string(p)+".svg", written(t, func(b *bytes.Buffer) error { return SVG(b, r, Meta{}, p, mill.US) }))
 	}
 }
 

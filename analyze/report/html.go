@@ -38,7 +38,7 @@ func HTML(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	sh := newSheet(r, m, s)
 	p := page{
 		sheet: sh, Style: template.CSS(sheetCSS), Name: m.base(),
-		Loop:      inline(loopChart(r, sh.Units), wide(), "loop"),
+		Loop:      inline(loopChart(r, m, sh.Units), wide(), "loop"),
 		Width:     inline(widthChart(r, sh.Units), narrow(), "width"),
 		Residuals: inline(residualChart(r, sh.Units), narrow(), "residuals"),
 		Note:      cellNote(sh.Table.Rows),

@@ -56,6 +56,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 		{"half_width_ratio", estimateJSON(r.WidthRatio)},
 		{"grade", gradeJSON(r.Grade)},
 		{"grade_says", v.Says},
+		{"findings", foundJSON(m.Found, by)},
 		{"running_band", runningJSON(r.Running)},
 		{"table", tableJSON(r, by)},
 		{"warnings", each(allWarnings(r, m), func(w analyze.Warning) object {

@@ -93,7 +93,7 @@ func TestTextInPicturesNeitherClipsNorCrosses(t *testing.T) {
 	for name, r := range resultsToDraw(t) {
 		for _, s := range []mill.System{mill.US, mill.SI}[:systemsTested()] {
 			for _, p := range Plots() {
-				c, err := chartOf(r, p, s)
+				c, err := chartOf(r, Meta{}, p, s)
 				if err != nil {
 					t.Fatal(err)
 				}

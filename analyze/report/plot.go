@@ -50,8 +50,8 @@ const dotsPerInch = 150
 // SVG writes a plot as one SVG picture. Its letters ask for a list of common
 // sans fonts; the layout leaves them 10 % of slack. Errors are the writer's, or
 // that the plot is none of Plots.
-func SVG(w io.Writer, r *analyze.Result, p Plot, s mill.System) error {
-	c, err := chartOf(r, p, s)
+func SVG(w io.Writer, r *analyze.Result, m Meta, p Plot, s mill.System) error {
+	c, err := chartOf(r, m, p, s)
 	if err != nil {
 		return err
 	}
@@ -60,8 +60,8 @@ func SVG(w io.Writer, r *analyze.Result, p Plot, s mill.System) error {
 }
 
 // PNG writes the same plot as pixels. Errors as for SVG.
-func PNG(w io.Writer, r *analyze.Result, p Plot, s mill.System) error {
-	c, err := chartOf(r, p, s)
+func PNG(w io.Writer, r *analyze.Result, m Meta, p Plot, s mill.System) error {
+	c, err := chartOf(r, m, p, s)
 	if err != nil {
 		return err
 	}
@@ -85,12 +85,12 @@ type chart struct {
 	plotters func(f format) []plot.Plotter // from back to front
 }
 
-func chartOf(r *analyze.Result, p Plot, s mill.System) (chart, error) {
+func chartOf(r *analyze.Result, m Meta, p Plot, s mill.System) (chart, error) {
 	u := unitsFor(r.Setup.Tensioner, s)
 	var c chart
 	switch p {
 	case PlotLoop:
-		c = loopChart(r, u)
+		c = loopChart(r, m, u)
 	case PlotWidth:
 		c = widthChart(r, u)
 	case PlotResiduals:

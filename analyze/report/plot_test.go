@@ -66,7 +66,7 @@ func TestAllPathsTogetherStayBounded(t *testing.T) {
 func TestPicturesAreSmallWholeAndNamed(t *testing.T) {
 	r := t1(t)
 	for _, p := range Plots() {
-		out := written(t, func(b *bytes.Buffer) error { return SVG(b, r, p, mill.SI) })
+		out := written(t, func(b *bytes.Buffer) error { return SVG(b, r, Meta{}, p, mill.SI) })
 		if len(out) > 160_000 {
 			t.Errorf("%s: %d bytes", p, len(out))
 		}
@@ -89,7 +89,7 @@ func TestPicturesAreSmallWholeAndNamed(t *testing.T) {
 }
 
 func TestPixelsShowBothDirections(t *testing.T) {
-	img, err := png.Decode(bytes.NewReader(written(t, func(b *bytes.Buffer) error { return PNG(b, t1(t), PlotLoop, mill.US) })))
+	img, err := png.Decode(bytes.NewReader(written(t, func(b *bytes.Buffer) error { return PNG(b, t1(t), Meta{}, PlotLoop, mill.US) })))
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -117,11 +117,11 @@ func TestNoPlotOfThatName(t *testing.T) {
 	if Plot("pie").Known() {
 		t.Error("a pie is known")
 	}
-	err := SVG(io.Discard, t1(t), "pie", mill.US)
+	err := SVG(io.Discard, t1(t), Meta{}, "pie", mill.US)
 	if err == nil || !strings.Contains(err.Error(), "half-width") {
 		t.Errorf("%v: want the names that exist", err)
 	}
-	if PNG(io.Discard, t1(t), "", mill.US) == nil {
+	if PNG(io.Discard, t1(t), Meta{}, "", mill.US) == nil {
 		t.Error("no name, and no error")
 	}
 }
@@ -129,7 +129,7 @@ func TestNoPlotOfThatName(t *testing.T) {
 func TestLimitFarOffIsSaidNotDrawn(t *testing.T) {
 	r := t1(t)
 	r.Setup.LimitSI = 3000 * psi
-	out := string(written(t, func(b *bytes.Buffer) error { return SVG(b, r, PlotLoop, mill.US) }))
+	out := string(written(t, func(b *bytes.Buffer) error { return SVG(b, r, Meta{}, PlotLoop, mill.US) }))
 	if !strings.Contains(out, "limit 3,000 gauge psi (off to the right)") {
 		t.Error("the limit off the picture is not said")
 	}
@@ -137,11 +137,11 @@ func TestLimitFarOffIsSaidNotDrawn(t *testing.T) {
 
 func TestWithoutZeroTheLoopShowsTheStretch(t *testing.T) {
 	r := withoutZero(t)
-	out := string(written(t, func(b *bytes.Buffer) error { return SVG(b, r, PlotLoop, mill.US) }))
+	out := string(written(t, func(b *bytes.Buffer) error { return SVG(b, r, Meta{}, PlotLoop, mill.US) }))
 	if !strings.Contains(out, "stretch as indicated (in)") || strings.Contains(out, "Nothing to draw") {
 		t.Error("the loop without band stress is not drawn over the stretch")
 	}
-	out = string(written(t, func(b *bytes.Buffer) error { return SVG(b, r, PlotWidth, mill.US) }))
+	out = string(written(t, func(b *bytes.Buffer) error { return SVG(b, r, Meta{}, PlotWidth, mill.US) }))
 	if !strings.Contains(out, "gauge pressure, rising (gauge psi)") {
 		t.Error("the half-width without band stress is not drawn over the setting")
 	}
@@ -170,7 +170,7 @@ func BenchmarkLoopOfAnHour(b *testing.B) {
 		r.Points = append(r.Points, r.Points...)
 	}
 	for b.Loop() {
-		if err := SVG(io.Discard, r, PlotLoop, mill.US); err != nil {
+		if err := SVG(io.Discard, r, Meta{}, PlotLoop, mill.US); err != nil {
 			b.Fatal(err)
 		}
 	}

@@ -17,6 +17,7 @@ type loop struct {
 	rising, falling curve
 	target          float64 // band stress; NaN without one
 	limit           float64 // setting; NaN where it lies off the picture
+	found           []spot  // where findings are seen
 }
 
 // curve is one direction with the interval of the band's true stress. The three
@@ -26,8 +27,8 @@ type curve struct{ mid, low, high []xy }
 // curvePoints is how many settings a curve is computed at; its band is bent.
 const curvePoints = 41
 
-func loopChart(r *analyze.Result, u units) chart {
-	dots := dotsOf(r, u)
+func loopChart(r *analyze.Result, m Meta, u units) chart {
+	dots, inStretch := dotsOf(r, u), false
 	c := chart{
 		name: "Band stress against " + u.settingIs.noun,
 		says: "Band stress rising and falling, over the pairs measured. Shaded: the band's true stress, 95 %.",
@@ -39,7 +40,7 @@ func loopChart(r *analyze.Result, u units) chart {
 	}
 	title := "band stress (" + u.stress.name + ")"
 	if len(drawable(dots)) == 0 && len(l.rising.mid) == 0 && len(l.falling.mid) == 0 {
-		dots, title, l.target = stretchDots(r, u), "stretch as indicated ("+u.extension.name+")", math.NaN()
+		dots, title, l.target, inStretch = stretchDots(r, u), "stretch as indicated ("+u.extension.name+")", math.NaN(), true
 		c.name, c.says = "Stretch against "+u.settingIs.noun, "The pairs measured. The band stress is not known."
 	}
 	dots = drawable(dots)
@@ -51,6 +52,7 @@ func loopChart(r *analyze.Result, u units) chart {
 		c.empty = "no pairs were measured"
 	}
 	c.x, l.limit = stretchTo(c.x, u.setting.show(r.Setup.LimitSI))
+	l.found = boxesOf(m.Found, u, inStretch)
 	c.keys = l.keys(r, u)
 	c.plotters = func(f format) []plot.Plotter { return []plot.Plotter{loopPlotter{l, f}} }
 	return c
@@ -140,6 +142,9 @@ func (l loop) keys(r *analyze.Result, u units) []key {
 	if finite(l.target) {
 		keys = append(keys, key{words: "target " + u.stress.with(plain(l.target, 4)), line: targetLine()})
 	}
+	if len(l.found) > 0 {
+		keys = append(keys, key{words: "where a finding is seen", line: boxLine()})
+	}
 	if limit := limitText(r, u); limit != notKnown {
 		words := "limit " + limit
 		if !finite(l.limit) {
@@ -181,6 +186,7 @@ func (l loopPlotter) Plot(c draw.Canvas, p *plot.Plot) {
 	l.crossing(c, l.rising, upward{}, blue(), toX, toY)
 	l.crossing(c, l.falling, downward{}, vermillion(), toX, toY)
 	l.words(c, toX, toY)
+	l.boxes(c, toX, toY)
 }
 
 func (l loopPlotter) wash(c draw.Canvas, band curve, fill color.Color, toX, toY func(float64) vg.Length) {

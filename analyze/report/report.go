@@ -13,6 +13,7 @@ import (
 	"time"
 
 	"tautramp/analyze"
+	"tautramp/analyze/findings"
 )
 
 // Meta is what a report says of the recording and of the program, beside the
@@ -29,6 +30,8 @@ type Meta struct {
 	ClockFactor float64   // recorded seconds per real second; 0 and 1 are real time, anything else is a rehearsal
 	Continues   string    // seal of the file that this one continues
 	Notes       []string  // what went wrong on the way: lost lines, restarts, clocks
+
+	Found *findings.Report // what is wrong with the tensioner; nil where nobody looked
 
 	CautionsShown bool // the reader of Text has had the cautions on the same screen: they are not repeated there
 }

@@ -21,9 +21,10 @@ type sheet struct {
 	NoTarget    string // why there is no setting in either direction; "" where there is one
 	Targets     []aim  // rising, falling
 	Budget      []budgetLine
-	Overshoot   string    // what to do after passing the number
-	Friction    []fact    // friction and half-width
-	Verdict     verdict   // on the half-width
+	Overshoot   string  // what to do after passing the number
+	Friction    []fact  // friction and half-width
+	Verdict     verdict // on the half-width
+	Found       foundSheet
 	Running     []fact    // the one-sided running band
 	RunningNote string    // what it is
 	Branches    []fact    // the two lines
@@ -52,6 +53,7 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		Overshoot:   overshootText(r, u),
 		Friction:    frictionFacts(r, u),
 		Verdict:     verdictOf(r),
+		Found:       foundOf(m.Found, u),
 		Running:     runningFacts(r, u),
 		RunningNote: runningNote(),
 		Branches:    []fact{branchFact(analyze.Rising, r.Rising, u), branchFact(analyze.Falling, r.Falling, u)},

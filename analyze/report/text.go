@@ -24,6 +24,7 @@ func Text(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	p.facts(sh.Identity)
 	p.targets(sh)
 	p.friction(sh)
+	p.found(sh.Found)
 	p.heading("Running band")
 	p.para(2, sh.RunningNote)
 	p.facts(sh.Running)
@@ -129,6 +130,7 @@ func (p *printer) answer(sh sheet) {
 	if n := len(sh.Warnings); n > 0 {
 		grade += fmt.Sprintf("; %d warnings above", n)
 	}
+	p.short("FOUND", sh.Found.short())
 	p.short("GRADE", strings.Replace(grade, " 1 warnings", " 1 warning", 1))
 }
 

@@ -39,7 +39,7 @@ func writers(s mill.System, m Meta) map[string]func(*bytes.Buffer, *analyze.Resu
 		"json":  func(b *bytes.Buffer, r *analyze.Result) error { return JSON(b, r, m) },
 	}
 	for _, p := range Plots() {
-		all[string(p)] = func(b *bytes.Buffer, r *analyze.Result) error { return SVG(b, r, p, s) }
+		all[string(p)] = func(b *bytes.Buffer, r *analyze.Result) error { return SVG(b, r, Meta{}, p, s) }
 	}
 	return all
 }
@@ -178,7 +178,7 @@ func TestWriteErrorsComeBack(t *testing.T) {
 	for name, err := range map[string]error{
 		"text": Text(failing{}, r, m, mill.US), "html": HTML(failing{}, r, m, mill.US), "csv": CSV(failing{}, r, m, mill.US),
 		"pairs": PairsCSV(failing{}, r, mill.US), "json": JSON(failing{}, r, m),
-		"svg": SVG(failing{}, r, PlotLoop, mill.US), "png": PNG(failing{}, r, PlotLoop, mill.US),
+		"svg": SVG(failing{}, r, Meta{}, PlotLoop, mill.US), "png": PNG(failing{}, r, Meta{}, PlotLoop, mill.US),
 	} {
 		if !errors.Is(err, errFull) {
 			t.Errorf("%s: %v, want the writer's error", name, err)

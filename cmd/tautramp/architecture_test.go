@@ -41,11 +41,12 @@ func rooms() map[string][]string {
 		"analyze/estimate":       {gonum},
 		"analyze":                {"acquire/mill", "acquire/pairing", "analyze/estimate"},
 		"analyze/gauge":          {"acquire/mill", "acquire/pairing", "analyze/estimate"},
-		"analyze/report":         {"acquire/mill", "analyze", "analyze/estimate", "analyze/gauge", gonum, plot},
+		"analyze/findings":       {"acquire/mill", "acquire/pairing", "analyze", "analyze/estimate"},
+		"analyze/report":         {"acquire/mill", "analyze", "analyze/estimate", "analyze/findings", "analyze/gauge", gonum, plot},
 		"cmd/tautramp/station":   {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze/estimate", "analyze/gauge"},
 		"cmd/tautramp/visit":     {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze", "analyze/estimate"},
 		"cmd/tautramp": {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "acquire/port", "acquire/simrig",
-			"analyze", "analyze/estimate", "analyze/gauge", "analyze/report", "cmd/tautramp/station", "cmd/tautramp/visit", "github.com/spf13/pflag", sys},
+			"analyze", "analyze/estimate", "analyze/findings", "analyze/gauge", "analyze/report", "cmd/tautramp/station", "cmd/tautramp/visit", "github.com/spf13/pflag", sys},
 	}
 }
 
@@ -117,7 +118,7 @@ func allowedImport(path string, allowed []string) bool {
 
 // pureRooms compute from what they are given; they may not reach outside.
 func pureRooms() []string {
-	return []string{"protocol", "acquire/pairing", "analyze", "analyze/estimate", "analyze/gauge"}
+	return []string{"protocol", "acquire/pairing", "analyze", "analyze/estimate", "analyze/gauge", "analyze/findings"}
 }
 
 func TestPureRoomsReachNothingOutside(t *testing.T) {

@@ -15,9 +15,17 @@ import (
 )
 
 func runCheck(_ context.Context, args []string, e env) error {
+	var thresholds bool
 	fs := flags("check", "FILE", "Checks a file and says what is in it: a recording (.ramp), a mill profile (.toml),\nor a text file of wire lines.", e)
-	if err := parse(fs, args, 1, 1); err != nil {
+	fs.BoolVar(&thresholds, "thresholds", false, "list the limits that findings rest on, the profile's own where FILE is one")
+	if err := parse(fs, args, 0, 1); err != nil {
 		return err
+	}
+	switch {
+	case thresholds:
+		return listThresholds(fs.Arg(0), e)
+	case fs.NArg() != 1:
+		return &usageError{"check takes one file"}
 	}
 	path := fs.Arg(0)
 	switch filepath.Ext(path) {

@@ -13,6 +13,7 @@ import (
 	"tautramp/acquire/pairing"
 	"tautramp/acquire/recording"
 	"tautramp/analyze"
+	"tautramp/analyze/findings"
 	"tautramp/analyze/report"
 )
 
@@ -101,7 +102,9 @@ func computeResult(path string, target mill.Pressure) (*analyze.Result, report.M
 	if err != nil {
 		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
 	}
-	return res, reportMeta(path, rec, set), nil
+	meta := reportMeta(path, rec, set)
+	meta.Found = findings.Look(findings.Input{Profile: rec.Header.Parsed, Result: res, Set: set})
+	return res, meta, nil
 }
 
 // measuredOn is the day of the measurement; a memory card carries none.
@@ -145,8 +148,8 @@ func (r *resultFlags) write(res *analyze.Result, meta report.Meta, system mill.S
 		{r.csv, func(w io.Writer) error { return report.CSV(w, res, meta, system) }},
 		{r.pairs, func(w io.Writer) error { return report.PairsCSV(w, res, system) }},
 		{r.html, func(w io.Writer) error { return report.HTML(w, res, meta, system) }},
-		{r.svg, func(w io.Writer) error { return report.SVG(w, res, plot, system) }},
-		{r.png, func(w io.Writer) error { return report.PNG(w, res, plot, system) }},
+		{r.svg, func(w io.Writer) error { return report.SVG(w, res, meta, plot, system) }},
+		{r.png, func(w io.Writer) error { return report.PNG(w, res, meta, plot, system) }},
 	} {
 		if out.path == "" {
 			continue

@@ -1,0 +1,187 @@
+package findings
+
+import (
+	"math"
+
+	"tautramp/acquire/pairing"
+	"tautramp/analyze"
+	"tautramp/analyze/estimate"
+)
+
+// stage is what the lines leave of the stretch, on average over one rise, hold,
+// fall or rest.
+type stage struct {
+	kind  analyze.PhaseKind
+	t     float64 // s, its middle
+	restM float64
+	tempK float64
+}
+
+// stages averages over each run of one phase that is long enough.
+func (d *data) stages() []stage {
+	var out []stage
+	zero := d.zeroM()
+	temp := d.thermometer()
+	for i := 0; i < len(d.t); {
+		k := i
+		for k+1 < len(d.t) && d.phase[k+1] == d.phase[i] && d.t[k+1]-d.t[k] < 5 {
+			k++
+		}
+		if s, ok := d.stage(i, k, zero, temp); ok {
+			out = append(out, s)
+		}
+		i = k + 1
+	}
+	return out
+}
+
+func (d *data) stage(first, last int, zero float64, temp pairing.Channel) (stage, bool) {
+	s := stage{kind: d.phase[first], t: (d.t[first] + d.t[last]) / 2, tempK: math.NaN()}
+	var rest []float64
+	for i := first; i <= last; i++ {
+		switch {
+		case s.kind == analyze.Resting || s.kind == analyze.SlackLift:
+			rest = append(rest, d.e[i]-zero)
+		case d.follow.good[i] && (s.kind == analyze.Loading || s.kind == analyze.Unloading):
+			rest = append(rest, d.follow.rest[i])
+		}
+	}
+	if s.kind == analyze.SlackLift { // both are a slack band
+		s.kind = analyze.Resting
+	}
+	if len(rest) < 10 {
+		return s, false
+	}
+	s.restM = estimate.Median(rest)
+	var temps []float64
+	for _, r := range temp.Readings {
+		if r.Status.Ok() && r.T >= d.t[first]-2 && r.T <= d.t[last]+2 {
+			temps = append(temps, r.Value)
+		}
+	}
+	if len(temps) > 0 {
+		s.tempK, _ = estimate.Mean(temps)
+	}
+	return s, true
+}
+
+// The quantities that a channel may declare, as the wire has them.
+const (
+	temperature = "temperature"
+	extension   = "extension"
+)
+
+// thermometer is the first channel of a temperature; without readings where there is none.
+func (d *data) thermometer() pairing.Channel {
+	if d.set != nil {
+		for _, c := range d.set.Others {
+			if c.Spec.Quantity == temperature && len(c.Readings) > 0 {
+				return c
+			}
+		}
+	}
+	return pairing.Channel{}
+}
+
+// against is the stages' drift against time or temperature, each kind of stage
+// about its own mean.
+func against(all []stage, of func(stage) float64) (x, y []float64) {
+	kinds := map[analyze.PhaseKind][]stage{}
+	var order []analyze.PhaseKind
+	for _, s := range all {
+		if math.IsNaN(of(s)) {
+			continue
+		}
+		if len(kinds[s.kind]) == 0 {
+			order = append(order, s.kind)
+		}
+		kinds[s.kind] = append(kinds[s.kind], s)
+	}
+	for _, k := range order {
+		var mx, my float64
+		n := float64(len(kinds[k]))
+		if n < 2 {
+			continue
+		}
+		for _, s := range kinds[k] {
+			mx += of(s) / n
+			my += s.restM / n
+		}
+		for _, s := range kinds[k] {
+			x, y = append(x, of(s)-mx), append(y, s.restM-my)
+		}
+	}
+	return x, y
+}
+
+// throughNought is the slope of a line through the origin, its doubt, and the
+// correlation.
+func throughNought(x, y []float64, floor float64) (slope, std, r float64, ok bool) {
+	var sxx, sxy, syy float64
+	for i := range x {
+		sxx += x[i] * x[i]
+		sxy += x[i] * y[i]
+		syy += y[i] * y[i]
+	}
+	if len(x) < 5 || !(sxx > 0) {
+		return 0, 0, 0, false
+	}
+	slope = sxy / sxx
+	rss := math.Max(0, syy-slope*sxy)
+	sd := math.Max(floor, math.Sqrt(rss/float64(len(x)-4)))
+	if syy > 0 {
+		r = sxy / math.Sqrt(sxx*syy)
+	}
+	return slope, sd / math.Sqrt(sxx), r, true
+}
+
+const noTemperature = "no temperature was recorded: fit the sensor to the band"
+
+func (d *data) warmth() (slope, std, r, range_ float64, n int, ok bool) {
+	stages := d.stages()
+	x, y := against(stages, func(s stage) float64 { return s.tempK })
+	slope, std, r, ok = throughNought(x, y, d.countM/math.Sqrt(12)/3)
+	low, high := math.Inf(1), math.Inf(-1)
+	for _, s := range stages {
+		if !math.IsNaN(s.tempK) {
+			low, high = math.Min(low, s.tempK), math.Max(high, s.tempK)
+		}
+	}
+	return slope, std, r, high - low, len(x), ok
+}
+
+func (d *data) warmLink() estimate.Estimate {
+	if len(d.thermometer().Readings) == 0 || !d.usable() {
+		return estimate.Unknown(noTemperature)
+	}
+	_, _, r, _, n, ok := d.warmth()
+	if !ok || n < 5 {
+		return estimate.Unknown("too few stretches to compare with the temperature")
+	}
+	return known(math.Abs(r), (1-r*r)/math.Sqrt(float64(n-3)), float64(n-4), "means of each rise, fall and rest")
+}
+
+func (d *data) warmShift() estimate.Estimate {
+	if len(d.thermometer().Readings) == 0 || !d.usable() {
+		return estimate.Unknown(noTemperature)
+	}
+	slope, std, _, span, n, ok := d.warmth()
+	if !ok {
+		return estimate.Unknown("too few stretches to compare with the temperature")
+	}
+	return known(math.Abs(slope)*span/d.workingM, std*span/d.workingM, float64(max(1, n-4)), "drift with the temperature x its range")
+}
+
+// mountCreep is how fast the stretch drifts through the recording, whatever the
+// setting does.
+func (d *data) mountCreep() estimate.Estimate {
+	if !d.usable() {
+		return estimate.Unknown("too little was recorded")
+	}
+	x, y := against(d.stages(), func(s stage) float64 { return s.t / 60 })
+	slope, std, _, ok := throughNought(x, y, d.countM/math.Sqrt(12)/3)
+	if !ok {
+		return estimate.Unknown("too few ramps to see a drift")
+	}
+	return known(math.Abs(slope), std, float64(max(1, len(x)-4)), "means of each rise, fall and rest, over time")
+}

@@ -1,0 +1,106 @@
+package findings
+
+import (
+	"math"
+
+	"tautramp/analyze"
+	"tautramp/analyze/estimate"
+)
+
+// follow is what the stretch would be if the band followed the setting by the
+// two lines and held still between them, and what is left of the readings.
+type follow struct {
+	p    []float64 // setting at the points, smoothed over the time between two of them
+	is   []float64 // m, by the two lines
+	rest []float64 // m, read less expected
+	good []bool    // where the two lines speak: not in the toe, nor with a slack band
+}
+
+// play is the play operator, generalised to two curves: what it follows may
+// move between low and high and is carried along by whichever it meets. With
+// low = u - r and high = u + r it is the play of half-width r.
+func play(was, low, high float64) float64 { return math.Max(low, math.Min(high, was)) }
+
+// seatedShare is the part of the working stretch below which the lines do not
+// speak: the band seats there. Judgement: usable above 15 to 20 %.
+const seatedShare = 0.2
+
+func (d *data) newFollow() follow {
+	n := len(d.t)
+	f := follow{p: d.smoothed(), is: make([]float64, n), rest: make([]float64, n), good: make([]bool, n)}
+	zero := d.zeroM()
+	seated := zero + seatedShare*d.workingM
+	for _, c := range d.r.Cycles {
+		if e, known := d.seatEnd(c); known {
+			seated = math.Max(seated, e)
+		}
+	}
+	now := zero
+	for i, p := range f.p {
+		low, high := d.up.at(p), d.down.at(p)
+		if high < low {
+			low, high = (low+high)/2, (low+high)/2
+		}
+		now = play(now, low, high)
+		now = math.Max(now, zero)
+		f.is[i], f.rest[i] = now, d.e[i]-now
+		f.good[i] = now > seated && d.e[i] > seated
+	}
+	return f
+}
+
+func (d *data) seatEnd(c analyze.Cycle) (eM float64, ok bool) {
+	if c.Rising.Points == 0 || !(c.SeatingEndSI > 0) {
+		return 0, false
+	}
+	return d.up.at(math.Min(c.SeatingEndSI, d.workingSI)), true
+}
+
+// zeroM is the extension of the slack band; that of the rising line at its low
+// end, less what it had gained there, where it is not known.
+func (d *data) zeroM() float64 {
+	var zeros []float64
+	for _, c := range d.r.Cycles {
+		if c.Zero.Known() {
+			zeros = append(zeros, c.Zero.Value)
+		}
+	}
+	if len(zeros) > 0 {
+		return estimate.Median(zeros)
+	}
+	return d.up.at(d.r.Rising.LowSI)
+}
+
+// smoothed is the setting at the points: the mean of its own readings from half
+// a point before to half a point after.
+func (d *data) smoothed() []float64 {
+	out := append([]float64(nil), d.p...)
+	if d.set == nil || len(d.set.Setting.Readings) <= len(d.t) {
+		return out
+	}
+	readings := d.set.Setting.Readings
+	from := 0
+	for i := range d.t {
+		half := 0.0
+		if i > 0 {
+			half = (d.t[i] - d.t[i-1]) / 2
+		}
+		if i+1 < len(d.t) && (i == 0 || d.t[i+1]-d.t[i] < 2*half) {
+			half = (d.t[i+1] - d.t[i]) / 2
+		}
+		for from < len(readings) && readings[from].T < d.t[i]-half {
+			from++
+		}
+		sum, n := 0.0, 0.0
+		for k := from; k < len(readings) && readings[k].T <= d.t[i]+half; k++ {
+			if readings[k].Status.Ok() {
+				sum += readings[k].Value
+				n++
+			}
+		}
+		if n > 0 {
+			out[i] = sum / n
+		}
+	}
+	return out
+}

@@ -1,0 +1,230 @@
+package findings
+
+import (
+	"math"
+	"slices"
+
+	"tautramp/analyze/estimate"
+)
+
+// jumps is what the readings leave of the two lines, looked through for sudden
+// changes.
+type jumps struct {
+	window   int       // points on either side that are compared
+	noise    float64   // standard deviation of a change that is none, m
+	branches [][]jump  // of each rise and fall, largest first
+	all      []jump    // of the whole recording, with how much of them lasted
+	sizes    []float64 // of all, sorted down
+}
+
+// jump is one sudden change of what the lines do not explain.
+type jump struct {
+	at   int     // first point after it
+	size float64 // m, positive where the stretch grew
+	kept float64 // m, of it still there some seconds later
+	pSI  float64 // change of the setting meanwhile
+}
+
+const (
+	jumpS = 0.5 // s over which means are compared on either side
+	keptS = 8.0 // s over which a step must last
+)
+
+func (d *data) findJumps() jumps {
+	j := jumps{window: 3}
+	if step := d.stepS(); step > 0 {
+		j.window = max(3, int(math.Round(jumpS/step)))
+	}
+	j.noise = d.noiseM * math.Sqrt(2/float64(j.window))
+	change := d.changes(j.window)
+	for _, c := range d.r.Cycles {
+		if c.Rising.Points == 0 {
+			continue
+		}
+		for _, leg := range [][2]int{{c.First, c.Peak}, {c.Peak, c.Last}} {
+			found := d.peaks(change, leg[0], leg[1], j.window)
+			slices.SortStableFunc(found, larger)
+			j.branches = append(j.branches, found)
+		}
+	}
+	j.all = d.peaks(change, 0, len(d.t)-1, j.window)
+	for i := range j.all {
+		j.all[i].kept = d.kept(j.all[i].at, j.window)
+		j.sizes = append(j.sizes, math.Abs(j.all[i].kept))
+	}
+	slices.SortFunc(j.sizes, func(a, b float64) int { return compare(b, a) })
+	return j
+}
+
+func larger(a, b jump) int { return compare(math.Abs(b.size), math.Abs(a.size)) }
+
+func compare(a, b float64) int {
+	switch {
+	case a < b:
+		return -1
+	case a > b:
+		return 1
+	}
+	return 0
+}
+
+func (d *data) stepS() float64 {
+	steps := make([]float64, 0, len(d.t))
+	for i := 1; i < len(d.t); i++ {
+		steps = append(steps, d.t[i]-d.t[i-1])
+	}
+	return estimate.Median(steps)
+}
+
+// changes is the mean of what the lines leave over the points from each on,
+// less the mean over those before it; NaN where not all of them are good.
+func (d *data) changes(window int) []float64 {
+	out := make([]float64, len(d.t))
+	for i := range out {
+		out[i] = math.NaN()
+		if i < window || i+window > len(out) {
+			continue
+		}
+		sum, good := 0.0, true
+		for k := range window {
+			good = good && d.follow.good[i+k] && d.follow.good[i-1-k]
+			sum += d.follow.rest[i+k] - d.follow.rest[i-1-k]
+		}
+		if good {
+			out[i] = sum / float64(window)
+		}
+	}
+	return out
+}
+
+// peaks is the places where a change is larger than any other within a window.
+func (d *data) peaks(change []float64, first, last, window int) []jump {
+	var out []jump
+	for i := first; i <= last; i++ {
+		if math.IsNaN(change[i]) {
+			continue
+		}
+		top := true
+		for k := max(first, i-window); k <= min(last, i+window) && top; k++ {
+			bigger := math.Abs(change[k]) > math.Abs(change[i])
+			top = !bigger && !(k < i && math.Abs(change[k]) == math.Abs(change[i]))
+		}
+		if top {
+			out = append(out, jump{at: i, size: change[i], pSI: d.follow.p[min(len(d.t)-1, i+window)] - d.follow.p[max(0, i-window)]})
+		}
+	}
+	return out
+}
+
+// kept is the change at a place over some seconds on either side.
+func (d *data) kept(at, clear int) float64 {
+	mean := func(from, to float64) float64 {
+		var v []float64
+		for i := search(d.t, from); i < len(d.t) && d.t[i] <= to; i++ {
+			if d.follow.good[i] {
+				v = append(v, d.follow.rest[i])
+			}
+		}
+		return estimate.Median(v)
+	}
+	gap := float64(clear) * d.stepS()
+	t := d.t[at]
+	return mean(t+gap/2, t+gap/2+keptS) - mean(t-gap/2-keptS, t-gap/2)
+}
+
+// thirdJump is the third largest jump of a branch that goes the branch's way,
+// the median of the branches.
+func (d *data) thirdJump() estimate.Estimate {
+	v, ok := d.third()
+	if !ok {
+		return estimate.Unknown("no branch is long enough to look for jumps")
+	}
+	return known(v/d.workingM, d.jumps.noise/d.workingM, math.Inf(1), "change of the stretch within half a second that the setting does not ask for")
+}
+
+func (d *data) jumpNoise() estimate.Estimate {
+	v, ok := d.third()
+	if !ok || !(d.jumps.noise > 0) {
+		return estimate.Unknown("no branch is long enough to look for jumps")
+	}
+	return known(v/d.jumps.noise, 1, math.Inf(1), "noise of the stretch at rest")
+}
+
+func (d *data) third() (sizeM float64, ok bool) {
+	var thirds []float64
+	for i, b := range d.jumps.branches {
+		sign := 1.0
+		if i%2 == 1 {
+			sign = -1
+		}
+		var ahead []float64
+		for _, j := range b {
+			if j.size*sign > 0 {
+				ahead = append(ahead, math.Abs(j.size))
+			}
+		}
+		if len(ahead) >= 3 {
+			thirds = append(thirds, ahead[2])
+		} else {
+			thirds = append(thirds, 0)
+		}
+	}
+	return estimate.Median(thirds), len(thirds) > 0
+}
+
+// largestStep is the change that lasted most.
+func (d *data) largestStep() (j jump, ok bool) {
+	for _, c := range d.jumps.all {
+		if !math.IsNaN(c.kept) && math.Abs(c.kept) > math.Abs(j.kept) && math.Abs(c.size) > math.Abs(c.kept)/3 {
+			j, ok = c, true
+		}
+	}
+	return j, ok
+}
+
+func (d *data) slip() estimate.Estimate {
+	j, ok := d.largestStep()
+	if !ok {
+		return d.noStep()
+	}
+	return known(math.Abs(j.kept)/d.workingM, d.jumps.noise/d.workingM, math.Inf(1), "what the lines leave, some seconds before and after")
+}
+
+func (d *data) noStep() estimate.Estimate {
+	if !d.usable() {
+		return estimate.Unknown("too little was recorded to look for steps")
+	}
+	return known(0, d.jumps.noise/math.Max(d.workingM, d.jumps.noise), math.Inf(1), "no step was seen")
+}
+
+func (d *data) slipCounts() estimate.Estimate {
+	j, ok := d.largestStep()
+	if !ok {
+		e := d.noStep()
+		return e
+	}
+	count := math.Max(d.countM, d.noiseM)
+	return known(math.Abs(j.kept)/count, d.jumps.noise/count, math.Inf(1), "what the lines leave, some seconds before and after")
+}
+
+// slipAlone is the largest step over the third largest: a mount slips once or
+// twice, stick-slip goes on.
+func (d *data) slipAlone() estimate.Estimate {
+	j, ok := d.largestStep()
+	if !ok || len(d.jumps.sizes) < 3 {
+		return estimate.Unknown("no step was seen")
+	}
+	var rest []float64
+	for _, s := range d.jumps.sizes {
+		if !math.IsNaN(s) {
+			rest = append(rest, s)
+		}
+	}
+	if len(rest) < 3 {
+		return estimate.Unknown("no step was seen")
+	}
+	slices.SortFunc(rest, func(a, b float64) int { return compare(b, a) })
+	next := math.Max(rest[2], d.jumps.noise)
+	v := math.Abs(j.kept) / next
+	return known(v, v*d.jumps.noise/next, math.Inf(1), "largest step over the third largest")
+}

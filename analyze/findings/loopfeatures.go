@@ -1,0 +1,200 @@
+package findings
+
+import (
+	"math"
+
+	"tautramp/analyze"
+	"tautramp/analyze/estimate"
+)
+
+func (d *data) half() estimate.Estimate { return d.r.WidthRatio }
+
+// constant is F0 / A* over the working setting; of a tensioner that is not set
+// by pressure, the half-width carried on to no load.
+func (d *data) constant() estimate.Estimate {
+	f := d.r.Friction
+	if !d.pressureSet() {
+		c, _ := d.widthLine()
+		return c
+	}
+	if !f.F0N.Known() || !(f.AreaM2.Value > 0) || !(d.workingSI > 0) {
+		return estimate.Unknown("the loop does not give its friction")
+	}
+	return f.F0N.Scale(1 / f.AreaM2.Value / d.workingSI)
+}
+
+// proportional is mu.
+func (d *data) proportional() estimate.Estimate {
+	if !d.pressureSet() {
+		_, p := d.widthLine()
+		return p
+	}
+	return d.r.Friction.Mu
+}
+
+// widthLine splits the half-width of the loop, h = h0 + h1 pbar with pbar midway
+// between the branches, by its two ends; h0 as a share of the working setting.
+func (d *data) widthLine() (constant, growing estimate.Estimate) {
+	rows := d.r.Widths
+	no := estimate.Unknown("the loop's width is not known")
+	if len(rows) < 2 || !(d.workingSI > 0) {
+		return no, no
+	}
+	low, high := rows[0], rows[len(rows)-1]
+	if !low.HalfSI.Known() || !high.HalfSI.Known() {
+		return no, no
+	}
+	at := func(w analyze.WidthAt) float64 { return w.RisingSI - w.HalfSI.Value }
+	apart := at(high) - at(low)
+	if !(apart > 0) {
+		return no, no
+	}
+	h1 := (high.HalfSI.Value - low.HalfSI.Value) / apart
+	random := math.Hypot(low.HalfSI.Random, high.HalfSI.Random) / apart
+	growing = estimate.Estimate{Value: h1, Random: random, DoF: low.HalfSI.DoF, Method: "half-widths at both ends of the loop"}
+	share := at(low) / apart
+	constant = estimate.Estimate{
+		Value:  (low.HalfSI.Value - h1*at(low)) / d.workingSI,
+		Random: math.Hypot((1+share)*low.HalfSI.Random, share*high.HalfSI.Random) / d.workingSI,
+		System: math.Max(low.HalfSI.System, high.HalfSI.System) / d.workingSI,
+		DoF:    low.HalfSI.DoF, Method: "half-widths at both ends of the loop, carried on to no load",
+	}
+	return constant, growing
+}
+
+// offLoad compares the drag of the cylinders with nothing on them with the
+// constant part.
+func (d *data) offLoad() estimate.Estimate {
+	drag, constant := d.r.Setup.Tensioner.OffLoadDrag, d.constant()
+	switch {
+	case !drag.Given():
+		return estimate.Unknown("no off-load test of the cylinders is in mill.toml")
+	case !constant.Known() || !(constant.Value > 0):
+		return estimate.Unknown("the loop does not give its friction")
+	}
+	ratio := drag.SI / d.workingSI / constant.Value
+	return estimate.Estimate{Value: ratio, Random: ratio * constant.Random / constant.Value,
+		System: ratio * math.Hypot(constant.System/constant.Value, 0.1), DoF: constant.DoF,
+		Method: "off-load test in mill.toml, taken as good to 10 %"}
+}
+
+// play is the reversal beyond what the loop's own width explains.
+func (d *data) play() estimate.Estimate {
+	var values, stds []float64
+	for _, c := range d.r.Cycles {
+		if c.Rising.Points == 0 || !c.ReversalSI.Known() || !(d.workingSI > 0) {
+			continue
+		}
+		values = append(values, (c.ReversalSI.Value-2*d.halfAt(c.TopSI))/d.workingSI)
+		stds = append(stds, c.ReversalSI.Std()/d.workingSI)
+	}
+	return over(values, stds, "from the top to where the stretch follows, less twice the half-width there", "no ramp shows its reversal")
+}
+
+// halfAt is the loop's half-width about a rising setting, by its table.
+func (d *data) halfAt(risingSI float64) float64 {
+	rows := d.r.Widths
+	if len(rows) < 2 {
+		return d.r.Working.HalfSI.Value
+	}
+	low, high := rows[0], rows[len(rows)-1]
+	if !low.HalfSI.Known() || !high.HalfSI.Known() || high.RisingSI == low.RisingSI {
+		return d.r.Working.HalfSI.Value
+	}
+	share := (risingSI - low.RisingSI) / (high.RisingSI - low.RisingSI)
+	return math.Max(0, low.HalfSI.Value+share*(high.HalfSI.Value-low.HalfSI.Value))
+}
+
+// toe is the stress up to which the rising readings stay off the rising line by
+// more than a hundredth of the working stretch, of the target: how far slack,
+// curl or flattening reach.
+func (d *data) toe() estimate.Estimate {
+	if !d.usable() {
+		return estimate.Unknown("no straight stretch was found")
+	}
+	var values, stds []float64
+	for _, c := range d.r.Cycles {
+		if !c.Zero.Known() || c.Rising.Points == 0 {
+			continue
+		}
+		values = append(values, d.toeOf(c))
+		stds = append(stds, toeStd)
+	}
+	return over(values, stds, "readings off the rising line by 1 % of the working stretch", "the stretch of the slack band is not known")
+}
+
+const (
+	offLine = 0.01 // of the working stretch
+	// How well the end of a toe, which is gentle, is known, of the target.
+	// Judgement.
+	toeStd = 0.02
+)
+
+func (d *data) toeOf(c analyze.Cycle) float64 {
+	end := 0.0
+	var p, e []float64
+	for i := c.First; i <= c.Peak && i < len(d.t); i++ {
+		if ph := d.phase[i]; ph == analyze.Loading || ph == analyze.Seating {
+			p, e = append(p, d.follow.p[i]), append(e, d.e[i])
+		}
+	}
+	p, e = thinned(p, 80), thinned(e, 80)
+	for i := range p {
+		is := c.Rising.Line.A + c.Rising.Line.B*p[i]
+		if from := (is - c.Zero.Value) / d.workingM; from < 0.9 && math.Abs(e[i]-is) > offLine*d.workingM {
+			end = math.Max(end, from)
+		}
+	}
+	return end
+}
+
+func (d *data) area() estimate.Estimate {
+	r := d.r.Friction.AreaRatio
+	if !r.Known() {
+		return r
+	}
+	// The section and the modulus enter forces: what they leave open is in System.
+	r.Value--
+	return size(r)
+}
+
+// weight is the lifted weight by the loop less the profile's, as a setting.
+func (d *data) weight() estimate.Estimate {
+	given, f := d.r.Setup.Tensioner.LiftedWeight, d.r.Friction
+	switch {
+	case !given.Given():
+		return estimate.Unknown("mill.toml gives no lifted weight")
+	case !f.WeightN.Known() || !(f.AreaM2.Value > 0) || !(d.workingSI > 0):
+		return estimate.Unknown("the loop does not give the lifted weight: " + f.WeightN.Why)
+	}
+	w := f.WeightN
+	w.Value -= given.SI
+	w.System = math.Hypot(w.System, weightDoubt*given.SI)
+	return size(w.Scale(1 / f.AreaM2.Value / d.workingSI))
+}
+
+// weightDoubt is how well a lifted weight is commonly known, relative. Judgement.
+const weightDoubt = 0.1
+
+func (d *data) ramps() estimate.Estimate {
+	n := 0
+	for _, c := range d.r.Cycles {
+		if c.Rising.Points > 0 {
+			n++
+		}
+	}
+	return estimate.Exact(float64(n), "counted")
+}
+
+func (d *data) fast() estimate.Estimate {
+	worst := math.NaN()
+	for _, c := range d.r.Cycles {
+		if c.Rising.Points > 0 && c.TopSI > 0 && !(c.RateSI/c.TopSI <= worst) {
+			worst = c.RateSI / c.TopSI
+		}
+	}
+	if math.IsNaN(worst) {
+		return estimate.Unknown("no ramp could be fitted")
+	}
+	return estimate.Exact(worst, "median rate on the branches")
+}

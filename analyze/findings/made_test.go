@@ -1,0 +1,5 @@
+package findings
+
+import "tautramp/analyze"
+
+func emptyResult() *analyze.Result { return &analyze.Result{} }

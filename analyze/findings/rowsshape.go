@@ -1,0 +1,96 @@
+package findings
+
+import "tautramp/acquire/mill"
+
+// shapeRows are the causes that bend or break the lines.
+func shapeRows(by mill.SetBy) []row {
+	rows := []row{stickSlipRow(), toeRow(), endStopRow()}
+	if by != mill.SetByPressure {
+		rows = append(rows, playRow(), coilBindRow(), tyreRow())
+	}
+	return rows
+}
+
+func stickSlipRow() row {
+	return row{
+		key: StickSlip, name: "Stick-slip", causes: group(StickSlip),
+		tests: []test{{fThirdJump, Above, mill.JumpSize}, {fJumpNoise, Above, mill.JumpNoise}},
+		rivals: []rival{
+			{"lag that strokes of the pump turn into steps", []test{{fLagWidth, Above, mill.LagWidth}}},
+			{"a gauge that sticks", []test{{fSticky, Above, mill.GaugeSticky}}},
+		},
+		level: Service, region: risingLine,
+		next: "Ramp once more at half the pace and once smoothly with a power pump: stick-slip grows when it is slower, strokes of a hand pump do not matter to it.",
+		advice: []string{
+			"Lubricate the slide and pins as the maker says and check their alignment: something holds until it lets go.",
+			"Ramp smoothly; a setting made on a jump does not repeat.",
+		},
+	}
+}
+
+func toeRow() row {
+	return row{
+		key: Toe, name: "Slack is taken up late", causes: group(Toe),
+		tests:  []test{{fToe, Above, mill.ToeReach}},
+		rivals: []rival{{"air in the oil", []test{{fSoft, Above, mill.AirSoftness}}}},
+		level:  Watch, region: lowEnd,
+		next: "Measure the other face of the band too: a band that flattens shows the other sign there, slack shows the same.",
+		advice: []string{
+			"Do not set the band in this range: the line is not straight there.",
+			"Look for a band that is not seated on the wheels, a loose clevis, or curl of the band below the rig.",
+		},
+	}
+}
+
+func endStopRow() row {
+	return row{
+		key: EndStop, name: "End stop: the setting rises and the stretch does not follow", causes: group(EndStop),
+		tests:  []test{{fTopSlope, Below, mill.StopSlope}, {fTopSpan, Above, mill.StopSpan}},
+		rivals: []rival{{"an instrument at the end of its range", []test{{fSaturated, Above, mill.Saturated}}}},
+		level:  Stop, region: topEnd,
+		next: "None under more pressure. With the band slack and all locked out, look at how much stroke is left.",
+		advice: []string{
+			"Do not pump further: cylinder, slide or wheel has come to its stop, or something blocks it. Let the setting down.",
+			"Check the stroke left, the length of the band and what the slide runs against.",
+		},
+	}
+}
+
+func playRow() row {
+	return row{
+		key: Play, name: "Play in pin, clevis or nut", causes: group(Play),
+		tests:  []test{{fPlay, Above, mill.PlayWidth}},
+		rivals: []rival{{"lag between the instruments", []test{{fLagWidth, Above, mill.LagWidth}}}},
+		level:  Service, region: atTurn,
+		next:   "Turn round at half the load too: play is as wide there, friction is not.",
+		advice: []string{"Look for wear in pins, clevis, screw and nut: move them by hand with the band slack and all locked out."},
+	}
+}
+
+func coilBindRow() row {
+	return row{
+		key: CoilBind, name: "Spring near coil bind", causes: group(CoilBind),
+		tests:  []test{{fBind, Above, mill.BindSlope}},
+		rivals: []rival{{"slack taken up late", []test{{fToe, Above, mill.ToeReach}}}},
+		level:  Service, region: topEnd,
+		next: "Measure the spring's length at the top and compare it with the length at which its coils or discs touch.",
+		advice: []string{
+			"Set lower, below where the line steepens: above it a little turn makes a lot of pull.",
+			"Check that the spring is the right one, whole, and not bottomed on a washer.",
+		},
+	}
+}
+
+func tyreRow() row {
+	return row{
+		key: Tyre, name: "Wheel tyre that gives", causes: group(Tyre),
+		tests:  []test{{fFirst, Above, mill.FirstRamp}},
+		rivals: []rival{{"play that is taken up", []test{{fPlay, Above, mill.PlayWidth}}}},
+		level:  Watch, region: bothLines,
+		next: "Exercise the band once more and ramp three times: a tyre that has settled gives the same slope each time.",
+		advice: []string{
+			"Exercise once before setting and wait a few minutes, then bring the number up again.",
+			"Look at the tyres: soft, loose or worn through.",
+		},
+	}
+}
