@@ -45,10 +45,14 @@ func (w *work) locked(settingSI float64) LockedBand {
 	}
 	share := func(r ramp, k constants, bulkPa float64) (gainPa, dropSI float64) {
 		area := balanceOf(r, k).areaM2()
-		band := 4 * k.modulusPa * k.areaM2 / loop
+		net := k.areaM2
+		if k.otherM2 > 0 {
+			net = k.otherM2
+		}
+		band := 4 * k.modulusPa * net / loop
 		oil := area * area * bulkPa / t.OilVolume.SI
 		x := halfWidth(settingSI)(r, k) * area / (band + oil)
-		return band * x / (2 * k.areaM2), oil * x / area
+		return band * x / (2 * net), oil * x / area
 	}
 	of := func(pick func(gainPa, dropSI float64) float64) estimate.Estimate {
 		with := func(bulkPa float64) estimate.Estimate {

@@ -24,6 +24,8 @@ type CardOrder struct {
 	Direction analyze.Direction // from which side the number is approached
 	Hold      mill.Hold         // what becomes of the pressure once it is set; "" as the profile says
 	Proof     *analyze.Approach // a fresh approach that checked the number; nil: none was made
+	Others    []*analyze.Result // of other bands, predicted from this one; in the order of the card
+	SameWheel bool              // somebody confirmed that with the others the same weight is moved, from where the wheel stood
 }
 
 // CardError is a card that is not printed, and why.
@@ -52,6 +54,7 @@ type card struct {
 	HeldBy    string
 	Measured  string
 	Doubts    []string
+	OnFile    []string // what the tensioner can do for each band on file
 	Void      []string
 	Cautions  []string
 	Recording string
@@ -61,6 +64,7 @@ type card struct {
 // cardRow is one band.
 type cardRow struct {
 	Band     string
+	Made     string // "measured", or from which band it was worked out
 	Stress   string // target, in both systems
 	Number   figure
 	Other    string // the number in the other system
@@ -77,8 +81,13 @@ func Card(w io.Writer, r *analyze.Result, m Meta, o CardOrder, s mill.System) er
 	if o.Hold == "" {
 		o.Hold = r.Setup.Tensioner.Hold
 	}
-	if err := refuseCard(r, o); err != nil {
-		return err
+	if len(o.Others) > 0 && !o.SameWheel {
+		return &CardError{"it has bands that were not measured", "confirm that the same weight is moved with them and the wheel stands where it stood"}
+	}
+	for _, each := range append([]*analyze.Result{r}, o.Others...) {
+		if err := refuseCard(each, o); err != nil {
+			return err
+		}
 	}
 	t, err := template.New("card").Funcs(template.FuncMap{"typeset": typeset, "arrow": arrow}).Parse(cardHTML)
 	if err != nil {
@@ -99,7 +108,7 @@ func refuseCard(r *analyze.Result, o CardOrder) error {
 	case o.Direction != analyze.Rising && o.Direction != analyze.Falling:
 		return &CardError{"it has no direction", "say from which side the number is to be approached: from below or from above"}
 	case !at.SettingSI.Known():
-		return &CardError{"the setting for the target is not known: " + unknownWhy(at.SettingSI), "mend that and ramp again"}
+		return &CardError{"the setting for the target of " + named(r.Setup.Band.Name, "the band") + " is not known: " + unknownWhy(at.SettingSI), "mend that and ramp again, or leave the band off the card"}
 	case limit > 0 && at.SettingSI.Value > limit:
 		return &CardError{"the number would lie above the tensioner's limit", "give the band a lower target"}
 	case r.ScatterShare(o.Direction) > scatterMost:
@@ -124,10 +133,14 @@ func aimed(r *analyze.Result, d analyze.Direction) analyze.TargetSetting {
 
 func newCard(r *analyze.Result, m Meta, o CardOrder, s mill.System) card {
 	u, v := unitsFor(r.Setup.Tensioner, s), unitsFor(r.Setup.Tensioner, otherSystem(s))
+	rows := []cardRow{rowFor(r, o, u, v)}
+	for _, each := range o.Others {
+		rows = append(rows, rowFor(each, o, u, v))
+	}
 	return card{
 		Style: template.CSS(cardCSS), Title: named(r.Setup.Tensioner.Name, "tensioner of no name"), Mill: named(r.Setup.Mill.Name, ""),
 		Rehearsal: rehearsalText(r, m), Direction: o.Direction, Rule: cardRule(o.Direction),
-		Rows:  []cardRow{rowFor(r, o, u, v)},
+		Rows: rows, OnFile: onFile(r, o, u),
 		Limit: bothUnits(r.Setup.LimitSI, u.setting, v.setting), ReadOn: "the transducer that measured it only", HeldBy: heldBy(r, o.Hold),
 		Measured: startedText(m), Doubts: cardDoubts(r, o), Void: cardVoid(), Cautions: cardCautions(),
 		Recording: m.base(), Seal: m.seal(),
@@ -150,7 +163,7 @@ func rowFor(r *analyze.Result, o CardOrder, u, v units) cardRow {
 	number, other := figureOf(all, u.setting), figureOf(all, v.setting)
 	row := cardRow{
 		Band: named(r.Setup.Band.Name, "band of no name"), Stress: bothUnits(r.Setup.TargetPa, u.stress, v.stress),
-		Number: number, Other: other.short(), Drift: driftText(r, o, u, v),
+		Number: number, Other: other.short(), Drift: driftText(r, o, u, v), Made: madeText(r),
 	}
 	if number.PlusMinus != "" {
 		row.Between = fmt.Sprintf("%s to %s %s, counting all doubt", number.Low, number.High, number.Unit)

@@ -3,7 +3,6 @@ package report
 import (
 	"bytes"
 	"errors"
-	"os/exec"
 	"strings"
 	"testing"
 
@@ -86,10 +85,7 @@ func TestCardIsRefused(t *testing.T) {
 }
 
 func TestCardPrintsOnOnePage(t *testing.T) {
-	browser, err := exec.LookPath("chromium")
-	if err != nil || testing.Short() {
-		t.Skip("no chromium at hand, or a short run: the printed card is not counted")
-	}
+	browser := chromium(t)
 	m := t1Meta()
 	m.ClockFactor = 60
 	for _, o := range []CardOrder{{Direction: analyze.Rising}, {Direction: analyze.Falling}} {
@@ -100,5 +96,55 @@ func TestCardPrintsOnOnePage(t *testing.T) {
 		if n := printedPages(t, browser, b.String()); n != 1 {
 			t.Errorf("%s: %d pages", o.Direction, n)
 		}
+	}
+}
+
+func bandOnFile(t *testing.T, r *analyze.Result, name string) *analyze.Result {
+	t.Helper()
+	for _, b := range r.Setup.Bands {
+		if b.Name == name {
+			p, err := r.ForBand(b, mill.Pressure{})
+			if err != nil {
+				t.Fatal(err)
+			}
+			return p
+		}
+	}
+	t.Fatalf("no band %s on file", name)
+	return nil
+}
+
+func TestCardOfSeveralBandsAsksWhetherTheWheelIsTheSame(t *testing.T) {
+	r := t1(t)
+	o := CardOrder{Direction: analyze.Rising, Others: []*analyze.Result{bandOnFile(t, r, "QM-2")}}
+	_, err := cardOfT1(t, r, o, mill.US)
+	if refused, ok := errors.AsType[*CardError](err); !ok || !strings.Contains(refused.Next, "same weight") {
+		t.Errorf("another band on trust: %v", err)
+	}
+	o.SameWheel = true
+	text, err := cardOfT1(t, r, o, mill.US)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, want := range []string{"QM-2", "worked out from the wheel pull measured with QW-6", "Other bands on file", "QN-17: ", "confirmed, not checked", "ground narrower by 10 % of its net width carries 11 % more"} {
+		if !strings.Contains(text, want) {
+			t.Errorf("the card lacks %q", want)
+		}
+	}
+	if strings.Contains(text, "<li>QM-2: ") {
+		t.Error("a band on the card stands among the others on file too")
+	}
+}
+
+func TestFileSaysWhichBandsLiePastTheLimit(t *testing.T) {
+	r := t1(t)
+	for i := range r.Setup.Bands {
+		if r.Setup.Bands[i].Name == "QN-17" {
+			r.Setup.Bands[i].Target.SI *= 6
+		}
+	}
+	text := strings.Join(onFile(r, CardOrder{}, unitsFor(r.Setup.Tensioner, mill.US)), "\n")
+	if !strings.Contains(text, "QN-17: its target lies past the limit") || !strings.Contains(text, "QM-2: can be brought") {
+		t.Error(text)
 	}
 }

@@ -32,6 +32,8 @@ func cardDoubts(r *analyze.Result, o CardOrder) []string {
 		}
 	}
 	add(len(fittedCycles(r)) < 2, "One ramp only: how well the next setting repeats is not known.")
+	add(len(o.Others) > 0, "Bands that were not measured: the same weight moved was confirmed, not checked.")
+	doubts = append(doubts, wornText(r.Setup.Band))
 	add(r.Setup.Rig.Faces != 2, "Stretch was measured on one face only.")
 	add(o.Proof == nil, "Not checked by a fresh approach.")
 	add(o.Proof != nil && o.Proof.Agreement == analyze.Agrees, "A fresh approach agreed.")

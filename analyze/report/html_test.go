@@ -107,10 +107,7 @@ func TestElementsClose(t *testing.T) {
 
 // Prints the sheet where a Chromium is at hand: one page of either paper.
 func TestSheetPrintsOnOnePage(t *testing.T) {
-	browser, err := exec.LookPath("chromium")
-	if err != nil || testing.Short() {
-		t.Skip("no chromium at hand, or a short run: the printed page is not counted")
-	}
+	browser := chromium(t)
 	m := t1Meta()
 	m.ClockFactor = 60
 	for paper, s := range map[string]mill.System{"A4": mill.SI, "Letter": mill.US} {

@@ -5,6 +5,7 @@ import (
 	"context"
 	"fmt"
 	"io"
+	"slices"
 
 	"tautramp/acquire/mill"
 	"tautramp/acquire/pairing"
@@ -16,6 +17,8 @@ import (
 // cardFlags is what somebody asks of a card.
 type cardFlags struct {
 	from, hold, proof, units, target, out string
+	bands                                 []string
+	sameWheel                             bool
 }
 
 func runCard(_ context.Context, args []string, e env) error {
@@ -24,6 +27,8 @@ func runCard(_ context.Context, args []string, e env) error {
 	fs.StringVar(&c.from, "from", "", "side from which the number is approached: below or above (must be given)")
 	fs.StringVar(&c.hold, "hold", "", "what becomes of the pressure once it is set: maintained or locked (default: as mill.toml says)")
 	fs.StringVar(&c.proof, "proof", "", "recording of a fresh approach to the number, band slack first: the card is refused where it disagrees")
+	fs.StringSliceVar(&c.bands, "band", nil, "further bands of mill.toml for the card, worked out from the one that was measured")
+	fs.BoolVar(&c.sameWheel, "same-wheel", false, "you confirm that with those bands the same weight is moved and the wheel stands where it stood")
 	fs.StringVar(&c.target, "target", "", "band stress wanted, such as \"9500 psi\" (default: the band's in mill.toml)")
 	fs.StringVar(&c.units, "units", "us", "units in large print: us or si; the other stands beside it")
 	fs.StringVar(&c.out, "out", "", "write the card to this file (must be given; - for the screen)")
@@ -48,6 +53,9 @@ func runCard(_ context.Context, args []string, e env) error {
 	}
 	res, meta, err := computeResult(path, target)
 	if err != nil {
+		return err
+	}
+	if order.Others, err = othersOf(res, c.bands); err != nil {
 		return err
 	}
 	if c.proof != "" {
@@ -75,7 +83,7 @@ func writeCard(out string, res *analyze.Result, meta report.Meta, order report.C
 
 // order words the flags.
 func (c cardFlags) order() (report.CardOrder, error) {
-	var o report.CardOrder
+	o := report.CardOrder{SameWheel: c.sameWheel}
 	switch c.from {
 	case "below":
 		o.Direction = analyze.Rising
@@ -111,4 +119,24 @@ func proofOf(res *analyze.Result, path, proof string) (*analyze.Approach, error)
 		return nil, fmt.Errorf("%s: %w", proof, err)
 	}
 	return &a, nil
+}
+
+// othersOf predicts the result for each further band.
+func othersOf(res *analyze.Result, names []string) ([]*analyze.Result, error) {
+	var others []*analyze.Result
+	for _, name := range names {
+		i := slices.IndexFunc(res.Setup.Bands, func(b mill.Band) bool { return b.Name == name })
+		if i < 0 {
+			return nil, fmt.Errorf("--band %s: %w", name, mill.ErrUnknownName)
+		}
+		if name == res.Setup.Band.Name {
+			continue
+		}
+		other, err := res.ForBand(res.Setup.Bands[i], mill.Pressure{})
+		if err != nil {
+			return nil, err
+		}
+		others = append(others, other)
+	}
+	return others, nil
 }
