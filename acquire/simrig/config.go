@@ -43,7 +43,7 @@ type Config struct {
 	Drive      Drive
 
 	Pressure       Sensor // default: 50 a second, 0.05 psi counts, 1 psi of noise, to 1,500 psi
-	Torque         Sensor // set by torque. Default: 50 a second, 0.01 N m counts, 0.05 N m of noise, +-200 N m
+	Torque         Sensor // set by torque. Default: 50 a second, 0.01 N m counts, 0.05 N m of noise, +-1,000 N m
 	Turns          Sensor // all with a screw. Default: 50 a second, 0.0001 turn counts, 0.0002 turn of noise
 	Spring         Sensor // set by spring length. Default: 50 a second, 0.01 mm counts, 0.005 mm of noise
 	Indicator      Sensor // default: 10 a second, 0.00005 in counts, 0.1 um of noise, +-0.5 in

@@ -18,9 +18,18 @@ const (
 // measuring rig and its operator, at random within what is met in mills
 // (judgement). The same source gives the same mill; the configuration's seed
 // comes from it too.
-func Draw(rng *rand.Rand) (Config, error) {
-	d := drawnOil(rng)
-	p, err := mill.Parse([]byte(d.profile()))
+func Draw(rng *rand.Rand) (Config, error) { return DrawSetBy(rng, mill.SetByPressure) }
+
+// DrawSetBy is Draw for a tensioner set by something else.
+func DrawSetBy(rng *rand.Rand, by mill.SetBy) (Config, error) {
+	d := drawBand(rng)
+	text := ""
+	if by == mill.SetByPressure {
+		text = d.oil(rng)
+	} else {
+		text = d.screw(rng, by)
+	}
+	p, err := mill.Parse([]byte(text + d.rest()))
 	if err != nil {
 		return Config{}, fmt.Errorf("%w: drawn profile: %w", ErrConfig, err)
 	}
@@ -37,6 +46,7 @@ func Draw(rng *rand.Rand) (Config, error) {
 		c.Law.StaticRatio = within(rng, 1, 1.05)
 	}
 	c.Pressure.NoiseSI = within(rng, 0.3, 1.2) * psiPa
+	c.Torque.NoiseSI = within(rng, 0.02, 0.08)
 	c.Indicator.NoiseSI = within(rng, 0.5e-7, 2e-7)
 	c.Indicator.Count = pick(rng, Count{"[in_i]", 5, -5}, Count{"[in_i]", 5, -4})
 	return c, nil
@@ -56,52 +66,92 @@ func drawDrive(rng *rand.Rand, workPa float64) Drive {
 
 // drawn is a mill in the making. SI.
 type drawn struct {
-	cylinders      int
-	boreM, limitPa float64
-	weightN, f0N   float64
-	mu             float64
-	thickM, netM   float64
-	targetPa       float64
-	loopM, gaugeM  float64
-	workPa         float64 // setting at the target, about
+	thickM, netM  float64
+	targetPa      float64
+	loopM, gaugeM float64
+	pullN         float64 // at the target, both spans
+	workPa        float64 // pressure there, about
 }
 
-func drawnOil(rng *rand.Rand) drawn {
+func drawBand(rng *rand.Rand) drawn {
 	d := drawn{
-		cylinders: 1 + rng.IntN(2),
-		thickM:    within(rng, 0.9e-3, 1.9e-3), netM: within(rng, 40e-3, 180e-3),
+		thickM: within(rng, 0.9e-3, 1.9e-3), netM: within(rng, 40e-3, 180e-3),
 		targetPa: within(rng, 50e6, 100e6), loopM: within(rng, 5, 13), gaugeM: within(rng, 0.3, 0.55),
-		mu: within(rng, 0.004, 0.012),
 	}
-	pull := 2 * d.targetPa * d.thickM * d.netM
-	d.weightN = within(rng, 0.05, 0.2) * pull
-	d.f0N = within(rng, 0.003, 0.012) * pull
-	d.workPa = within(rng, 350, 1000) * psiPa
-	area := (pull + d.weightN) / d.workPa
-	d.boreM = math.Round(math.Sqrt(4*area/math.Pi/float64(d.cylinders))*1e3) / 1e3
-	d.workPa = (pull + d.weightN) / (float64(d.cylinders) * math.Pi / 4 * d.boreM * d.boreM)
-	d.limitPa = 1.4 * d.workPa
+	d.pullN = 2 * d.targetPa * d.thickM * d.netM
 	return d
 }
 
-// profile is the mill as its owner would write it down.
-func (d drawn) profile() string {
-	return fmt.Sprintf(`[mill]
-name = "drawn mill"
-[[tensioner]]
-name = %q
-set_by = "pressure"
-setting_limit = "%.0f Pa"
-cylinders = %d
-bore = "%.6g mm"
-lifted_weight = "%.6g N"
-hold = "maintained"
-[tensioner.rehearsal]
+// head is the mill and what its tensioner's rehearsal has in common.
+func (d *drawn) head(by mill.SetBy, limit string) string {
+	return fmt.Sprintf("[mill]\nname = \"drawn mill\"\n[[tensioner]]\nname = %q\nset_by = %q\nsetting_limit = %q\n", drawnTensioner, by, limit)
+}
+
+// hidden is the rehearsal table, but for what only a screw has.
+func (d *drawn) hidden(f0N, mu, weightN float64) string {
+	return fmt.Sprintf(`[tensioner.rehearsal]
 friction_constant = "%.6g N"
 friction_proportional = %.6g
 weight = "%.6g N"
 band_loop = "%.6g m"
-[[band]]
+`, f0N, mu, weightN, d.loopM)
+}
+
+// oil is a tensioner with one or two cylinders.
+func (d *drawn) oil(rng *rand.Rand) string {
+	cylinders := float64(1 + rng.IntN(2))
+	weight := within(rng, 0.05, 0.2) * d.pullN
+	d.workPa = within(rng, 350, 1000) * psiPa
+	bore := math.Round(math.Sqrt(4*(d.pullN+weight)/d.workPa/math.Pi/cylinders)*1e3) / 1e3
+	d.workPa = (d.pullN + weight) / (cylinders * math.Pi / 4 * bore * bore)
+	return d.head(mill.SetByPressure, fmt.Sprintf("%.0f Pa", 1.4*d.workPa)) + fmt.Sprintf(`cylinders = %.0f
+bore = "%.6g mm"
+lifted_weight = "%.6g N"
+hold = "maintained"
+`, cylinders, bore*1e3, weight) + d.hidden(within(rng, 0.003, 0.012)*d.pullN, within(rng, 0.004, 0.012), weight)
+}
+
+// screw is a tensioner with a greased trapezoidal screw and springs.
+func (d *drawn) screw(rng *rand.Rand, by mill.SetBy) string {
+	weight := within(rng, 0, 0.1) * d.pullN
+	size := math.Round(within(rng, 9, 13) * math.Sqrt(d.pullN/1e3/9) * 2) // mm, for a bearable load on the thread
+	lead := math.Round(0.2 * size)
+	squeeze, free := within(rng, 6, 12), within(rng, 70, 150) // mm at the target, mm
+	thread, collar, restNM := within(rng, 0.08, 0.14), within(rng, 0.01, 0.03), within(rng, 0.2, 0.6)
+	// Twice the expected setting, each in its own measure.
+	limit := fmt.Sprintf("%.4g N m", 2*(d.pullN+weight)*(size/2e3*0.9*(0.064+thread)+collar*0.6*size/1e3))
+	switch by {
+	case mill.SetByTurns:
+		limit = "60 turns"
+	case mill.SetBySpring:
+		limit = fmt.Sprintf("%.4g mm", free-1.9*squeeze)
+	}
+	rate := (d.pullN + weight) / squeeze // N/mm
+	return d.head(by, limit) + fmt.Sprintf(`lifted_weight = "%.6g N"
+[tensioner.screw]
+diameter = "%.6g mm"
+lead = "%.6g mm"
+collar_radius = "%.6g mm"
+rest_torque = "%.4g N m"
+[tensioner.spring]
+under_load = "shorter"
+rate = "%.6g N/mm"
+free_length = "%.6g mm"
+`, weight, size, lead, 0.6*size, restNM, rate, free) +
+		d.hidden(within(rng, 0.001, 0.004)*d.pullN, within(rng, 0.001, 0.005), weight) + fmt.Sprintf(`friction_thread = %.4g
+friction_collar = %.4g
+rest_torque = "%.4g N m"
+play = "%.4g deg"
+give_stiffness = "%.6g N/mm"
+spring_rate = "%.6g N/mm"
+spring_free = "%.6g mm"
+spring_bind = "%.6g mm"
+`, thread, collar, restNM, within(rng, 0, 20), d.pullN/within(rng, 0.5, 1.5), rate, free, free-2*squeeze)
+}
+
+// rest is the band, the measuring rig and the instruments.
+func (d *drawn) rest() string {
+	return fmt.Sprintf(`[[band]]
 name = %q
 thickness = "%.6g mm"
 net_width = "%.6g mm"
@@ -116,12 +166,16 @@ serial = "R-P"
 measures = "setting"
 limit = "3.75 psi"
 [[instrument]]
+name = "torque wrench"
+serial = "R-W"
+measures = "setting"
+limit = "1 N m"
+[[instrument]]
 name = "indicator"
 serial = "R-X"
 measures = "extension"
 limit = "0.003 mm"
-`, drawnTensioner, d.limitPa, d.cylinders, d.boreM*1e3, d.weightN, d.f0N, d.mu, d.weightN, d.loopM,
-		drawnBand, d.thickM*1e3, d.netM*1e3, d.targetPa/1e6, d.gaugeM*1e3)
+`, drawnBand, d.thickM*1e3, d.netM*1e3, d.targetPa/1e6, d.gaugeM*1e3)
 }
 
 // within draws evenly between two bounds.

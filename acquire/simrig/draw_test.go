@@ -3,6 +3,8 @@ package simrig
 import (
 	"math/rand/v2"
 	"testing"
+
+	"tautramp/acquire/mill"
 )
 
 // Drawn mills are healthy and plausible: each can be driven, reaches its
@@ -52,5 +54,29 @@ func TestDrawIsTheSamePerSeed(t *testing.T) {
 	a, b := mustNew(t, draw()), mustNew(t, draw())
 	if a.Truth().RisingPa(60e6) != b.Truth().RisingPa(60e6) || a.conf.Seed != b.conf.Seed {
 		t.Error("one source, two mills")
+	}
+}
+
+func TestDrawnScrewsAreHealthy(t *testing.T) {
+	rng := rand.New(rand.NewPCG(21, 22))
+	for i := range 30 {
+		by := []mill.SetBy{mill.SetByTorque, mill.SetByTurns, mill.SetBySpring}[i%3]
+		c, err := DrawSetBy(rng, by)
+		if err != nil {
+			t.Fatalf("mill %d set by %s: %v", i, by, err)
+		}
+		c.Drive.Shape = Smooth
+		r := mustNew(t, c)
+		trace, err := r.Trace(0.1)
+		if err != nil {
+			t.Fatal(err)
+		}
+		truth, stress := r.Truth(), r.conf.workStressPa()
+		up, down := torqueAt(trace, truth.PullN(stress), true), torqueAt(trace, truth.PullN(stress), false)
+		near(t, "torque up", up, truth.TorqueNM(stress, true), 0.02*up)
+		if down >= 0 {
+			t.Errorf("mill %d: loosening takes %.2f N m: the screw does not hold by itself", i, down)
+		}
+		near(t, "turns up", turnAt(trace, truth.PullN(stress), true), truth.TurnRad(stress, true), 0.02*truth.TurnRad(stress, true))
 	}
 }

@@ -184,6 +184,9 @@ func (r *driver) cycleNow() int {
 	return r.legs[min(r.at, len(r.legs)-1)].cycle
 }
 
+// rising tells whether the hand is on its way up.
+func (r *driver) rising() bool { return !r.over() && r.legs[r.at].up }
+
 // next is what the hand does now, t seconds into the drive, and for how long
 // at most it goes on so.
 func (r *driver) next(s seen, t float64) (command, float64) {
@@ -261,42 +264,4 @@ func (r *driver) strokeCommand(l leg, s seen, t float64) (command, float64) {
 		return command{hold: true}, rest
 	}
 	return command{rate: -(s.hand - floor) * 4 / (r.strokeS - press), toSI: floor, sags: true}, rest
-}
-
-// lengthS is how long the drive takes, near enough: the pump is taken to keep
-// its rate.
-func (r *driver) lengthS() float64 {
-	_, end := r.spanS(func(leg) bool { return true })
-	return end
-}
-
-// riseS is when a cycle's rise begins and ends, near enough.
-func (r *driver) riseS(cycle int) (from, to float64) {
-	return r.spanS(func(l leg) bool { return l.cycle == cycle && l.up })
-}
-
-// spanS is when the legs of a kind begin and end, near enough.
-func (r *driver) spanS(of func(leg) bool) (from, to float64) {
-	s, at := 0.0, math.NaN()
-	from = math.NaN()
-	for _, l := range r.legs {
-		start := s
-		switch {
-		case l.waitS > 0:
-			s += l.waitS
-		case !math.IsNaN(at):
-			s += math.Abs(l.to-at) / l.rate
-			at = l.to
-		default:
-			s += l.to / l.rate
-			at = l.to
-		}
-		if of(l) {
-			if math.IsNaN(from) {
-				from = start
-			}
-			to = s
-		}
-	}
-	return from, to
 }

@@ -3,6 +3,7 @@ package simrig
 import (
 	"fmt"
 	"math"
+	"slices"
 
 	"tautramp/acquire/mill"
 )
@@ -38,6 +39,13 @@ const (
 	ChannelLag           FaultKind = "channel lag"
 	Saturation           FaultKind = "sensor saturation"
 	FaceCurl             FaultKind = "curl on one face"
+	DryScrew             FaultKind = "dry screw"
+	DryCollar            FaultKind = "dry collar"
+	ScrewBreakaway       FaultKind = "screw breaks loose hard"
+	StackFriction        FaultKind = "dry spring stack"
+	ScrewPlay            FaultKind = "play in the screw's drive"
+	CoilBind             FaultKind = "coil bind"
+	TyreCompression      FaultKind = "tyre compression"
 	TooFewCycles         FaultKind = "too few cycles"
 	TooFast              FaultKind = "ramp too fast"
 )
@@ -64,7 +72,6 @@ type job struct {
 	pullN   float64 // of both spans at the band's target
 	pushN   float64 // of the tensioner there
 	stiffNM float64 // of the band
-	lengthS float64 // of the drive, near enough
 }
 
 // Plant puts a fault on top of what a configuration already has, so that
@@ -79,7 +86,7 @@ func Plant(c *Config, f Fault) error {
 		if err != nil {
 			return err
 		}
-		j := job{rehearsal: &r.conf, stiffNM: r.conf.start.bandNM, lengthS: r.conf.driver.lengthS()}
+		j := job{rehearsal: &r.conf, stiffNM: r.conf.start.bandNM}
 		j.pullN = r.conf.truth.PullN(r.conf.workStressPa())
 		j.pushN = (j.pullN+r.conf.truth.WeightN)*(1+r.conf.truth.Mu) + r.conf.truth.F0N
 		return row.plant(c, f, j)
@@ -108,7 +115,7 @@ func add(plant func(*Config, Fault, job)) func(*Config, Fault, job) error {
 // oilOnly is add for what only a tensioner set by pressure has.
 func oilOnly(plant func(*Config, Fault, job)) func(*Config, Fault, job) error {
 	return func(c *Config, f Fault, j job) error {
-		if j.tensioner.SetBy != mill.SetByPressure {
+		if !j.byOil() {
 			return fmt.Errorf("%w: %s needs a tensioner set by pressure", ErrConfig, f.Kind)
 		}
 		plant(c, f, j)
@@ -116,9 +123,33 @@ func oilOnly(plant func(*Config, Fault, job)) func(*Config, Fault, job) error {
 	}
 }
 
+// screwOnly is add for what only a tensioner with a screw has.
+func screwOnly(plant func(*Config, Fault, job)) func(*Config, Fault, job) error {
+	return func(c *Config, f Fault, j job) error {
+		if j.byOil() {
+			return fmt.Errorf("%w: %s needs a tensioner with a screw", ErrConfig, f.Kind)
+		}
+		plant(c, f, j)
+		return nil
+	}
+}
+
+// gauge is the sensor of the setting.
+func (c *Config) gauge(by mill.SetBy) *Sensor {
+	switch by {
+	case mill.SetByTorque:
+		return &c.Torque
+	case mill.SetByTurns:
+		return &c.Turns
+	case mill.SetBySpring:
+		return &c.Spring
+	}
+	return &c.Pressure
+}
+
 // Faults lists what can be planted.
 func Faults() []FaultRow {
-	return append(append(frictionFaults(), oilFaults()...), append(measuringFaults(), otherFaults()...)...)
+	return slices.Concat(frictionFaults(), oilFaults(), screwFaults(), measuringFaults(), otherFaults())
 }
 
 func frictionFaults() []FaultRow {
@@ -133,13 +164,7 @@ func frictionFaults() []FaultRow {
 				c.Seals.Part += f.Size / 2
 				c.Seals.RestRatio = 1.3
 			})},
-		{StickSlip, "", "friction lost when the wheel breaks loose, part of the working wheel pull; on hoses that give", 0.02, 0.1,
-			add(func(c *Config, f Fault, j job) {
-				c.Oil.Give = max(c.Oil.Give, 3)
-				level := j.truth.F0N + j.truth.Mu*(j.pullN+j.truth.WeightN)
-				c.Law.RestRatio = orElse(c.Law.RestRatio, 1) + f.Size*j.pullN/level
-				c.Law.PreslidingM, c.Law.RenewM, c.Law.RestS = 3e-7, 2e-6, 0.3
-			})},
+		{StickSlip, "", "friction of the slide lost when the wheel breaks loose, part of the working wheel pull; on hoses that give", 0.02, 0.1, plantStickSlip},
 		{EndStop, "", "where the wheel meets its stop, part of the travel to the top of the drive", 0.6, 0.95,
 			add(func(c *Config, f Fault, j job) {
 				c.Chain.EndM = f.Size * j.topTravelM()
@@ -147,10 +172,43 @@ func frictionFaults() []FaultRow {
 	}
 }
 
+func plantStickSlip(c *Config, f Fault, j job) error {
+	level := j.truth.F0N + j.truth.Mu*(j.pullN+j.truth.WeightN)
+	if !(level > 0) {
+		return fmt.Errorf("%w: a slide without friction cannot stick and slip", ErrConfig)
+	}
+	c.Oil.Give = max(c.Oil.Give, 3)
+	c.Law.RestRatio = orElse(c.Law.RestRatio, 1) + f.Size*j.pullN/level
+	c.Law.PreslidingM, c.Law.RenewM, c.Law.RestS = 3e-7, 2e-6, 0.3
+	return nil
+}
+
 // topTravelM is the wheel's travel at the top of the drive.
 func (j job) topTravelM() float64 {
 	t := j.truth
+	if !j.byOil() {
+		return 1.22 * j.pullN * t.Screw.GiveMN
+	}
 	return ((j.Drive.TopPa*t.AreaM2*(1-t.SealPart)-t.F0N)/(1+t.Mu) - t.WeightN) / j.stiffNM
+}
+
+func screwFaults() []FaultRow {
+	return []FaultRow{
+		{DryScrew, "", "friction coefficient added to that of the thread", 0.03, 0.2,
+			screwOnly(func(c *Config, f Fault, _ job) { c.Screw.MoreThread += f.Size })},
+		{DryCollar, "", "friction coefficient added to that of the collar", 0.02, 0.15,
+			screwOnly(func(c *Config, f Fault, _ job) { c.Screw.MoreCollar += f.Size })},
+		{ScrewBreakaway, "", "torque of thread and collar after a rest over that of turning, less 1", 0.15, 0.8,
+			screwOnly(func(c *Config, f Fault, _ job) { c.Screw.RestRatio = orElse(c.Screw.RestRatio, 1) + f.Size })},
+		{StackFriction, "", "friction within the stack of disc springs, part of its force", 0.02, 0.12,
+			screwOnly(func(c *Config, f Fault, _ job) { c.Screw.StackMu += f.Size })},
+		{ScrewPlay, "rad", "free turn of the hand added", 0.1, 2,
+			screwOnly(func(c *Config, f Fault, _ job) { c.Screw.MorePlay += f.Size })},
+		{CoilBind, "", "squeeze at which the springs are solid, part of that at 1.22 times the band's target", 0.5, 0.95,
+			screwOnly(func(c *Config, f Fault, _ job) { c.Screw.BindPart = f.Size })},
+		{TyreCompression, "m", "travel that the tyres take before they are hard", 2e-4, 3e-3,
+			screwOnly(func(c *Config, f Fault, j job) { c.Chain.ToeM, c.Chain.ToeN = c.Chain.ToeM+f.Size, 0.4*j.pullN })},
+	}
 }
 
 func oilFaults() []FaultRow {
@@ -166,7 +224,14 @@ func oilFaults() []FaultRow {
 		{OilWarming, "K/s", "warming of the oil", 1e-3, 1e-2,
 			oilOnly(func(c *Config, f Fault, _ job) { c.Oil.WarmingKS += f.Size })},
 		{Saturation, "", "most that the transducer shows, part of the top of the drive; nothing tells it", 0.6, 0.98,
-			oilOnly(func(c *Config, f Fault, j job) { c.Pressure.ClipSI = f.Size * j.Drive.TopPa })},
+			func(c *Config, f Fault, j job) error {
+				top := orElse(j.Drive.TopPa, j.Drive.TopSI)
+				if j.tensioner.SetBy == mill.SetBySpring {
+					return fmt.Errorf("%w: %s of a spring's scale", ErrConfig, f.Kind)
+				}
+				c.gauge(j.tensioner.SetBy).ClipSI = f.Size * top
+				return nil
+			}},
 	}
 }
 
@@ -185,14 +250,17 @@ func measuringFaults() []FaultRow {
 				c.Stretch.SlipM += f.Size
 				c.Stretch.SlipAtS = orElse(f.AtS, j.midRiseS())
 			})},
-		{GaugeZero, "Pa", "what the transducer shows of no pressure", 5e3, 1e5,
-			oilOnly(func(c *Config, f Fault, _ job) { c.Pressure.OffsetSI += f.Size })},
+		{GaugeZero, "Pa", "what the setting's gauge shows of nothing; N m, rad or m where it is no pressure", 5e3, 1e5,
+			add(func(c *Config, f Fault, j job) { c.gauge(j.tensioner.SetBy).OffsetSI += f.Size })},
 		{GaugeSpan, "", "error of the setting's span, part of it", 0.005, 0.05,
-			oilOnly(func(c *Config, f Fault, _ job) { c.Pressure.Span = orElse(c.Pressure.Span, 1) * (1 + f.Size) })},
-		{StickyGauge, "Pa", "pressure by which a pointer must be off before it moves", 5e3, 1e5,
-			oilOnly(func(c *Config, f Fault, _ job) { c.Pressure.StickSI += f.Size })},
-		{BentGauge, "Pa", "most by which the transducer strays from straight, at the middle of its range", 1e4, 2e5,
-			oilOnly(func(c *Config, f Fault, _ job) { c.Pressure.BowSI += f.Size })},
+			add(func(c *Config, f Fault, j job) {
+				g := c.gauge(j.tensioner.SetBy)
+				g.Span = orElse(g.Span, 1) * (1 + f.Size)
+			})},
+		{StickyGauge, "Pa", "by which a pointer must be off before it moves; SI of the setting", 5e3, 1e5,
+			add(func(c *Config, f Fault, j job) { c.gauge(j.tensioner.SetBy).StickSI += f.Size })},
+		{BentGauge, "Pa", "most by which the gauge strays from straight, at the middle of its range; SI of the setting", 1e4, 2e5,
+			add(func(c *Config, f Fault, j job) { c.gauge(j.tensioner.SetBy).BowSI += f.Size })},
 		{BandWarming, "K/s", "warming of the band beyond the bar and the frame", 3e-4, 5e-3,
 			add(func(c *Config, f Fault, _ job) { c.Heat.BandKS += f.Size })},
 		{RigWarming, "K/s", "warming of an aluminium bar, and of the band with it", 3e-4, 5e-3,
@@ -219,12 +287,26 @@ func otherFaults() []FaultRow {
 		{TooFewCycles, "", "ramps made, beside no exercise", 1, 2,
 			add(func(c *Config, f Fault, _ job) { c.Drive.Exercise, c.Drive.Ramps = -1, int(f.Size) })},
 		{TooFast, "", "times the rate", 3, 20,
-			oilOnly(func(c *Config, f Fault, j job) { c.Drive.RatePaS = j.Drive.RatePaS * f.Size })},
+			add(func(c *Config, f Fault, j job) {
+				c.Drive.RatePaS, c.Drive.TurnRadS = j.Drive.RatePaS*f.Size, j.Drive.TurnRadS*f.Size
+			})},
 	}
 }
 
-// midRiseS is halfway up the rise of the middle cycle.
+// midRiseS is well up the rise of the middle cycle.
 func (j job) midRiseS() float64 {
-	from, to := j.driver.riseS((cycles(j.Drive.Exercise, 1) + cycles(j.Drive.Ramps, 3)) / 2)
+	w := newWorld(*j.rehearsal)
+	w.start(0)
+	middle := (cycles(j.Drive.Exercise, 1) + cycles(j.Drive.Ramps, 3)) / 2
+	from, to := math.NaN(), math.NaN()
+	for !w.drive.over() && w.drive.cycleNow() <= middle {
+		w.advance(w.now().t + 0.2)
+		if w.drive.cycleNow() == middle && w.drive.rising() {
+			to = w.now().t
+			if math.IsNaN(from) {
+				from = to
+			}
+		}
+	}
 	return from + 0.6*(to-from)
 }

@@ -30,7 +30,7 @@ func (r *rehearsal) sensors() error {
 	})
 	turning := mill.MeasuresSetting
 	r.Torque.fill(Sensor{
-		Count: Count{"N.m", 1, -2}, PerSecond: 50, LowSI: -200, HighSI: 200, NoiseSI: 0.05, Serial: r.serialOf(turning, mill.DimTorque),
+		Count: Count{"N.m", 1, -2}, PerSecond: 50, LowSI: -1000, HighSI: 1000, NoiseSI: 0.05, Serial: r.serialOf(turning, mill.DimTorque),
 	})
 	r.Turns.fill(Sensor{
 		Count: Count{"circ", 1, -4}, PerSecond: 50, LowSI: -200 * 2 * math.Pi, HighSI: 200 * 2 * math.Pi, NoiseSI: 2e-4 * 2 * math.Pi, Serial: r.serialOf(turning, mill.DimAngle),
