@@ -33,6 +33,7 @@ type Result struct {
 	Rising     Branch
 	Falling    Branch
 	Friction   Friction
+	Screw      Screw
 	Widths     []WidthAt
 	Working    WidthAt           // at the working setting: the target's where it is in range, else the highest on both branches
 	WidthRatio estimate.Estimate // half-width at the working setting / that setting

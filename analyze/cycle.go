@@ -115,6 +115,9 @@ func (w *work) chooseWindow() {
 	}
 	w.rate = estimate.Median(rates)
 	w.trace.smoothFor(w.rate)
+	if w.wrench != nil { // loosening torques fall far slower than raising ones rise
+		w.trace.smoothFor(math.Min(w.rate, w.wrench.loosenRate()))
+	}
 	w.x = make([]float64, len(w.t))
 	for i, t := range w.t {
 		w.x[i] = w.trace.smooth(t)

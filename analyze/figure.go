@@ -13,6 +13,7 @@ type ramp struct {
 	zeroM           float64       // NaN: not known
 	zeroVar         float64       // of scatter, m2
 	reach           [2][2]float64 // settings fitted, low and high: rising, falling
+	opposed         bool          // the falling settings act the other way: loosening torques
 }
 
 // covers is the range of setting that the ramp's line was fitted over.

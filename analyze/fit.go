@@ -36,7 +36,11 @@ func (w *work) quickFit(c *Cycle, at []int) (f Fit, ok bool) {
 		return Fit{}, false
 	}
 	f = Fit{LowSI: estimate.Quantile(x, 0), HighSI: estimate.Quantile(x, 1), Points: len(x)}
-	if f.HighSI-f.LowSI < leastShare*(c.TopSI-w.p[c.First]) {
+	whole := c.TopSI - w.p[c.First]
+	if w.wrench != nil && at[0] >= c.Peak { // loosening torques have a scale of their own
+		whole = f.HighSI
+	}
+	if f.HighSI-f.LowSI < leastShare*whole {
 		return Fit{}, false
 	}
 	var err error

@@ -161,7 +161,11 @@ func (w *work) fitFalling(c *Cycle, l *legs) bool {
 			return true
 		}
 		knee := w.topSI(c) - c.ReversalSI.Value
-		l.kneeSI = math.Min(l.foundKneeSI, knee-(reversalShare-1)*(math.Min(w.topSI(c), l.stopSI)-knee))
+		rounded := math.Min(w.topSI(c), l.stopSI) - knee
+		if w.wrench != nil { // that is the wrench turned round, the screw standing: nothing slides
+			rounded = 0
+		}
+		l.kneeSI = math.Min(l.foundKneeSI, knee-(reversalShare-1)*rounded)
 	}
 }
 
@@ -173,6 +177,11 @@ func (w *work) unloads(l *legs, i int) bool {
 
 // topSI is the highest setting of a cycle, its noise smoothed.
 func (w *work) topSI(c *Cycle) float64 {
+	if w.wrench != nil { // just behind it stands the loosening torque
+		if before, _ := w.trace.sides(w.t[c.Peak], w.trace.windowS); finite(before) {
+			return before
+		}
+	}
 	return w.trace.smooth(w.t[c.Peak])
 }
 

@@ -32,6 +32,7 @@ func (w *work) figures() {
 	w.branch(&w.res.Falling)
 	w.friction()
 	w.widths()
+	w.screw()
 	w.aim()
 	w.running()
 }
@@ -46,7 +47,7 @@ func (w *work) keepRamps() {
 			w.warn("branch-not-fitted", fmt.Sprintf("Cycle %d has no straight stretch on both branches and is not fitted.", i+1))
 			continue
 		}
-		r := ramp{rising: c.Rising.Line, falling: c.Falling.Line, zeroM: math.NaN()}
+		r := ramp{rising: c.Rising.Line, falling: c.Falling.Line, zeroM: math.NaN(), opposed: w.opposed()}
 		r.reach = [2][2]float64{{c.Rising.LowSI, c.Rising.HighSI}, {c.Falling.LowSI, c.Falling.HighSI}}
 		if c.Zero.Known() {
 			r.zeroM, r.zeroVar = c.Zero.Value, c.Zero.Random*c.Zero.Random

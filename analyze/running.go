@@ -27,6 +27,10 @@ func (w *work) running() {
 	set := func(all estimate.Estimate) {
 		b.AfterRisingPa, b.AfterFallingPa, b.MiddlePa = [2]estimate.Estimate{none, all}, [2]estimate.Estimate{all, none}, all
 	}
+	if by := w.setup.Tensioner.SetBy; by == mill.SetByTorque || by == mill.SetByTurns {
+		set(estimate.Unknown("the screw holds the wheel, and what friction leaves open behind it is not seen"))
+		return
+	}
 	if !w.res.AtRising.SettingSI.Known() || !w.res.AtFalling.SettingSI.Known() {
 		set(estimate.Unknown("the target's settings on both branches are needed"))
 		b.Locked = LockedBand{b.MiddlePa, b.MiddlePa}

@@ -90,10 +90,14 @@ func (w *work) lull(first, last int) lull {
 	blur := w.stillM()/slope + 3*w.trace.noise
 	fellOn := r.inSI-r.lowSI > 2*blur
 	beyond := r.outSI-r.lowSI > 1.25*reversal+2*blur
+	clear := 2 * blur
+	if w.wrench != nil { // its torque says nothing while the screw stands
+		fellOn, beyond, clear = false, w.turnedOn(r), math.Inf(-1)
+	}
 	if !fellOn && !beyond {
 		return l
 	}
-	w.takeLevel(&l, r, 2*blur)
+	w.takeLevel(&l, r, clear)
 	return l
 }
 

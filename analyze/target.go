@@ -111,6 +111,10 @@ func (w *work) budget(f figure, t TargetSetting) []Term {
 // frees the friction without losing the approach from below.
 func (w *work) aim() {
 	w.res.AtRising, w.res.AtFalling = w.targetOn(Rising), w.targetOn(Falling)
+	if w.setup.Tensioner.SetBy == mill.SetByTorque {
+		w.res.ResetSI = estimate.Unknown("a torque is no place to go back to")
+		return
+	}
 	if !w.res.AtFalling.SettingSI.Known() || !w.res.AtRising.SettingSI.Known() {
 		w.res.ResetSI = estimate.Unknown("the target's settings on both branches are needed")
 		return

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 
+	"tautramp/acquire/mill"
 	"tautramp/analyze/estimate"
 )
 
@@ -40,7 +41,11 @@ const widthRows = 9
 func halfWidth(risingSI float64) figure {
 	return func(r ramp, _ constants) float64 {
 		e := r.rising.A + r.rising.B*risingSI
-		return (risingSI - (e-r.falling.A)/r.falling.B) / 2
+		falling := (e - r.falling.A) / r.falling.B
+		if r.opposed {
+			falling = -falling
+		}
+		return (risingSI - falling) / 2
 	}
 }
 
@@ -94,6 +99,13 @@ func (w *work) common() (low, high float64) {
 // grade gives a verdict only where the whole 95 % interval lies on one side of
 // both limits.
 func (w *work) grade() {
+	switch w.setup.Tensioner.SetBy {
+	case mill.SetByTorque: // by its efficiency: see gradeScrew
+		return
+	case mill.SetByTurns:
+		w.warn("no-grade", "A tensioner set by turns is not graded: play and friction are not told apart in its loop.")
+		return
+	}
 	lo, hi := w.res.WidthRatio.Interval95()
 	low, high := gradeOf(lo), gradeOf(hi)
 	if low == high {

@@ -2,7 +2,9 @@ package analyze
 
 import (
 	"fmt"
+	"math"
 
+	"tautramp/acquire/mill"
 	"tautramp/acquire/pairing"
 	"tautramp/analyze/estimate"
 )
@@ -31,6 +33,7 @@ type work struct {
 	zeroFrom string
 	marks    zeroMarks // the operator's
 	timeStd  float64   // of the setting, SI, from the time between the channels
+	wrench   *wrench   // of a tensioner set by torque; else nil
 	early    int       // warnings raised before the figures
 }
 
@@ -45,7 +48,12 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 		}
 		return nil, fmt.Errorf("analyze: %d pairs where %d are needed: %w", n, leastPairs, ErrTooFewPairs)
 	}
-	w := &work{setup: s, set: set, res: &Result{Setup: s, Simulated: set.Simulated, Ended: set.Ended}}
+	var wrench *wrench
+	if s.Tensioner.SetBy == mill.SetByTorque {
+		wrench = newWrench(set)
+		set = wrench.read(set)
+	}
+	w := &work{setup: s, set: set, wrench: wrench, res: &Result{Setup: s, Simulated: set.Simulated, Ended: set.Ended}}
 	w.res.work = w
 	for i, q := range set.Pairs {
 		if !finite(q.T) || !finite(q.Setting) || !finite(q.Extension) {
@@ -63,6 +71,9 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 	w.pairStepS = estimate.Median(steps)
 	w.k = constants{modulusPa: s.ModulusPa.Value, gaugeM: s.GaugeM.Value, areaM2: s.NetAreaM2}
 	w.trace = newTrace(set, s.CountSI)
+	if wrench != nil { // what stands for a torque that was let go has no noise of its own
+		w.trace.noise = math.Max(w.trace.noise, wrench.noise)
+	}
 	w.slack = make([]bool, len(w.t))
 	return w, nil
 }
