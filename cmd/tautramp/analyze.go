@@ -2,6 +2,7 @@ package main
 
 import (
 	"context"
+	"errors"
 	"fmt"
 
 	"tautramp/acquire/mill"
@@ -37,6 +38,9 @@ func analyzeFile(path string, r resultFlags, system mill.System, target mill.Pre
 		return err
 	}
 	res, meta, err := computeResult(path, target)
+	if errors.Is(err, errBenchTest) {
+		return analyzeBench(path, r, system, e)
+	}
 	if err != nil {
 		return err
 	}

@@ -12,6 +12,7 @@ import (
 
 	"tautramp/acquire"
 	"tautramp/acquire/mill"
+	"tautramp/acquire/pairing"
 	"tautramp/acquire/port"
 	"tautramp/acquire/recording"
 	"tautramp/analyze/report"
@@ -155,21 +156,7 @@ func (o *captureOptions) devices() []acquire.Device {
 	return devices
 }
 
-func printCautions(e env) error {
-	for _, caution := range report.Cautions() {
-		for i, line := range wrap(caution, 70) {
-			head := "CAUTION  "
-			if i > 0 {
-				head = "         "
-			}
-			if _, err := fmt.Fprintf(e.stderr, "%s%s\n", head, line); err != nil {
-				return err
-			}
-		}
-	}
-	_, err := fmt.Fprint(e.stderr, "\n")
-	return err
-}
+func printCautions(e env) error { return printTexts("CAUTION  ", report.Cautions(), e) }
 
 // wrap cuts text into lines of at most so many bytes, at spaces.
 func wrap(text string, width int) []string {
@@ -220,7 +207,7 @@ func record(ctx context.Context, job recordJob, e env) error {
 	}
 	screen.end(summary)
 	if err := errors.Join(err, closeErr); err != nil {
-		return keepOrRemove(job.path, summary, err)
+		return keepOrRemove(job.path, "tautramp analyze "+job.path, summary.Alarm, summary.Counters, err)
 	}
 	screen.line("recording: " + job.path)
 	if summary.Alarm != "" {
@@ -229,15 +216,15 @@ func record(ctx context.Context, job recordJob, e env) error {
 	return nil
 }
 
-// keepOrRemove says where the data are when a capture fails; a recording that
-// holds none is taken away again.
-func keepOrRemove(path string, summary visit.Summary, err error) error {
-	if summary.Alarm != "" {
-		err = errors.Join(err, &alarmError{summary.Alarm})
+// keepOrRemove says where the data are when a capture fails, and what can be
+// done with them; a recording that holds none is taken away again.
+func keepOrRemove(path, use, alarm string, counters []pairing.Counters, err error) error {
+	if alarm != "" {
+		err = errors.Join(err, &alarmError{alarm})
 	}
-	for _, c := range summary.Counters {
+	for _, c := range counters {
 		if c.Samples > 0 {
-			return fmt.Errorf("%w\nwhat was captured is kept: tautramp analyze %s", err, path)
+			return fmt.Errorf("%w\nwhat was captured is kept: %s", err, use)
 		}
 	}
 	return errors.Join(err, os.Remove(path))

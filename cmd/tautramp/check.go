@@ -11,6 +11,7 @@ import (
 	"tautramp/acquire/mill"
 	"tautramp/acquire/pairing"
 	"tautramp/acquire/recording"
+	"tautramp/cmd/tautramp/station"
 	"tautramp/protocol"
 )
 
@@ -75,13 +76,13 @@ func checkRecording(path string, e env) error {
 	}
 	var b bytes.Buffer
 	fmt.Fprintf(&b, "%s: %s\n", path, rec.Outcome)
-	fmt.Fprintf(&b, "tensioner %s, band %s, begun %s, %d entries\nseal %s\n", rec.Header.Tensioner, rec.Header.Band,
+	fmt.Fprintf(&b, "%s, begun %s, %d entries\nseal %s\n", aboutOf(rec.Header),
 		rec.Header.Started.Format("2006-01-02 15:04:05 -0700"), len(rec.Entries), rec.Seal)
 	if rec.TailBytes > 0 {
 		fmt.Fprintf(&b, "%d bytes after the last good seal are not used\n", rec.TailBytes)
 	}
 	if err == nil {
-		describePairs(&b, rec)
+		describe(&b, path, rec)
 	}
 	if _, err := b.WriteTo(e.stdout); err != nil {
 		return err
@@ -93,6 +94,36 @@ func checkRecording(path string, e env) error {
 		return &tornError{path}
 	}
 	return nil
+}
+
+// aboutOf is what was measured.
+func aboutOf(h recording.Header) string {
+	if h.Bench != nil {
+		return fmt.Sprintf("bench test of %s against %s", h.Bench.Tested, h.Bench.Reference)
+	}
+	return fmt.Sprintf("tensioner %s, band %s", h.Tensioner, h.Band)
+}
+
+func describe(w io.Writer, path string, rec *recording.Recording) {
+	if rec.Header.Bench == nil {
+		describePairs(w, rec)
+		return
+	}
+	chain, err := readChain(path)
+	if err != nil {
+		fmt.Fprintf(w, "no result can be computed: %v\n", err)
+		return
+	}
+	bench, err := station.Read(chain...)
+	if err != nil {
+		fmt.Fprintf(w, "no result can be computed: %v\n", err)
+		return
+	}
+	now := bench.Status()
+	fmt.Fprintf(w, "%d of %d points taken, in %d recordings\n", now.Taken, now.Planned, len(chain))
+	if !now.Done {
+		fmt.Fprintf(w, "tautramp bench --continue %s goes on\n", path)
+	}
 }
 
 // describePairs says what the recording can be used for; a recording without

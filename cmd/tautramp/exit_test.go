@@ -12,6 +12,8 @@ import (
 	"tautramp/acquire/port"
 	"tautramp/acquire/recording"
 	"tautramp/analyze"
+	"tautramp/analyze/gauge"
+	"tautramp/cmd/tautramp/station"
 )
 
 func TestEachClassOfErrorHasItsExitCode(t *testing.T) {
@@ -44,6 +46,15 @@ func TestEachClassOfErrorHasItsExitCode(t *testing.T) {
 		{&fs.PathError{Op: "open", Path: "x", Err: fs.ErrNotExist}, 11},
 		{&alarmError{"limit"}, 12},
 		{&tornError{"x.ramp"}, 13},
+		{&planError{"dial", &mill.ProfileError{Key: "steps", Problem: "missing"}}, 20},
+		{&poorReferenceError{"too poor"}, 21},
+		{station.ErrNoChannel, 22},
+		{&acquire.DeviceError{Name: "x", Err: station.ErrNoChannel}, 22},
+		{&continueError{"done"}, 23},
+		{station.ErrNotNext, 23},
+		{station.ErrNotBench, 23},
+		{gauge.ErrNoPoints, 24},
+		{errBenchTest, 7},
 		{errors.Join(analyze.ErrNoCycle, &alarmError{"limit"}), 12},
 	} {
 		wrapped := c.err

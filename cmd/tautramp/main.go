@@ -59,6 +59,7 @@ func verbs() []verb {
 		{"profile", "write an example mill.toml to fill in", runProfile},
 		{"ports", "list the serial ports of this computer", runPorts},
 		{"capture", "record a visit: ramp up and down, then the result", runCapture},
+		{"bench", "test a gauge against a reference, by foot switch", runBench},
 		{"analyze", "compute the result of a recording again", runAnalyze},
 		{"card", "write the card for the mill from a recording", runCard},
 		{"import", "make a recording from a text file of wire lines", runImport},

@@ -51,17 +51,10 @@ type site struct {
 }
 
 func (p *profileFlags) load(e env) (site, error) {
-	s := site{text: mill.Example()}
-	if p.mill != "" {
-		text, err := os.ReadFile(p.mill)
-		if err != nil {
-			return s, fmt.Errorf("no mill profile: %w", err)
-		}
-		s.text = text
-	}
+	var s site
 	var err error
-	if s.profile, err = mill.Parse(s.text); err != nil {
-		return s, fmt.Errorf("%s: %w", p.mill, err)
+	if s.text, s.profile, err = readProfile(p.mill); err != nil {
+		return s, err
 	}
 	if s.tensioner, err = s.profile.FindTensioner(p.tensioner); err != nil {
 		return s, fmt.Errorf("--tensioner: %w", err)
@@ -70,4 +63,17 @@ func (p *profileFlags) load(e env) (site, error) {
 		return s, fmt.Errorf("--band: %w", err)
 	}
 	return s, nil
+}
+
+// readProfile reads a mill.toml; "" is the example.
+func readProfile(path string) (text []byte, p *mill.Profile, err error) {
+	if path == "" {
+		path, text = "the example", mill.Example()
+	} else if text, err = os.ReadFile(path); err != nil {
+		return nil, nil, fmt.Errorf("no mill profile: %w", err)
+	}
+	if p, err = mill.Parse(text); err != nil {
+		return text, nil, fmt.Errorf("%s: %w", path, err)
+	}
+	return text, p, nil
 }

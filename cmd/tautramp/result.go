@@ -2,6 +2,7 @@ package main
 
 import (
 	"bytes"
+	"errors"
 	"fmt"
 	"io"
 	"path/filepath"
@@ -84,12 +85,18 @@ func (r *resultFlags) outputs() []string {
 // textOnScreen is false where a machine-readable result goes to the screen.
 func (r *resultFlags) textOnScreen() bool { return r.json != "-" && r.csv != "-" && r.pairs != "-" }
 
+// errBenchTest is a recording of a bench test where one of a visit is wanted.
+var errBenchTest = errors.New("it is a recording of a bench test, not of a visit to a tensioner")
+
 // computeResult reads a recording file and analyses it. It is the only way to
 // a result in this program.
 func computeResult(path string, target mill.Pressure) (*analyze.Result, report.Meta, error) {
 	rec, err := recording.ReadFile(path)
 	if err != nil {
 		return nil, report.Meta{}, err
+	}
+	if rec.Header.Bench != nil {
+		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, errBenchTest)
 	}
 	set, err := pairing.FromRecording(rec)
 	if err != nil {

@@ -47,6 +47,7 @@ type rigOptions struct {
 	tcp        []string
 	links      []string
 	log        string
+	bench      rigBench
 }
 
 func runRig(ctx context.Context, args []string, e env) error {
@@ -58,6 +59,9 @@ func runRig(ctx context.Context, args []string, e env) error {
 	}
 	if o.mill == "" && o.tensioner == "" && o.band == "" {
 		o.tensioner, o.band = demoTensioner, demoBand
+	}
+	if o.bench.plan != "" {
+		return o.serveBench(ctx, e)
 	}
 	r, err := o.build(e)
 	if err != nil {
@@ -87,6 +91,7 @@ func (o *rigOptions) add(fs *pflag.FlagSet) {
 	fs.Float64Var(&o.speed, "speed", 1, "clock factor; give capture the same")
 	fs.StringArrayVar(&o.tcp, "tcp", nil, "serve on this address instead of a pseudo-terminal, such as 127.0.0.1:7117; once for each board")
 	fs.StringArrayVar(&o.links, "link", nil, "fixed name for the port, a link to it; once for each board")
+	o.bench.add(fs)
 	fs.StringVar(&o.log, "log", "", "write the lines as a memory card would hold them to this file, and stop")
 }
 
@@ -104,24 +109,15 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 	if err != nil {
 		return nil, err
 	}
-	if o.boards != 1 && o.boards != 2 {
-		return nil, &usageError{"--boards must be 1 or 2"}
-	}
-	if !(o.speed > 0) || o.speed > 1000 {
-		return nil, &usageError{"--speed must be above 0 and at most 1000"}
+	boards, err := o.boardSpecs()
+	if err != nil {
+		return nil, err
 	}
 	c := simrig.Config{
 		Profile: s.profile, Tensioner: s.tensioner.Name, Band: s.band.Name, Seed: o.seed,
 		Law:    simrig.Law{Kind: simrig.LawKind(o.law)},
 		Drive:  simrig.Drive{Shape: simrig.Shape(o.shape), Exercise: noneIfZero(o.exercise), Ramps: noneIfZero(o.ramps), Repeat: true},
-		Boards: make([]simrig.BoardSpec, o.boards),
-	}
-	for i := range c.Boards {
-		// A computer that is busy for a second holds a fast rehearsal up for a minute.
-		c.Boards[i].QueueBytes = int(queueBytes * max(1, o.speed))
-	}
-	if o.boards == 2 {
-		c.Boards[1].TickPPM = o.ppm
+		Boards: boards,
 	}
 	if err := o.pace(s.tensioner, &c.Drive); err != nil {
 		return nil, err
@@ -162,6 +158,25 @@ func (o *rigOptions) pace(t mill.Tensioner, d *simrig.Drive) error {
 		d.TopSI = t.Rising(d.TopSI)
 	}
 	return nil
+}
+
+// boardSpecs are the boards that are asked for.
+func (o *rigOptions) boardSpecs() ([]simrig.BoardSpec, error) {
+	if o.boards != 1 && o.boards != 2 {
+		return nil, &usageError{"--boards must be 1 or 2"}
+	}
+	if !(o.speed > 0) || o.speed > 1000 {
+		return nil, &usageError{"--speed must be above 0 and at most 1000"}
+	}
+	boards := make([]simrig.BoardSpec, o.boards)
+	for i := range boards {
+		// A computer that is busy for a second holds a fast rehearsal up for a minute.
+		boards[i].QueueBytes = int(queueBytes * max(1, o.speed))
+	}
+	if o.boards == 2 {
+		boards[1].TickPPM = o.ppm
+	}
+	return boards, nil
 }
 
 // noneIfZero turns the command line's "0 = none" into the rig's "negative =

@@ -34,6 +34,7 @@ func TestScripts(t *testing.T) {
 			"alter":    alterByte,
 			"agrees":   agrees,
 			"awaittcp": awaitTCP,
+			"shopmill": writeShopMill, "awaitpoints": awaitPoints,
 		},
 		Setup: func(e *testscript.Env) error {
 			free, err := net.Listen("tcp", "127.0.0.1:0")

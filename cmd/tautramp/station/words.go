@@ -171,7 +171,7 @@ func (b *Bench) pointWords(s step) string {
 	case b.plan.Found == gauge.BySweep:
 		return fmt.Sprintf("slowly %s through %s", way, at)
 	case b.plan.Kind == gauge.Dial && s.target.Series == gauge.Tapped:
-		return fmt.Sprintf("pointer %s to %s, tap lightly, bring it to the mark again, hold, press", way, at)
+		return fmt.Sprintf("pointer %s to %s, tapping lightly, hold, press", way, at)
 	case b.plan.Kind == gauge.Dial:
 		return fmt.Sprintf("pointer %s to %s, no tapping, hold, press", way, at)
 	}
