@@ -30,6 +30,7 @@ type Result struct {
 	Setup      Setup
 	Points     []Point
 	Cycles     []Cycle
+	Steps      []Step // of the extension, in time order
 	Rising     Branch
 	Falling    Branch
 	Friction   Friction
@@ -68,6 +69,7 @@ func Analyze(in Input) (*Result, error) {
 	if err := w.findCycles(); err != nil {
 		return nil, err
 	}
+	w.findSteps()
 	w.fitCycles()
 	w.findZeros()
 	if err := w.pool(); err != nil {

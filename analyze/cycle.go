@@ -22,6 +22,7 @@ type Cycle struct {
 	Role         Role
 	First, Peak  int // pair indexes of the low turning point and the top
 	Last         int // pair index of the next low turning point
+	CutAt        int // pair index from which nothing is fitted because the mount slipped; Last+1 where it did not
 	TopSI        float64
 	Zero         estimate.Estimate // m, extension at zero tension
 	ZeroFrom     string            // convention used: "slack band", "operator's mark", or ""
@@ -119,8 +120,8 @@ func (w *work) chooseWindow() {
 		w.trace.smoothFor(math.Min(w.rate, w.wrench.loosenRate()))
 	}
 	w.x = make([]float64, len(w.t))
-	for i, t := range w.t {
-		w.x[i] = w.trace.smooth(t)
+	for i := range w.t {
+		w.x[i] = w.trace.smooth(w.own(i))
 	}
 	w.noiseM = w.stillNoise()
 }

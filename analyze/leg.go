@@ -36,8 +36,8 @@ func (w *work) fitCycles() {
 		c, l := &w.res.Cycles[i], &w.legs[i]
 		c.StopSI, c.StopRatio = math.Inf(1), math.NaN()
 		c.SeatingEndSI, c.ReversalSI = math.NaN(), estimate.Unknown("the cycle has no straight stretch on both branches")
-		l.rise = w.trace.leading(w.t[c.First], w.t[c.First:c.Peak+1], +1)
-		l.fall = w.trace.leading(w.t[c.Peak], w.t[c.Peak:c.Last+1], -1)
+		l.rise = w.leading(c, c.First, c.Peak, +1)
+		l.fall = w.leading(c, c.Peak, c.Last, -1)
 		l.ok = w.searchRising(c, l) && c.Role != Incomplete && w.searchFalling(c, l)
 	}
 	seat, ok := w.commonSeat()
@@ -50,6 +50,20 @@ func (w *work) fitCycles() {
 			w.refine(c, l)
 		}
 	}
+}
+
+// leading is which of the pairs of one leg lead the setting, none of them after
+// a step of the mount.
+func (w *work) leading(c *Cycle, first, last int, sign float64) []bool {
+	times := make([]float64, last-first+1)
+	for k := range times {
+		times[k] = w.own(first + k)
+	}
+	leads := w.trace.leading(times[0], times, sign)
+	for k := max(0, c.CutAt-first); k < len(leads); k++ {
+		leads[k] = false
+	}
+	return leads
 }
 
 // refine puts the branches' own estimator in the place of the quick lines by
@@ -178,11 +192,11 @@ func (w *work) unloads(l *legs, i int) bool {
 // topSI is the highest setting of a cycle, its noise smoothed.
 func (w *work) topSI(c *Cycle) float64 {
 	if w.wrench != nil { // just behind it stands the loosening torque
-		if before, _ := w.trace.sides(w.t[c.Peak], w.trace.windowS); finite(before) {
+		if before, _ := w.trace.sides(w.own(c.Peak), w.trace.windowS); finite(before) {
 			return before
 		}
 	}
-	return w.trace.smooth(w.t[c.Peak])
+	return w.x[c.Peak]
 }
 
 // reversal is the fall of the setting at the top before the extension follows:

@@ -51,7 +51,7 @@ func (w *work) judgeMarks() {
 		}
 		w.marks.Given++
 		zero := w.extensionAbout(m.T)
-		slack := w.nearestSlack(m.T)
+		slack := w.nearestSlack(m.T, false)
 		switch {
 		case !zero.Known():
 			w.marks.Unread++
@@ -73,7 +73,7 @@ func (w *work) judgeMarks() {
 func (w *work) markedZero(t float64) (zero estimate.Estimate) {
 	gap := math.Inf(1)
 	for _, m := range w.marks.holds {
-		if math.Abs(m.t-t) < gap {
+		if math.Abs(m.t-t) < gap && !w.slipped(m.t, t) {
 			gap, zero = math.Abs(m.t-t), m.zero
 		}
 	}
@@ -101,9 +101,12 @@ func (w *work) extensionAbout(t float64) estimate.Estimate {
 
 // lowestLevel is the lowest extension of the record, m; of three readings
 // together, so that one bad one does not make it.
-func (w *work) lowestLevel() float64 {
+func (w *work) lowestLevel() float64 { return w.lowestM(0, len(w.e)-1) }
+
+// lowestM is the same of the pairs from first to last.
+func (w *work) lowestM(first, last int) float64 {
 	low := math.Inf(1)
-	for i := 2; i < len(w.e); i++ {
+	for i := first + 2; i <= last; i++ {
 		low = math.Min(low, estimate.Median(w.e[i-2:i+1]))
 	}
 	return low

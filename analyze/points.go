@@ -27,7 +27,7 @@ func (w *work) markPoints() {
 				pt.Stress = (w.e[i] - c.Zero.Value) * w.k.paPerM()
 			}
 			if pt.Phase == Loading || pt.Phase == Unloading {
-				rates = append(rates, math.Abs(w.trace.gain(w.t[i], w.trace.windowS))/w.trace.windowS)
+				rates = append(rates, math.Abs(w.trace.gain(w.own(i), w.trace.windowS))/w.trace.windowS)
 			}
 		}
 		c.RateSI = estimate.Median(rates)
@@ -78,7 +78,7 @@ func (w *work) idle(i int) PhaseKind {
 // a tenth of what the ramps' rate would give, or than noise.
 func (w *work) still(i int) bool {
 	window := math.Max(w.trace.windowS, 0.5)
-	moved := math.Abs(w.trace.gain(w.t[i], window))
+	moved := math.Abs(w.trace.gain(w.own(i), window))
 	if math.IsNaN(moved) {
 		return true
 	}

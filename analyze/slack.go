@@ -49,10 +49,10 @@ func (w *work) findLulls() {
 	w.noiseM = w.stillNoise()
 	from := 0
 	for _, c := range w.res.Cycles {
-		w.lulls = append(w.lulls, w.lull(from, c.Peak))
+		w.lulls = append(w.lulls, w.lullClear(from, c.Peak))
 		from = c.Peak
 	}
-	w.lulls = append(w.lulls, w.lull(from, len(w.t)-1))
+	w.lulls = append(w.lulls, w.lullClear(from, len(w.t)-1))
 	w.confirmFirst()
 }
 
@@ -126,13 +126,13 @@ func (w *work) stillRun(first, last int) (run, bool) {
 	r := run{first: first + a, last: first + b, level: smooth[lowest], inSI: math.NaN(), outSI: math.NaN()}
 	r.lowSI = math.Inf(1)
 	for i := r.first; i <= r.last; i++ {
-		r.lowSI = math.Min(r.lowSI, w.trace.smooth(w.t[i]))
+		r.lowSI = math.Min(r.lowSI, w.x[i])
 	}
 	if r.first > first {
-		r.inSI = w.trace.smooth(w.t[r.first])
+		r.inSI = w.x[r.first]
 	}
 	if r.last < last {
-		r.outSI = w.trace.smooth(w.t[r.last])
+		r.outSI = w.x[r.last]
 	}
 	return r, true
 }
@@ -159,7 +159,7 @@ func (w *work) loopAt(eM float64) (slope, reversal float64, ok bool) {
 func (w *work) takeLevel(l *lull, r run, clearSI float64) {
 	var e []float64
 	for i := r.first; i <= r.last; i++ {
-		p := w.trace.smooth(w.t[i])
+		p := w.x[i]
 		if p > r.inSI-clearSI && i < (r.first+r.last)/2 || p > r.outSI-clearSI && i >= (r.first+r.last)/2 {
 			continue
 		}

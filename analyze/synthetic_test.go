@@ -27,6 +27,8 @@ type bench struct {
 	slackOffM                float64 // added while it is slack: a zero that lies
 	toePa                    float64 // stress held back while the band seats, at most
 	stopPa, beyond           float64 // above this stress, where it is not 0, the band takes this share of what it would
+	slipS, slipM             float64 // the mount slips by so much at a time; none where slipM is 0
+	jumpN                    float64 // by which friction is larger at rest: the load jumps once the setting has overcome it
 	countM, noiseM           float64
 	countSI, noiseSI         float64
 	settingHz, extensionHz   float64
@@ -59,7 +61,10 @@ func newBench(seed uint64) *bench {
 // returns the extension as it truly is.
 func (b *bench) settle(pPa float64) float64 {
 	q, was := pPa*b.areaM2, b.loadN
-	b.loadN = math.Min(math.Max(b.loadN, (q-b.f0N)/(1+b.mu)), (q+b.f0N)/(1-b.mu))
+	low, high := (q-b.f0N)/(1+b.mu), (q+b.f0N)/(1-b.mu)
+	if b.loadN < low-b.jumpN || b.loadN > high+b.jumpN || b.jumpN == 0 {
+		b.loadN = math.Min(math.Max(b.loadN, low), high)
+	}
 	stress := math.Max(0, b.loadN-b.weightN) / (2 * b.netM2)
 	if stress == 0 {
 		return b.zeroM + b.slackOffM
@@ -191,6 +196,9 @@ func (b *bench) measure(h *path) *pairing.Set {
 			b.f0N = f0N * (1 + b.wander*b.rng.NormFloat64())
 		}
 		truth[i] = b.settle(p)
+		if b.slipM != 0 && h.t[i] >= b.slipS {
+			truth[i] += b.slipM
+		}
 	}
 	b.f0N = f0N
 	set := &pairing.Set{

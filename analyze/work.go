@@ -18,6 +18,7 @@ type work struct {
 	x         []float64 // of the pairs: setting, smoothed
 	trace     *trace
 	pairStepS float64 // median time between pairs
+	lateS     float64 // by which the extension is late on the setting
 	noiseM    float64 // standard deviation of one extension reading, m
 	rate      float64 // of the fitted rises, mean, SI/s
 
@@ -77,6 +78,9 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 	w.slack = make([]bool, len(w.t))
 	return w, nil
 }
+
+// own is the instant of the setting that a pair's extension answers to.
+func (w *work) own(i int) float64 { return w.t[i] - w.lateS }
 
 // pick is the values of v at the indexes.
 func pick(v []float64, at []int) []float64 {

@@ -49,12 +49,19 @@ func (w *work) findZeros() {
 	for i := range w.res.Cycles {
 		c := &w.res.Cycles[i]
 		before, after := w.lulls[i].level, w.lulls[i+1].level
-		c.Zero, c.ZeroFrom = betweenZeros(before, after), slackBand
 		c.ReturnM = w.returned(before, after)
+		begins := w.begins(c, &w.legs[i])
+		if w.slipped(w.lulls[i].t, begins) {
+			before = estimate.Unknown("the mount slipped")
+		}
+		if w.slipped(begins, w.lulls[i+1].t) {
+			after = estimate.Unknown("the mount slipped")
+		}
+		c.Zero, c.ZeroFrom = betweenZeros(before, after), slackBand
 		if c.Zero.Known() {
 			continue
 		}
-		c.Zero, c.ZeroFrom = w.borrowedZero((w.t[c.First] + w.t[c.Last]) / 2)
+		c.Zero, c.ZeroFrom = w.borrowedZero(begins)
 		shared = math.Max(shared, c.Zero.Random)
 		c.Zero.Random, c.Zero.DoF = 0, math.Inf(1)
 	}
@@ -66,10 +73,18 @@ func (w *work) findZeros() {
 	}
 }
 
+// begins is the time of the first pair of a cycle that is fitted.
+func (w *work) begins(c *Cycle, l *legs) float64 {
+	if at := w.onRising(c, l); len(at) > 0 {
+		return w.t[at[0]]
+	}
+	return w.t[c.First]
+}
+
 // borrowedZero is the zero for a cycle about the time t that has no slack band
 // of its own.
 func (w *work) borrowedZero(t float64) (zero estimate.Estimate, from string) {
-	if z := w.nearestSlack(t); z.Known() {
+	if z := w.nearestSlack(t, true); z.Known() {
 		return z, slackBand
 	}
 	if z := w.markedZero(t); z.Known() {
@@ -106,12 +121,13 @@ func (w *work) returned(before, after estimate.Estimate) estimate.Estimate {
 	}
 }
 
-// nearestSlack borrows the zero of the slack band nearest in time.
-func (w *work) nearestSlack(t float64) estimate.Estimate {
+// nearestSlack borrows the zero of the slack band nearest in time, of the same
+// mounting only where that is asked for.
+func (w *work) nearestSlack(t float64, sameMount bool) estimate.Estimate {
 	var best estimate.Estimate
 	gap := math.Inf(1)
 	for _, l := range w.lulls {
-		if l.level.Known() && math.Abs(l.t-t) < gap {
+		if l.level.Known() && math.Abs(l.t-t) < gap && !(sameMount && w.slipped(l.t, t)) {
 			best, gap = l.level, math.Abs(l.t-t)
 		}
 	}

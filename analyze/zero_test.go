@@ -299,7 +299,7 @@ func TestMountThatSlipsIsReported(t *testing.T) {
 			set.Pairs[i].Extension += 20e-6
 		}
 	}
-	if r := analyzed(t, set); !warned(r, "mount-moved") {
+	if r := analyzed(t, set); !warned(r, "mount-step") {
 		t.Errorf("a slip of 0.02 mm goes unsaid: %v", r.Warnings)
 	}
 }

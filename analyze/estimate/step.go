@@ -55,10 +55,17 @@ type stepFinder struct {
 	sd          float64 // of the noise, in counts
 	tau         float64 // its memory
 	enough      float64 // gain of log likelihood
+	seen        map[[3]int]tried
+}
+
+// tried is a step that was tried, to be asked for again in a part of the series.
+type tried struct {
+	size Estimate
+	gain float64
 }
 
 func newStepFinder(r Readings, s StepSearch) (*stepFinder, error) {
-	f := &stepFinder{StepSearch: s}
+	f := &stepFinder{StepSearch: s, seen: map[[3]int]tried{}}
 	var y []float64
 	for i := range r.X {
 		f.count = math.Max(f.count, r.Hi[i]-r.Lo[i])
@@ -121,7 +128,7 @@ func (f *stepFinder) search(from, to int, steps *[]Step) {
 		if !f.changes(from, k, to) {
 			continue
 		}
-		if s, g := f.gain(max(from, k-f.Window), k, min(to, k+f.Window)); g > gain && math.Abs(s.Value) >= f.least {
+		if s, g := f.gainOnce(max(from, k-f.Window), k, min(to, k+f.Window)); g > gain && math.Abs(s.Value) >= f.least {
 			at, gain, size = k, g, s
 		}
 	}
@@ -139,6 +146,16 @@ func (f *stepFinder) changes(from, k, to int) bool {
 	const few = 5
 	before, after := Median(f.mid[max(from, k-few):k]), Median(f.mid[k:min(to, k+few)])
 	return math.Abs(after-before) >= f.least/2
+}
+
+func (f *stepFinder) gainOnce(from, k, to int) (size Estimate, gain float64) {
+	at := [3]int{from, k, to}
+	t, ok := f.seen[at]
+	if !ok {
+		t.size, t.gain = f.gain(from, k, to)
+		f.seen[at] = t
+	}
+	return t.size, t.gain
 }
 
 // gain is what a step before reading k gains in log likelihood over none, and

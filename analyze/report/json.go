@@ -38,6 +38,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 		{"recording", recordingJSON(r, m)},
 		{"setup", setupJSON(r.Setup, by)},
 		{"cycles", each(r.Cycles, func(c analyze.Cycle) object { return cycleJSON(c, by) })},
+		{"steps", each(r.Steps, stepJSON)},
 		{"zero_marks", object{
 			{"given", r.Marks.Given}, {"used", r.Marks.Used}, {"agree", r.Marks.Agree},
 			{"differ", r.Marks.Differ}, {"loaded", r.Marks.Loaded}, {"unread", r.Marks.Unread},
@@ -168,6 +169,15 @@ func fitJSON(f analyze.Fit, by setBy) any {
 		{"outliers", f.Outliers}, {"dependence", given(f.Dependence)},
 		{"shape", shapeJSON(f.Shape)}, {"bend", estimateJSON(f.Bend)},
 	}
+}
+
+// stepJSON is a jump of the stretch; cycle counts from 1, null outside any.
+func stepJSON(s analyze.Step) object {
+	var cycle any
+	if s.Cycle >= 0 {
+		cycle = s.Cycle + 1
+	}
+	return object{{"at_s", number(s.T)}, {"cycle", cycle}, {"size_m", estimateJSON(s.SizeM)}, {"kind", clean(string(s.Kind), nameLength)}}
 }
 
 func shapeJSON(s estimate.Shape) string {
