@@ -18,8 +18,9 @@ import (
 //   - Between tightening and loosening it passes through nothing, the screw
 //     standing: there the first torque that loosens stands for it.
 //
-// It was let go where it shows less than half of what it has shown on the way
-// up, or will still show on the way down. Tops are those of the extension, for
+// It was let go where it falls below half of what it has shown on the way up, or
+// will still show on the way down, with all on both sides that is clearly below
+// that: the torque builds up and dies away. Tops are those of the extension, for
 // the torque itself may rise while the load falls.
 type wrench struct {
 	t, raw  []float64
@@ -28,6 +29,7 @@ type wrench struct {
 	sign    []float64 // +1 tightening, -1 loosening by a torque of the other sign
 	back    []bool    // the screw is being let back
 	most    []float64 // highest torque so far on the way up, still to come on the way down
+	letGo   []bool    // nobody turns the screw
 	stands  []float64 // what stands for the torque while it is let go
 	noise   float64
 }
@@ -35,7 +37,7 @@ type wrench struct {
 func newWrench(set *pairing.Set) *wrench {
 	tr := newTrace(set, 0)
 	n := len(tr.t)
-	w := &wrench{t: tr.t, raw: tr.p, noise: tr.noise, sign: make([]float64, n), back: make([]bool, n), most: make([]float64, n), stands: make([]float64, n)}
+	w := &wrench{t: tr.t, raw: tr.p, noise: tr.noise, sign: make([]float64, n), back: make([]bool, n), most: make([]float64, n), letGo: make([]bool, n), stands: make([]float64, n)}
 	for i := range w.sign {
 		w.sign[i] = 1
 	}
@@ -150,6 +152,7 @@ func (w *wrench) bound() {
 			most = math.Max(most, w.about(i, from, to))
 			w.most[i] = most
 		}
+		w.release(from, to)
 		w.stand(from, to)
 		from = to
 	}
@@ -172,8 +175,8 @@ func (w *wrench) stand(from, to int) {
 	var last []float64
 	begun := from
 	for i := from; i < to; i++ {
-		if v := w.sign[i] * w.raw[i]; !w.letGo(i, v) {
-			last = append(last, v)
+		if !w.letGo[i] {
+			last = append(last, w.sign[i]*w.raw[i])
 		}
 		few := last[max(0, len(last)-fewReadings):]
 		w.stands[i] = estimate.Median(few)
@@ -186,16 +189,34 @@ func (w *wrench) stand(from, to int) {
 	}
 }
 
-func (w *wrench) letGo(i int, v float64) bool { return v < w.most[i]/2 }
+// Torques of one way below these shares of the highest: clearly below it, and
+// let go. Judgement: a breakaway takes up to 1.3 times the running torque.
+const (
+	clearlyBelow = 0.9
+	letGoBelow   = 0.5
+)
 
-// value is the torque that turns the screw, where the wrench shows raw at a
-// reading.
-func (w *wrench) value(i int, raw float64) float64 {
-	v := raw * w.sign[i]
-	if w.letGo(i, v) && finite(w.stands[i]) {
-		return w.stands[i]
+// release marks where the torque of one leg is let go.
+func (w *wrench) release(from, to int) {
+	below := func(i int, share float64) bool {
+		return w.sign[i]*w.raw[i] < math.Min(share*w.most[i], w.most[i]-4*w.noise)
 	}
-	return v
+	for i := from; i < to; i++ {
+		if !below(i, letGoBelow) {
+			continue
+		}
+		first, last := i, i
+		for first > from && below(first-1, clearlyBelow) {
+			first--
+		}
+		for last+1 < to && below(last+1, clearlyBelow) {
+			last++
+		}
+		for k := first; k <= last; k++ {
+			w.letGo[k] = true
+		}
+		i = last
+	}
 }
 
 // read is the set with the torque that turns the screw.
@@ -204,22 +225,31 @@ func (w *wrench) read(set *pairing.Set) *pairing.Set {
 	out.Setting.Readings = append([]pairing.Reading(nil), set.Setting.Readings...)
 	for k, r := range out.Setting.Readings {
 		if i := w.at(r.T); i >= 0 && r.Status.Ok() {
-			out.Setting.Readings[k].Value = w.value(i, r.Value)
+			out.Setting.Readings[k].Value = w.value(i, i, r.Value)
 		}
 	}
 	out.Pairs = append([]pairing.Pair(nil), set.Pairs...)
-	for k, q := range out.Pairs {
-		out.Pairs[k].Setting = w.value(max(0, w.at(q.T)), q.Setting)
+	for k, q := range out.Pairs { // it lies between two readings
+		i := max(0, w.at(q.T))
+		out.Pairs[k].Setting = w.value(i, min(i+1, len(w.t)-1), q.Setting)
 	}
 	return &out
+}
+
+// value is the torque that turns the screw, where the wrench shows raw between
+// two readings.
+func (w *wrench) value(i, next int, raw float64) float64 {
+	if (w.letGo[i] || w.letGo[next] || w.sign[i] != w.sign[next]) && finite(w.stands[i]) {
+		return w.stands[i]
+	}
+	return raw * w.sign[i]
 }
 
 // pulled tells whether the torque turned the screw at a time, or tried to:
 // beyond noise, and not let go.
 func (w *wrench) pulled(t float64) bool {
 	i := max(0, w.at(t))
-	v := w.raw[i] * w.sign[i]
-	return v > 4*w.noise && !w.letGo(i, v)
+	return w.sign[i]*w.raw[i] > 4*w.noise && !w.letGo[i]
 }
 
 // loosenRate is how fast the loosening torque falls on the way down, stops
