@@ -22,7 +22,7 @@ func (w *work) warnings() {
 	add(t.Plan.ReferenceStreams() && t.Instruments.ReferenceCountSI == 0, "reference-count", "The least count of the reference is not known.")
 	add(t.Instruments.TestedCountSI == 0, "tested-count", "How finely the tested instrument can be read is not known: it is in no interval.")
 	add(!w.zeroTaken(), "no-zero", "The zero was not read both before and after.")
-	add(w.warm(), "warm", "The test was %.0f K away from 20 °C: a Bourdon tube may move by about 0.04 %% of its span for each.", w.awayK())
+	add(w.warm(), "warm", "The test was %.0f K away from 20 degrees C: a Bourdon tube may move by about 0.04 %% of its span for each.", w.awayK())
 	add(r.Flow.Pairs < 3 && t.Plan.Down, "few-pairs", "43 CFR 3175.135 asks for three rises and falls; there were %d.", r.Flow.Pairs)
 	w.notChecked()
 }
