@@ -74,6 +74,10 @@ const (
 	Mark       EventKind = "mark"     // operator's mark
 	ZeroMark   EventKind = "zero"     // operator says: the band is slack now
 	Undo       EventKind = "undo"     // operator takes the last mark back
+	Confirmed  EventKind = "confirm"  // operator confirms what was asked; Text says what
+	Vented     EventKind = "vent"     // operator says: the setting's transducer is closed off and vented now
+	LowerTurn  EventKind = "turn"     // operator says: this is the low end of the cycle, though nothing rests
+	Abort      EventKind = "abort"    // operator held the switch: stop, release slowly
 	Prompted   EventKind = "prompt"   // what the program asked the operator to do
 	Alarm      EventKind = "alarm"    // Text says which
 	CycleEnd   EventKind = "cycle"    // Text is the cycle's number

@@ -45,8 +45,10 @@ func rooms() map[string][]string {
 		"analyze/report":         {"acquire/mill", "analyze", "analyze/estimate", "analyze/findings", "analyze/gauge", gonum, plot},
 		"cmd/tautramp/station":   {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze/estimate", "analyze/gauge"},
 		"cmd/tautramp/visit":     {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze", "analyze/estimate"},
+		// page makes the events of recording that its viewers press, and reads no file.
+		"cmd/tautramp/page": {"acquire/mill", "acquire/recording", "cmd/tautramp/visit"},
 		"cmd/tautramp": {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "acquire/port", "acquire/simrig",
-			"analyze", "analyze/estimate", "analyze/findings", "analyze/gauge", "analyze/report", "cmd/tautramp/station", "cmd/tautramp/visit", "github.com/spf13/pflag", sys},
+			"analyze", "analyze/estimate", "analyze/findings", "analyze/gauge", "analyze/report", "cmd/tautramp/station", "cmd/tautramp/visit", "cmd/tautramp/page", "github.com/spf13/pflag", sys},
 	}
 }
 

@@ -61,7 +61,7 @@ func (o *benchOptions) record(ctx context.Context, job benchJob, e env) error {
 	if err != nil {
 		return &fileError{err}
 	}
-	keys, stopKeys := operatorKeys(e)
+	keys, stopKeys := operatorKeys(e, nil)
 	defer stopKeys()
 	screen := newBenchScreen(e, job.plan, o.speed)
 	summary, err := station.Run(ctx, station.Config{

@@ -180,6 +180,8 @@ type recordJob struct {
 	clock   acquire.Clock // nil: a clock of the header's factor
 	// patience is the real time that a lost port may take; 0 means acquire's.
 	patience time.Duration
+	said     <-chan recording.Event // from a page, beside the keys; may be nil
+	show     func(visit.Status)     // beside the screen; may be nil
 }
 
 // record runs the visit and closes the recording, whatever happens. An alarm
@@ -193,13 +195,17 @@ func record(ctx context.Context, job recordJob, e env) error {
 	if err != nil {
 		return &fileError{err}
 	}
-	keys, stopKeys := operatorKeys(e)
+	keys, stopKeys := operatorKeys(e, job.said)
 	defer stopKeys()
 	screen := newScreen(e, job.header, job.system)
+	show := screen.draw
+	if job.show != nil {
+		show = func(s visit.Status) { job.show(s); screen.draw(s) }
+	}
 	summary, err := visit.Run(ctx, visit.Config{
 		Acquire: acquire.Config{Devices: job.devices, Clock: job.clock, Out: out, Operator: keys,
 			GiveUpAfter: time.Duration(float64(job.patience) * job.header.ClockFactor)},
-		Header: job.header, Plan: job.header.Plan, Cautions: report.Cautions(), OnStatus: screen.draw,
+		Header: job.header, Plan: job.header.Plan, Cautions: report.Cautions(), OnStatus: show,
 	})
 	closeErr := out.Close(job.clock.Now(), job.clock.Wall())
 	if closeErr != nil {
@@ -232,12 +238,27 @@ func keepOrRemove(path, use, alarm string, counters []pairing.Counters, err erro
 
 // operatorKeys turns lines typed on the terminal into host events. The reader
 // of a terminal cannot be interrupted, so its goroutine is left to end with
-// the program; nothing it reads after stop is used.
-func operatorKeys(e env) (<-chan recording.Event, func()) {
+// the program; nothing it reads after stop is used. What else is said passes
+// through.
+func operatorKeys(e env, said <-chan recording.Event) (<-chan recording.Event, func()) {
 	if e.stdin == nil {
-		return nil, func() {}
+		return said, func() {}
 	}
 	events, done := make(chan recording.Event), make(chan struct{})
+	go func() {
+		for {
+			select {
+			case event := <-said:
+				select {
+				case events <- event:
+				case <-done:
+					return
+				}
+			case <-done:
+				return
+			}
+		}
+	}()
 	go func() {
 		for lines := bufio.NewScanner(e.stdin); lines.Scan(); {
 			key := strings.TrimSpace(lines.Text())

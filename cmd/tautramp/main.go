@@ -36,6 +36,7 @@ type env struct {
 	columns int       // of stderr where it is a terminal that can redraw a line, else 0
 	clock   func(factor float64) acquire.Clock
 	wall    func() time.Time
+	browse  func(address string) error // opens the browser; nil: there is none
 }
 
 func systemEnv() env {
@@ -44,6 +45,7 @@ func systemEnv() env {
 		columns: terminalWidth(os.Stderr),
 		clock:   acquire.NewClock,
 		wall:    time.Now,
+		browse:  browse,
 	}
 }
 
@@ -58,6 +60,7 @@ func verbs() []verb {
 	return []verb{
 		{"profile", "write an example mill.toml to fill in", runProfile},
 		{"ports", "list the serial ports of this computer", runPorts},
+		{"page", "the whole job in a browser", runPage},
 		{"capture", "record a visit: ramp up and down, then the result", runCapture},
 		{"bench", "test a gauge against a reference, by foot switch", runBench},
 		{"analyze", "compute the result of a recording again", runAnalyze},

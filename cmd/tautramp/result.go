@@ -95,6 +95,11 @@ func computeResult(path string, target mill.Pressure) (*analyze.Result, report.M
 	if err != nil {
 		return nil, report.Meta{}, err
 	}
+	return resultOf(rec, path, target)
+}
+
+// resultOf analyses a recording that was read; path is its name.
+func resultOf(rec *recording.Recording, path string, target mill.Pressure) (*analyze.Result, report.Meta, error) {
 	if rec.Header.Bench != nil {
 		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, errBenchTest)
 	}

@@ -15,6 +15,7 @@ const (
 	blindS      = 1.5  // without a good reading
 	blindPeriod = 5.0  // or so many sample periods, whichever is longer
 	blindHeldS  = 0.3  // real s that this must last: what waited in a queue comes at once,
+	abortClear  = 0.20 // of the limit: below it an abort has been followed
 	rehearsedS  = 2.0  // and so many on a faster clock, where every hiccup of the computer is long
 	risingS     = 3.0  // the setting counts as rising for so long after it last did
 )
@@ -77,6 +78,11 @@ func (a *alarms) setting(r pairing.Reading, now float64) {
 	if rate, std := a.raw.slope(); rate-stillDoubts*std > stillRate*a.site.limit {
 		a.rising = now
 	}
+	if r.Value < abortClear*a.site.limit {
+		a.over(Aborted, now)
+	} else {
+		a.stays(Aborted)
+	}
 	if u := a.on[UnderReading]; u != nil && r.Value < u.level-underClear*a.site.limit {
 		a.over(UnderReading, now)
 	} else {
@@ -97,6 +103,9 @@ func (a *alarms) note(channel int, r pairing.Reading, now float64) {
 
 // short takes the guard's word that the stretch does not follow.
 func (a *alarms) short(setting float64) { a.raise(UnderReading, setting, a.site.underText()) }
+
+// abort is the operator's own word to stop.
+func (a *alarms) abort() { a.raise(Aborted, math.NaN(), a.site.abortText()) }
 
 // missing is a channel that cannot be read, or nil: unseen for long enough.
 func (a *alarms) missing(now float64) *seen {
@@ -196,4 +205,4 @@ func (a *alarms) worst() string {
 }
 
 // gravity lists the alarms, the gravest first.
-func gravity() []AlarmKind { return []AlarmKind{OverLimit, UnderReading, Blind} }
+func gravity() []AlarmKind { return []AlarmKind{OverLimit, UnderReading, Aborted, Blind} }

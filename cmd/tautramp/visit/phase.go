@@ -13,8 +13,14 @@ const (
 	cleanRate  = 0.5  // of a still rate: the standard uncertainty of a rate that two seconds tell,
 	cleanNoise = 0.75 // or so much of the doubt that the noise alone makes
 
+	// Slower than this, warmth and creep move the stretch as far as a step of the
+	// ramp does.
 	paceSlow = 0.0015 // of the limit per s
-	paceFast = 0.012
+	// Faster than this, a delay that nobody notices puts an error of paceError
+	// between the branches: it opens the loop by rate times delay.
+	paceFast   = 0.012 // of the limit per s, where no target is known
+	paceError  = 0.005 // of the setting for the target
+	paceDelayS = 0.2   // beside the indicator's own period
 )
 
 // motion is the setting's rate as it is shown, and its standard uncertainty;
@@ -87,21 +93,31 @@ func (k *tracker) stillPhase() analyze.PhaseKind {
 
 // low reports that the setting is down where a cycle closes.
 func (k *tracker) low() bool {
-	return k.setting <= k.cycle.start+max(closedRest*k.rise(), k.band)
+	return k.setting <= k.closesAt()
+}
+
+// closesAt is the setting below which a cycle closes at rest.
+func (k *tracker) closesAt() float64 { return k.cycle.start + max(closedRest*k.rise(), k.band) }
+
+// paceBounds are the slowest and the fastest good pace, setting per second.
+func (k *tracker) paceBounds() (slow, fast float64) {
+	slow = paceSlow * k.site.limit
+	fast = orElse(paceError*k.site.full/(paceDelayS+k.periodS), paceFast*k.site.limit)
+	return slow, max(fast, 2*slow)
 }
 
 // paceNow judges the rate over several seconds, so that a pump's strokes do not
 // count one by one.
-func (k *tracker) paceNow() Pace {
+func (k *tracker) paceNow() (Pace, float64) {
 	rate, _ := k.pace.slope()
-	part := math.Abs(rate) / k.site.limit
+	slow, fast := k.paceBounds()
 	switch {
-	case k.stage == atRest || k.stillS() >= holdShows || math.IsNaN(part):
-		return ""
-	case part > paceFast:
-		return TooFast
-	case part < paceSlow:
-		return TooSlow
+	case k.stage == atRest || k.stillS() >= holdShows || math.IsNaN(rate):
+		return "", math.NaN()
+	case math.Abs(rate) > fast:
+		return TooFast, rate
+	case math.Abs(rate) < slow:
+		return TooSlow, rate
 	}
-	return GoodPace
+	return GoodPace, rate
 }

@@ -26,13 +26,13 @@ type site struct {
 }
 
 // words are what people do to one kind of tensioner.
-type words struct{ name, raise, lower, release string }
+type words struct{ name, raise, lower, toSlack, release string }
 
 func wordsOf(by mill.SetBy) words {
 	if by == mill.SetByPressure {
-		return words{"gauge", "pump up slowly", "open the valve slowly", "release the pressure slowly"}
+		return words{"gauge", "pump up slowly", "open the valve slowly", ", all the way until the band is slack, then rest", "release the pressure slowly"}
 	}
-	return words{"setting", "tighten slowly", "back it off slowly", "back it off slowly"}
+	return words{"setting", "tighten slowly", "back it off slowly", ", until the band is slack and rest, or declare the lower turn", "back it off slowly"}
 }
 
 // newSite works out the expected figures:

@@ -10,6 +10,7 @@ import (
 const (
 	slopeLow    = 0.7
 	slopeHigh   = 1.1
+	slopeFrom   = 0.9 // of the setting for half of the target
 	slopePoints = 6
 	slopeSpan   = 0.10 // of the limit
 )
@@ -43,7 +44,7 @@ func (k *tracker) learnSlope() {
 	if n := len(s.points); n == 0 || k.setting > s.points[n-1].p+spacing*k.site.limit {
 		s.points = append(s.points, state{k.setting, k.stretch})
 	}
-	if !s.judged && k.cycle.top > k.site.half {
+	if !s.judged && k.cycle.top > slopeFrom*k.site.half {
 		k.compareSlope()
 	}
 }

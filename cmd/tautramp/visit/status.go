@@ -50,9 +50,10 @@ func (w *watch) links() (links []string, away bool) {
 // status is all that a screen shows now.
 func (w *watch) status() Status {
 	k := w.tracker
-	s := Status{At: w.now, Pace: k.paceNow(), Phase: k.phase, Cycle: k.number(), Planned: k.planned(),
-		Exercise: k.number() <= k.plan.Exercise, Next: k.next(), GoalSI: k.goalSI(), Reply: w.reply, Done: k.finished}
+	s := Status{At: w.now, Phase: k.phase, Cycle: k.number(), Planned: k.planned(),
+		Resting: k.stage == atRest, Exercise: k.number() <= k.plan.Exercise, Next: k.next(), GoalSI: k.goalSI(), LowSI: k.lowSI(), Reply: w.reply, Done: k.finished, Simulated: w.live.Simulated()}
 	w.figures(&s)
+	s.SlowSI, s.FastSI = k.paceBounds()
 	for _, c := range w.live.Counters() {
 		s.Lost += c.Lost
 		s.Rejected += c.Rejected
@@ -68,7 +69,7 @@ func (w *watch) status() Status {
 		s.Next = "wait: there is no reading of " + c.name
 	}
 	if s.Next != said {
-		s.GoalSI = math.NaN()
+		s.GoalSI, s.LowSI = math.NaN(), math.NaN()
 	}
 	return s
 }
@@ -76,11 +77,12 @@ func (w *watch) status() Status {
 // figures fills in the numbers, of now or none.
 func (w *watch) figures(s *Status) {
 	nan := math.NaN()
-	s.SettingSI, s.RateSI, s.StretchM, s.StressPa = nan, nan, nan, nan
+	s.SettingSI, s.RateSI, s.StretchM, s.StressPa, s.PaceSI = nan, nan, nan, nan, nan
 	setting, extension := w.fresh(0), w.fresh(1)
 	if setting {
 		s.SettingSI = w.latest[0].Value
 		s.RateSI, _ = w.alarms.raw.slope()
+		s.Pace, s.PaceSI = w.tracker.paceNow()
 	}
 	if setting && extension {
 		s.StretchM, s.StressPa = w.tracker.stretchM(), w.tracker.stressPa()

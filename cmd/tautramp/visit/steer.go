@@ -23,9 +23,10 @@ const (
 )
 
 // halfOnly reports that this ramp is meant for half of the target: the first of
-// exercise, and every one until the slope fits the geometry.
+// exercise, a first one without exercise until its slope is known to fit the
+// geometry, and every one while the slope does not.
 func (k *tracker) halfOnly() bool {
-	return k.closed == 0 && k.plan.Exercise > 0 || k.check.advice != ""
+	return k.closed == 0 && (k.plan.Exercise > 0 || !k.check.judged) || k.check.advice != ""
 }
 
 // atGoal reports that the rise has gone as far as it should. To half of the
@@ -68,10 +69,18 @@ func (k *tracker) goalSI() float64 {
 	return k.goal
 }
 
+// lowSI is where the cycle closes, while the operator is sent down.
+func (k *tracker) lowSI() float64 {
+	if k.finished || k.stage == atRest || k.step != lowering {
+		return math.NaN()
+	}
+	return k.closesAt()
+}
+
 // steer moves on what the operator is asked to do.
 func (k *tracker) steer() {
-	if k.stage == atRest || k.check.advice != k.aimedWith {
-		k.goal, k.aimedWith = k.aim(), k.check.advice
+	if half := k.halfOnly(); k.stage == atRest || half != k.aimedHalf {
+		k.goal, k.aimedHalf = k.aim(), half
 	}
 	if k.stage == atRest {
 		k.step, k.heldAt = raising, math.NaN()

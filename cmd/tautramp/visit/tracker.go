@@ -47,6 +47,7 @@ type tracker struct {
 	plan recording.Plan
 
 	countM  float64 // least count of the extension
+	periodS float64 // between its readings
 	noiseSI float64 // of the setting
 	noiseM  float64 // of the extension
 	band    float64 // dead band of the setting
@@ -72,7 +73,7 @@ type tracker struct {
 	heldAt  float64 // since when it is held; NaN before
 	phase   analyze.PhaseKind
 
-	aimedWith string // the advice that the goal was set with
+	aimedHalf bool // the goal is for half of the target
 	finished  bool
 	events    []recording.Event
 }
@@ -227,7 +228,7 @@ func (k *tracker) begin() {
 	k.guard.begin(k.cycle.start)
 	k.check.points, k.check.judged = k.check.points[:0], false
 	k.step, k.heldAt = raising, math.NaN()
-	k.goal, k.aimedWith = k.aim(), k.check.advice
+	k.goal, k.aimedHalf = k.aim(), k.halfOnly()
 }
 
 // leastRise is what a rise must be to count as a cycle.
@@ -258,6 +259,17 @@ func (k *tracker) tryClose() {
 		k.stage = atRest
 		k.cycle.low = k.setting
 	}
+}
+
+// declareTurn is the operator saying that this is the low end: a screw never
+// comes to rest at a slack band. A cycle that has come down is closed.
+func (k *tracker) declareTurn() ReplyKind {
+	if k.stage != onFall || k.rise() < k.leastRise() || k.cycle.top-k.setting < clearFall*k.site.limit {
+		return TurnRefused
+	}
+	k.close()
+	k.stage, k.cycle.low = atRest, k.setting
+	return TurnTaken
 }
 
 // close ends a cycle; a bump does not count.

@@ -48,6 +48,7 @@ const (
 	NoAlarm      AlarmKind = ""
 	OverLimit    AlarmKind = "limit"         // the setting reached its limit
 	UnderReading AlarmKind = "under-reading" // the setting rises, the extension does not follow
+	Aborted      AlarmKind = "abort"         // the operator held the switch
 	Blind        AlarmKind = "no reading"    // the setting rises, and a sensor cannot be read
 )
 
@@ -70,6 +71,11 @@ const (
 	ZeroRefused ReplyKind = "kept for the result, not used here: the band is not surely slack" // for the live figures; the event is recorded all the same
 	MarkTaken   ReplyKind = "mark taken"
 	Undone      ReplyKind = "last mark taken back"
+	VentTaken   ReplyKind = "vented zero noted"
+	TurnTaken   ReplyKind = "lower turn taken, the cycle is closed"
+	TurnRefused ReplyKind = "no lower turn here: the setting has not come down from a ramp"
+	AbortTaken  ReplyKind = "abort"
+	Noted       ReplyKind = "noted"
 	NothingToDo ReplyKind = "nothing to undo"
 )
 
@@ -88,15 +94,20 @@ type Status struct {
 	At        time.Duration
 	SettingSI float64
 	GoalSI    float64 // setting up to which Next sends the operator; NaN when it sends nobody up, or where not known; never above 0.95 of the limit
+	LowSI     float64 // setting down to which Next sends the operator, where the cycle closes; NaN when it sends nobody down
 	StretchM  float64 // extension since the zero of this cycle; NaN before there is one
 	StressPa  float64 // provisional
 	RateSI    float64 // setting per second, smoothed; Phase agrees with its sign
 	Pace      Pace
+	PaceSI    float64 // setting per second over several seconds, by which Pace is judged; NaN where there is none
+	SlowSI    float64 // bounds of a good PaceSI, either way
+	FastSI    float64
 	Phase     analyze.PhaseKind
 	Cycle     int // 1-based
 	Planned   int // 0: no end is planned
 	Exercise  bool
-	Lost      int // sequence numbers missing
+	Resting   bool // at the low end, before a rise
+	Lost      int  // sequence numbers missing
 	Rejected  int
 	Link      []string // by board: "" when all is well, else what is not
 	Alarm     AlarmKind
@@ -104,4 +115,5 @@ type Status struct {
 	Next      string // what to do next, one sentence without figures
 	Reply     Reply  // to the last key
 	Done      bool
+	Simulated bool // a board says that what it measures is made up
 }

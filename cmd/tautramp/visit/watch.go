@@ -1,7 +1,6 @@
 package visit
 
 import (
-	"bytes"
 	"context"
 	"fmt"
 	"slices"
@@ -9,7 +8,6 @@ import (
 
 	"tautramp/acquire/pairing"
 	"tautramp/acquire/recording"
-	"tautramp/protocol"
 )
 
 // watch sees every entry of the capture, in order, from one goroutine.
@@ -29,6 +27,7 @@ type watch struct {
 	next    string // as recorded last
 	advised string
 	factor  float64 // clock seconds per real second
+	press   hold    // on a board's own button
 	drawn   Status
 	drawnAt time.Duration
 }
@@ -70,8 +69,9 @@ func (w *watch) entry(e recording.Entry) []recording.Event {
 		w.event(e)
 	} else if e.Device >= 0 && e.Device < len(w.link) {
 		w.link[e.Device] = ""
-		w.button(e.Wire)
+		out = append(out, w.button(e.Wire)...)
 	}
+	out = append(out, w.held()...)
 	paired := false
 	for _, p := range w.live.Add(e) {
 		paired = true
@@ -116,7 +116,7 @@ func (w *watch) readings() {
 		return
 	}
 	now := w.now.Seconds()
-	w.tracker.countM = extension.CountSI
+	w.tracker.countM, w.tracker.periodS = extension.CountSI, extension.PeriodS
 	newest := [2]pairing.Reading{}
 	newest[0], newest[1] = w.live.Latest()
 	for i, r := range newest {
@@ -137,17 +137,6 @@ func (w *watch) readings() {
 	w.alarms.time(now)
 }
 
-// button takes a press on a board's own button, which is a mark.
-func (w *watch) button(wire []byte) {
-	if !bytes.HasPrefix(wire, []byte("btn ")) {
-		return
-	}
-	r, bad := protocol.Parse(wire)
-	if b, ok := r.(protocol.Button); ok && bad == nil && b.Down {
-		w.answer(MarkTaken, w.tracker.zero.markPlain())
-	}
-}
-
 // event takes what the host did.
 func (w *watch) event(e recording.Entry) {
 	switch e.Event.Kind {
@@ -157,6 +146,15 @@ func (w *watch) event(e recording.Entry) {
 		w.answer(MarkTaken, w.tracker.zero.markPlain())
 	case recording.Undo:
 		w.answer(w.tracker.zero.undo(), 0)
+	case recording.Vented:
+		w.answer(VentTaken, 0)
+	case recording.Confirmed:
+		w.answer(Noted, 0)
+	case recording.LowerTurn:
+		w.answer(w.tracker.declareTurn(), 0)
+	case recording.Abort:
+		w.alarms.abort()
+		w.answer(AbortTaken, 0)
 	case recording.LostPort:
 		w.setLink(e.Device, linkLost)
 	case recording.Silent:

@@ -28,6 +28,10 @@ func (s site) blindText(c seen) string {
 	return fmt.Sprintf(why+" while the %s rises: stop, %s", c.name, s.words.name, s.words.release)
 }
 
+func (s site) abortText() string {
+	return "the switch was held: stop, " + s.words.release
+}
+
 func (s site) slopeAdvice(ratio float64) string {
 	return fmt.Sprintf("do not go higher yet: the stretch grows %.2f times as fast as cylinders and band section say; check the clamps, the gauge length, the bore and the band's measures", ratio)
 }
@@ -58,7 +62,7 @@ func (k *tracker) next() string {
 	case !k.seen:
 		return nextWait
 	case k.stage != atRest && k.step == lowering:
-		return w.lower + ", all the way until the band is slack, then rest"
+		return w.lower + w.toSlack
 	case k.stage != atRest && k.atGoal() && k.check.advice != "":
 		return k.check.advice
 	case k.stage != atRest && k.step == holding:

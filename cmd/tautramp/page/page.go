@@ -1,0 +1,150 @@
+// Package page draws a visit in a browser and sends back what the operator
+// presses: New gives an http.Handler with everything it needs inside. It shows
+// visit.Status as it is, leads through the whole job, and hands out the papers
+// that package report makes.
+//
+// Deliberately absent: files, ports and clocks (Deps brings them), any figure
+// of the trade, and resources from outside. The wording and the look may
+// change; nothing but its own assets may rely on the addresses that it serves.
+package page
+
+import (
+	"context"
+	"errors"
+	"io"
+	"io/fs"
+	"net/http"
+	"time"
+
+	"tautramp/acquire/mill"
+	"tautramp/acquire/recording"
+	"tautramp/cmd/tautramp/visit"
+)
+
+// Deps is the program around the page. Its functions are called from any
+// goroutine; each may be nil, and the page then does without.
+type Deps struct {
+	Program string // name and version
+	System  mill.System
+	Access  Access
+
+	Mill     func() ([]byte, error) // text of the folder's mill.toml; fs.ErrNotExist when there is none
+	SaveMill func(text []byte) error
+	Ports    func() ([]Port, error)
+
+	// Visit runs one order to its end and returns its papers. It ends soon
+	// after ctx does. An error beside papers is shown with them.
+	Visit func(ctx context.Context, o Order) (Papers, error)
+	// Open makes the papers of a recording of another day.
+	Open func(recording io.Reader) (Papers, error)
+	// Bell sounds the computer that the program runs on.
+	Bell func()
+}
+
+// Port is a place where a board may be plugged in.
+type Port struct {
+	Path  string `json:"path"`
+	About string `json:"about"` // what the board calls itself; "" when not known
+	Named bool   `json:"named"` // by whoever started the program: it is meant to be used
+}
+
+// Kind is what an order is for.
+type Kind string
+
+// The kinds of order.
+const (
+	Ramps  Kind = "ramps"  // a calibration: exercise, then ramps
+	Face   Kind = "face"   // the same on the band's other face, going on from a recording
+	Verify Kind = "verify" // one approach to the number on the card, going on from a recording
+)
+
+// Order is one capture as asked for in the browser.
+type Order struct {
+	Kind      Kind
+	Tensioner string
+	Band      string
+	Ports     []string
+	Plan      recording.Plan
+	Vent      bool   // the setting's sensor will be vented for its zero: the page asks
+	Continues string // Papers.Seal of the recording that it goes on from, or ""
+
+	Said <-chan recording.Event // what the operator presses and confirms
+	Show func(visit.Status)     // to be called with every status
+}
+
+// Name is a file name for the recording of an order: the tensioner's name, fit
+// for a file, what it is for, and the time.
+func (o Order) Name(tensioner string, at time.Time) string {
+	what := ""
+	if o.Kind != Ramps {
+		what = "-" + string(o.Kind)
+	}
+	return tensioner + what + "-" + at.Format("20060102-150405") + ".ramp"
+}
+
+// Papers is what came of a recording. A nil function is a paper that there is
+// not.
+type Papers struct {
+	Name    string // of the recording, without folders
+	Seal    string
+	Alarm   string // the gravest one raised; "" for none
+	Figures func(w io.Writer) error
+	Sheet   func(w io.Writer, s mill.System) error // the report, one HTML page without scripts
+	Plot    func(w io.Writer, s mill.System) error // the loop as SVG
+}
+
+// Server is the page. The zero value is of no use; see New.
+type Server struct {
+	deps Deps
+	mux  *http.ServeMux
+	gate gate
+	hub  *hub
+	desk *desk
+}
+
+// New makes the page. Visits that it starts end with ctx.
+func New(ctx context.Context, deps Deps) *Server {
+	s := &Server{deps: deps, mux: http.NewServeMux(), gate: gate{deps.Access}, hub: newHub()}
+	s.desk = newDesk(ctx, deps, s.hub)
+	s.routes()
+	return s
+}
+
+func (s *Server) routes() {
+	s.assets()
+	s.mux.HandleFunc("GET /live", s.live)
+	s.mux.HandleFunc("GET /trail", s.trail)
+	s.mux.HandleFunc("POST /do", s.do)
+	s.mux.HandleFunc("POST /start", s.start)
+	s.mux.HandleFunc("GET /ports", s.ports)
+	s.mux.HandleFunc("GET /mill", s.readMill)
+	s.mux.HandleFunc("POST /mill", s.writeMill)
+	s.mux.HandleFunc("POST /open", s.open)
+	s.mux.HandleFunc("GET /papers/{id}/{paper}", s.paper)
+}
+
+// ServeHTTP answers one request, if the gate lets it in.
+func (s *Server) ServeHTTP(w http.ResponseWriter, r *http.Request) {
+	if s.gate.admits(w, r) {
+		s.mux.ServeHTTP(w, r)
+	}
+}
+
+// Run does an order as if it had been given in the browser, and waits for its
+// end. ErrBusy while another one runs.
+func (s *Server) Run(o Order) (Papers, error) {
+	r, ctx, err := s.desk.begin(o)
+	if err != nil {
+		return Papers{}, err
+	}
+	return s.desk.finish(ctx, r)
+}
+
+// Wait returns when no visit runs any more.
+func (s *Server) Wait() { s.desk.runs.Wait() }
+
+// ErrBusy is an order while another one runs.
+var ErrBusy = errors.New("a visit is running already")
+
+// noMill tells that the folder has no mill.toml.
+func noMill(err error) bool { return errors.Is(err, fs.ErrNotExist) }
