@@ -13,7 +13,7 @@ type Chain struct {
 	ToeN        float64 // ToeM: pull at which all but 1/e of it is taken; 0 means 1,500 N
 	EndM        float64 // travel beyond the taut band at which the wheel meets its upper stop; 0 means none
 	BrakeN      float64 // pull that brake or dragging wheel can carry from span to span; 0 means none, the spans pull alike
-	Lopsided    float64 // with BrakeN: difference of the spans, part of the wheel pull's half, while the wheel cannot turn
+	Lopsided    float64 // with BrakeN: difference of the spans, part of their mean, while the wheel cannot turn
 }
 
 // tyreS are the times of the tyres' late give, s: evenly spread on a logarithm,
@@ -97,7 +97,7 @@ func (c *chain) end(travelM float64) {
 	}
 	if c.BrakeN > 0 {
 		// The difference builds up with the pull until the wheel turns against its drag.
-		skew := c.skewN + c.Lopsided*(c.pullN-before)
+		skew := c.skewN + c.Lopsided/2*(c.pullN-before)
 		c.skewN = max(-c.BrakeN, min(c.BrakeN, skew))
 		if c.pullN == 0 {
 			c.skewN = 0

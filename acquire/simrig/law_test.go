@@ -27,6 +27,18 @@ type frictionVectors struct {
 		Fc, Fs, Vs, Sigma2 float64
 		V, F               []float64
 	}
+	PI struct{ U, R, W, Y []float64 } `json:"prandtl_ishlinskii"`
+
+	Play struct {
+		U, Y []float64
+		R    float64
+	}
+	LuGre struct{ Sigma0, Sigma1, Sigma2, Fc, Fs, Vs, V, Z float64 }
+	Leak  struct {
+		Y0, Tau float64
+		Low     float64 `json:"y_inf"`
+		T, Y    []float64
+	} `json:"exp_leak"`
 }
 
 func readVectors(t *testing.T) frictionVectors {
@@ -124,4 +136,66 @@ func TestNonsenseLawsAreRefused(t *testing.T) {
 			t.Errorf("%+v: got error %v, want ErrConfig", l, err)
 		}
 	}
+}
+
+// The stops that make Prandtl-Ishlinskii's law give its published output, and a
+// closed loop from -3 to 3 the published area 4.0.
+func TestStopsMakeThePublishedPrandtlIshlinskiiOutput(t *testing.T) {
+	v := readVectors(t).PI
+	strain := make([]float64, len(v.R))
+	var area, before float64
+	for i := 1; i < len(v.U); i++ {
+		du, y := v.U[i]-v.U[i-1], 0.0
+		for k, r := range v.R {
+			if r > 0 {
+				strain[k], _ = stop(strain[k], du, r)
+			}
+			y += v.W[k] * (v.U[i] - r*strain[k])
+		}
+		near(t, "output", y, v.Y[i], 1e-12)
+		if i > 3 { // from the first reversal round to it again
+			area -= (y + before) / 2 * du
+		}
+		before = y
+	}
+	near(t, "area of the loop", area, 4, 1e-12)
+}
+
+// LuGre at steady speed: bristles bent by the published 1.18393972059e-5 m, and
+// the published force of the Stribeck curve with its viscous part.
+func TestLuGreAtSteadySpeed(t *testing.T) {
+	v, stribeck := readVectors(t).LuGre, readVectors(t).Stribeck
+	for i, speed := range stribeck.V {
+		c := mustContact(t, Law{Kind: LuGre, PreslidingM: v.Fc / v.Sigma0, StaticRatio: v.Fs / v.Fc, StribeckMS: v.Vs,
+			MemoryS: 1e-9, BristleNsM: v.Sigma1, ViscousNsM: v.Sigma2}, v.Fc, 0)
+		for range 2000 {
+			c.move(speed*1e-3, 1e-3)
+		}
+		force, _ := c.forceN(speed*1e-3, 1e-3, 0, 0)
+		near(t, "force", force, stribeck.F[i], 1e-9)
+		if speed == v.V {
+			near(t, "bend of the bristles", c.strain*v.Fc/v.Sigma0, v.Z, 1e-15)
+		}
+	}
+}
+
+// Bristles that are pushed and let go come back: within the presliding range
+// LuGre is a damped spring, so a small push leaves no travel behind it.
+func TestLuGreIsElasticBeforeItSlides(t *testing.T) {
+	c := mustContact(t, Law{Kind: LuGre, PreslidingM: 1e-5, StaticRatio: 1.5}, 1, 0)
+	c.move(1e-7, 1)
+	force, _ := c.forceN(0, 1, 0, 0)
+	near(t, "force of a bend of a hundredth", force, 0.01, 1e-4)
+}
+
+// Prandtl-Ishlinskii's law comes to the same level along a broken line, and a
+// reversal asks twice the way of the first rise (Masing's rule).
+func TestPrandtlIshlinskiiReversesByMasingsRule(t *testing.T) {
+	first := mustContact(t, Law{Kind: PrandtlIshlinskii, PreslidingM: 1e-5}, 1000, 0)
+	first.move(1e-5, 1)
+	back := mustContact(t, Law{Kind: PrandtlIshlinskii, PreslidingM: 1e-5}, 1000, 0)
+	back.move(1e-3, 1)
+	near(t, "full", back.strain, 1, 1e-12)
+	back.move(-2e-5, 1)
+	near(t, "after twice the way back", back.strain, 1-2*first.strain, 1e-12)
 }

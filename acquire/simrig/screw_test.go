@@ -235,3 +235,14 @@ func TestTorqueGoesOutWithTurns(t *testing.T) {
 		t.Errorf("%s from %.2f to %.2f N m, %s", samples[0].Spec.Quantity, lowest, highest, samples[1].Spec.Quantity)
 	}
 }
+
+// The free turn between hand and screw is the published play operator.
+func TestPlayOfTheHandIsThePublishedOperator(t *testing.T) {
+	v := readVectors(t).Play
+	s := screw{leadM: 5e-3, meanM: 1e-2, playRad: 2 * v.R}
+	s.handRad = v.U[0] + v.R
+	for i := 1; i < len(v.U); i++ {
+		s.begin(command{rate: v.U[i] - v.U[i-1], toSI: v.U[i] + v.R}, 1)
+		near(t, "screw", s.screwRad, v.Y[i], 1e-12)
+	}
+}

@@ -9,33 +9,34 @@ import (
 
 // Sensor is one measuring channel. SI units of its quantity: Pa, m, K.
 type Sensor struct {
-	Count      Count          // what one count is worth; the zero value means the sensor's default
-	PerSecond  float64        // samples a second; 0 means the sensor's default
-	LowSI      float64        // range; both 0 means the sensor's default
-	HighSI     float64        //
-	NoiseSI    float64        // standard deviation of one reading; 0 means the sensor's default, negative none
-	OffsetSI   float64        // added to the true value; the indicator adds an arbitrary zero of its own
-	Span       float64        // factor on the true value; 0 means 1
-	WindowS    float64        // Indicator: s over which it averages; 0 means 0.05, negative none
-	Shows      protocol.Shows // how it cuts to its count; "" means rounded
-	Serial     string         // "" means the profile's instrument, if there is one
-	Face       byte           // 'A' or 'B' of the band; 0 says nothing
-	OnSpan     byte           // run of the band that it says it is on, 1 or 2; 0 says nothing
-	LagS       float64        // s by which it follows slowly, as through a snubber or a filter; 0 means none
-	DelayS     float64        // s by which it is late, up to 2; 0 means none
-	NoiseS     float64        // s over which its noise hangs together (autoregressive, first order); 0 means not at all
-	DriftS     float64        // drift of its zero, SI/s from the start of the drive; 0 means none
-	SpanDriftS float64        // drift of its span, part/s; 0 means none
-	BowSI      float64        // most by which it strays from straight, halfway up its range; 0 means none
-	RippleSI   float64        // error that comes again every RippleM: a scale's pitch or a pinion; 0 means none
-	RippleM    float64        // SI; 0 means 1/50 of the range
-	StickSI    float64        // a pointer that sticks: it follows when it is off by more; 0 means none
-	ClipSI     float64        // the sensor gives no more than this, and says nothing of it; 0 means none
-	Scatter    float64        // display: standard deviation of each step's place, counts; 0 means none
-	Backstep   float64        // display: counts by which it steps later on the way back; 0 means none
-	Absent     bool           // not connected
-	AbsentAtS  float64        // s after the start of the drive at which it falls out
-	AbsentForS float64        // s until it is back; 0 means that it does not fall out
+	Count       Count          // what one count is worth; the zero value means the sensor's default
+	PerSecond   float64        // samples a second; 0 means the sensor's default
+	LowSI       float64        // range; both 0 means the sensor's default
+	HighSI      float64        //
+	NoiseSI     float64        // standard deviation of one reading; 0 means the sensor's default, negative none
+	OffsetSI    float64        // added to the true value; the indicator adds an arbitrary zero of its own
+	Span        float64        // factor on the true value; 0 means 1
+	WindowS     float64        // Indicator: s over which it averages; 0 means 0.05, negative none
+	Shows       protocol.Shows // how it cuts to its count; "" means rounded
+	Serial      string         // "" means the profile's instrument, if there is one
+	Face        byte           // 'A' or 'B' of the band; 0 says nothing
+	OnSpan      byte           // run of the band that it says it is on, 1 or 2; 0 says nothing
+	LagS        float64        // s by which it follows slowly, as through a snubber or a filter; 0 means none
+	DelayS      float64        // s by which it is late, up to 2; 0 means none
+	NoiseS      float64        // s over which its noise hangs together (autoregressive, first order); 0 means not at all
+	DriftS      float64        // drift of its zero, SI/s from the start of the drive; 0 means none
+	SpanDriftS  float64        // drift of its span, part/s; 0 means none
+	BowSI       float64        // most by which it strays from straight, halfway up its range; 0 means none
+	RippleSI    float64        // error that comes again every RippleM: a scale's pitch or a pinion; 0 means none
+	RippleM     float64        // SI; 0 means 1/50 of the range
+	RipplePhase float64        // rad
+	StickSI     float64        // a pointer that sticks: it follows when it is off by more; 0 means none
+	ClipSI      float64        // the sensor gives no more than this, and says nothing of it; 0 means none
+	Scatter     float64        // display: standard deviation of each step's place, counts; 0 means none
+	Backstep    float64        // display: counts by which it steps later on the way back; 0 means none
+	Absent      bool           // not connected
+	AbsentAtS   float64        // s after the start of the drive at which it falls out
+	AbsentForS  float64        // s until it is back; 0 means that it does not fall out
 }
 
 // Count is what one count of a channel is worth: Mantissa * 10^Exponent of a
@@ -147,7 +148,7 @@ func (c *channel) sense(si float64, v view) float64 {
 		out += c.BowSI * 4 * u * (1 - u)
 	}
 	if c.RippleSI != 0 {
-		out += c.RippleSI * math.Sin(2*math.Pi*si/orElse(c.RippleM, c.HighSI/50))
+		out += c.RippleSI * math.Sin(2*math.Pi*si/orElse(c.RippleM, c.HighSI/50)+c.RipplePhase)
 	}
 	if c.StickSI > 0 {
 		if !c.begun {

@@ -42,7 +42,8 @@ func (r *rehearsal) sensors() error {
 		s.WindowS = 0
 	}
 	r.Indicator.OffsetSI += 2e-4 + 4e-4*newRand(r.Seed, streamZero, 0).Float64()
-	r.truth.ZeroM, r.truth.ZeroPa = r.Indicator.OffsetSI, r.Pressure.OffsetSI
+	gauge := r.Config.gauge(r.tensioner.SetBy)
+	r.truth.ZeroM, r.truth.ZeroPa, r.truth.GaugeSpan = r.Indicator.OffsetSI, gauge.OffsetSI, gauge.Span
 	for _, s := range []*Sensor{&r.Pressure, &r.Torque, &r.Turns, &r.Spring, &r.Indicator, &r.Temperature} {
 		if s.PerSecond > 1000 || !(s.PerSecond > 0) || s.Span <= 0 {
 			return fmt.Errorf("%w: a sensor with %g samples a second and span %g; up to 1000, above 0", ErrConfig, s.PerSecond, s.Span)

@@ -21,7 +21,8 @@ type Truth struct {
 	GaugeM    float64    // L
 	NetAreaM2 float64    // A_b, one span
 	ZeroM     float64    // what the indicator shows of a slack band, before its display rounds
-	ZeroPa    float64    // what the transducer shows of no pressure
+	ZeroPa    float64    // what the setting's gauge shows of nothing; SI of the setting
+	GaugeSpan float64    // of that gauge: shown = true * span + zero
 	Screw     ScrewTruth // not set by pressure
 	// Cycles is the friction of each cycle of the drive, exercise first, and of four
 	// more after its end.
@@ -30,6 +31,10 @@ type Truth struct {
 
 // CycleFriction is the friction of one cycle.
 type CycleFriction struct{ F0N, Mu float64 }
+
+// Shown is what the setting's gauge shows of a true setting, but for its noise,
+// bow, lag and stick.
+func (t Truth) Shown(settingSI float64) float64 { return settingSI*t.GaugeSpan + t.ZeroPa }
 
 // InCycle is the truth of one cycle, from 0; a few beyond the drive's last are
 // known too, the next settings.

@@ -4,9 +4,11 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"io"
 	"io/fs"
 	"net"
 	"os"
+	"slices"
 	"strconv"
 	"strings"
 	"sync"
@@ -48,6 +50,7 @@ type rigOptions struct {
 	links      []string
 	log        string
 	bench      rigBench
+	faults     []string
 }
 
 func runRig(ctx context.Context, args []string, e env) error {
@@ -62,6 +65,9 @@ func runRig(ctx context.Context, args []string, e env) error {
 	}
 	if o.bench.plan != "" {
 		return o.serveBench(ctx, e)
+	}
+	if slices.Contains(o.faults, "list") {
+		return listFaults(e.stdout)
 	}
 	r, err := o.build(e)
 	if err != nil {
@@ -92,6 +98,7 @@ func (o *rigOptions) add(fs *pflag.FlagSet) {
 	fs.StringArrayVar(&o.tcp, "tcp", nil, "serve on this address instead of a pseudo-terminal, such as 127.0.0.1:7117; once for each board")
 	fs.StringArrayVar(&o.links, "link", nil, "fixed name for the port, a link to it; once for each board")
 	o.bench.add(fs)
+	fs.StringArrayVar(&o.faults, "fault", nil, "something wrong with it, KIND=SIZE with the size in SI, such as \"stick-slip=0.05\"; give it again for another; \"list\" shows the kinds")
 	fs.StringVar(&o.log, "log", "", "write the lines as a memory card would hold them to this file, and stop")
 }
 
@@ -127,11 +134,43 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 			return nil, err
 		}
 	}
+	if err := o.plant(&c); err != nil {
+		return nil, err
+	}
 	rig, err := simrig.New(c)
 	if errors.Is(err, simrig.ErrConfig) || errors.Is(err, simrig.ErrOverLimit) {
 		err = &usageError{err.Error()}
 	}
 	return rig, err
+}
+
+// plant puts the faults asked for on the rig.
+func (o *rigOptions) plant(c *simrig.Config) error {
+	for _, text := range o.faults {
+		kind, number, _ := strings.Cut(text, "=")
+		size, err := strconv.ParseFloat(strings.TrimSpace(number), 64)
+		if err != nil {
+			return &usageError{fmt.Sprintf("--fault: %q is not KIND=SIZE, such as \"stick-slip=0.05\"; --fault list shows the kinds", text)}
+		}
+		if err := simrig.Plant(c, simrig.Fault{Kind: simrig.FaultKind(strings.TrimSpace(kind)), Size: size}); err != nil {
+			return &usageError{fmt.Sprintf("--fault %s: %v", text, err)}
+		}
+	}
+	return nil
+}
+
+// listFaults writes what --fault takes.
+func listFaults(w io.Writer) error {
+	for _, row := range simrig.Faults() {
+		unit := row.Unit
+		if unit != "" {
+			unit = " " + unit
+		}
+		if _, err := fmt.Fprintf(w, "%s: %s; %.3g to %.3g%s\n", row.Kind, row.Means, row.From, row.To, unit); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 // pace takes rate and top in the quantities that the tensioner is worked by.
