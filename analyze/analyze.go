@@ -35,6 +35,8 @@ type Result struct {
 	Falling    Branch
 	Friction   Friction
 	Screw      Screw
+	Chain      Chain
+	Springs    Springs
 	Widths     []WidthAt
 	Working    WidthAt           // at the working setting: the target's where it is in range, else the highest on both branches
 	WidthRatio estimate.Estimate // half-width at the working setting / that setting

@@ -45,11 +45,13 @@ func (b balance) f0MuWN() float64 { return b.areaM2() * (b.aUp - b.aDown) / 2 }
 // a_up and a_dn in proportion to k_up and k_dn, which leaves it as it is.
 func (b balance) f0N() float64 { return b.f0MuWN() - b.mu()*b.weightN() }
 
-// friction works out the force balance of a pressure-set tensioner.
+// friction works out the force balance of a tensioner set by pressure, or by
+// the length of its springs.
 func (w *work) friction() {
 	f := &w.res.Friction
-	if w.setup.Tensioner.SetBy != mill.SetByPressure && w.setup.Tensioner.SetBy != "" {
-		no := estimate.Unknown("worked out for tensioners set by pressure only")
+	by := w.setup.Tensioner.SetBy
+	if by != mill.SetByPressure && by != mill.SetBySpring && by != "" {
+		no := estimate.Unknown("worked out for tensioners set by pressure or spring length only")
 		f.F0N, f.Mu, f.WeightN, f.AreaM2, f.AreaRatio, f.F0MuWN = no, no, no, no, no, no
 		return
 	}
@@ -66,6 +68,9 @@ func (w *work) friction() {
 		}
 		return balanceOf(r, k).f0N()
 	}, wholeLoop, "not a finite number")
+	if by == mill.SetBySpring { // A* is then a rate: see springs
+		f.AreaM2 = estimate.Unknown("set by spring length")
+	}
 	f.AreaRatio = estimate.Unknown("the cylinders' bore is not given")
 	if w.setup.GeometryM2 > 0 {
 		f.AreaRatio = f.AreaM2.Scale(1 / w.setup.GeometryM2)

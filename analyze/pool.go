@@ -33,7 +33,9 @@ func (w *work) figures() {
 	w.friction()
 	w.widths()
 	w.screw()
+	w.chain()
 	w.aim()
+	w.springs()
 	w.running()
 }
 

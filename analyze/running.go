@@ -31,6 +31,10 @@ func (w *work) running() {
 		set(estimate.Unknown("the screw holds the wheel, and what friction leaves open behind it is not seen"))
 		return
 	}
+	if w.turnedLoop() {
+		set(estimate.Unknown("the springs rub more than the slide, and what the slide leaves open is not seen"))
+		return
+	}
 	if !w.res.AtRising.SettingSI.Known() || !w.res.AtFalling.SettingSI.Known() {
 		set(estimate.Unknown("the target's settings on both branches are needed"))
 		b.Locked = LockedBand{b.MiddlePa, b.MiddlePa}

@@ -93,6 +93,8 @@ func (w *work) lull(first, last int) lull {
 	clear := 2 * blur
 	if w.wrench != nil { // its torque says nothing while the screw stands
 		fellOn, beyond, clear = false, w.turnedOn(r), math.Inf(-1)
+	} else if w.unloaded(r) {
+		beyond, clear = true, math.Inf(-1)
 	}
 	if !fellOn && !beyond {
 		return l

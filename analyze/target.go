@@ -115,6 +115,10 @@ func (w *work) aim() {
 		w.res.ResetSI = estimate.Unknown("a torque is no place to go back to")
 		return
 	}
+	if w.turnedLoop() {
+		w.res.ResetSI = estimate.Unknown("the springs rub more than the slide: let them down and come up again")
+		return
+	}
 	if !w.res.AtFalling.SettingSI.Known() || !w.res.AtRising.SettingSI.Known() {
 		w.res.ResetSI = estimate.Unknown("the target's settings on both branches are needed")
 		return

@@ -107,6 +107,9 @@ func (w *work) grade() {
 		return
 	}
 	lo, hi := w.res.WidthRatio.Interval95()
+	if w.turnedLoop() {
+		lo, hi = -hi, -lo
+	}
 	low, high := gradeOf(lo), gradeOf(hi)
 	if low == high {
 		w.res.Grade = low

@@ -54,6 +54,9 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 		wrench = newWrench(set)
 		set = wrench.read(set)
 	}
+	if s.Tensioner.FallsWithLoad() {
+		set = risen(set, s.Tensioner)
+	}
 	w := &work{setup: s, set: set, wrench: wrench, res: &Result{Setup: s, Simulated: set.Simulated, Ended: set.Ended}}
 	w.res.work = w
 	for i, q := range set.Pairs {
@@ -89,4 +92,18 @@ func pick(v []float64, at []int) []float64 {
 		out[k] = v[i]
 	}
 	return out
+}
+
+// risen is a set whose setting rises with the load: see mill.Tensioner.Rising.
+func risen(set *pairing.Set, t mill.Tensioner) *pairing.Set {
+	out := *set
+	out.Setting.Readings = append([]pairing.Reading(nil), set.Setting.Readings...)
+	for i := range out.Setting.Readings {
+		out.Setting.Readings[i].Value = t.Rising(out.Setting.Readings[i].Value)
+	}
+	out.Pairs = append([]pairing.Pair(nil), set.Pairs...)
+	for i := range out.Pairs {
+		out.Pairs[i].Setting = t.Rising(out.Pairs[i].Setting)
+	}
+	return &out
 }

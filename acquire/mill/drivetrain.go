@@ -60,6 +60,14 @@ func (t Tensioner) FallsWithLoad() bool {
 	return t.SetBy == SetBySpring && t.Spring != nil && t.Spring.UnderLoad == Shorter
 }
 
+// FreeSI is the setting of springs without a load, as one that rises with it.
+func (t Tensioner) FreeSI() float64 {
+	if t.SetBy == SetBySpring && t.Spring != nil {
+		return t.Rising(t.Spring.FreeLength.SI)
+	}
+	return 0
+}
+
 // LimitSI is the setting limit as a setting that rises with the load.
 func (t Tensioner) LimitSI() float64 { return t.Rising(t.SettingLimit.SI) }
 
