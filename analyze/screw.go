@@ -18,6 +18,8 @@ type Screw struct {
 	RestNm       estimate.Estimate // T0, that the screw takes without a load; a wrong zero leaves it as it is
 	RaisePerN    estimate.Estimate // raising torque for each newton of wheel pull, T0 left out
 	LoosenPerN   estimate.Estimate // loosening torque likewise; below nothing where the screw does not lock itself
+	RaisePerPa   estimate.Estimate // raising torque for each pascal of band stress; no section enters
+	LoosenPerPa  estimate.Estimate
 	ThreadMu     estimate.Estimate // apparent friction of the thread
 	LeadRatio    estimate.Estimate // lead that the loop shows / lead given
 	Efficiency   estimate.Estimate // F l / (2 pi T_up)
@@ -52,7 +54,7 @@ func (t torques) restNm() float64 { return (t.aDown*t.up - t.aUp*t.down) / (t.up
 
 func noScrew(why string) Screw {
 	no := estimate.Unknown(why)
-	return Screw{PullN: no, LeadNm: no, FrictionNm: no, RestNm: no, RaisePerN: no, LoosenPerN: no, ThreadMu: no, LeadRatio: no, Efficiency: no, Expected: no, EffOfExpect: no}
+	return Screw{PullN: no, LeadNm: no, FrictionNm: no, RestNm: no, RaisePerN: no, LoosenPerN: no, RaisePerPa: no, LoosenPerPa: no, ThreadMu: no, LeadRatio: no, Efficiency: no, Expected: no, EffOfExpect: no}
 }
 
 // screw works out the screw of a tensioner that is set by torque.
@@ -68,6 +70,13 @@ func (w *work) screw() {
 	}
 	s.RaisePerN = of(func(t torques) float64 { return t.up })
 	s.LoosenPerN = of(func(t torques) float64 { return t.down })
+	perPa := func(g func(torques) float64) estimate.Estimate {
+		return w.combine(func(r ramp, k constants) float64 {
+			return g(torquesOf(anyZero(r), k)) * k.pullPerM() / k.paPerM()
+		}, wholeLoop, "not a finite number")
+	}
+	s.RaisePerPa = perPa(func(t torques) float64 { return t.up })
+	s.LoosenPerPa = perPa(func(t torques) float64 { return t.down })
 	s.RestNm = of(torques.restNm)
 	w.screwShares(s)
 	if w.setup.Tensioner.Screw == nil {

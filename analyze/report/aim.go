@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 
+	"tautramp/acquire/mill"
 	"tautramp/analyze"
 )
 
@@ -11,6 +12,8 @@ import (
 type aim struct {
 	Direction analyze.Direction
 	How       string // how to approach, in words
+	NoSetting bool   // it is a loosening torque: nothing to set by
+	Shown     string // what the mill's own scale shows there, where that falls as the load rises
 	Set       figure // the number to set, rounded as its widest interval allows
 	Intervals []interval
 	Budget    []budgetLine
@@ -47,6 +50,11 @@ func aimOf(r *analyze.Result, d analyze.Direction, u units) aim {
 	if a.Set.Why != "" { // said once, not three times more
 		a.Intervals = nil
 	}
+	a.NoSetting = r.Setup.Tensioner.SetBy == mill.SetByTorque && d == analyze.Falling
+	if a.NoSetting {
+		a.How = "what it takes to loosen at the target, the other way round; tighten to the other number, never loosen to this one"
+	}
+	a.Shown = shownAs(r.Setup.Tensioner, at.TrueSI, u.section)
 	a.Budget = budgetOf(at.Budget, u.setting)
 	return a
 }
@@ -107,10 +115,17 @@ func limitText(r *analyze.Result, u units) string {
 	if !finite(r.Setup.LimitSI) || r.Setup.LimitSI <= 0 {
 		return notKnown
 	}
-	return u.setting.with(plain(u.setting.show(r.Setup.LimitSI), 4))
+	text := u.setting.with(plain(u.setting.show(r.Setup.LimitSI), 4))
+	if t := r.Setup.Tensioner; t.FallsWithLoad() {
+		text += " (spring length " + lengthText(mill.Length{Quantity: t.SettingLimit.Quantity}, u.section) + ")"
+	}
+	return text
 }
 
 func overshootText(r *analyze.Result, u units) string {
+	if r.Setup.Tensioner.SetBy == mill.SetByTorque {
+		return "Overshot while tightening: loosen the screw by half a turn or more, then tighten again. Never loosen to the number."
+	}
 	reset := figureOf(r.ResetSI, u.setting)
 	if reset.Why != "" {
 		return "Overshot while rising: the number to drop to is " + notKnown + ". Release well below the falling setting, then come up again."

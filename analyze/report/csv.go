@@ -12,8 +12,8 @@ import (
 // CSV writes the table at round settings, both directions in a row (RFC 4180
 // with LF line ends): value, half-width of the 95 % interval and the number's
 // unit in the heading, all rounded as on paper. The last columns repeat which
-// recording the row is from, and whether it is a
-// rehearsal, which no tensioner is to be set by. Errors are the writer's.
+// recording the row is from, whether it is a rehearsal, which no tensioner is to
+// be set by, and from which band it was predicted. Errors are the writer's.
 func CSV(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	u := unitsFor(r.Setup.Tensioner, s)
 	table := rowsOf(r, u)
@@ -23,7 +23,7 @@ func CSV(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 		"setting (" + u.setting.name + ")",
 		"rising: band stress" + stress, "rising: 95 % half-width" + stress,
 		"falling: band stress" + stress, "falling: 95 % half-width" + stress,
-		"tensioner", "band", "recording", "seal", "rehearsal",
+		"tensioner", "band", "recording", "seal", "rehearsal", "predicted from",
 	}}
 	for _, row := range table.Rows {
 		rising, risingHalf := csvFigure(row.Rising)
@@ -32,7 +32,7 @@ func CSV(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 			ungrouped(row.Setting), rising, risingHalf, falling, fallingHalf,
 			cellText(named(r.Setup.Tensioner.Name, notKnown)), cellText(named(r.Setup.Band.Name, notKnown)),
 			cellText(named(m.base(), notKnown)), cellText(m.seal()),
-			strconv.FormatBool(rehearsed(r, m)),
+			strconv.FormatBool(rehearsed(r, m)), predictedFrom(r),
 		})
 	}
 	return out.WriteAll(records)

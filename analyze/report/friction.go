@@ -44,6 +44,12 @@ func noVerdictWhy(r *analyze.Result, ratio figure) string {
 
 func frictionFacts(r *analyze.Result, u units) []fact {
 	f := r.Friction
+	switch r.Setup.Tensioner.SetBy {
+	case mill.SetByTorque: // see the screw
+		return nil
+	case mill.SetByTurns:
+		return []fact{{"Half-width of the loop", widthText(r, u)}}
+	}
 	facts := []fact{
 		{"Half-width of the loop", widthText(r, u)},
 		{"Half-width, share of the setting", figureOf(r.WidthRatio, percent()).String()},

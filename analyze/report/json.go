@@ -37,6 +37,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 		{"program", clean(m.Program, nameLength)},
 		{"recording", recordingJSON(r, m)},
 		{"setup", setupJSON(r.Setup, by)},
+		{"predicted", predictedJSON(r)},
 		{"cycles", each(r.Cycles, func(c analyze.Cycle) object { return cycleJSON(c, by) })},
 		{"steps", each(r.Steps, stepJSON)},
 		{"zero_marks", object{
@@ -51,6 +52,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 			{"reset_after_overshoot", by.inSetting(estimateJSON(r.ResetSI))},
 		}},
 		{"friction", frictionJSON(r)},
+		{"drivetrain", drivetrainJSON(r)},
 		{"half_widths", each(r.Widths, func(w analyze.WidthAt) object {
 			return object{{"stress_pa", number(w.StressPa)}, {"rising", by.inSetting(number(w.RisingSI))}, {"half_width", by.inSetting(estimateJSON(w.HalfSI))}}
 		})},
@@ -60,6 +62,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 		{"findings", foundJSON(m.Found, by)},
 		{"running_band", runningJSON(r.Running)},
 		{"table", tableJSON(r, by)},
+		{"bands", reachJSON(r, by)},
 		{"warnings", each(allWarnings(r, m), func(w analyze.Warning) object {
 			return object{{"code", clean(w.Code, nameLength)}, {"text", clean(w.Text, textLength)}}
 		})},

@@ -16,18 +16,31 @@ func runningNote() string {
 func runningFacts(r *analyze.Result, u units) []fact {
 	run := r.Running
 	if up, down := run.AfterRisingPa[1], run.AfterFallingPa[0]; !up.Known() && !down.Known() && up.Why == down.Why && !run.MiddlePa.Known() {
-		return []fact{{"After setting it", notKnown + ": " + unknownWhy(up)}, {"Held by", holdText(run.Hold)}}
+		return heldIn(r, []fact{{"After setting it", notKnown + ": " + unknownWhy(up)}})
 	}
 	middle := figureOf(run.MiddlePa, u.stress).String()
-	if run.Hold != mill.HoldMaintained {
+	if underOil(r) && run.Hold != mill.HoldMaintained {
 		middle += ", where the pressure is kept up"
 	}
-	return []fact{
+	return heldIn(r, []fact{
 		{"Set rising, may drift by", oneSided(run.AfterRisingPa, u.stress)},
 		{"Set falling, may drift by", oneSided(run.AfterFallingPa, u.stress)},
 		{"Vibration brings it to", middle},
-		{"Held by", holdText(run.Hold)},
+	})
+}
+
+// underOil is whether the setting is the pressure of something: only that can be
+// kept up or locked in.
+func underOil(r *analyze.Result) bool {
+	by := r.Setup.Tensioner.SetBy
+	return by != mill.SetByTorque && by != mill.SetByTurns && by != mill.SetBySpring
+}
+
+func heldIn(r *analyze.Result, facts []fact) []fact {
+	if !underOil(r) {
+		return facts
 	}
+	return append(facts, fact{"Held by", holdText(r.Running.Hold)})
 }
 
 // oneSided is a change from the target, signs written out: one end is nothing.

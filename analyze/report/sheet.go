@@ -14,6 +14,7 @@ type fact struct{ Label, Value string }
 // are made from it, so that they never say different things.
 type sheet struct {
 	Title       string // tensioner and band
+	Predicted   string // that it was not measured with this band; "" where it was
 	Rehearsal   string // a warning that stands above everything; "" for a real visit
 	Identity    []fact
 	TargetText  string // "9,500 band psi"
@@ -24,6 +25,8 @@ type sheet struct {
 	Overshoot   string  // what to do after passing the number
 	Friction    []fact  // friction and half-width
 	Verdict     verdict // on the half-width
+	Drivetrain  drivetrain
+	Bands       []fact // on file: whether this tensioner can bring them to their target
 	Found       foundSheet
 	Running     []fact    // the one-sided running band
 	RunningNote string    // what it is
@@ -43,6 +46,7 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 	rising, falling := aimOf(r, analyze.Rising, u), aimOf(r, analyze.Falling, u)
 	return sheet{
 		Title:       titleText(r),
+		Predicted:   predictedText(r, u),
 		Rehearsal:   rehearsalText(r, m),
 		Identity:    identity(r, m, u),
 		TargetText:  targetText(r, u),
@@ -53,6 +57,8 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		Overshoot:   overshootText(r, u),
 		Friction:    frictionFacts(r, u),
 		Verdict:     verdictOf(r),
+		Drivetrain:  drivetrainOf(r, u, s),
+		Bands:       reachFacts(r, u),
 		Found:       foundOf(m.Found, u),
 		Running:     runningFacts(r, u),
 		RunningNote: runningNote(),

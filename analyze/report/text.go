@@ -21,6 +21,7 @@ func Text(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	sh := newSheet(r, m, s)
 	p.para(0, sh.Rehearsal)
 	p.para(0, sh.Title)
+	p.para(0, sh.Predicted)
 	p.facts(sh.Identity)
 	p.targets(sh)
 	p.friction(sh)
@@ -30,6 +31,10 @@ func Text(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	p.facts(sh.Running)
 	p.heading("Band stress at round settings")
 	p.table(sh)
+	if len(sh.Bands) > 0 {
+		p.heading("Bands on file, on this tensioner")
+		p.facts(sh.Bands)
+	}
 	p.heading("What this rests on")
 	p.facts(sh.Assumptions)
 	p.facts(sh.Fitted)
@@ -98,6 +103,9 @@ func (p *printer) targets(sh sheet) {
 		p.line("")
 		p.para(2, strings.ToUpper(string(a.Direction))+": "+a.How+".")
 		p.facts([]fact{{"set to", a.Set.short()}})
+		if a.Shown != "" {
+			p.facts([]fact{{"which the mill shows as", a.Shown}})
+		}
 		for _, i := range a.Intervals {
 			p.facts([]fact{{i.Name, intervalText(i)}})
 		}
@@ -119,7 +127,13 @@ func (p *printer) answer(sh sheet) {
 	} else {
 		for i, from := range []string{", come up from below", ", come down from above"} {
 			text := sh.Targets[i].Set.short()
-			if sh.Targets[i].Set.Why == "" {
+			switch {
+			case sh.Targets[i].Set.Why != "":
+			case sh.Targets[i].Shown != "":
+				text += from + "; " + sh.Targets[i].Shown
+			case sh.Targets[i].NoSetting:
+				text += " to loosen, not to set by"
+			default:
 				text += from
 			}
 			p.short(strings.ToUpper(string(sh.Targets[i].Direction)), text)
@@ -154,6 +168,10 @@ func (p *printer) friction(sh sheet) {
 	p.heading("Friction")
 	p.facts([]fact{{"Grade", sh.Verdict.Word + ": " + sh.Verdict.Says}})
 	p.facts(sh.Friction)
+	if sh.Drivetrain.Title != "" {
+		p.heading(sh.Drivetrain.Title)
+		p.facts(sh.Drivetrain.Facts)
+	}
 	p.heading("Both lines")
 	p.facts(sh.Branches)
 }

@@ -36,6 +36,9 @@ type units struct {
 // unitsFor chooses the units for a tensioner in a system.
 func unitsFor(t mill.Tensioner, s mill.System) units {
 	by := setByOf(t.SetBy)
+	if t.FallsWithLoad() {
+		by.noun, by.suffix = "how much shorter the spring is than without a load", " shorter"
+	}
 	section, setting := s.Unit(mill.RoleSection), s.Unit(t.SettingRole())
 	if setting.SI == 0 { // a kind of setting that has no display unit
 		setting.Name, setting.SI = by.siUnit, 1
