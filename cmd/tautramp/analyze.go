@@ -11,9 +11,11 @@ import (
 
 func runAnalyze(_ context.Context, args []string, e env) error {
 	var r resultFlags
+	var other otherBand
 	var schema bool
 	fs := flags("analyze", "FILE.ramp", "Computes the result of a recording again, from its raw lines.", e)
 	r.add(fs)
+	other.add(fs)
 	fs.BoolVar(&schema, "schema", false, "print the JSON Schema of --json and stop")
 	if err := parse(fs, args, 0, 1); err != nil {
 		return err
@@ -26,23 +28,35 @@ func runAnalyze(_ context.Context, args []string, e env) error {
 		return &usageError{"analyze takes one recording"}
 	}
 	system, target, err := r.check()
+	if err == nil {
+		err = other.check()
+	}
 	if err != nil {
 		return err
 	}
-	return analyzeFile(fs.Arg(0), r, system, target, false, e)
+	return analyzeFile(fs.Arg(0), r, other, system, target, false, e)
 }
 
 // analyzeFile computes a recording's result and puts it where the flags say.
-func analyzeFile(path string, r resultFlags, system mill.System, target mill.Pressure, cautionsShown bool, e env) error {
+func analyzeFile(path string, r resultFlags, other otherBand, system mill.System, target mill.Pressure, cautionsShown bool, e env) error {
 	if err := refuseSame(path, r.outputs()...); err != nil {
 		return err
 	}
-	res, meta, err := computeResult(path, target)
+	measuredTarget := target
+	if other.asked() { // the target is the other band's
+		measuredTarget = mill.Pressure{}
+	}
+	res, meta, err := computeResult(path, measuredTarget)
 	if errors.Is(err, errBenchTest) {
 		return analyzeBench(path, r, system, e)
 	}
 	if err != nil {
 		return err
+	}
+	if other.asked() {
+		if res, err = other.of(res, target); err != nil {
+			return fmt.Errorf("%s: %w", path, err)
+		}
 	}
 	meta.CautionsShown = cautionsShown
 	if err := r.write(res, meta, system, e); err != nil {

@@ -90,7 +90,7 @@ func finish(path string, visitErr error, r resultFlags, system mill.System, targ
 	if visitErr != nil && !onlyAlarm(visitErr) {
 		return visitErr
 	}
-	return errors.Join(analyzeFile(path, r, system, target, true, e), visitErr)
+	return errors.Join(analyzeFile(path, r, otherBand{}, system, target, true, e), visitErr)
 }
 
 // onlyAlarm is true where the visit itself went well but for an alarm.
