@@ -40,19 +40,23 @@ const (
 	BindSlope            ThresholdKey = "bind_slope"
 	AirSoftness          ThresholdKey = "air_softness"
 	HoldLoss             ThresholdKey = "hold_loss"
-	HoldStill            ThresholdKey = "hold_still"
+	HoldRise             ThresholdKey = "hold_rise"
 	HoldFreed            ThresholdKey = "hold_freed"
 	HoldFollow           ThresholdKey = "hold_follow"
 	StrokeLoss           ThresholdKey = "stroke_loss"
+	StrokeRate           ThresholdKey = "stroke_rate"
 	MountCreep           ThresholdKey = "mount_creep"
 	MountSlip            ThresholdKey = "mount_slip"
 	SlipCounts           ThresholdKey = "slip_counts"
 	SlipAlone            ThresholdKey = "slip_alone"
+	WeightOff            ThresholdKey = "weight_off"
 	GaugeZero            ThresholdKey = "gauge_zero"
 	GaugeSticky          ThresholdKey = "gauge_sticky"
 	GaugeCurve           ThresholdKey = "gauge_curve"
 	WarmthLink           ThresholdKey = "warmth_link"
 	WarmthShift          ThresholdKey = "warmth_shift"
+	WarmthPerK           ThresholdKey = "warmth_per_degree"
+	GaugeSpan            ThresholdKey = "gauge_span"
 	SpanDiffer           ThresholdKey = "span_differ"
 	FirstRamp            ThresholdKey = "first_ramp"
 	AreaOff              ThresholdKey = "area_off"
@@ -79,25 +83,29 @@ func Thresholds() []Threshold {
 		{StopSlope, 0.2, "", Judgement, "slope at the top, of the slope below"},
 		{StopSpan, 0.03, "", Judgement, "range of setting over which that holds, of the top setting"},
 		{BindSlope, 1.1, "", Judgement, "slope of the upper third, of the slope of the lower third"},
-		{AirSoftness, 1.5, "", Judgement, "strokes needed for the same rise of setting low down, of those needed higher up"},
-		{HoldLoss, 0.005, "a minute", Judgement, "loss of setting, or of stretch, in a hold"},
-		{HoldStill, 0.001, "a minute", Judgement, "below it a held value counts as still"},
+		{AirSoftness, 2, "times", Judgement, "time for the setting to reach the slack lift, of what the ramp's pace takes"},
+		{HoldLoss, 0.002, "a minute", Judgement, "loss of setting, or of stretch, in a hold"},
+		{HoldRise, 0.005, "a minute", Judgement, "rise of setting in a hold"},
 		{HoldFreed, 1, "reversal lengths", Derived, "loss of setting beyond which friction no longer holds the band: 2 h"},
 		{HoldFollow, 0.5, "", Derived, "loss of stretch, of what the loss of setting beyond 2 h asks for: half way between none and all"},
-		{StrokeLoss, 1.5, "reversal lengths", Judgement, "fall of setting after a stroke while the stretch holds"},
+		{StrokeLoss, 1.5, "reversal lengths", Judgement, "fall of setting that comes back while the stretch holds"},
+		{StrokeRate, 0.01, "a second", Judgement, "pace of that fall: a leak of the gauge's side is slower"},
 		{MountCreep, 1e-6, "m a minute", Judgement, "drift of the stretch while the setting holds"},
 		{MountSlip, 0.01, "", Judgement, "lasting step of the stretch, of the stretch at the working setting"},
 		{SlipCounts, 5, "counts", Judgement, "the same step"},
 		{SlipAlone, 2, "times", Judgement, "the same step, of the third largest: a mount slips once or twice, stick-slip goes on"},
+		{WeightOff, 0.01, "", Judgement, "lifted weight that the loop gives off the profile's, as a setting, of the working setting"},
 		{GaugeZero, 0.005, "", Judgement, "reading of the vented gauge, of the working setting"},
 		{GaugeSticky, 0.005, "", Judgement, "difference of the gauge between rising and falling on the bench, of its span"},
 		{GaugeCurve, 0.005, "", Judgement, "what is left of the gauge's error when a straight line is taken off, of its span"},
 		{WarmthLink, 0.8, "", Judgement, "correlation of the stretch's drift with the temperature"},
 		{WarmthShift, 0.01, "", Judgement, "drift of the stretch with the temperature, of the stretch at the working setting"},
+		{WarmthPerK, 3, "times", Derived, "drift for each degree over that of a steel bar: a bar of aluminium on a cold band makes 2"},
+		{GaugeSpan, 0.01, "", Judgement, "error of the gauge's span on the bench"},
 		{SpanDiffer, 0.03, "", Judgement, "difference of the slopes of the two spans"},
 		{FirstRamp, 0.01, "", Judgement, "slope of the later ramps beyond the first one's"},
 		{AreaOff, 0.04, "", Judgement, "area that works, off what the geometry gives"},
-		{LagWidth, 0.01, "", Judgement, "half-width that the lag pretends, of the working setting"},
+		{LagWidth, 0.003, "", Judgement, "half-width that the lag pretends, of the working setting"},
 		{Saturated, 0.5, "readings", Derived, "readings at the end of an instrument's range: one is too many"},
 		{FlatTop, 0.02, "", Judgement, "rise of the stretch while the setting shows one and the same highest value, of the stretch at the working setting"},
 		{LeastRamps, 2.5, "ramps", Published, "fewer are too few: the factor for 95 % is 12.7 with two ramps and 4.3 with three (JCGM 100:2008 table G.2)"},

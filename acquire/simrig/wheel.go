@@ -61,7 +61,7 @@ func (w *wheel) settle(dt float64) float64 {
 		}
 		next := max(least, dx-over/slope)
 		if !(next > little && next < much) {
-			next = amid(max(little, least), much)
+			next = (max(little, least) + much) / 2
 		}
 		if next == dx {
 			return dx
@@ -69,15 +69,6 @@ func (w *wheel) settle(dt float64) float64 {
 		dx = next
 	}
 	return dx
-}
-
-// amid is a travel between two, or well beyond the first where the other is not
-// known: a contact that softens can make Newton's rule point the wrong way.
-func amid(little, much float64) float64 {
-	if math.IsInf(much, 1) {
-		return little + 2*math.Abs(little) + 1e-8
-	}
-	return (little + much) / 2
 }
 
 // over is what holds the wheel back at the end of a step of dx less what

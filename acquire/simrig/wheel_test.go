@@ -214,19 +214,3 @@ func checkToe(t *testing.T, r *Rig, trace []Moment) {
 		t.Errorf("at 6,000 psi and above %.3g of the stretch is missing", last)
 	}
 }
-
-// A contact whose level falls with the speed pushes the wrong way for a moment as
-// the wheel breaks out of its slack; the step must still be found.
-func TestSofteningContactIsStillStepped(t *testing.T) {
-	for _, ratio := range []float64{1.03, 1.5, 2.5} {
-		c := quick(t)
-		c.Law = Law{Kind: LuGre, StaticRatio: ratio, StribeckMS: 5e-5, MemoryS: 0.05}
-		r, trace := mustTrace(t, c)
-		last := trace[len(trace)-1]
-		near(t, "top, psi", riseOf(trace)[len(riseOf(trace))-1].PressurePa/psiPa, r.conf.Drive.TopPa/psiPa, 0.01)
-		near(t, "end, psi", last.PressurePa/psiPa, r.conf.Drive.LowPa/psiPa, 0.01)
-		if math.IsNaN(last.PullN + last.TravelM + last.ExtensionM) {
-			t.Fatalf("static ratio %g ends with %+v", ratio, last)
-		}
-	}
-}

@@ -20,6 +20,7 @@ type data struct {
 	workingSI float64 // working setting
 	workingM  float64 // stretch there, from the slack band
 	countM    float64
+	stepS     float64 // median time from point to point
 	noiseM    float64 // standard deviation of one reading of a still extension, with its count
 	up, down  line    // of all fitted ramps together
 	lockSI    float64 // setting that friction locks at the working setting: twice the half-width
@@ -38,22 +39,51 @@ func (l line) at(p float64) float64 { return l.a + l.b*p }
 const leastPoints = 40
 
 func newData(in Input) *data {
-	d := &data{in: in, r: in.Result, set: in.Set, countM: in.Result.Setup.CountM}
+	d := &data{late: estimate.Unknown("too little was recorded"), in: in, r: in.Result, set: in.Set, countM: in.Result.Setup.CountM}
 	for _, pt := range in.Result.Points {
 		d.t, d.p, d.e = append(d.t, pt.T), append(d.p, pt.SettingSI), append(d.e, pt.ExtensionM)
 		d.phase = append(d.phase, pt.Phase)
 	}
+	if len(d.t) == 0 && in.Set != nil {
+		d.takePairs(in.Set)
+		return d
+	}
 	d.scales()
-	d.late = estimate.Unknown("too little was recorded")
 	if len(d.t) < leastPoints || !(d.up.b > 0) || !(d.down.b > 0) || !(d.workingM > 0) {
 		return d
 	}
+	d.stepS = d.medianStep()
 	d.noiseM = d.stillNoise()
-	d.follow = d.newFollow()
-	d.holds = d.findHolds()
-	d.jumps = d.findJumps()
+	d.follow = d.newFollow(0)
 	d.late = d.findLag()
+	d.jumps = d.findJumps()
+	d.correctLag()
+	d.holds = d.findHolds()
 	return d
+}
+
+// takePairs is for a recording of which nothing could be fitted.
+func (d *data) takePairs(set *pairing.Set) {
+	for _, q := range set.Pairs {
+		d.t, d.p, d.e = append(d.t, q.T), append(d.p, q.Setting), append(d.e, q.Extension)
+	}
+	d.countM = set.Extension.CountSI
+}
+
+// correctLag takes a lag that is told from none off the setting's time, where
+// fewer jumps are left of it: lag and strokes make jumps of their own.
+func (d *data) correctLag() {
+	late := d.late
+	if !late.Known() || !(math.Abs(late.Value) > 3*late.Std()) || !(math.Abs(late.Value) > d.stepS/2) {
+		return
+	}
+	was, wasJumps := d.follow, d.jumps
+	before, _ := d.third()
+	d.follow = d.newFollow(late.Value)
+	d.jumps = d.findJumps()
+	if after, _ := d.third(); after >= before {
+		d.follow, d.jumps = was, wasJumps
+	}
 }
 
 // usable is whether there is enough to look at more than the result's figures.

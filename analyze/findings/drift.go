@@ -178,10 +178,83 @@ func (d *data) mountCreep() estimate.Estimate {
 	if !d.usable() {
 		return estimate.Unknown("too little was recorded")
 	}
+	return size(d.drift())
+}
+
+// drift is the same with its sign, m a minute.
+func (d *data) drift() estimate.Estimate {
 	x, y := against(d.stages(), func(s stage) float64 { return s.t / 60 })
 	slope, std, _, ok := throughNought(x, y, d.countM/math.Sqrt(12)/3)
 	if !ok {
 		return estimate.Unknown("too few ramps to see a drift")
 	}
-	return known(math.Abs(slope), std, float64(max(1, len(x)-4)), "means of each rise, fall and rest, over time")
+	return known(slope, std, float64(max(1, len(x)-4)), "means of each rise, fall and rest, over time")
 }
+
+// driftWidth is the half-width that a drift pretends, by a line in the setting:
+// what the stretch gains between the rise and the fall through one setting opens
+// the loop there. SI of setting at none, and for each of setting; 0 where no
+// drift is told from none.
+func (d *data) driftWidth() (constantSI, growing float64) {
+	if !d.usable() || !(d.up.b > 0) {
+		return 0, 0
+	}
+	drift := d.drift()
+	if !drift.Known() || math.Abs(drift.Value) < 3*drift.Std() {
+		return 0, 0
+	}
+	var levels, gaps []float64
+	for _, c := range d.r.Cycles {
+		if c.Rising.Points == 0 {
+			continue
+		}
+		for _, share := range []float64{0.4, 0.9} {
+			if g, ok := d.gapS(c, share*d.workingSI); ok {
+				levels, gaps = append(levels, share*d.workingSI), append(gaps, g)
+			}
+		}
+	}
+	l, err := estimate.FitLine(levels, gaps)
+	if err != nil {
+		return 0, 0
+	}
+	by := drift.Value / 60 / 2 / d.up.b
+	return by * l.A, by * l.B
+}
+
+// gapS is the time from a setting on the way up to the same on the way down, s.
+func (d *data) gapS(c analyze.Cycle, settingSI float64) (s float64, ok bool) {
+	up, down := -1, -1
+	for i := c.First; i <= c.Peak && i < len(d.p) && up < 0; i++ {
+		if d.p[i] >= settingSI {
+			up = i
+		}
+	}
+	for i := c.Peak; i <= c.Last && i < len(d.p) && down < 0; i++ {
+		if d.p[i] <= settingSI {
+			down = i
+		}
+	}
+	if up < 0 || down < 0 {
+		return 0, false
+	}
+	return d.t[down] - d.t[up], true
+}
+
+// warmCoefficient is the drift for each degree, over what a bar of steel of the
+// gauge length does: beyond a few it is not warmth.
+func (d *data) warmCoefficient() estimate.Estimate {
+	if len(d.thermometer().Readings) == 0 || !d.usable() {
+		return estimate.Unknown(noTemperature)
+	}
+	slope, std, _, _, n, ok := d.warmth()
+	steel := steelPerK * d.r.Setup.GaugeM.Value
+	if !ok || !(steel > 0) {
+		return estimate.Unknown("too few stretches to compare with the temperature")
+	}
+	return known(math.Abs(slope)/steel, std/steel, float64(max(1, n-4)), "drift for each degree over that of a steel bar")
+}
+
+// steelPerK is the thermal expansion of a steel end gauge, 1/K (JCGM 100:2008
+// H.1).
+const steelPerK = 11.5e-6

@@ -8,11 +8,31 @@ import (
 	"tautramp/analyze/estimate"
 )
 
-// risingPairs is setting and stretch of the pairs that lead a rise, in order,
-// from above the toe to the top.
-func (d *data) risingPairs(c analyze.Cycle) (p, e []float64) {
+// leads is the points of a rise at which the setting is at its highest so far
+// and the band is taut, the analysis' own choice left aside: it leaves out what
+// is looked for here.
+func (d *data) leads(c analyze.Cycle) []int {
+	var at []int
+	zero := d.zeroM()
+	slack := 2 * estimate.Noise(d.follow.p)
+	best := math.Inf(-1)
 	for i := c.First; i <= c.Peak && i < len(d.t); i++ {
-		if (d.phase[i] == analyze.Loading || d.phase[i] == analyze.Seating) && d.follow.good[i] {
+		if d.follow.p[i] < best-slack {
+			continue
+		}
+		best = math.Max(best, d.follow.p[i])
+		if d.e[i] > zero+tautShare*d.workingM {
+			at = append(at, i)
+		}
+	}
+	return at
+}
+
+// risingPairs is setting and stretch of the points that lead a rise, in order,
+// from above the seating share to the top.
+func (d *data) risingPairs(c analyze.Cycle) (p, e []float64) {
+	for _, i := range d.leads(c) {
+		if d.e[i] > d.zeroM()+seatedShare*d.workingM {
 			p, e = append(p, d.follow.p[i]), append(e, d.e[i])
 		}
 	}
@@ -166,7 +186,10 @@ func (d *data) flatTop() estimate.Estimate {
 	if last > first {
 		a, b := search(d.t, first), search(d.t, last)-1
 		if b > a && b < len(d.t) {
-			grown = estimate.Median(d.e[max(a, b-4):b+1]) - estimate.Median(d.e[a:min(b, a+4)+1])
+			start := estimate.Median(d.e[a : min(b, a+4)+1])
+			for i := a + 4; i <= b; i++ {
+				grown = math.Max(grown, estimate.Median(d.e[i-4:i+1])-start)
+			}
 		}
 	}
 	return known(math.Max(0, grown)/d.workingM, d.noiseM/d.workingM, math.Inf(1), "longest run of the highest setting shown")

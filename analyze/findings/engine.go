@@ -94,7 +94,7 @@ func (e engine) run(rows []row, rep *Report) {
 		if c := compare(b.Certainty, a.Certainty); c != 0 {
 			return c
 		}
-		return compare(b.Times, a.Times)
+		return compare(orNought(b.Times), orNought(a.Times))
 	})
 	rep.account(all)
 }
@@ -195,11 +195,18 @@ func (e engine) evidence(t test) Evidence {
 // is a share of the working setting or of the stretch there.
 func severity(lead Evidence) (times float64, share estimate.Estimate) {
 	times = lead.Is.Value / lead.Limit
-	if lead.Relation == Below && lead.Is.Value != 0 {
-		times = lead.Limit / lead.Is.Value
+	if lead.Relation == Below {
+		times = math.NaN() // how far short says nothing of how bad
 	}
 	if lead.In == OfSetting || lead.In == OfStretch {
 		return times, lead.Is
 	}
 	return times, estimate.Unknown(fmt.Sprintf("%q is no share of the working setting", lead.Name))
+}
+
+func orNought(x float64) float64 {
+	if math.IsNaN(x) {
+		return 0
+	}
+	return x
 }

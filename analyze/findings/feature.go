@@ -49,11 +49,13 @@ const (
 	fBind         FeatureKey = "upper_over_lower_slope"
 	fSoft         FeatureKey = "low_strokes"
 	fHoldSetting  FeatureKey = "hold_setting_loss"
+	fHoldRise     FeatureKey = "hold_setting_rise"
 	fHoldStretch  FeatureKey = "hold_stretch_loss"
 	fHoldFreed    FeatureKey = "hold_reversals"
 	fHoldFollow   FeatureKey = "hold_stretch_follows"
 	fHoldCreeps   FeatureKey = "hold_slows_down"
 	fCollapse     FeatureKey = "stroke_fall"
+	fCollapseRate FeatureKey = "stroke_fall_rate"
 	fMountCreep   FeatureKey = "stretch_creep"
 	fSlip         FeatureKey = "stretch_step"
 	fSlipCounts   FeatureKey = "stretch_step_counts"
@@ -63,7 +65,9 @@ const (
 	fSticky       FeatureKey = "gauge_sticks"
 	fCurve        FeatureKey = "gauge_curve"
 	fWarmLink     FeatureKey = "warmth_link"
+	fWarmPerK     FeatureKey = "warmth_per_degree"
 	fWarmShift    FeatureKey = "warmth_shift"
+	fGaugeSpan    FeatureKey = "gauge_span"
 	fSpans        FeatureKey = "spans_differ"
 	fFirst        FeatureKey = "first_ramp"
 	fArea         FeatureKey = "area_off"
@@ -101,13 +105,15 @@ func features() []struct {
 		{fTopSlope, "slope at the top, of the slope below", Share, (*data).topSlope},
 		{fTopSpan, "range of setting at the top over which that holds", OfSetting, (*data).topSpan},
 		{fBind, "slope of the upper third, of the slope of the lower third", Times, (*data).bind},
-		{fSoft, "strokes for the same rise of setting, low down against higher up", Times, (*data).soft},
+		{fSoft, "time for the setting to reach the slack lift, of what the ramp's pace takes", Times, (*data).soft},
 		{fHoldSetting, "loss of setting in the hold", PerMinute, (*data).holdSetting},
+		{fHoldRise, "rise of setting in the hold", PerMinute, (*data).holdRise},
 		{fHoldStretch, "loss of stretch in the hold", PerMinute, (*data).holdStretch},
 		{fHoldFreed, "loss of setting in the hold, of the width that friction locks", Times, (*data).holdFreed},
 		{fHoldFollow, "stretch lost, of what the loss of setting beyond friction asks for", Share, (*data).holdFollow},
 		{fHoldCreeps, "loss that slows down as creep does (1) or runs on as a leak does (0)", Count, (*data).holdCreeps},
-		{fCollapse, "fall of setting between strokes, of the width that friction locks, stretch held", Times, (*data).collapse},
+		{fCollapse, "dips of the setting while the stretch stays, of the width that friction locks", Times, (*data).collapse},
+		{fCollapseRate, "pace of those dips", PerSecond, (*data).collapseRate},
 		{fMountCreep, "drift of the stretch while the setting holds", MetresMinute, (*data).mountCreep},
 		{fSlip, "largest lasting step of the stretch", OfStretch, (*data).slip},
 		{fSlipCounts, "the same step, in counts", Times, (*data).slipCounts},
@@ -116,7 +122,9 @@ func features() []struct {
 		{fWeight, "lifted weight that the loop gives, off the profile's, as setting", OfSetting, (*data).weight},
 		{fSticky, "difference of the gauge between rising and falling on the bench, of its span", Share, (*data).sticky},
 		{fCurve, "bend of the gauge's error on the bench, of its span", Share, (*data).curve},
+		{fGaugeSpan, "error of the gauge's span on the bench", Share, (*data).gaugeSpan},
 		{fWarmLink, "correlation of the drift with the temperature", Count, (*data).warmLink},
+		{fWarmPerK, "drift for each degree, over that of a steel bar", Times, (*data).warmCoefficient},
 		{fWarmShift, "drift of the stretch with the temperature", OfStretch, (*data).warmShift},
 		{fSpans, "difference of the slopes of the two spans", Share, (*data).spans},
 		{fFirst, "slope of the later ramps beyond the first one's", Share, (*data).first},
@@ -125,7 +133,7 @@ func features() []struct {
 		{fLagWidth, "half-width that the lag pretends", OfSetting, (*data).lagWidth},
 		{fSaturated, "readings at the end of an instrument's range", Count, (*data).saturated},
 		{fFlatTop, "rise of the stretch while the setting reads the same", OfStretch, (*data).flatTop},
-		{fRamps, "ramps that could be fitted", Count, (*data).ramps},
+		{fRamps, "ramps up and down again", Count, (*data).ramps},
 		{fFast, "rate of the fastest ramp, of its top", PerSecond, (*data).fast},
 		{fRagged, "largest fall of setting within a rise, of the width that friction locks", Times, (*data).ragged},
 	}

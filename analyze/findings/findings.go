@@ -18,7 +18,8 @@ import (
 )
 
 // Input is what is looked at. Set may be nil: what only the readings tell is
-// then not measured.
+// then not measured. So may Result, where nothing could be fitted: what the
+// readings tell by themselves is still looked for.
 type Input struct {
 	Profile *mill.Profile // its own thresholds; nil for the table's
 	Result  *analyze.Result
@@ -101,7 +102,7 @@ type Evidence struct {
 // the same report to the last bit.
 func Look(in Input) *Report {
 	if in.Result == nil {
-		return &Report{}
+		in.Result = &analyze.Result{}
 	}
 	by := in.Result.Setup.Tensioner.SetBy
 	if by == "" {

@@ -3,7 +3,6 @@ package findings
 import (
 	"math"
 
-	"tautramp/analyze"
 	"tautramp/analyze/estimate"
 )
 
@@ -23,18 +22,16 @@ func play(was, low, high float64) float64 { return math.Max(low, math.Min(high, 
 
 // seatedShare is the part of the working stretch below which the lines do not
 // speak: the band seats there. Judgement: usable above 15 to 20 %.
-const seatedShare = 0.2
+const (
+	seatedShare = 0.2
+	mostSeated  = 0.35 // a fit that begins higher has its own reason
+)
 
-func (d *data) newFollow() follow {
+func (d *data) newFollow(lateS float64) follow {
 	n := len(d.t)
-	f := follow{p: d.smoothed(), is: make([]float64, n), rest: make([]float64, n), good: make([]bool, n)}
+	f := follow{p: d.smoothed(lateS), is: make([]float64, n), rest: make([]float64, n), good: make([]bool, n)}
 	zero := d.zeroM()
-	seated := zero + seatedShare*d.workingM
-	for _, c := range d.r.Cycles {
-		if e, known := d.seatEnd(c); known {
-			seated = math.Max(seated, e)
-		}
-	}
+	seated := d.seatedM(zero)
 	now := zero
 	for i, p := range f.p {
 		low, high := d.up.at(p), d.down.at(p)
@@ -49,11 +46,20 @@ func (d *data) newFollow() follow {
 	return f
 }
 
-func (d *data) seatEnd(c analyze.Cycle) (eM float64, ok bool) {
-	if c.Rising.Points == 0 || !(c.SeatingEndSI > 0) {
-		return 0, false
+// seatedM is the extension above which the lines speak: where the ramps say
+// that the band is seated, within bounds.
+func (d *data) seatedM(zero float64) float64 {
+	var ends []float64
+	for _, c := range d.r.Cycles {
+		if c.Rising.Points > 0 && c.SeatingEndSI > 0 {
+			ends = append(ends, d.up.at(c.SeatingEndSI)-zero)
+		}
 	}
-	return d.up.at(math.Min(c.SeatingEndSI, d.workingSI)), true
+	end := estimate.Median(ends)
+	if math.IsNaN(end) {
+		end = 0
+	}
+	return zero + math.Max(seatedShare*d.workingM, math.Min(end, mostSeated*d.workingM))
 }
 
 // zeroM is the extension of the slack band; that of the rising line at its low
@@ -72,8 +78,8 @@ func (d *data) zeroM() float64 {
 }
 
 // smoothed is the setting at the points: the mean of its own readings from half
-// a point before to half a point after.
-func (d *data) smoothed() []float64 {
+// a point before to half a point after, so much earlier.
+func (d *data) smoothed(lateS float64) []float64 {
 	out := append([]float64(nil), d.p...)
 	if d.set == nil || len(d.set.Setting.Readings) <= len(d.t) {
 		return out
@@ -88,11 +94,11 @@ func (d *data) smoothed() []float64 {
 		if i+1 < len(d.t) && (i == 0 || d.t[i+1]-d.t[i] < 2*half) {
 			half = (d.t[i+1] - d.t[i]) / 2
 		}
-		for from < len(readings) && readings[from].T < d.t[i]-half {
+		for from < len(readings) && readings[from].T < d.t[i]-lateS-half {
 			from++
 		}
 		sum, n := 0.0, 0.0
-		for k := from; k < len(readings) && readings[k].T <= d.t[i]+half; k++ {
+		for k := from; k < len(readings) && readings[k].T <= d.t[i]-lateS+half; k++ {
 			if readings[k].Status.Ok() {
 				sum += readings[k].Value
 				n++

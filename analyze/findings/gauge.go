@@ -77,6 +77,23 @@ func (d *data) curve() estimate.Estimate {
 	return estimate.Estimate{Value: worst / span, System: benchStd(b) / span, DoF: math.Inf(1), Method: "bench test in mill.toml"}
 }
 
+// gaugeSpan is how far the gauge reads off in proportion.
+func (d *data) gaugeSpan() estimate.Estimate {
+	b, span, ok := d.benched()
+	if !ok {
+		return estimate.Unknown(noBench)
+	}
+	var at, add []float64
+	for _, p := range b.Points {
+		at, add = append(at, p.At.SI), append(add, p.Rising.SI)
+	}
+	l, err := estimate.FitLine(at, add)
+	if err != nil {
+		return estimate.Unknown("the bench test has too few points to show the gauge's span")
+	}
+	return estimate.Estimate{Value: math.Abs(l.B), System: benchStd(b) / span, DoF: math.Inf(1), Method: "bench test in mill.toml"}
+}
+
 // benchStd is the largest standard uncertainty of the bench's corrections.
 func benchStd(b *mill.Bench) float64 {
 	worst := 0.0

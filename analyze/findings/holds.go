@@ -13,7 +13,8 @@ type hold struct {
 	rateM       estimate.Estimate
 	meanSI      float64
 	meanM       float64 // from the slack band
-	lostSI      float64 // over the whole hold, settling left out
+	lostSI      float64 // from the start of the hold to its end
+	lostM       float64
 }
 
 const (
@@ -24,7 +25,7 @@ const (
 	// A shorter hold tells no rate.
 	leastHoldS = 12.0
 	// A hold is what moves more slowly than this share of the ramps' rate.
-	heldShare = 0.15
+	heldShare = 0.35
 	// Over which that is judged, s: longer than from stroke to stroke.
 	rateWindowS = 3.0
 )
@@ -102,8 +103,21 @@ func (d *data) newHold(first, last int) (hold, bool) {
 	h.meanM -= d.zeroM()
 	h.rateSI = d.slope(t, p, d.r.Setup.CountSI)
 	h.rateM = d.slope(t, e, d.countM)
-	h.lostSI = -h.rateSI.Value * (t[len(t)-1] - t[0])
+	begun, ended := d.edge(first, first+d.points(edgeS)), d.edge(last-d.points(edgeS), last)
+	h.lostSI, h.lostM = begun[0]-ended[0], begun[1]-ended[1]
 	return h, h.rateSI.Known() && h.rateM.Known()
+}
+
+// edgeS is over how long either end of a hold is averaged, s.
+const edgeS = 1.5
+
+// points is how many points that is.
+func (d *data) points(s float64) int { return max(2, int(s/math.Max(d.stepS, 1e-3))) }
+
+// edge is the median setting and stretch over some points.
+func (d *data) edge(from, to int) [2]float64 {
+	from, to = max(0, from), min(len(d.t)-1, to)
+	return [2]float64{estimate.Median(d.follow.p[from : to+1]), estimate.Median(d.e[from : to+1])}
 }
 
 // slope is the rate of a held value, and at least as doubtful as one count over
@@ -154,6 +168,8 @@ func (d *data) holdSetting() estimate.Estimate {
 	})
 }
 
+func (d *data) holdRise() estimate.Estimate { return d.holdSetting().Scale(-1) }
+
 func (d *data) holdStretch() estimate.Estimate {
 	return d.pooled(func(h hold) (float64, float64) {
 		return -60 * h.rateM.Value / h.meanM, 60 * h.rateM.Random / h.meanM
@@ -180,14 +196,18 @@ func (d *data) holdFreed() estimate.Estimate {
 	if !ok {
 		return estimate.Unknown(noHold)
 	}
-	long := d.t[h.last] - d.t[h.first]
 	lock := d.lockAt(h.meanSI)
 	half := d.r.Working.HalfSI
 	if !(lock > 0) || !half.Known() {
 		return estimate.Unknown("the loop's width is not known")
 	}
 	v := h.lostSI / lock
-	return known(v, math.Hypot(h.rateSI.Random*long/lock, v*half.Std()/math.Max(half.Value, half.Std())), 10, "the hold that lost most")
+	return known(v, math.Hypot(d.lossStd()/lock, v*half.Std()/math.Max(half.Value, half.Std())), 10, "the hold that lost most")
+}
+
+// lossStd is the doubt of a difference of two edges, SI of setting.
+func (d *data) lossStd() float64 {
+	return estimate.Noise(d.follow.p) * math.Sqrt(2/float64(d.points(edgeS)))
 }
 
 // holdFollow is how much of the stretch went with the setting once the setting
@@ -200,13 +220,11 @@ func (d *data) holdFollow() estimate.Estimate {
 	half := d.r.Working.HalfSI
 	beyond := h.lostSI - d.lockAt(h.meanSI)
 	asks := d.down.b * beyond
-	if !half.Known() || !(asks > 3*d.noiseM) || !(beyond > 2*half.Std()) {
+	if !half.Known() || !(asks > 2*d.countM+3*d.noiseM) || !(beyond > 2*half.Std()) {
 		return estimate.Unknown("the setting did not fall beyond what friction locks: hold for longer")
 	}
-	long := d.t[h.last] - d.t[h.first]
-	gone := -h.rateM.Value * long
-	v := gone / asks
-	return known(v, math.Hypot(h.rateM.Random*long/asks, v*2*half.Std()/beyond), 10, "the hold that lost most")
+	v := h.lostM / asks
+	return known(v, math.Hypot(d.noiseM/asks, v*2*half.Std()/beyond), 10, "the hold that lost most")
 }
 
 // holdCreeps is which law the longest hold's loss follows, where one can be told.

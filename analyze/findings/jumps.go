@@ -10,11 +10,10 @@ import (
 // jumps is what the readings leave of the two lines, looked through for sudden
 // changes.
 type jumps struct {
-	window   int       // points on either side that are compared
-	noise    float64   // standard deviation of a change that is none, m
-	branches [][]jump  // of each rise and fall, largest first
-	all      []jump    // of the whole recording, with how much of them lasted
-	sizes    []float64 // of all, sorted down
+	window   int      // points on either side that are compared
+	noise    float64  // standard deviation of a change that is none, m
+	branches [][]jump // of each rise and fall, largest first
+	all      []jump   // of the whole recording, with how much of them lasted
 }
 
 // jump is one sudden change of what the lines do not explain.
@@ -32,7 +31,7 @@ const (
 
 func (d *data) findJumps() jumps {
 	j := jumps{window: 3}
-	if step := d.stepS(); step > 0 {
+	if step := d.stepS; step > 0 {
 		j.window = max(3, int(math.Round(jumpS/step)))
 	}
 	j.noise = d.noiseM * math.Sqrt(2/float64(j.window))
@@ -50,9 +49,7 @@ func (d *data) findJumps() jumps {
 	j.all = d.peaks(change, 0, len(d.t)-1, j.window)
 	for i := range j.all {
 		j.all[i].kept = d.kept(j.all[i].at, j.window)
-		j.sizes = append(j.sizes, math.Abs(j.all[i].kept))
 	}
-	slices.SortFunc(j.sizes, func(a, b float64) int { return compare(b, a) })
 	return j
 }
 
@@ -68,7 +65,7 @@ func compare(a, b float64) int {
 	return 0
 }
 
-func (d *data) stepS() float64 {
+func (d *data) medianStep() float64 {
 	steps := make([]float64, 0, len(d.t))
 	for i := 1; i < len(d.t); i++ {
 		steps = append(steps, d.t[i]-d.t[i-1])
@@ -127,7 +124,7 @@ func (d *data) kept(at, clear int) float64 {
 		}
 		return estimate.Median(v)
 	}
-	gap := float64(clear) * d.stepS()
+	gap := float64(clear) * d.stepS
 	t := d.t[at]
 	return mean(t+gap/2, t+gap/2+keptS) - mean(t-gap/2-keptS, t-gap/2)
 }
@@ -169,13 +166,23 @@ func (d *data) third() (sizeM float64, ok bool) {
 			thirds = append(thirds, 0)
 		}
 	}
-	return estimate.Median(thirds), len(thirds) > 0
+	// One count of the display makes a change of as much by itself.
+	return math.Max(0, estimate.Median(thirds)-d.countM), len(thirds) > 0
+}
+
+// lasted is how much of a sudden change is still there some seconds later, and
+// was there at once.
+func (j jump) lasted() float64 {
+	if math.IsNaN(j.kept) || j.kept*j.size <= 0 {
+		return 0
+	}
+	return math.Min(math.Abs(j.kept), 1.2*math.Abs(j.size))
 }
 
 // largestStep is the change that lasted most.
 func (d *data) largestStep() (j jump, ok bool) {
 	for _, c := range d.jumps.all {
-		if !math.IsNaN(c.kept) && math.Abs(c.kept) > math.Abs(j.kept) && math.Abs(c.size) > math.Abs(c.kept)/3 {
+		if c.lasted() > j.lasted() {
 			j, ok = c, true
 		}
 	}
@@ -187,7 +194,7 @@ func (d *data) slip() estimate.Estimate {
 	if !ok {
 		return d.noStep()
 	}
-	return known(math.Abs(j.kept)/d.workingM, d.jumps.noise/d.workingM, math.Inf(1), "what the lines leave, some seconds before and after")
+	return known(j.lasted()/d.workingM, d.jumps.noise/d.workingM, math.Inf(1), "what the lines leave, some seconds before and after")
 }
 
 func (d *data) noStep() estimate.Estimate {
@@ -204,27 +211,27 @@ func (d *data) slipCounts() estimate.Estimate {
 		return e
 	}
 	count := math.Max(d.countM, d.noiseM)
-	return known(math.Abs(j.kept)/count, d.jumps.noise/count, math.Inf(1), "what the lines leave, some seconds before and after")
+	return known(j.lasted()/count, d.jumps.noise/count, math.Inf(1), "what the lines leave, some seconds before and after")
 }
 
-// slipAlone is the largest step over the third largest: a mount slips once or
-// twice, stick-slip goes on.
+// slipAlone is the largest step over the third largest of those elsewhere: a
+// mount slips once or twice, stick-slip goes on.
 func (d *data) slipAlone() estimate.Estimate {
 	j, ok := d.largestStep()
-	if !ok || len(d.jumps.sizes) < 3 {
+	if !ok {
 		return estimate.Unknown("no step was seen")
 	}
 	var rest []float64
-	for _, s := range d.jumps.sizes {
-		if !math.IsNaN(s) {
-			rest = append(rest, s)
+	for _, o := range d.jumps.all {
+		if math.Abs(d.t[o.at]-d.t[j.at]) > 2*keptS {
+			rest = append(rest, o.lasted())
 		}
 	}
-	if len(rest) < 3 {
-		return estimate.Unknown("no step was seen")
-	}
 	slices.SortFunc(rest, func(a, b float64) int { return compare(b, a) })
-	next := math.Max(rest[2], d.jumps.noise)
-	v := math.Abs(j.kept) / next
-	return known(v, v*d.jumps.noise/next, math.Inf(1), "largest step over the third largest")
+	next := math.Max(d.jumps.noise, d.countM/2)
+	if len(rest) >= 3 {
+		next = math.Max(rest[2], next)
+	}
+	v := j.lasted() / next
+	return known(v, math.Hypot(1, v)*d.jumps.noise/next, math.Inf(1), "largest step over the third largest elsewhere")
 }

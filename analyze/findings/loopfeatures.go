@@ -7,7 +7,13 @@ import (
 	"tautramp/analyze/estimate"
 )
 
-func (d *data) half() estimate.Estimate { return d.r.WidthRatio }
+func (d *data) half() estimate.Estimate {
+	constant, growing := d.driftWidth()
+	if constant == 0 && growing == 0 {
+		return d.r.WidthRatio
+	}
+	return lessDrift(d.r.WidthRatio, constant/d.workingSI+growing)
+}
 
 // constant is F0 / A* over the working setting; of a tensioner that is not set
 // by pressure, the half-width carried on to no load.
@@ -20,7 +26,16 @@ func (d *data) constant() estimate.Estimate {
 	if !f.F0N.Known() || !(f.AreaM2.Value > 0) || !(d.workingSI > 0) {
 		return estimate.Unknown("the loop does not give its friction")
 	}
-	return f.F0N.Scale(1 / f.AreaM2.Value / d.workingSI)
+	e := f.F0N.Scale(1 / f.AreaM2.Value / d.workingSI)
+	by, _ := d.driftWidth()
+	return lessDrift(e, by/d.workingSI)
+}
+
+// lessDrift takes off what a drift pretends, a tenth of it in doubt.
+func lessDrift(e estimate.Estimate, by float64) estimate.Estimate {
+	e.Value -= by
+	e.System = math.Hypot(e.System, 0.1*by)
+	return e
 }
 
 // proportional is mu.
@@ -29,7 +44,8 @@ func (d *data) proportional() estimate.Estimate {
 		_, p := d.widthLine()
 		return p
 	}
-	return d.r.Friction.Mu
+	_, by := d.driftWidth()
+	return lessDrift(d.r.Friction.Mu, by)
 }
 
 // widthLine splits the half-width of the loop, h = h0 + h1 pbar with pbar midway
@@ -105,22 +121,21 @@ func (d *data) halfAt(risingSI float64) float64 {
 	return math.Max(0, low.HalfSI.Value+share*(high.HalfSI.Value-low.HalfSI.Value))
 }
 
-// toe is the stress up to which the rising readings stay off the rising line by
-// more than a hundredth of the working stretch, of the target: how far slack,
-// curl or flattening reach.
+// toe is the stress up to which the rising readings stay off the line of the
+// upper part of the rise by more than a hundredth of the working stretch, and
+// more than the display hides, of the target: how far slack, curl or flattening
+// reach.
 func (d *data) toe() estimate.Estimate {
 	if !d.usable() {
-		return estimate.Unknown("no straight stretch was found")
+		return estimate.Unknown("no rise was long enough")
 	}
 	var values, stds []float64
 	for _, c := range d.r.Cycles {
-		if !c.Zero.Known() || c.Rising.Points == 0 {
-			continue
+		if v, ok := d.toeOf(c); ok && c.Role == analyze.Ramp {
+			values, stds = append(values, v), append(stds, toeStd)
 		}
-		values = append(values, d.toeOf(c))
-		stds = append(stds, toeStd)
 	}
-	return over(values, stds, "readings off the rising line by 1 % of the working stretch", "the stretch of the slack band is not known")
+	return over(values, stds, "readings off the line of the upper rise by 1 % of the working stretch", "no rise was long enough")
 }
 
 const (
@@ -128,24 +143,33 @@ const (
 	// How well the end of a toe, which is gentle, is known, of the target.
 	// Judgement.
 	toeStd = 0.02
+	// The part of a rise, by setting, that its line is taken from. Judgement.
+	upperFrom, upperTo = 0.6, 0.95
 )
 
-func (d *data) toeOf(c analyze.Cycle) float64 {
-	end := 0.0
-	var p, e []float64
-	for i := c.First; i <= c.Peak && i < len(d.t); i++ {
-		if ph := d.phase[i]; ph == analyze.Loading || ph == analyze.Seating {
-			p, e = append(p, d.follow.p[i]), append(e, d.e[i])
-		}
+func (d *data) toeOf(c analyze.Cycle) (share float64, ok bool) {
+	at := d.leads(c)
+	if len(at) < 24 {
+		return 0, false
+	}
+	p, e := make([]float64, len(at)), make([]float64, len(at))
+	for k, i := range at {
+		p[k], e[k] = d.follow.p[i], d.e[i]
+	}
+	low, span := p[0], p[len(p)-1]-p[0]
+	upper, fits := fitPart(p, e, low+upperFrom*span, low+upperTo*span)
+	if !fits || !(upper.B > 0) {
+		return 0, false
 	}
 	p, e = thinned(p, 80), thinned(e, 80)
+	off := math.Max(offLine*d.workingM, d.countM+3*d.noiseM)
+	zero := d.zeroM()
 	for i := range p {
-		is := c.Rising.Line.A + c.Rising.Line.B*p[i]
-		if from := (is - c.Zero.Value) / d.workingM; from < 0.9 && math.Abs(e[i]-is) > offLine*d.workingM {
-			end = math.Max(end, from)
+		if is := upper.A + upper.B*p[i]; p[i] < low+upperFrom*span && math.Abs(e[i]-is) > off {
+			share = math.Max(share, (e[i]-zero)/d.workingM)
 		}
 	}
-	return end
+	return share, true
 }
 
 func (d *data) area() estimate.Estimate {
@@ -174,18 +198,24 @@ func (d *data) weight() estimate.Estimate {
 }
 
 // weightDoubt is how well a lifted weight is commonly known, relative. Judgement.
-const weightDoubt = 0.1
+const weightDoubt = 0.05
 
+// ramps counts the closed cycles that are not for exercise, fitted or not.
 func (d *data) ramps() estimate.Estimate {
+	if len(d.r.Cycles) == 0 {
+		return estimate.Unknown("no ramp could be fitted")
+	}
 	n := 0
 	for _, c := range d.r.Cycles {
-		if c.Rising.Points > 0 {
+		if c.Role == analyze.Ramp {
 			n++
 		}
 	}
 	return estimate.Exact(float64(n), "counted")
 }
 
+// fast is the pace of the fastest ramp; of the setting alone, where nothing could
+// be fitted.
 func (d *data) fast() estimate.Estimate {
 	worst := math.NaN()
 	for _, c := range d.r.Cycles {
@@ -194,7 +224,26 @@ func (d *data) fast() estimate.Estimate {
 		}
 	}
 	if math.IsNaN(worst) {
-		return estimate.Unknown("no ramp could be fitted")
+		worst = d.bareRate()
+	}
+	if math.IsNaN(worst) {
+		return estimate.Unknown("the setting never rises")
 	}
 	return estimate.Exact(worst, "median rate on the branches")
+}
+
+// bareRate is the pace of the middle half of the fastest rise, of its top.
+func (d *data) bareRate() float64 {
+	worst := math.NaN()
+	if len(d.p) < leastPoints {
+		return worst
+	}
+	turns := analyze.Turning(d.p, 0.5*(estimate.Quantile(d.p, 0.999)-estimate.Quantile(d.p, 0.001)))
+	for k := 1; k < len(turns); k++ {
+		c := analyze.Cycle{First: turns[k-1], Peak: turns[k], TopSI: d.p[turns[k]]}
+		if r := d.meanRate(c) / c.TopSI; c.TopSI > d.p[c.First] && !(r <= worst) {
+			worst = r
+		}
+	}
+	return worst
 }

@@ -99,6 +99,7 @@ func (d *data) findLag() estimate.Estimate {
 		}
 		rising = append(rising, c)
 		if a, b, ok := d.goodRun(c.First, c.Peak); ok {
+			b = d.intoHold(b, c.Last)
 			runs = append(runs, estimate.Run{First: a, Last: b, Sign: 1, Cycle: n})
 		}
 		if a, b, ok := d.goodRun(c.Peak, c.Last); ok {
@@ -112,7 +113,25 @@ func (d *data) findLag() estimate.Estimate {
 	if err != nil {
 		return estimate.Unknown("the ramps do not tell a lag")
 	}
+	if late.Late.Known() { // a display steps so seldom that it hides some of the lag
+		late.Late.System = hiddenByCount * d.countM / (d.up.b * math.Max(d.rampRate(), 1e-9*d.workingSI))
+	}
 	return late.Late
+}
+
+// hiddenByCount is how much of the time from count to count on the ramp a lag is
+// in doubt by. Judgement.
+const hiddenByCount = 0.1
+
+// intoHold goes on some seconds into a hold after a rise: where the setting
+// stops, a lag shows.
+func (d *data) intoHold(last, end int) int {
+	const on = 6.0 // s
+	from, top := last, d.follow.p[last]
+	for last+1 < min(end, len(d.t)) && d.t[last+1] < d.t[from]+on && d.follow.p[last+1] > top-0.4*d.lockAt(top)-0.002*top {
+		last++
+	}
+	return last
 }
 
 // goodRun is the longest part of a leg that the lines speak for and that moves.

@@ -85,6 +85,9 @@ const (
 	Fast       Key = "too-fast"
 	Ragged     Key = "ragged"
 	Screw      Key = "dry-screw"
+	GaugeSpan  Key = "gauge-span"
+	Curl       Key = "curl"
+	Weight     Key = "weight"
 )
 
 // causeName is what a cause is called in a group.
@@ -100,6 +103,8 @@ func causeName(k Key) string {
 		{GaugeZero, "gauge off its zero"}, {Gauge, "sticky or bent gauge"}, {Warmth, "drift with temperature"},
 		{Drag, "wheel or brake drag"}, {Tyre, "tyre that gives"}, {Section, "wrong section, bore or ratio"},
 		{Lag, "lag between the instruments"}, {Saturation, "instrument at the end of its range"},
+		{GaugeSpan, "gauge that reads off in proportion"}, {Curl, "curl or flattening of the band on this face"},
+		{Weight, "lifted weight not as in mill.toml"},
 		{FewRamps, "too few ramps"}, {Fast, "ramp too fast"}, {Ragged, "ramp too ragged"},
 	} {
 		if c.Key == k {

@@ -59,7 +59,7 @@ func sealRow() row {
 func pinsRow() row {
 	return row{
 		key: Pins, name: "Drag that grows with the load", causes: group(Pins),
-		tests: []test{{fProportional, Above, mill.FrictionProportional}, {fConstant, Below, mill.FrictionConstant}},
+		tests: []test{{fProportional, Above, mill.FrictionProportional}, {fConstant, Below, mill.FrictionFlat}},
 		shows: shownWidth(), rivals: widthRivals(), level: Service, region: betweenLines,
 		next: "Grease the pins and links as the maker says and ramp again: the part that grows with the load should fall.",
 		advice: []string{
@@ -73,7 +73,7 @@ func bothRow() row {
 	return row{
 		key: "constant-and-growing-drag", name: "Drag that is there at no load and grows with it",
 		causes: group(Seal, Slide, Pins),
-		tests:  []test{{fProportional, Above, mill.FrictionProportional}, {fConstant, Above, mill.FrictionConstant}},
+		tests:  []test{{fProportional, Above, mill.FrictionProportional}, {fConstant, Above, mill.FrictionFlat}},
 		shows:  shownWidth(), rivals: widthRivals(), yields: []Key{Seal}, level: Service, region: betweenLines,
 		next: "A seal drags both ways at once; a rusted slide together with dry pins looks the same. Grease the pins and clean the slide, ramp again, and see which part fell.",
 		advice: []string{

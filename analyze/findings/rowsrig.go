@@ -29,17 +29,21 @@ func creepRivals() []rival {
 func mountCreepRow() row {
 	return row{
 		key: MountCreep, name: "The mount of the rig creeps", causes: group(MountCreep),
-		tests:  []test{{fMountCreep, Above, mill.MountCreep}, {fWarmLink, Below, mill.WarmthLink}},
+		tests:  []test{{fMountCreep, Above, mill.MountCreep}, {fWarmPerK, Above, mill.WarmthPerK}},
 		rivals: creepRivals(), shows: []FeatureKey{fMountCreep, fWarmLink, fWarmShift}, level: Again, region: nowhere,
 		next:   "Leave the rig on the slack band for ten minutes and watch the zero, with the temperature beside it.",
 		advice: []string{"Re-clamp on clean bare steel and measure again."},
 	}
 }
 
+func warmTests() []test {
+	return []test{{fWarmShift, Above, mill.WarmthShift}, {fWarmLink, Above, mill.WarmthLink}, {fWarmPerK, Below, mill.WarmthPerK}}
+}
+
 func warmthRow() row {
 	return row{
 		key: Warmth, name: "The stretch drifts with the temperature", causes: group(Warmth),
-		tests:  []test{{fWarmShift, Above, mill.WarmthShift}, {fWarmLink, Above, mill.WarmthLink}},
+		tests:  warmTests(),
 		rivals: creepRivals(), shows: []FeatureKey{fWarmShift, fWarmLink, fMountCreep}, level: Again, region: nowhere,
 		next:   "Measure again in the shade with a bar of steel, both temperatures logged.",
 		advice: []string{"Shade band and rig, wait until both have settled, keep the test short, and measure again."},
@@ -80,6 +84,10 @@ func lagRow() row {
 	return row{
 		key: Lag, name: "The instruments lag each other", causes: group(Lag),
 		tests: []test{{fLagWidth, Above, mill.LagWidth}}, shows: []FeatureKey{fLagWidth, fLag},
+		rivals: []rival{
+			{"stick-slip", jumpTests()}, {"a mount that slipped", slipTests()},
+			{"a gauge that does not read straight", []test{{fCurve, Above, mill.GaugeCurve}}},
+		},
 		level: Again, region: betweenLines,
 		next:   "Ramp once at half the pace: what lag opens halves, what friction opens stays.",
 		advice: []string{"Ramp more slowly; open the gauge's snubber if it is nearly shut; take the filter of the slower instrument down."},
@@ -124,13 +132,20 @@ func rampRows() []row {
 		{
 			key: Fast, name: "Ramp too fast", causes: group(Fast),
 			tests: []test{{fFast, Above, mill.FastRamp}}, level: Again, region: bothLines,
+			rivals: []rival{
+				{"a gauge at the end of its range", []test{{fFlatTop, Above, mill.FlatTop}}},
+				{"a transducer on the pump side of the check valve", collapseTests()},
+			},
 			next: "Ramp again, one to five minutes each way.", advice: []string{"Ramp more slowly: lag opens the loop in proportion to the pace."},
 		},
 		{
 			key: Ragged, name: "Ramp too ragged", causes: group(Ragged),
 			tests: []test{{fRagged, Above, mill.RaggedRamp}}, level: Again, region: risingLine,
-			rivals: []rival{{"a transducer on the pump side of the check valve", []test{{fCollapse, Above, mill.StrokeLoss}}}},
-			next:   "Ramp again steadily, without letting the setting down on the way up.", advice: []string{"Come up in one direction: a fall beyond what friction holds takes the band off the rising line."},
+			rivals: []rival{
+				{"a transducer on the pump side of the check valve", []test{{fCollapse, Above, mill.StrokeLoss}, {fCollapseRate, Above, mill.StrokeRate}}},
+				{"a leak", []test{{fHoldSetting, Above, mill.HoldLoss}}},
+			},
+			next: "Ramp again steadily, without letting the setting down on the way up.", advice: []string{"Come up in one direction: a fall beyond what friction holds takes the band off the rising line."},
 		},
 	}
 }

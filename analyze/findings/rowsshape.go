@@ -14,9 +14,8 @@ func shapeRows(by mill.SetBy) []row {
 func stickSlipRow() row {
 	return row{
 		key: StickSlip, name: "Stick-slip", causes: group(StickSlip),
-		tests: []test{{fThirdJump, Above, mill.JumpSize}, {fJumpNoise, Above, mill.JumpNoise}},
+		tests: jumpTests(),
 		rivals: []rival{
-			{"lag that strokes of the pump turn into steps", []test{{fLagWidth, Above, mill.LagWidth}}},
 			{"a gauge that sticks", []test{{fSticky, Above, mill.GaugeSticky}}},
 		},
 		level: Service, region: risingLine,
@@ -28,11 +27,15 @@ func stickSlipRow() row {
 	}
 }
 
+func jumpTests() []test {
+	return []test{{fThirdJump, Above, mill.JumpSize}, {fJumpNoise, Above, mill.JumpNoise}}
+}
+
 func toeRow() row {
 	return row{
-		key: Toe, name: "Slack is taken up late", causes: group(Toe),
+		key: Toe, name: "The foot of the loop is bent high up", causes: group(Toe, Curl),
 		tests:  []test{{fToe, Above, mill.ToeReach}},
-		rivals: []rival{{"air in the oil", []test{{fSoft, Above, mill.AirSoftness}}}},
+		rivals: []rival{{"air in the oil", []test{{fSoft, Above, mill.AirSoftness}}}, {"stick-slip", jumpTests()}, {"an end stop", stopTests()}, {"a gauge that does not read straight", []test{{fCurve, Above, mill.GaugeCurve}}}, {"a mount that slipped", slipTests()}},
 		level:  Watch, region: lowEnd,
 		next: "Measure the other face of the band too: a band that flattens shows the other sign there, slack shows the same.",
 		advice: []string{
@@ -45,7 +48,7 @@ func toeRow() row {
 func endStopRow() row {
 	return row{
 		key: EndStop, name: "End stop: the setting rises and the stretch does not follow", causes: group(EndStop),
-		tests:  []test{{fTopSlope, Below, mill.StopSlope}, {fTopSpan, Above, mill.StopSpan}},
+		tests:  stopTests(),
 		rivals: []rival{{"an instrument at the end of its range", []test{{fSaturated, Above, mill.Saturated}}}},
 		level:  Stop, region: topEnd,
 		next: "None under more pressure. With the band slack and all locked out, look at how much stroke is left.",
@@ -54,6 +57,10 @@ func endStopRow() row {
 			"Check the stroke left, the length of the band and what the slide runs against.",
 		},
 	}
+}
+
+func stopTests() []test {
+	return []test{{fTopSpan, Above, mill.StopSpan}, {fTopSlope, Below, mill.StopSlope}}
 }
 
 func playRow() row {

@@ -7,123 +7,182 @@ import (
 	"tautramp/analyze/estimate"
 )
 
-// stroke is one push of a pump in a rise, and the fall of the setting after it.
-type stroke struct {
-	fromSI, topSI float64 // setting before the push and at its top
-	fallSI        float64 // from the top to the lowest before the next push
-	fellM         float64 // how far the stretch fell meanwhile
-	gainSI        float64 // of this top over the last one
-	taut          bool
+// dip is a fall of the setting that is made good again, and what the stretch
+// did meanwhile.
+type dip struct {
+	share float64 // of the setting before it
+	rate  float64 // the same a second
+	level float64 // SI, before it
+	held  bool    // the stretch stayed
 }
 
-// strokes cuts a rise into pushes.
-func (d *data) strokes(c analyze.Cycle) []stroke {
-	if c.Peak <= c.First || c.Peak >= len(d.t) || !d.usable() {
-		return nil
-	}
-	p := d.follow.p[c.First : c.Peak+1]
-	band := math.Max(6*estimate.Noise(p), 0.002*c.TopSI)
-	turns := analyze.Turning(p, band)
-	var out []stroke
-	lastTop := math.NaN()
-	for k := 1; k < len(turns); k++ {
-		from, top := turns[k-1], turns[k]
-		if p[top] <= p[from] {
+const (
+	// A smaller dip, as a share of the setting, is the sag of any hand pump.
+	// Judgement.
+	leastDip = 0.04
+	// Fewer dips are an accident. Judgement.
+	leastDips = 3
+	// A stretch that moves by less than this share of what the dip asks for, had
+	// it followed in proportion, has stayed.
+	heldPart = 0.25
+)
+
+// dips looks for falls that come back, by the turning points of the setting
+// alone: it needs no fitted line.
+func (d *data) dips() []dip {
+	p, e := d.p, d.e
+	top, span := estimate.Quantile(p, 0.999), estimate.Quantile(e, 0.999)-estimate.Quantile(e, 0.01)
+	noise := estimate.Noise(p)
+	turns := analyze.Turning(p, math.Max(0.02*top, 6*noise))
+	var out []dip
+	for k := 1; k+1 < len(turns); k++ {
+		from, low, after := turns[k-1], turns[k], turns[k+1]
+		fall, back := p[from]-p[low], p[after]-p[low]
+		if fall < leastDip*p[from] || back < 0.8*fall || p[from] < 0.15*top {
 			continue
 		}
-		s := stroke{fromSI: p[from], topSI: p[top], gainSI: p[top] - lastTop, fallSI: math.NaN()}
-		i := c.First + top
-		s.taut = d.e[i] > d.zeroM()+tautShare*d.workingM
-		if k+1 < len(turns) {
-			low := c.First + turns[k+1]
-			s.fallSI = p[top] - p[turns[k+1]]
-			s.fellM = d.e[i] - d.e[low]
+		x := dip{share: fall / p[from], level: p[from]}
+		// The fall itself, a pause after it left out: to nine tenths.
+		end := from
+		for end < low && p[end] > p[from]-0.9*fall {
+			end++
 		}
-		lastTop = p[top]
-		out = append(out, s)
+		x.rate = 0.9 * x.share / math.Max(d.t[end]-d.t[from], 0.05)
+		asks := fall / top * span
+		x.held = math.Abs(e[low]-e[from]) < heldPart*asks+2*d.countM
+		out = append(out, x)
 	}
 	return out
 }
 
-const (
-	// tautShare is the part of the working stretch above which the band is taut
-	// for certain. Judgement.
-	tautShare = 0.05
-	// Fewer strokes are no pump. Judgement.
-	leastStrokes = 6
-)
+// collapse is how far the setting falls and comes back while the stretch stays,
+// in widths that friction locks, and those no narrower than the sag of any hand
+// pump: the median of the dips.
+func (d *data) collapse() estimate.Estimate {
+	held := d.heldDips()
+	if len(d.p) < leastPoints {
+		return estimate.Unknown("too little was recorded")
+	}
+	if len(held) < leastDips {
+		return known(0, 0.2, math.Inf(1), "no such dips")
+	}
+	var sizes []float64
+	for _, x := range held {
+		lock := 0.0
+		if d.usable() {
+			lock = d.lockAt(x.level) / x.level
+		}
+		sizes = append(sizes, x.share/math.Max(lock, leastDip))
+	}
+	v := estimate.Median(sizes)
+	return known(v, math.Max(0.05*v, estimate.MAD(sizes)/math.Sqrt(float64(len(sizes)))), 10, "median of the dips")
+}
 
-const noStrokes = "the setting did not rise in strokes: pump one ramp by hand"
+// collapseRate is how fast it falls.
+func (d *data) collapseRate() estimate.Estimate {
+	held := d.heldDips()
+	if len(held) < leastDips {
+		return known(0, 1e-4, math.Inf(1), "no such dips")
+	}
+	var rates []float64
+	for _, x := range held {
+		rates = append(rates, x.rate)
+	}
+	v := estimate.Median(rates)
+	return known(v, 0.1*v, 10, "median of the dips")
+}
 
-// soft is how many more strokes the same rise of setting takes low down: the
-// gain of a stroke in the upper half of the taut range over that in its lowest
-// fifth.
+func (d *data) heldDips() []dip {
+	var held []dip
+	for _, x := range d.dips() {
+		if x.held {
+			held = append(held, x)
+		}
+	}
+	return held
+}
+
+// tautShare is the part of the working stretch above which the band is taut
+// for certain. Judgement.
+const tautShare = 0.05
+
+// soft is how slowly the setting comes up with the band still slack, of the pace
+// of the ramp: the time from a tenth to nine tenths of the way from rest to the
+// slack lift, over what the ramp's pace would take. Oil needs no time for it,
+// air has to be squeezed first.
 func (d *data) soft() estimate.Estimate {
+	if !d.usable() {
+		return estimate.Unknown("too little was recorded")
+	}
 	var values, stds []float64
 	for _, c := range d.r.Cycles {
-		if c.Role == analyze.Incomplete {
-			continue
-		}
-		if v, s, ok := softness(d.strokes(c)); ok {
-			values, stds = append(values, v), append(stds, s)
+		if v, ok := d.softness(c); ok && c.Role != analyze.Incomplete {
+			values, stds = append(values, v), append(stds, 0.1)
 		}
 	}
-	return over(values, stds, "rise of setting a stroke", noStrokes)
+	return over(values, stds, "time up to the slack lift", "the ramps do not begin with a slack band, well below its lift")
 }
 
-func softness(all []stroke) (ratio, std float64, ok bool) {
-	var taut []stroke
-	for _, s := range all {
-		if s.taut && !math.IsNaN(s.gainSI) {
-			taut = append(taut, s)
+func (d *data) softness(c analyze.Cycle) (ratio float64, ok bool) {
+	p := d.follow.p
+	zero := d.zeroM()
+	leaves := c.First
+	for leaves <= c.Peak && leaves < len(p) && d.e[leaves] <= zero+tautShare*d.workingM {
+		leaves++
+	}
+	rest := search(d.t, d.t[c.First]-3)
+	if leaves-rest < 16 {
+		return 0, false
+	}
+	from := estimate.Quantile(p[rest:leaves], 0.05)
+	lift := math.Min((zero-d.up.a)/d.up.b, upperMedian(p[rest:leaves], (from+p[leaves-1])/2))
+	rise, rate := lift-from, d.meanRate(c)
+	if rise < 20*estimate.Noise(p) || !(rate > 0) {
+		return 0, false
+	}
+	begun, end := -1, -1
+	for i := rest; i < leaves; i++ {
+		if p[i] < from+0.1*rise {
+			begun, end = i, -1
+		}
+		if end < 0 && p[i] > from+0.85*rise {
+			end = i
 		}
 	}
-	if len(taut) < 2*leastStrokes {
-		return 0, 0, false
+	if begun < 0 || end <= begun {
+		return 0, false
 	}
-	low, high := taut[0].topSI, taut[len(taut)-1].topSI
-	var lower, upper []float64
-	for _, s := range taut[:len(taut)-1] { // the last one stops on the top
-		switch share := (s.topSI - low) / (high - low); {
-		case share <= 0.2:
-			lower = append(lower, s.gainSI)
-		case share >= 0.5:
-			upper = append(upper, s.gainSI)
-		}
-	}
-	ml, sl := estimate.Mean(lower)
-	mu, su := estimate.Mean(upper)
-	if len(lower) < 2 || len(upper) < 3 || !(ml > 0) {
-		return 0, 0, false
-	}
-	ratio = mu / ml
-	nl, nu := float64(len(lower)), float64(len(upper))
-	return ratio, ratio * math.Sqrt(sl*sl/nl/ml/ml+su*su/nu/mu/mu+0.01*0.01), true
+	return (d.t[end] - d.t[begun]) * rate / (0.75 * rise), true
 }
 
-// collapse is how far the setting falls after a stroke while the stretch holds,
-// in widths that friction locks.
-func (d *data) collapse() estimate.Estimate {
-	var shares []float64
-	for _, c := range d.r.Cycles {
-		for _, s := range d.strokes(c) {
-			lock := d.lockAt(s.topSI)
-			if math.IsNaN(s.fallSI) || !s.taut || !(lock > 0) {
-				continue
-			}
-			if s.fellM > 0.3*d.down.b*s.fallSI+2*d.noiseM {
-				shares = append(shares, 0)
-				continue
-			}
-			shares = append(shares, s.fallSI/lock)
+// upperMedian is the median of the values above a level: where the wheel crosses
+// its slack the setting stands still for longest.
+func upperMedian(v []float64, level float64) float64 {
+	var above []float64
+	for _, x := range v {
+		if x > level {
+			above = append(above, x)
 		}
 	}
-	if len(shares) < leastStrokes {
-		return estimate.Unknown(noStrokes)
+	return estimate.Median(above)
+}
+
+// meanRate is the pace of the middle half of a rise, rests and strokes included.
+func (d *data) meanRate(c analyze.Cycle) float64 {
+	low, span := d.p[c.First], c.TopSI-d.p[c.First]
+	from, to := c.First, c.Peak
+	for i := c.First; i <= c.Peak && i < len(d.p); i++ {
+		if d.p[i] <= low+span/4 {
+			from = i
+		}
+		if d.p[i] <= low+span*3/4 {
+			to = i
+		}
 	}
-	half := d.r.Working.HalfSI
-	v := estimate.Median(shares)
-	return known(v, v*half.Std()/math.Max(half.Value, half.Std()), 10, "median over the strokes")
+	if !(d.t[to] > d.t[from]) {
+		return 0
+	}
+	return (d.p[to] - d.p[from]) / (d.t[to] - d.t[from])
 }
 
 // ragged is the largest fall within a rise, in widths that friction locks, and
