@@ -38,6 +38,10 @@ type work struct {
 	early    int       // warnings raised before the figures
 }
 
+// Set is the pairs that the result was made from, their settings rising and
+// falling with the load: see mill.Tensioner.Rising and wrench.
+func (r *Result) Set() *pairing.Set { return r.work.set }
+
 // leastPairs is fewer than any real ramp has.
 const leastPairs = 20
 

@@ -115,7 +115,7 @@ func resultOf(rec *recording.Recording, path string, target mill.Pressure) (*ana
 		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
 	}
 	meta := reportMeta(path, rec, set)
-	meta.Found = findings.Look(findings.Input{Profile: rec.Header.Parsed, Result: res, Set: set})
+	meta.Found = findings.Look(findings.Input{Profile: rec.Header.Parsed, Result: res, Set: res.Set()})
 	return res, meta, nil
 }
 

@@ -12,7 +12,10 @@ import (
 // site is what the profile lets us expect. Settings are in the SI unit of
 // what the tensioner is set by; a figure that the profile does not give is NaN.
 type site struct {
-	limit  float64
+	tensioner mill.Tensioner
+
+	limit  float64   // as a setting that rises with the load
+	slack  float64   // share of the limit below which a resting band may be slack, where the weight is not known
 	unit   mill.Unit // in which the limit was entered: the one that the people here use
 	words  words
 	target float64 // band stress wanted, Pa
@@ -48,17 +51,17 @@ func newSite(h recording.Header) (site, error) {
 	if err != nil {
 		return site{}, fmt.Errorf("start a visit: %w", err)
 	}
-	if t.SetBy == mill.SetBySpring {
+	if t.SetBy == mill.SetBySpring && t.Spring == nil {
 		return site{}, fmt.Errorf("start a visit: %w", &mill.ProfileError{Key: "tensioner.set_by",
-			Problem: fmt.Sprintf("tensioner %s is set by spring length, which falls as the load rises: its limit would not stop anybody", t.Name),
-			Hint:    "a capture by spring length is not handled; measure what the spring is loaded by, such as pressure or torque"})
+			Problem: fmt.Sprintf("tensioner %s is set by spring length, and nothing says whether that falls or rises with the load: its limit might not stop anybody", t.Name),
+			Hint:    "write [tensioner.spring] with under_load and free_length"})
 	}
 	b, err := h.Parsed.FindBand(h.Band)
 	if err != nil {
 		return site{}, fmt.Errorf("start a visit: %w", err)
 	}
 	nan := math.NaN()
-	s := site{limit: t.SettingLimit.SI, unit: t.SettingLimit.Unit, words: wordsOf(t.SetBy),
+	s := site{tensioner: t, limit: t.LimitSI(), slack: slackOf(t.SetBy), unit: t.SettingLimit.Unit, words: wordsOf(t.SetBy),
 		target: orNaN(b.Target.SI), full: nan, half: nan, slope: nan, lift: nan,
 		modulus: b.Modulus.SI, gauge: h.Parsed.Rig.GaugeLength.SI}
 	area, net := t.GeometryAreaM2(), b.NetAreaM2()

@@ -14,6 +14,7 @@ import (
 type watch struct {
 	cfg     Config
 	live    *pairing.Live
+	lens    *lens
 	tracker *tracker
 	alarms  *alarms
 	stop    func() // ends the capture
@@ -52,7 +53,7 @@ func newWatch(cfg Config) (*watch, error) {
 	if err != nil {
 		return nil, fmt.Errorf("start a visit: %w", err)
 	}
-	w := &watch{cfg: cfg, live: live, tracker: newTracker(s, cfg.Plan), alarms: newAlarms(s),
+	w := &watch{cfg: cfg, live: live, lens: newLens(s.tensioner), tracker: newTracker(s, cfg.Plan), alarms: newAlarms(s),
 		stop: func() {}, factor: 1, link: make([]string, len(cfg.Header.Devices))}
 	if c := cfg.Acquire.Clock; c != nil {
 		w.factor = c.Factor()
@@ -75,6 +76,7 @@ func (w *watch) entry(e recording.Entry) []recording.Event {
 	paired := false
 	for _, p := range w.live.Add(e) {
 		paired = true
+		p = w.lens.pair(p)
 		w.tracker.pair(p)
 		if w.tracker.guard.short {
 			w.alarms.short(p.Setting)
@@ -119,6 +121,7 @@ func (w *watch) readings() {
 	w.tracker.countM, w.tracker.periodS = extension.CountSI, extension.PeriodS
 	newest := [2]pairing.Reading{}
 	newest[0], newest[1] = w.live.Latest()
+	newest[0] = w.lens.reading(newest[0])
 	for i, r := range newest {
 		if r.Status == 0 || r.T == w.latest[i].T && r.Part == w.latest[i].Part && r.Status == w.latest[i].Status {
 			continue

@@ -3,6 +3,7 @@ package visit
 import (
 	"math"
 
+	"tautramp/acquire/mill"
 	"tautramp/acquire/pairing"
 )
 
@@ -12,6 +13,7 @@ const (
 	zeroMost  = 64   // and at most
 	slackLift = 0.6  // of what lifts the weight: below it friction is unlikely to hold a band taut
 	slackElse = 0.12 // of the limit, where the weight is not known
+	slackTurn = 0.02 // likewise for a screw or a spring: a loaded screw may loosen at a tenth of it
 )
 
 // zero is the extension of the slack band: the median of the readings while the
@@ -34,8 +36,15 @@ type mark struct {
 	before float64 // the zero before it was taken
 }
 
+func slackOf(by mill.SetBy) float64 {
+	if by == mill.SetByTorque || by == mill.SetBySpring {
+		return slackTurn
+	}
+	return slackElse
+}
+
 func newZero(s site) zero {
-	return zero{below: orElse(slackLift*s.lift, slackElse*s.limit), believe: orElse(s.lift, slackElse*s.limit),
+	return zero{below: orElse(slackLift*s.lift, s.slack*s.limit), believe: orElse(s.lift, s.slack*s.limit),
 		value: math.NaN(), readings: recent{most: zeroMost}}
 }
 
