@@ -80,3 +80,17 @@ func TestDrawnScrewsAreHealthy(t *testing.T) {
 		near(t, "turns up", turnAt(trace, truth.PullN(stress), true), truth.TurnRad(stress, true), 0.02*truth.TurnRad(stress, true))
 	}
 }
+
+func TestDrawnFaultsKeepToTheirSizes(t *testing.T) {
+	rng := rand.New(rand.NewPCG(31, 32))
+	for _, row := range Faults() {
+		low, high := row.To, row.From
+		for range 100 {
+			f := row.Draw(rng)
+			low, high = min(low, f.Size), max(high, f.Size)
+		}
+		if low < row.From || high > row.To || high-low < 0.5*(row.To-row.From) {
+			t.Errorf("%s: %g to %g of %g to %g", row.Kind, low, high, row.From, row.To)
+		}
+	}
+}

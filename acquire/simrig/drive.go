@@ -39,6 +39,7 @@ type Drive struct {
 	HoldTopS float64 // s at the top; 0 means 5, negative none
 	HoldLowS float64 // s at the low end; 0 means 10, negative none
 
+	Ragged    float64 // Smooth: swing of the rate on the way up, part of it: above 1 it goes back and forth; 0 means none
 	SagPart   float64 // Strokes: part of the pressure that leaks back after a stroke; 0 means 0.01, negative none
 	StrokeS   float64 // Strokes: s from stroke to stroke; 0 means 2
 	Steps     int     // Stairs: steps to the top; 0 means 8
@@ -72,6 +73,7 @@ type seen struct{ hand, setting float64 }
 type driver struct {
 	legs    []leg
 	sag     float64
+	ragged  float64
 	strokeS float64
 	near    float64 // a mark is met within this, SI of the hand
 	at      int
@@ -95,7 +97,7 @@ type course struct {
 }
 
 func newDriver(d Drive, c course) (driver, error) {
-	r := driver{strokeS: orElse(d.StrokeS, 2), near: c.near, begunS: math.NaN()}
+	r := driver{strokeS: orElse(d.StrokeS, 2), near: c.near, ragged: max(0, d.Ragged), begunS: math.NaN()}
 	if c.sags {
 		r.sag = orNone(d.SagPart, 0.01)
 	}
@@ -224,16 +226,23 @@ func (r *driver) legCommand(l leg, s seen, t float64) (command, float64) {
 		return command{hold: true}, r.begunS + l.waitS - t
 	case l.strokes:
 		return r.strokeCommand(l, s, t)
+	case !l.up:
+		return command{rate: -l.rate, toSI: l.to}, (s.hand - l.to) / l.rate
 	}
 	c := command{rate: l.rate, toSI: l.to}
-	if l.mark == bySetting {
+	if r.ragged > 0 {
+		// Two swings that never meet again in the same way.
+		c.rate *= 1 + r.ragged*(math.Sin(2*math.Pi*t/2.3)+math.Sin(2*math.Pi*t/3.7))/2
+	}
+	switch {
+	case c.rate <= 0:
+		c.toSI = 0
+	case l.mark == bySetting:
 		c.toSI = math.Inf(1)
-		return c, math.Inf(1)
+	default:
+		return c, (l.to - s.hand) / c.rate
 	}
-	if !l.up {
-		c.rate = -l.rate
-	}
-	return c, math.Abs(l.to-s.hand) / l.rate
+	return c, math.Inf(1)
 }
 
 // strokeCommand is a pump's or a wrench's: it presses up to its next peak,

@@ -150,3 +150,20 @@ func TestStillNeverMoves(t *testing.T) {
 		}
 	}
 }
+
+// A ragged hand goes back and forth and still gets to the top.
+func TestRaggedHandGetsThere(t *testing.T) {
+	c := quick(t)
+	c.Drive.Ragged = 2
+	r, trace := mustTrace(t, c)
+	rise, back := riseOf(trace), 0
+	for i := 1; i < len(rise); i++ {
+		if rise[i].PressurePa < rise[i-1].PressurePa-50 {
+			back++
+		}
+	}
+	near(t, "top, psi", rise[len(rise)-1].PressurePa/psiPa, r.conf.Drive.TopPa/psiPa, 0.02)
+	if back < 50 {
+		t.Errorf("went back at %d of %d moments", back, len(rise))
+	}
+}

@@ -3,6 +3,7 @@ package simrig
 import (
 	"fmt"
 	"math"
+	"math/rand/v2"
 	"slices"
 
 	"tautramp/acquire/mill"
@@ -48,6 +49,7 @@ const (
 	TyreCompression      FaultKind = "tyre compression"
 	TooFewCycles         FaultKind = "too few cycles"
 	TooFast              FaultKind = "ramp too fast"
+	TooRagged            FaultKind = "ramp too ragged"
 )
 
 // Fault is a cause planted at a severity.
@@ -72,6 +74,15 @@ type job struct {
 	pullN   float64 // of both spans at the band's target
 	pushN   float64 // of the tensioner there
 	stiffNM float64 // of the band
+}
+
+// Draw is a fault of the kind at a size within what is met, evenly on a
+// logarithm where the sizes are of one sign.
+func (r FaultRow) Draw(rng *rand.Rand) Fault {
+	if r.From > 0 {
+		return Fault{Kind: r.Kind, Size: r.From * math.Pow(r.To/r.From, rng.Float64())}
+	}
+	return Fault{Kind: r.Kind, Size: within(rng, r.From, r.To)}
 }
 
 // Plant puts a fault on top of what a configuration already has, so that
@@ -286,6 +297,8 @@ func otherFaults() []FaultRow {
 			oilOnly(func(c *Config, f Fault, _ job) { c.AreaFactor = orElse(c.AreaFactor, 1) * (1 + f.Size) })},
 		{TooFewCycles, "", "ramps made, beside no exercise", 1, 2,
 			add(func(c *Config, f Fault, _ job) { c.Drive.Exercise, c.Drive.Ramps = -1, int(f.Size) })},
+		{TooRagged, "", "swing of the rate on the way up, part of it", 0.8, 4,
+			add(func(c *Config, f Fault, _ job) { c.Drive.Shape, c.Drive.Ragged = Smooth, f.Size })},
 		{TooFast, "", "times the rate", 3, 20,
 			add(func(c *Config, f Fault, j job) {
 				c.Drive.RatePaS, c.Drive.TurnRadS = j.Drive.RatePaS*f.Size, j.Drive.TurnRadS*f.Size

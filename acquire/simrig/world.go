@@ -9,6 +9,7 @@ import (
 // Steps of the integration, s: as long as nothing sudden happens, and never
 // shorter than the least. All that follows the travel is exact over a step.
 const (
+	restStepS  = 0.1 // hands off, and the wheel at rest
 	longStepS  = 0.02
 	leastStepS = 0.0005
 )
@@ -62,11 +63,22 @@ func (w *world) advance(s float64) {
 			w.cycle = n
 			w.conf.varied(&w.wheel, n)
 		}
-		dt := max(leastStepS, min(w.stepS, forS, w.sudden()))
+		dt := max(leastStepS, min(w.longest(c), forS, w.sudden()))
 		w.wheel.warmM = w.conf.heat.bandM(t + dt - w.startS)
 		w.wheel.step(c, dt)
 		w.observe(t + dt)
 	}
+}
+
+// longest is the longest step of a command. A contact that minds the speed
+// cannot be trusted to stay at rest.
+func (w *world) longest(c command) float64 {
+	const restMS = 1e-8
+	slide := &w.wheel.slide.law
+	if c.hold && w.stepS == longStepS && math.Abs(w.wheel.speedMS) < restMS && slide.staticRatio == 1 && slide.restRatio == 1 {
+		return restStepS
+	}
+	return w.stepS
 }
 
 // trace runs the drive from its start and notes what happens.

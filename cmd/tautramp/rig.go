@@ -4,7 +4,6 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"io"
 	"io/fs"
 	"net"
 	"os"
@@ -16,7 +15,6 @@ import (
 	"github.com/spf13/pflag"
 
 	"tautramp/acquire"
-	"tautramp/acquire/mill"
 	"tautramp/acquire/port"
 	"tautramp/acquire/simrig"
 )
@@ -51,6 +49,8 @@ type rigOptions struct {
 	log        string
 	bench      rigBench
 	faults     []string
+
+	thermometers bool
 }
 
 func runRig(ctx context.Context, args []string, e env) error {
@@ -92,6 +92,7 @@ func (o *rigOptions) add(fs *pflag.FlagSet) {
 	fs.StringVar(&o.rate, "rate", "", "pressure a second, such as \"8 psi\"; of a screw the turn, such as \"10 deg\"")
 	fs.StringVar(&o.top, "top", "", "setting at the top of a ramp, such as \"860 psi\" or \"20 N m\"")
 	fs.StringVar(&o.leastCount, "least-count", "", "of the indicator, such as \"0.0005 in\" (default 0.00005 in)")
+	fs.BoolVar(&o.thermometers, "thermometers", false, "fit thermometers to band and measuring bar, on the first board")
 	fs.Float64Var(&o.ppm, "ppm", 300, "parts per million by which the second board's clock runs fast")
 	fs.Uint64Var(&o.seed, "seed", 1, "of all noise")
 	fs.Float64Var(&o.speed, "speed", 1, "clock factor; give capture the same")
@@ -134,6 +135,7 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 			return nil, err
 		}
 	}
+	c.Thermometer, c.RigThermometer = o.thermometers, o.thermometers
 	if err := o.plant(&c); err != nil {
 		return nil, err
 	}
@@ -142,80 +144,6 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 		err = &usageError{err.Error()}
 	}
 	return rig, err
-}
-
-// plant puts the faults asked for on the rig.
-func (o *rigOptions) plant(c *simrig.Config) error {
-	for _, text := range o.faults {
-		kind, number, _ := strings.Cut(text, "=")
-		size, err := strconv.ParseFloat(strings.TrimSpace(number), 64)
-		if err != nil {
-			return &usageError{fmt.Sprintf("--fault: %q is not KIND=SIZE, such as \"stick-slip=0.05\"; --fault list shows the kinds", text)}
-		}
-		if err := simrig.Plant(c, simrig.Fault{Kind: simrig.FaultKind(strings.TrimSpace(kind)), Size: size}); err != nil {
-			return &usageError{fmt.Sprintf("--fault %s: %v", text, err)}
-		}
-	}
-	return nil
-}
-
-// listFaults writes what --fault takes.
-func listFaults(w io.Writer) error {
-	for _, row := range simrig.Faults() {
-		unit := row.Unit
-		if unit != "" {
-			unit = " " + unit
-		}
-		if _, err := fmt.Fprintf(w, "%s: %s; %.3g to %.3g%s\n", row.Kind, row.Means, row.From, row.To, unit); err != nil {
-			return err
-		}
-	}
-	return nil
-}
-
-// pace takes rate and top in the quantities that the tensioner is worked by.
-func (o *rigOptions) pace(t mill.Tensioner, d *simrig.Drive) error {
-	rate, top, rateDim := &d.RatePaS, &d.TopPa, mill.DimPressure
-	if t.SetBy != mill.SetByPressure {
-		rate, top, rateDim = &d.TurnRadS, &d.TopSI, mill.DimAngle
-	}
-	for _, q := range []struct {
-		flag, text string
-		dim        mill.Dim
-		to         *float64
-	}{{"--rate", o.rate, rateDim, rate}, {"--top", o.top, t.SettingDim(), top}} {
-		if q.text == "" {
-			continue
-		}
-		quantity, err := mill.ParseQuantity(q.text, q.dim)
-		if err != nil {
-			return &usageError{q.flag + ": " + err.Error()}
-		}
-		*q.to = quantity.SI
-	}
-	if d.TopSI != 0 {
-		d.TopSI = t.Rising(d.TopSI)
-	}
-	return nil
-}
-
-// boardSpecs are the boards that are asked for.
-func (o *rigOptions) boardSpecs() ([]simrig.BoardSpec, error) {
-	if o.boards != 1 && o.boards != 2 {
-		return nil, &usageError{"--boards must be 1 or 2"}
-	}
-	if !(o.speed > 0) || o.speed > 1000 {
-		return nil, &usageError{"--speed must be above 0 and at most 1000"}
-	}
-	boards := make([]simrig.BoardSpec, o.boards)
-	for i := range boards {
-		// A computer that is busy for a second holds a fast rehearsal up for a minute.
-		boards[i].QueueBytes = int(queueBytes * max(1, o.speed))
-	}
-	if o.boards == 2 {
-		boards[1].TickPPM = o.ppm
-	}
-	return boards, nil
 }
 
 // noneIfZero turns the command line's "0 = none" into the rig's "negative =
