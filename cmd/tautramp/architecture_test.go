@@ -46,7 +46,7 @@ func rooms() map[string][]string {
 		"cmd/tautramp/station":   {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze/estimate", "analyze/gauge"},
 		"cmd/tautramp/visit":     {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "analyze", "analyze/estimate"},
 		// page makes the events of recording that its viewers press, and reads no file.
-		"cmd/tautramp/page": {"acquire/mill", "acquire/recording", "cmd/tautramp/visit"},
+		"cmd/tautramp/page": {"acquire/mill", "acquire/recording", "cmd/tautramp/station", "cmd/tautramp/visit"},
 		"cmd/tautramp": {"protocol", "acquire", "acquire/mill", "acquire/recording", "acquire/pairing", "acquire/port", "acquire/simrig",
 			"analyze", "analyze/estimate", "analyze/findings", "analyze/gauge", "analyze/report", "cmd/tautramp/station", "cmd/tautramp/visit", "cmd/tautramp/page", "github.com/spf13/pflag", sys},
 	}

@@ -34,6 +34,8 @@ type benchOptions struct {
 	anyway    bool
 	speed     float64
 	patience  time.Duration
+	said      <-chan recording.Event // from a page, beside the keys; may be nil
+	show      func(station.Status)   // beside the screen; may be nil
 }
 
 func runBench(ctx context.Context, args []string, e env) error {
@@ -140,21 +142,28 @@ func (o *benchOptions) writePlan(e env) error {
 
 // begin starts a new test.
 func (o *benchOptions) begin(ctx context.Context, e env) error {
-	if err := o.check(); err != nil {
+	job, err := o.prepare(e)
+	if err != nil {
 		return err
+	}
+	return o.conduct(ctx, job, e)
+}
+
+// prepare settles what a new test is, and refuses it where it would prove
+// nothing.
+func (o *benchOptions) prepare(e env) (benchJob, error) {
+	if err := o.check(); err != nil {
+		return benchJob{}, err
 	}
 	header, plan, err := o.header(e)
 	if err != nil {
-		return err
+		return benchJob{}, err
 	}
 	bench, err := station.New(header)
 	if err != nil {
-		return err
+		return benchJob{}, err
 	}
-	if err := o.doubts(bench, e); err != nil {
-		return err
-	}
-	return o.conduct(ctx, benchJob{header: header, bench: bench, plan: plan}, e)
+	return benchJob{header: header, bench: bench, plan: plan}, o.doubts(bench, e)
 }
 
 func (o *benchOptions) check() error {

@@ -61,13 +61,17 @@ func (o *benchOptions) record(ctx context.Context, job benchJob, e env) error {
 	if err != nil {
 		return &fileError{err}
 	}
-	keys, stopKeys := operatorKeys(e, nil)
+	keys, stopKeys := operatorKeys(e, o.said)
 	defer stopKeys()
 	screen := newBenchScreen(e, job.plan, o.speed)
+	show := screen.draw
+	if o.show != nil {
+		show = func(s station.Status) { o.show(s); screen.draw(s) }
+	}
 	summary, err := station.Run(ctx, station.Config{
 		Acquire: acquire.Config{Devices: o.devices(), Clock: clock, Out: out, Operator: keys,
 			GiveUpAfter: time.Duration(float64(o.patience) * o.speed)},
-		Bench: job.bench, OnStatus: screen.draw,
+		Bench: job.bench, OnStatus: show,
 	})
 	closeErr := out.Close(clock.Now(), clock.Wall())
 	if closeErr != nil {

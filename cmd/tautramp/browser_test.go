@@ -88,7 +88,7 @@ func ask[T any](b *browser, expression string) T {
 	defer stop()
 	v, err := chromedp.Run(ctx, chromedp.Evaluate[T](expression, chromedp.EvalAwaitPromise))
 	if err != nil {
-		b.t.Fatalf("%s: %v", expression, err)
+		b.t.Fatalf("%.200s: %.500v", expression, err)
 	}
 	return v
 }

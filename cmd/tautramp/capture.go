@@ -180,6 +180,7 @@ type recordJob struct {
 	clock   acquire.Clock // nil: a clock of the header's factor
 	// patience is the real time that a lost port may take; 0 means acquire's.
 	patience time.Duration
+	aimSI    float64                // visit.Config.AimSI
 	said     <-chan recording.Event // from a page, beside the keys; may be nil
 	show     func(visit.Status)     // beside the screen; may be nil
 }
@@ -205,7 +206,7 @@ func record(ctx context.Context, job recordJob, e env) error {
 	summary, err := visit.Run(ctx, visit.Config{
 		Acquire: acquire.Config{Devices: job.devices, Clock: job.clock, Out: out, Operator: keys,
 			GiveUpAfter: time.Duration(float64(job.patience) * job.header.ClockFactor)},
-		Header: job.header, Plan: job.header.Plan, Cautions: report.Cautions(), OnStatus: show,
+		Header: job.header, Plan: job.header.Plan, AimSI: job.aimSI, Cautions: report.Cautions(), OnStatus: show,
 	})
 	closeErr := out.Close(job.clock.Now(), job.clock.Wall())
 	if closeErr != nil {

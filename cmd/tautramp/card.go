@@ -107,6 +107,12 @@ func proofOf(res *analyze.Result, path, proof string) (*analyze.Approach, error)
 	if err != nil {
 		return nil, err
 	}
+	return approachIn(rec, res, path, proof)
+}
+
+// approachIn compares the fresh approach that a recording holds with a result;
+// the two names are for messages.
+func approachIn(rec *recording.Recording, res *analyze.Result, path, proof string) (*analyze.Approach, error) {
 	if t, b := rec.Header.Tensioner, rec.Header.Band; t != res.Setup.Tensioner.Name || b != res.Setup.Band.Name {
 		return nil, &usageError{fmt.Sprintf("%s is of %s with %s, and %s of %s with %s: it proves nothing there", proof, t, b, path, res.Setup.Tensioner.Name, res.Setup.Band.Name)}
 	}

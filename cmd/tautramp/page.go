@@ -7,14 +7,11 @@ import (
 	"io"
 	"io/fs"
 	"os"
-	"path/filepath"
 	"strings"
 	"time"
 
 	"tautramp/acquire/mill"
 	"tautramp/acquire/port"
-	"tautramp/acquire/recording"
-	"tautramp/analyze/report"
 	"tautramp/cmd/tautramp/page"
 )
 
@@ -70,8 +67,8 @@ func (o *pageOptions) deps(access page.Access, e env) page.Deps {
 		SaveMill: func(text []byte) error { return o.saveMill(text, e) },
 		Ports:    func() ([]page.Port, error) { return o.listPorts() },
 		Visit:    func(ctx context.Context, order page.Order) (page.Papers, error) { return o.visit(ctx, order, e) },
-		Open:     openPapers,
-		Bell:     func() { fmt.Fprint(e.stderr, "\a") }, // lost at worst
+		Open:     openPapers, Card: o.card, Plans: benchPlans(),
+		Bell: func() { fmt.Fprint(e.stderr, "\a") }, // lost at worst
 	}
 }
 
@@ -109,6 +106,9 @@ func (o *pageOptions) listPorts() ([]page.Port, error) {
 
 // visit records one order and computes its result.
 func (o *pageOptions) visit(ctx context.Context, order page.Order, e env) (page.Papers, error) {
+	if order.Kind == page.Bench {
+		return o.benchTest(ctx, order, e)
+	}
 	c := captureOptions{profileFlags: profileFlags{mill: o.mill, tensioner: order.Tensioner, band: order.Band},
 		ports: order.Ports, baud: o.baud, speed: o.speed, patience: o.patience, plan: order.Plan}
 	s, err := c.load(e)
@@ -123,57 +123,10 @@ func (o *pageOptions) visit(ctx context.Context, order page.Order, e env) (page.
 	if err != nil {
 		return page.Papers{}, err
 	}
-	header.Continues = order.Continues
-	return recordPapers(ctx, recordJob{header: header, path: c.out, devices: c.devices(), system: o.system,
-		patience: o.patience, said: order.Said, show: order.Show}, e)
-}
-
-// recordPapers runs a visit and makes the papers of its recording.
-func recordPapers(ctx context.Context, job recordJob, e env) (page.Papers, error) {
-	visitErr := record(ctx, job, e)
-	if visitErr != nil && !onlyAlarm(visitErr) {
-		return page.Papers{}, explained(visitErr)
+	header.Continues = order.Before.Seal
+	job := recordJob{header: header, path: c.out, devices: c.devices(), system: o.system, patience: o.patience, said: order.Said, show: order.Show}
+	if order.Kind == page.Verify {
+		return o.verify(ctx, job, order.Before, e)
 	}
-	rec, err := recording.ReadFile(job.path)
-	if err != nil {
-		return page.Papers{}, err
-	}
-	papers, err := papersOf(rec, filepath.Base(job.path))
-	if alarm, ok := errors.AsType[*alarmError](visitErr); ok {
-		papers.Alarm = alarm.text
-	}
-	return papers, err
-}
-
-// openPapers makes the papers of a recording that a browser sent.
-func openPapers(r io.Reader) (page.Papers, error) {
-	rec, err := recording.Read(r)
-	if err != nil {
-		return page.Papers{}, explained(err)
-	}
-	h := rec.Header
-	return papersOf(rec, fmt.Sprintf("%s %s %s", h.Tensioner, h.Band, h.Started.Format("2006-01-02 15:04")))
-}
-
-// papersOf computes a recording's result. A recording that gives none has a
-// name and nothing else.
-func papersOf(rec *recording.Recording, name string) (page.Papers, error) {
-	papers := page.Papers{Name: name, Seal: rec.Seal}
-	res, meta, err := resultOf(rec, name, mill.Pressure{})
-	if err != nil {
-		return papers, explained(err)
-	}
-	meta.CautionsShown = true
-	papers.Figures = func(w io.Writer) error { return report.JSON(w, res, meta) }
-	papers.Sheet = func(w io.Writer, s mill.System) error { return report.HTML(w, res, meta, s) }
-	papers.Plot = func(w io.Writer, s mill.System) error { return report.SVG(w, res, meta, report.PlotLoop, s) }
-	return papers, nil
-}
-
-// explained puts the next step behind an error, as the command line does.
-func explained(err error) error {
-	if hint := classify(err).hint; hint != "" {
-		return fmt.Errorf("%w. Next: %s", err, hint)
-	}
-	return err
+	return recordPapers(ctx, job, e)
 }

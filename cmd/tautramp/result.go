@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"io"
 	"path/filepath"
+	"strings"
 	"time"
 
 	"github.com/spf13/pflag"
@@ -140,7 +141,19 @@ func reportMeta(path string, rec *recording.Recording, set *pairing.Set) report.
 				c.Device+1, c.Lost, c.DeviceSaid, c.Rejected, c.Restarts))
 		}
 	}
+	meta.Notes = append(meta.Notes, notConfirmed(rec)...)
 	return meta
+}
+
+// notConfirmed is what the operator was asked to confirm and did not.
+func notConfirmed(rec *recording.Recording) []string {
+	var out []string
+	for _, e := range rec.Entries {
+		if e.Event != nil && e.Event.Kind == recording.Confirmed && strings.HasPrefix(e.Event.Text, "not confirmed: ") {
+			out = append(out, e.Event.Text)
+		}
+	}
+	return out
 }
 
 // write puts a result wherever the flags say: on the screen first, for a full

@@ -10,6 +10,7 @@ import (
 
 	"tautramp/acquire/mill"
 	"tautramp/acquire/recording"
+	"tautramp/cmd/tautramp/station"
 	"tautramp/cmd/tautramp/visit"
 )
 
@@ -22,10 +23,16 @@ type desk struct {
 	runs   sync.WaitGroup
 	mu     sync.Mutex
 	run    *run
-	fault  string // why the last order failed
-	papers []Papers
-	orders []Kind // of papers
+	fault  string  // why the last order failed
+	papers []filed // by number, from 1
 	trail  trail
+}
+
+// filed is papers that are held ready.
+type filed struct {
+	Papers
+	kind Kind
+	of   string // seal of the recording that it goes on from
 }
 
 // run is one visit that goes on.
@@ -58,7 +65,7 @@ func (d *desk) begin(o Order) (*run, context.Context, error) {
 	}
 	ctx, stop := context.WithCancel(d.over)
 	r := &run{order: o, site: site, said: make(chan recording.Event, saidWaits), stop: stop}
-	r.order.Said, r.order.Show = r.said, d.show
+	r.order.Said, r.order.Show, r.order.ShowBench = r.said, d.show, d.showBench
 	d.run, d.fault, d.trail = r, "", newTrail(site.Limit)
 	d.runs.Add(1)
 	return r, ctx, nil
@@ -75,18 +82,18 @@ func (d *desk) finish(ctx context.Context, r *run) (Papers, error) {
 	if err != nil {
 		d.fault = err.Error()
 	}
-	d.keep(papers, r.order.Kind)
+	d.keep(filed{papers, r.order.Kind, r.order.Before.Seal})
 	d.mu.Unlock()
 	d.tell()
 	return papers, err
 }
 
 // keep holds papers ready; those without a name are none. The desk is locked.
-func (d *desk) keep(p Papers, k Kind) {
-	if p.Name == "" {
+func (d *desk) keep(f filed) {
+	if f.Name == "" {
 		return
 	}
-	d.papers, d.orders = append(d.papers, p), append(d.orders, k)
+	d.papers = append(d.papers, f)
 	if n := len(d.papers) - mostPapers; n > 0 {
 		clear(d.papers[:n]) // numbers stay what they were
 	}
@@ -128,16 +135,24 @@ func (d *desk) show(s visit.Status) {
 	}
 }
 
+// showBench takes a status of a bench test.
+func (d *desk) showBench(s station.Status, unit mill.Unit) {
+	if text, err := json.Marshal(benchOf(s, unit)); err == nil { // as above
+		d.hub.publish(nowTopic, text)
+	}
+}
+
 // tell publishes what is going on.
 func (d *desk) tell() {
 	d.mu.Lock()
-	v := deskView{Program: d.deps.Program, Fault: d.fault, Units: unitTable(), System: d.deps.System, Papers: []papersView{}}
+	v := deskView{Program: d.deps.Program, Fault: d.fault, Units: unitTable(), System: d.deps.System, Plans: d.deps.Plans, OneVisit: d.deps.OneVisit, Papers: []papersView{}}
 	if d.run != nil {
 		v.Run = &d.run.site
 	}
 	for i, p := range d.papers {
 		if p.Name != "" {
-			v.Papers = append(v.Papers, papersView{ID: strconv.Itoa(i + 1), Name: p.Name, Kind: d.orders[i], Seal: p.Seal, Alarm: p.Alarm})
+			v.Papers = append(v.Papers, papersView{ID: strconv.Itoa(i + 1), Name: p.Name, Kind: p.kind, Seal: p.Seal, Of: p.of, Alarm: p.Alarm,
+				Verdict: p.Verdict, Says: p.Says, RigOff: p.RigOff})
 		}
 	}
 	d.mu.Unlock()
@@ -147,12 +162,12 @@ func (d *desk) tell() {
 }
 
 // find is the papers of a number, or false.
-func (d *desk) find(id string) (Papers, bool) {
+func (d *desk) find(id string) (filed, bool) {
 	n, err := strconv.Atoi(id)
 	d.mu.Lock()
 	defer d.mu.Unlock()
 	if err != nil || n < 1 || n > len(d.papers) || d.papers[n-1].Name == "" {
-		return Papers{}, false
+		return filed{}, false
 	}
 	return d.papers[n-1], true
 }
@@ -160,7 +175,7 @@ func (d *desk) find(id string) (Papers, bool) {
 // siteOf is what the profile says of where an order measures; what it does not
 // say stays empty, and the capture will say why.
 func siteOf(deps Deps, o Order) siteView {
-	v := siteView{Kind: o.Kind, Tensioner: o.Tensioner, Band: o.Band, Role: mill.RolePressure, Limit: unknown(), Target: unknown(), Vent: o.Vent}
+	v := siteView{Kind: o.Kind, Tensioner: o.Tensioner, Band: o.Band, Role: mill.RolePressure, Limit: unknown(), Target: unknown(), Vent: o.Vent, Tested: o.Bench.Tested, Reference: o.Bench.Reference}
 	if deps.Mill == nil {
 		return v
 	}
@@ -203,7 +218,7 @@ func cleaned(text string) string {
 // file holds the papers of an opened recording ready and returns their number.
 func (d *desk) file(p Papers) string {
 	d.mu.Lock()
-	d.keep(p, "opened")
+	d.keep(filed{Papers: p, kind: "opened"})
 	id := strconv.Itoa(len(d.papers))
 	d.mu.Unlock()
 	d.tell()

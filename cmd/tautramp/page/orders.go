@@ -4,6 +4,7 @@ import (
 	"encoding/json"
 	"errors"
 	"net/http"
+	"slices"
 
 	"tautramp/acquire/recording"
 )
@@ -87,22 +88,25 @@ func (s *Server) do(w http.ResponseWriter, r *http.Request) {
 
 // wanted is an order as a browser sends it.
 type wanted struct {
-	Kind      Kind     `json:"kind"`
-	Tensioner string   `json:"tensioner"`
-	Band      string   `json:"band"`
-	Ports     []string `json:"ports"`
-	Exercise  int      `json:"exercise"`
-	Ramps     int      `json:"ramps"`
-	Vent      bool     `json:"vent"`
-	Continues string   `json:"continues"` // number of the papers that it goes on from
-	Confirmed []string `json:"confirmed"` // before the start
+	Kind      Kind      `json:"kind"`
+	Tensioner string    `json:"tensioner"`
+	Band      string    `json:"band"`
+	Ports     []string  `json:"ports"`
+	Exercise  int       `json:"exercise"`
+	Ramps     int       `json:"ramps"`
+	Vent      bool      `json:"vent"`
+	Continues string    `json:"continues"` // number of the papers that it goes on from
+	Confirmed []string  `json:"confirmed"` // before the start
+	Bench     BenchWish `json:"bench"`
 }
 
 // problem says what is wrong with it, or "".
 func (o wanted) problem() string {
 	switch {
-	case o.Kind != Ramps && o.Kind != Face && o.Kind != Verify:
-		return "an order is for ramps, face or verify"
+	case !slices.Contains([]Kind{Ramps, Face, Verify, Bench}, o.Kind):
+		return "an order is for ramps, face, verify or bench"
+	case o.Kind == Verify && o.Continues == "":
+		return "a number is checked of a recording that is here"
 	case len(o.Ports) < 1 || len(o.Ports) > 2:
 		return "choose one board, or two"
 	case len(o.Ports) == 2 && o.Ports[0] == o.Ports[1]:
@@ -122,20 +126,23 @@ func (s *Server) start(w http.ResponseWriter, r *http.Request) {
 		return
 	}
 	problem := o.problem()
-	var before Papers
+	var before filed
 	if problem == "" && o.Continues != "" {
 		var ok bool
 		if before, ok = s.desk.find(o.Continues); !ok {
 			problem = "the recording that this goes on from is not here any more"
 		}
 	}
-	if problem != "" || s.deps.Visit == nil {
+	if s.deps.Visit == nil || s.deps.OneVisit {
+		problem = "nothing can be started here"
+	}
+	if problem != "" {
 		http.Error(w, problem, http.StatusBadRequest)
 		return
 	}
 	run, ctx, err := s.desk.begin(Order{
 		Kind: o.Kind, Tensioner: o.Tensioner, Band: o.Band, Ports: o.Ports,
-		Plan: recording.Plan{Exercise: o.Exercise, Ramps: o.Ramps}, Vent: o.Vent, Continues: before.Seal,
+		Plan: recording.Plan{Exercise: o.Exercise, Ramps: o.Ramps}, Vent: o.Vent, Before: before.Papers, Bench: o.Bench,
 	})
 	if err != nil {
 		http.Error(w, err.Error(), http.StatusConflict)

@@ -18,6 +18,7 @@ import (
 
 	"tautramp/acquire/mill"
 	"tautramp/acquire/recording"
+	"tautramp/cmd/tautramp/station"
 	"tautramp/cmd/tautramp/visit"
 )
 
@@ -32,9 +33,16 @@ type Deps struct {
 	SaveMill func(text []byte) error
 	Ports    func() ([]Port, error)
 
+	Plans []Plan // of bench tests
+
 	// Visit runs one order to its end and returns its papers. It ends soon
 	// after ctx does. An error beside papers is shown with them.
 	Visit func(ctx context.Context, o Order) (Papers, error)
+	// OneVisit: the browser starts none, Run does.
+	OneVisit bool
+	// Card writes the card of a recording, or an error that says why there is
+	// none.
+	Card func(w io.Writer, of Papers, wish CardWish, s mill.System) error
 	// Open makes the papers of a recording of another day.
 	Open func(recording io.Reader) (Papers, error)
 	// Bell sounds the computer that the program runs on.
@@ -48,6 +56,21 @@ type Port struct {
 	Named bool   `json:"named"` // by whoever started the program: it is meant to be used
 }
 
+// Plan is a plan of a bench test that the program brings.
+type Plan struct {
+	Name  string `json:"name"`
+	About string `json:"about"`
+}
+
+// CardWish is what a card shall say.
+type CardWish struct {
+	From      string // "below" or "above"
+	Hold      string // "maintained" or "locked"; "" as mill.toml says
+	Bands     []string
+	SameWheel bool // confirmed: the same weight is moved with those bands, from where the wheel stood
+	Proof     Papers
+}
+
 // Kind is what an order is for.
 type Kind string
 
@@ -56,6 +79,7 @@ const (
 	Ramps  Kind = "ramps"  // a calibration: exercise, then ramps
 	Face   Kind = "face"   // the same on the band's other face, going on from a recording
 	Verify Kind = "verify" // one approach to the number on the card, going on from a recording
+	Bench  Kind = "bench"  // a test of an instrument
 )
 
 // Order is one capture as asked for in the browser.
@@ -66,10 +90,23 @@ type Order struct {
 	Ports     []string
 	Plan      recording.Plan
 	Vent      bool   // the setting's sensor will be vented for its zero: the page asks
-	Continues string // Papers.Seal of the recording that it goes on from, or ""
+	Before    Papers // of the recording that it goes on from; the zero value: none
+	Bench     BenchWish
 
-	Said <-chan recording.Event // what the operator presses and confirms
-	Show func(visit.Status)     // to be called with every status
+	Said      <-chan recording.Event          // what the operator presses and confirms
+	Show      func(visit.Status)              // to be called with every status
+	ShowBench func(station.Status, mill.Unit) // of a bench test, with the unit of its plan
+}
+
+// BenchWish is a bench test as asked for.
+type BenchWish struct {
+	Plan      string `json:"plan"`
+	Tested    string `json:"tested"`
+	Reference string `json:"reference"`
+	Range     string `json:"range"`
+	Place     string `json:"place"`
+	By        string `json:"by"`
+	Anyway    bool   `json:"anyway"` // although the reference is too poor
 }
 
 // Name is a file name for the recording of an order: the tensioner's name, fit
@@ -88,6 +125,10 @@ type Papers struct {
 	Name    string // of the recording, without folders
 	Seal    string
 	Alarm   string // the gravest one raised; "" for none
+	Verdict string // of a verification or a bench test, one word; "" where nothing was judged
+	Says    string // what the verdict rests on
+	RigOff  bool   // the recording holds that the rig is off the band
+	Own     any    // the program's own, to know them again by
 	Figures func(w io.Writer) error
 	Sheet   func(w io.Writer, s mill.System) error // the report, one HTML page without scripts
 	Plot    func(w io.Writer, s mill.System) error // the loop as SVG

@@ -209,7 +209,7 @@ func TestAnOrderThatGoesOnNamesTheSeal(t *testing.T) {
 	s.want(http.StatusBadRequest, s.ask("POST", "/start", strings.Replace(order, `"continues":""`, `"continues":"7"`, 1)))
 	s.want(http.StatusAccepted, s.ask("POST", "/start", strings.NewReplacer(`"continues":""`, `"continues":"1"`, `"ramps",`, `"verify",`).Replace(order)))
 	<-s.show
-	if o := s.orders[1]; o.Continues != "5ea1" || o.Kind != Verify {
+	if o := s.orders[1]; o.Before.Seal != "5ea1" || o.Kind != Verify {
 		t.Errorf("%+v", o)
 	}
 }

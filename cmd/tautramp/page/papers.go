@@ -31,10 +31,30 @@ func (s *Server) paper(w http.ResponseWriter, r *http.Request) {
 		s.hand(w, &b, "application/json", p.Figures)
 	case "sheet":
 		s.hand(w, &b, "text/html; charset=utf-8", inSystem(p.Sheet, system))
+	case "card":
+		s.card(w, r, p, system)
 	case "plot":
 		s.hand(w, &b, "image/svg+xml", inSystem(p.Plot, system))
 	default:
 		http.NotFound(w, r)
+	}
+}
+
+// card hands out the card of a recording: after one fresh approach, and with the
+// rig off the band.
+func (s *Server) card(w http.ResponseWriter, r *http.Request, p filed, system mill.System) {
+	proof, ok := s.desk.find(r.FormValue("proof"))
+	switch {
+	case s.deps.Card == nil:
+		http.NotFound(w, r)
+	case !ok || proof.kind != Verify || proof.of != p.Seal:
+		http.Error(w, "no card yet: check the number once, with a fresh approach", http.StatusConflict)
+	case !proof.RigOff:
+		http.Error(w, "no card yet: nobody has confirmed that the rig is off the band", http.StatusConflict)
+	default:
+		wish := CardWish{From: r.FormValue("from"), Hold: r.FormValue("hold"), Bands: r.Form["band"], SameWheel: r.FormValue("same") == "yes", Proof: proof.Papers}
+		var b bytes.Buffer
+		s.hand(w, &b, "text/html; charset=utf-8", func(w io.Writer) error { return s.deps.Card(w, p.Papers, wish, system) })
 	}
 }
 

@@ -5,6 +5,7 @@ import (
 	"strconv"
 
 	"tautramp/acquire/mill"
+	"tautramp/cmd/tautramp/station"
 	"tautramp/cmd/tautramp/visit"
 )
 
@@ -61,6 +62,45 @@ func statusOf(s visit.Status) statusView {
 	}
 }
 
+// benchView is station.Status for the browser. Figures are SI.
+type benchView struct {
+	Bench     bool         `json:"bench"`
+	At        number       `json:"at"` // s
+	Step      string       `json:"step"`
+	Series    string       `json:"series"`
+	Way       string       `json:"way"`    // up or down
+	Target    string       `json:"target"` // as the plan has it
+	Unit      displayUnits `json:"unit"`   // of the plan
+	Go        number       `json:"go"`
+	Back      bool         `json:"back"`
+	Now       number       `json:"now"`
+	Tested    number       `json:"tested"`
+	Wait      number       `json:"wait"` // s
+	Cycle     int          `json:"cycle"`
+	Cycles    int          `json:"cycles"`
+	Taken     int          `json:"taken"`
+	Planned   int          `json:"planned"`
+	Next      string       `json:"next"`
+	Answer    string       `json:"answer"`
+	Refused   bool         `json:"refused"`
+	Alarm     string       `json:"alarm"`
+	AlarmText string       `json:"alarmText"`
+	Link      []string     `json:"link"`
+	Lost      int          `json:"lost"`
+	Rejected  int          `json:"rejected"`
+	Done      bool         `json:"done"`
+}
+
+func benchOf(s station.Status, unit mill.Unit) benchView {
+	return benchView{
+		Bench: true, At: number(s.At.Seconds()), Step: string(s.Step), Series: string(s.Target.Series), Way: string(s.Goes),
+		Target: s.Target.Nominal.Entered, Unit: displayUnits{unit.Name, unit.SI}, Go: number(s.GoSI), Back: s.Back,
+		Now: number(s.NowSI), Tested: number(s.TestedSI), Wait: number(s.WaitS), Cycle: s.Cycle, Cycles: s.Cycles,
+		Taken: s.Taken, Planned: s.Planned, Next: s.Next, Answer: s.Answer.Text, Refused: s.Answer.Refused,
+		Alarm: string(s.Alarm), AlarmText: s.AlarmText, Link: s.Link, Lost: s.Lost, Rejected: s.Rejected, Done: s.Done,
+	}
+}
+
 // siteView is what a visit measures.
 type siteView struct {
 	Kind      Kind      `json:"kind"`
@@ -72,25 +112,33 @@ type siteView struct {
 	Target    number    `json:"target"` // band stress
 	Screw     bool      `json:"screw"`  // a lower turn may have to be declared
 	Vent      bool      `json:"vent"`
+	Tested    string    `json:"tested"` // of a bench test
+	Reference string    `json:"reference"`
 }
 
 // papersView is a recording that the page holds ready.
 type papersView struct {
-	ID    string `json:"id"`
-	Name  string `json:"name"`
-	Kind  Kind   `json:"kind"`
-	Seal  string `json:"seal"`
-	Alarm string `json:"alarm"`
+	ID      string `json:"id"`
+	Name    string `json:"name"`
+	Kind    Kind   `json:"kind"`
+	Seal    string `json:"seal"`
+	Of      string `json:"of"` // seal of the recording that it goes on from
+	Alarm   string `json:"alarm"`
+	Verdict string `json:"verdict"`
+	Says    string `json:"says"`
+	RigOff  bool   `json:"rigOff"`
 }
 
 // deskView is what is going on.
 type deskView struct {
-	Program string                                     `json:"program"`
-	System  mill.System                                `json:"system"` // to begin with
-	Units   map[mill.System]map[mill.Role]displayUnits `json:"units"`
-	Run     *siteView                                  `json:"run"` // null: none runs
-	Fault   string                                     `json:"fault"`
-	Papers  []papersView                               `json:"papers"`
+	Program  string                                     `json:"program"`
+	System   mill.System                                `json:"system"` // to begin with
+	Units    map[mill.System]map[mill.Role]displayUnits `json:"units"`
+	Run      *siteView                                  `json:"run"` // null: none runs
+	Fault    string                                     `json:"fault"`
+	Papers   []papersView                               `json:"papers"`
+	Plans    []Plan                                     `json:"plans"`
+	OneVisit bool                                       `json:"oneVisit"`
 }
 
 // displayUnits is a unit and what one of it is in SI.

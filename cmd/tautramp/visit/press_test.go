@@ -157,14 +157,14 @@ func TestPaceIsJudgedByWhatADelayDoes(t *testing.T) {
 		{0.33, 0.005 * 672.6 / 0.53},
 		{3, 2 * 0.0015 * 950}, // never so slow that there is no good pace
 	} {
-		k := newTracker(site, recording.Plan{})
+		k := newTracker(site, recording.Plan{}, 0)
 		k.periodS = c.periodS
 		slow, fast := k.paceBounds()
 		near(t, "slowest, psi/s", slow/psiPa, 0.0015*950, 1e-6)
 		near(t, "fastest, psi/s", fast/psiPa, c.fastPsiS, 0.01)
 	}
 	site.full = math.NaN()
-	_, fast := newTracker(site, recording.Plan{}).paceBounds()
+	_, fast := newTracker(site, recording.Plan{}, 0).paceBounds()
 	near(t, "fastest without a target, psi/s", fast/psiPa, 0.012*950, 1e-6)
 	for want, rate := range map[Pace]float64{TooSlow: 1.3, GoodPace: 6, TooFast: 20} {
 		p := play(t, header(t), t1(1), from(35).rest(10).to(35+rate*25, rate), nil)

@@ -168,7 +168,7 @@ func play(t testing.TB, h recording.Header, r *pretend, s *script, each func(*tr
 	if err != nil {
 		t.Fatal(err)
 	}
-	k, a := newTracker(site, h.Plan), newAlarms(site)
+	k, a := newTracker(site, h.Plan, 0), newAlarms(site)
 	k.countM = r.countM
 	out := played{k: k, a: a, kinds: map[AlarmKind]bool{}}
 	end, _ := s.now()

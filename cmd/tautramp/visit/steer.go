@@ -41,6 +41,9 @@ func (k *tracker) atGoal() bool {
 	case k.halfOnly():
 		return there || stress >= goalHalf*target
 	}
+	if k.aimSI > 0 {
+		return there
+	}
 	return stress >= goalStress*target || there && !(stress < goalEnough*target)
 }
 
@@ -49,6 +52,8 @@ func (k *tracker) aim() float64 {
 	goal := goalSlack * k.site.full
 	if k.halfOnly() {
 		goal = k.site.half
+	} else if k.aimSI > 0 {
+		goal = k.aimSI
 	} else if e := k.check.fitted.settingAt(goalStress * k.site.target * k.site.gauge / k.site.modulus); !math.IsNaN(e) && !math.IsNaN(goal) {
 		goal = max(e, k.site.full) // friction of the rise included
 	}

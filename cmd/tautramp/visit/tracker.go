@@ -46,6 +46,7 @@ type tracker struct {
 	site site
 	plan recording.Plan
 
+	aimSI   float64 // setting to stop at; 0: what the plan needs
 	countM  float64 // least count of the extension
 	periodS float64 // between its readings
 	noiseSI float64 // of the setting
@@ -89,8 +90,8 @@ type cycle struct {
 	moved  bool    // the extension has followed
 }
 
-func newTracker(s site, plan recording.Plan) *tracker {
-	k := &tracker{site: s, plan: plan, rate: trend{span: trendS}, pace: trend{span: paceS},
+func newTracker(s site, plan recording.Plan, aimSI float64) *tracker {
+	k := &tracker{site: s, plan: plan, aimSI: aimSI, rate: trend{span: trendS}, pace: trend{span: paceS},
 		lately: recent{most: 3}, setting: math.NaN(), stretch: math.NaN(), stillAt: math.NaN(),
 		heldAt: math.NaN(), goal: math.NaN()}
 	k.zero = newZero(s)

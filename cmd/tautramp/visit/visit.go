@@ -22,6 +22,7 @@ type Config struct {
 	Acquire  acquire.Config
 	Header   recording.Header // as given to Acquire.Out, with Parsed
 	Plan     recording.Plan   // Ramps 0: until the context ends
+	AimSI    float64          // setting to stop at, for one approach to a card's number; 0: what the plan needs
 	Cautions []string         // recorded as prompts before anything else; the caller shows them
 
 	// OnStatus draws. It is called from one goroutine, at most about ten times

@@ -53,7 +53,7 @@ func newWatch(cfg Config) (*watch, error) {
 	if err != nil {
 		return nil, fmt.Errorf("start a visit: %w", err)
 	}
-	w := &watch{cfg: cfg, live: live, lens: newLens(s.tensioner), tracker: newTracker(s, cfg.Plan), alarms: newAlarms(s),
+	w := &watch{cfg: cfg, live: live, lens: newLens(s.tensioner), tracker: newTracker(s, cfg.Plan, cfg.AimSI), alarms: newAlarms(s),
 		stop: func() {}, factor: 1, link: make([]string, len(cfg.Header.Devices))}
 	if c := cfg.Acquire.Clock; c != nil {
 		w.factor = c.Factor()

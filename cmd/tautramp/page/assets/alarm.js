@@ -1,7 +1,7 @@
 // The alarm: a shape that fills the screen, a tone, and words. Ear muffs are
 // assumed: it must be enough to look.
 import { state, byId, on } from "./store.js";
-import { label, show, withUnit } from "./units.js";
+import { inUnit, label, show, withUnit } from "./units.js";
 import * as sound from "./sound.js";
 
 const box = byId("alarm");
@@ -18,12 +18,12 @@ function update() {
     return;
   }
   checking = false;
-  const [word, what] = now.next.split(" - ");
+  const [word, what] = now.bench ? ["STOP", "let it down slowly"] : now.next.split(" - ");
   byId("alarmShape").textContent = shapes[now.alarm] || "STOP";
   byId("alarmWord").textContent = word;
   byId("alarmDo").textContent = what || "release slowly";
-  byId("alarmNow").textContent = show(now.setting, run.role);
-  byId("alarmLimit").textContent = `${label(run.role)} now; limit ${withUnit(run.limit, run.role)}`;
+  byId("alarmNow").textContent = now.bench ? inUnit(now.now, now.unit) : show(now.setting, run.role);
+  byId("alarmLimit").textContent = now.bench ? `${now.unit.name} now` : `${label(run.role)} now; limit ${withUnit(run.limit, run.role)}`;
   byId("alarmSays").textContent = now.alarmText;
   if (box.hidden || box.classList.contains("check")) {
     open(false);

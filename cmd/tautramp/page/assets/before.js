@@ -1,12 +1,15 @@
 // What must be so before anybody pumps, and which boards read it. What is
 // confirmed goes into the recording, and so does what is not.
 import { make, get, send, byId, fill } from "./store.js";
+import { portList } from "./boards.js";
 import { drawing } from "./drawings.js";
 
 const job = { kind: "ramps", continues: "", tensioner: "", band: "", confirmed: [], face: "outer", vent: "vent" };
 
 // again sets up an order that goes on from a recording.
-export function again(kind, papers) {
+export function again(kind, papers, setup) {
+  job.tensioner = setup.tensioner;
+  job.band = setup.band;
   job.kind = kind;
   job.continues = papers.id;
   if (kind === "face") job.face = job.face === "outer" ? "inner" : "outer";
@@ -92,53 +95,33 @@ function radio(key, value, text) {
   return make("label", { class: "check" }, make("input", { type: "radio", name: key, value, checked: job[key] === value, onchange: () => (job[key] = value) }), make("span", {}, text));
 }
 
-const chosen = new Set();
-let typed = "";
-
 export async function boards(box) {
   if (!job.confirmed.length) {
     location.hash = "before";
     return;
   }
-  const list = make("fieldset", { class: "checks" }, make("legend", {}, "Boards"));
-  const says = make("p", { role: "alert" });
+  const says = make("p", { role: "alert" }), ports = portList();
   const plan = job.kind === "ramps" ? [1, 3] : job.kind === "face" ? [0, 1] : [0, 0];
   const number = (id, label, value, about) => make("label", {}, label, make("input", { type: "number", id, min: 0, max: 50, value, inputmode: "numeric" }), make("small", {}, about));
-  const other = make("input", { type: "text", id: "other-port", value: typed, placeholder: "such as /dev/ttyUSB0, COM5 or tcp://host:port", autocomplete: "off", oninput: (e) => (typed = e.target.value.trim()) });
   fill(box,
     make("h1", {}, "Find the boards"),
     make("p", {}, "One board with both sensors, or one each. Plug them in; what is found stands here."),
-    list,
-    make("label", { class: "line" }, "Or a name that is not in the list", other),
-    make("p", {}, make("button", { type: "button", onclick: look }, "Look again")),
+    ports.list, ports.other,
+    make("p", {}, make("button", { type: "button", onclick: ports.look }, "Look again")),
     job.kind === "ramps" && make("div", { class: "pick" },
       number("exercise", "Exercise cycles", plan[0], "first, to half of the target; never fitted"),
       number("ramps", "Ramps", plan[1], "three show how well a setting repeats")),
     make("p", { class: "note" }, "Let the band go slack now, and keep still until the page says to pump."),
     make("p", {}, make("button", { class: "main", type: "button", id: "start", onclick: begin }, "Start")),
     says);
-  await look();
-
-  async function look() {
-    let ports = [];
-    try {
-      ports = await get("/ports");
-    } catch (e) {
-      says.textContent = e.message;
-    }
-    if (!chosen.size) for (const p of ports) if (p.named || ports.length === 1) chosen.add(p.path);
-    list.replaceChildren(make("legend", {}, "Boards"), ...(ports.length ? ports.map((p) => make("label", { class: "check" },
-      make("input", { type: "checkbox", value: p.path, checked: chosen.has(p.path), onchange: (e) => (e.target.checked ? chosen.add(p.path) : chosen.delete(p.path)) }),
-      make("span", {}, make("strong", {}, p.path), " " + p.about))) : [make("p", {}, "No serial port is found: plug the board in, and see that its cable carries data.")]));
-    for (const gone of [...chosen].filter((c) => !ports.some((p) => p.path === c))) chosen.delete(gone);
-  }
+  await ports.look();
 
   async function begin() {
     says.textContent = "";
     const value = (id, otherwise) => (byId(id) ? Number(byId(id).value) : otherwise);
     try {
-      await send("/start", { kind: job.kind, tensioner: job.tensioner, band: job.band, ports: [...chosen, ...(typed ? [typed] : [])],
-        exercise: value("exercise", plan[0]), ramps: value("ramps", plan[1]), vent: job.vent === "vent", continues: job.continues, confirmed: job.confirmed });
+      await send("/start", { kind: job.kind, tensioner: job.tensioner, band: job.band, ports: ports.chosen(), exercise: value("exercise", plan[0]),
+        ramps: value("ramps", plan[1]), vent: job.vent === "vent", continues: job.continues, confirmed: job.confirmed, bench: {} });
       job.kind = "ramps";
       job.continues = "";
     } catch (e) {

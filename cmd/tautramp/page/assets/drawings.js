@@ -9,9 +9,9 @@ const pictures = {
   gross: ["the gross width runs from the back to the tooth tip", "0 0 320 150", `
     <path class="steel" d="M10 20H310V92L292 92L300 122L270 92L248 92L256 122L226 92L204 92L212 122L182 92L160 92L168 122L138 92L116 92L124 122L94 92L72 92L80 122L50 92L28 92L36 122L10 96Z"/>
     <path class="dim" d="M302 22V120M296 30L302 22L308 30M296 112L302 120L308 112"/><text x="290" y="62" text-anchor="end">gross width: back to tooth tip</text><text x="20" y="14">back</text>`],
-  thick: ["the band's thickness is measured with a micrometer at three places", "0 0 320 110", `
+  thick: ["the band's thickness is measured with a micrometer at three places", "0 0 320 112", `
     <path class="steel" d="M10 50H310V64H10Z"/><path class="dim" d="M60 20V48M54 40L60 48L66 40M60 94V66M54 74L60 66L66 74"/>
-    <path class="dim" d="M160 20V48M154 40L160 48L166 40M160 94V66M154 74L160 66L166 74M260 20V48M254 40L260 48L266 40M260 94V66M254 74L260 66L266 74"/><text x="70" y="30">1</text><text x="170" y="30">2</text><text x="270" y="30">3: write the mean</text>`],
+    <path class="dim" d="M160 20V48M154 40L160 48L166 40M160 94V66M154 74L160 66L166 74M260 20V48M254 40L260 48L266 40M260 94V66M254 74L260 66L266 74"/><text x="70" y="30">1</text><text x="170" y="30">2</text><text x="270" y="30">3</text><text x="10" y="106">three places; write their mean</text>`],
   gauge: ["the gauge length runs from knife edge to knife edge of the two clamps", "0 0 320 130", `
     <path class="steel" d="M4 96H316V112H4Z"/><path class="part" d="M50 96L42 60H58ZM262 96L254 60H270Z"/><path class="part" d="M42 40H230V60H42ZM236 36H278V64H236Z"/><text x="240" y="30">indicator</text><text x="70" y="55" class="on-part">bar</text>
     <path class="dim" d="M50 98V126M262 98V126M50 122H262M58 117L50 122L58 127M254 117L262 122L254 127"/><text x="156" y="90" text-anchor="middle">gauge length</text>`],

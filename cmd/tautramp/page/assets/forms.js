@@ -39,9 +39,11 @@ const tables = {
   instrument: { title: "Instrument", fields: [
     ["name", "Name", "as it is called in the shop", "pressure transducer"],
     ["serial", "Serial number", "as engraved", ""],
-    ["measures", "Measures", "the setting, or the stretch of the band (extension)", "setting", { words: ["setting", "extension"] }],
+    ["measures", "Measures", "the setting, or the stretch of the band (extension)", "setting", { words: ["setting", "extension", "reference"] }],
     ["limit", "Largest error", "by its certificate or class", "3.75 psi"],
     ["due", "Next check due", "year-month-day", "2027-03-31"],
+    ["range_high", "End of the range", "for a bench test", "1000 psi", { more: true }],
+    ["division", "Division of its scale", "for a bench test", "20 psi", { more: true }],
   ] },
 };
 

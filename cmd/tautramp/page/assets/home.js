@@ -8,7 +8,7 @@ export function home(box) {
     fill(box, make("h1", {}, "Looking for the program"));
     return;
   }
-  const kinds = { ramps: "ramps", face: "other face", verify: "check of the card", opened: "opened" };
+  const kinds = { ramps: "ramps", face: "other face", verify: "check of the number", bench: "bench test", opened: "opened" };
   const says = make("p", { role: "status" });
   const file = make("input", { type: "file", accept: ".ramp", id: "file", onchange: (e) => upload(e.target.files[0], says) });
   fill(box,
@@ -17,10 +17,11 @@ export function home(box) {
     make("ol", { class: "ways" },
       way("#mill", "1", "The mill", "Its tensioners and bands, and the measuring rig. Once for each mill."),
       way("#before", "2", "Measure", "Lock-out, boards, exercise cycle, ramps. About half an hour."),
-      make("li", {}, make("label", { class: "way", for: "file" }, make("b", {}, "3"), make("span", {}, make("strong", {}, "Open a recording"), "A .ramp file of another day.", file, says))),
+      way("#bench", "3", "Test an instrument", "A dial, a transducer, an indicator or the whole rig, against a reference on the bench."),
+      make("li", {}, make("label", { class: "way", for: "file" }, make("b", {}, "4"), make("span", {}, make("strong", {}, "Open a recording"), "A .ramp file of another day.", file, says))),
     ),
     desk.papers.length > 0 && make("h2", {}, "Recordings at hand"),
-    desk.papers.length > 0 && make("ul", { class: "papers" }, desk.papers.map((p) => make("li", {}, make("a", { href: "#result/" + p.id }, p.name), ` (${kinds[p.kind] || p.kind})`, p.alarm ? make("strong", {}, " alarm raised") : null))),
+    desk.papers.length > 0 && make("ul", { class: "papers" }, desk.papers.map((p) => make("li", {}, make("a", { href: "#result/" + p.id, "data-kind": p.kind }, p.name), ` (${kinds[p.kind] || p.kind})`, p.verdict && `: ${p.verdict}`, p.alarm ? make("strong", {}, " alarm raised") : null))),
   );
 }
 

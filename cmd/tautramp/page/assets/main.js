@@ -4,9 +4,10 @@ import { system } from "./units.js";
 import { listen } from "./line.js";
 import * as sound from "./sound.js";
 import * as ramp from "./ramp.js";
+import * as station from "./station.js";
 import { screens } from "./screens.js";
 
-const names = ["home", "mill", "before", "boards", "ramp", "result", "bench"];
+const names = ["home", "mill", "before", "boards", "ramp", "result", "card", "bench", "station"];
 
 function place() {
   const [name, ...rest] = location.hash.slice(1).split("/");
@@ -16,11 +17,16 @@ function place() {
 function go() {
   let [name, rest] = place();
   if (name === "ramp" && state.desk && !ramp.here()) name = "home";
-  for (const n of names) byId(n).hidden = n !== name;
+  if (name === "station" && state.desk && !station.here()) name = "home";
+  for (const n of names) {
+    byId(n).hidden = n !== name;
+    if (n !== name && screens[n]) byId(n).replaceChildren(); // it is made afresh when it is shown
+  }
   document.body.dataset.screen = name;
   if (name !== "result" && name !== "ramp") byId("rehearsal").hidden = true;
   screens[name]?.(byId(name), rest);
   if (name === "ramp") ramp.refresh();
+  if (name === "station") station.refresh();
 }
 
 const narrow = matchMedia("(max-width: 640px)");
@@ -28,12 +34,14 @@ let running = false, papers = 0;
 
 on("desk", () => {
   const desk = state.desk, run = desk.run;
-  byId("where").textContent = run ? [run.mill, run.tensioner, run.band].filter(Boolean).join(" \u00b7 ") : "";
+  byId("where").textContent = run ? [run.mill, run.tensioner, run.band, run.tested].filter(Boolean).join(" \u00b7 ") : "";
   switches();
   if (run && !running) {
     running = true;
-    ramp.start();
-    location.hash = "ramp";
+    state.now = null;
+    if (run.kind === "bench") station.start();
+    else ramp.start();
+    location.hash = run.kind === "bench" ? "station" : "ramp";
   }
   if (!run && running) {
     running = false;
@@ -45,7 +53,7 @@ on("desk", () => {
 });
 
 on("away", () => {
-  byId("away").textContent = state.away && state.away + (ramp.here() ? " Stop pumping and hold. The picture comes back by itself." : " It is looked for again and again.");
+  byId("away").textContent = state.away && state.away + (state.desk?.run ? " Stop pumping and hold. The picture comes back by itself." : " It is looked for again and again.");
   byId("away").hidden = !state.away;
 });
 
@@ -54,7 +62,7 @@ on("now", () => { if (ramp.here()) byId("rehearsal").hidden = !state.now?.simula
 function switches() {
   const si = system() === "si";
   byId("units").textContent = narrow.matches ? (si ? "SI" : "US") : si ? "SI units" : "US units";
-  byId("units").setAttribute("aria-label", `units: ${si ? "SI" : "US"}; press for the other`);
+  byId("units").setAttribute("aria-label", `${si ? "SI units" : "US units"}; press for ${si ? "US" : "SI"}`);
   byId("sound").textContent = narrow.matches ? (state.sound ? "\u266a" : "mute") : state.sound ? "sound on" : "sound off";
   byId("sound").setAttribute("aria-pressed", String(state.sound));
   const dark = document.documentElement.dataset.light === "dark";

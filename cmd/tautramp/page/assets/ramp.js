@@ -11,7 +11,7 @@ const settingNames = { pressure: "Gauge now", torque: "Torque now", turns: "Turn
 
 let spokenNext = "", checkedFor = 0, seenFlash = 0, lastReply = -1, ownPress = 0, beeped = 0, vented = false;
 
-export const here = () => Boolean(state.desk?.run);
+export const here = () => Boolean(state.desk?.run) && state.desk.run.kind !== "bench";
 
 function figures(now, run) {
   const stale = Boolean(state.away);
@@ -73,6 +73,10 @@ function facts(now, run) {
 
 // asks is what the one button is for now.
 function asks(now, run) {
+  if (now.setting == null) return { word: "Mark", says: "hold 1.5 s: undo \u00b7 4 s: abort", act: () => deed("mark") };
+  if (run.kind === "verify" && now.resting && now.cycle > 1) {
+    return { word: "The rig is off the band", says: "release all, take the rig off, then press: the check ends", ask: true, act: async () => { await deed("confirm", "rig removed"); deed("end"); } };
+  }
   if (now.done) return { word: "The visit ends", says: "wait for the result", act: () => {} };
   if (seenFlash && performance.now() - seenFlash < 60000) {
     return { word: "Seen and heard", says: "press only if both are true, with ear muffs on", ask: true, act: () => {

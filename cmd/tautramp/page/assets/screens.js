@@ -2,6 +2,7 @@
 import { home } from "./home.js";
 import { millForms } from "./forms.js";
 import { before, boards } from "./before.js";
-import { result } from "./result.js";
+import { result, card } from "./result.js";
+import { bench } from "./bench.js";
 
-export const screens = { home, mill: millForms, before, boards, result };
+export const screens = { home, mill: millForms, before, boards, result, card, bench };

@@ -37,3 +37,11 @@ export const withUnit = (si, role, coarser) => show(si, role, coarser) + " " + l
 
 // stressStep keeps the last digit of a band stress from dancing.
 export const stressStep = () => (unit("stress").name === "psi" ? 10 : 1);
+
+// inUnit writes a figure of a bench test, to a thousandth of a hundred.
+export function inUnit(si, unit) {
+  if (si == null || !unit.si) return "--";
+  const v = si / unit.si, a = Math.abs(v);
+  const text = v.toFixed(a >= 100 ? 1 : a >= 10 ? 2 : 3);
+  return Number(text) === 0 ? text.replace("-", "") : text;
+}
