@@ -22,6 +22,7 @@ type Input struct {
 	Band      string
 	Target    mill.Pressure // overrides the band's target when given
 	Set       *pairing.Set
+	Records   string    // file of instrument records that the profile was given in place of its own; "" for none
 	Day       time.Time // of the measurement; zero where it is not known: no check is then called overdue
 }
 
@@ -45,6 +46,7 @@ type Result struct {
 	AtFalling  TargetSetting
 	ResetSI    estimate.Estimate // after an overshoot: the setting to drop to before approaching again
 	Running    RunningBand
+	Dial       Dial // the mill's own, against the instrument that measured the setting
 	Warnings   []Warning
 	Marks      ZeroMarks
 	Predicted  *Prediction // how, where the figures are for another band than was measured; else nil
@@ -77,5 +79,6 @@ func Analyze(in Input) (*Result, error) {
 	if err := w.pool(); err != nil {
 		return nil, err
 	}
+	w.readDial()
 	return w.res, nil
 }

@@ -61,7 +61,7 @@ func TestT1ByEveryWayOfPumping(t *testing.T) {
 				t.Errorf("grade %q of a half-width of 7 %%", r.Grade)
 			}
 			for _, w := range r.Warnings {
-				if w.Code != "one-face" {
+				if w.Code != "one-face" && w.Code != "instrument-uncorrected" {
 					t.Errorf("warning of a healthy visit: %+v", w)
 				}
 			}

@@ -27,7 +27,7 @@ func (w *work) figures() {
 	w.res.Rising.Direction, w.res.Falling.Direction = Rising, Falling
 	w.captured(&w.res.Rising)
 	w.captured(&w.res.Falling)
-	w.sources = w.systematics()
+	w.sources = w.benchFrom(w.systematics())
 	w.branch(&w.res.Rising)
 	w.branch(&w.res.Falling)
 	w.friction()

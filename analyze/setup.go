@@ -28,6 +28,8 @@ type Setup struct {
 	ExtensionSd   float64           // m, from the instrument's limit; 0 and a warning when not given
 	Bands         []mill.Band       // all on file
 	Overdue       []mill.Instrument // in use, and their check was due before the day
+	Used          []Used            // instruments that the figures rest on: of the setting, of the extension
+	Records       string            // file of instrument records that took the place of the recording's; "" for none
 }
 
 // Assumed where the profile does not say. The shares are common practice, no
@@ -58,7 +60,7 @@ func resolve(in Input) (Setup, error) {
 		NetAreaM2: b.NetAreaM2(), SectionRelStd: assumedSectionStd,
 		ModulusPa: given(b.Modulus.SI, b.Modulus.SI*orElse(b.ModulusStd, assumedModulusStd)),
 		GaugeM:    given(p.Rig.GaugeLength.SI, orElse(p.Rig.GaugeLengthStd.SI, p.Rig.GaugeLength.SI*assumedGaugeStd)),
-		TargetPa:  b.Target.SI, LimitSI: t.LimitSI(), GeometryM2: t.GeometryAreaM2(), Bands: p.Bands,
+		TargetPa:  b.Target.SI, LimitSI: t.LimitSI(), GeometryM2: t.GeometryAreaM2(), Bands: p.Bands, Records: in.Records,
 	}
 	if in.Target.Given() {
 		s.TargetPa = in.Target.SI
@@ -70,6 +72,7 @@ func resolve(in Input) (Setup, error) {
 		s.SettingStd, s.ExtensionSd = limitStd(gauge), limitStd(indicator)
 		s.overdue(gauge, hasGauge, in.Day)
 		s.overdue(indicator, hasIndicator, in.Day)
+		s.useBench(gauge, indicator, in.Set)
 	}
 	return s, nil
 }

@@ -32,7 +32,7 @@ const (
 // the ordinary. Their order is fixed.
 func (w *work) warnings() {
 	for _, check := range []func(){
-		w.warnVisit, w.warnRamps, w.warnInstruments, w.warnZero, w.warnMarks, w.warnReturn, w.warnTarget, w.warnShape, w.warnStop, w.warnOutliers, w.warnSteps, w.warnPace, w.warnArea, w.warnWeight, w.warnPredicted,
+		w.warnVisit, w.warnRamps, w.warnInstruments, w.warnBench, w.warnZero, w.warnMarks, w.warnReturn, w.warnTarget, w.warnShape, w.warnStop, w.warnOutliers, w.warnSteps, w.warnPace, w.warnArea, w.warnWeight, w.warnPredicted,
 	} {
 		check()
 	}

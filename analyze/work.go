@@ -46,6 +46,7 @@ func (r *Result) Set() *pairing.Set { return r.work.set }
 const leastPairs = 20
 
 func newWork(set *pairing.Set, s Setup) (*work, error) {
+	set = s.corrected(set)
 	if set == nil || len(set.Pairs) < leastPairs {
 		n := 0
 		if set != nil {

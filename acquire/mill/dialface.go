@@ -46,6 +46,9 @@ type DialReading struct {
 	Unit  string // printed name, or Divisions
 }
 
+// SIUnit is the reading's unit; ok is false for bare divisions.
+func (r DialReading) SIUnit() (u Unit, ok bool) { return findUnit(r.Unit) }
+
 // ParseDialReading reads "600 psi", "12.5 div", or "600" where the profile says
 // what the dial shows. The error is a *QuantityError.
 func (t Tensioner) ParseDialReading(text string) (DialReading, error) {

@@ -108,7 +108,7 @@ func TestFileAndVisitSayHowTheyEnded(t *testing.T) {
 func TestTextEndsWithTheAnswer(t *testing.T) {
 	lines := strings.Split(strings.TrimRight(textOf(t, t1(t), t1Meta(), mill.US), "\n"), "\n")
 	last := joined(strings.Join(lines[len(lines)-5:], " | "))
-	if want := "IN SHORT | RISING 725 gauge psi, come up from below | FALLING 621 gauge psi, come down from above | NEVER ABOVE 950 gauge psi | GRADE service; 3 warnings above"; last != want {
+	if want := "IN SHORT | RISING 725 gauge psi, come up from below | FALLING 621 gauge psi, come down from above | NEVER ABOVE 950 gauge psi | GRADE service; 4 warnings above"; last != want {
 		t.Errorf("ends with\n%s\nwant\n%s", last, want)
 	}
 	m := t1Meta()
