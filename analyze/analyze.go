@@ -32,6 +32,7 @@ type Result struct {
 	Points     []Point
 	Cycles     []Cycle
 	Steps      []Step // of the extension, in time order
+	Lag        Lag
 	Rising     Branch
 	Falling    Branch
 	Friction   Friction
@@ -75,6 +76,11 @@ func Analyze(in Input) (*Result, error) {
 	}
 	w.findSteps()
 	w.fitCycles()
+	if w.findLag() {
+		if err := w.align(); err != nil {
+			return nil, err
+		}
+	}
 	w.findZeros()
 	if err := w.pool(); err != nil {
 		return nil, err

@@ -103,6 +103,11 @@ func (tr *trace) smooth(t float64) float64 {
 	if m := tr.about(t); finite(m) {
 		return m
 	}
+	return tr.value(t)
+}
+
+// value is the setting at t on the line between the values on both sides.
+func (tr *trace) value(t float64) float64 {
 	i := tr.at(t)
 	switch last := len(tr.t) - 1; {
 	case i < 0:
@@ -111,6 +116,17 @@ func (tr *trace) smooth(t float64) float64 {
 		return tr.p[last]
 	}
 	return tr.p[i] + (tr.p[i+1]-tr.p[i])*(t-tr.t[i])/(tr.t[i+1]-tr.t[i])
+}
+
+// smoothed is the whole setting, each value the mean over a window about it.
+func (tr *trace) smoothed(windowS float64) estimate.Trace {
+	out := estimate.Trace{T: tr.t, V: make([]float64, len(tr.t))}
+	last := tr.t[len(tr.t)-1]
+	for i, t := range tr.t {
+		half := math.Min(windowS/2, math.Min(t-tr.t[0], last-t)) // evenly to both sides
+		out.V[i], _ = tr.mean(t-half, t+half)
+	}
+	return out
 }
 
 // sides is the means over a window before t and after it. NaN at the ends.
