@@ -71,15 +71,8 @@ func Analyze(in Input) (*Result, error) {
 	if err != nil {
 		return nil, err
 	}
-	if err := w.findCycles(); err != nil {
+	if err := w.settle(); err != nil {
 		return nil, err
-	}
-	w.findSteps()
-	w.fitCycles()
-	if w.findLag() {
-		if err := w.align(); err != nil {
-			return nil, err
-		}
 	}
 	w.findZeros()
 	if err := w.pool(); err != nil {

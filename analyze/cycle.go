@@ -30,7 +30,7 @@ type Cycle struct {
 	Falling      Fit
 	ReturnM      estimate.Estimate // m, extension at the end of the cycle minus at its start, same setting
 	ReversalSI   estimate.Estimate // fall of setting at the top before the extension follows
-	RateSI       float64           // median |rate of setting| on the branches, SI/s
+	RateSI       float64           // mean |rate of setting| on the branches, SI/s
 	StopSI       float64           // setting above which the rising branch is no longer straight: end of travel, a spring gone solid; +Inf where there is none
 	StopRatio    float64           // slope above StopSI / slope below it; NaN where there is none
 	SeatingEndSI float64           // setting above which the rising branch is straight; NaN where it was not found

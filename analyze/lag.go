@@ -20,6 +20,9 @@ type Lag struct {
 const (
 	// The delay is taken out where it is so many times its standard uncertainty.
 	toldFromNone = 2
+	// By so much of the window over which the setting is smoothed the beginnings of
+	// holds and strokes are in doubt, see TestLagIsFoundInStrokesAndStairs.
+	blurShare = 0.2
 	// Half-widths of one tensioner differ by this share from ramp to ramp, where
 	// there are too few ramps to see it. Judgement.
 	widthWander = 0.02
@@ -27,16 +30,17 @@ const (
 	ratesApart = 0.25
 )
 
-// findLag looks for the delay in the branches found, and says whether the pairs
-// are to be moved by it.
-func (w *work) findLag() bool {
+// findLag looks for the delay in the branches found. What the pairs are to be
+// moved by is 0 where it is not told from none.
+func (w *work) findLag() (lateS float64, told bool) {
+	w.res.Lag = Lag{}
 	lag := &w.res.Lag
 	if w.wrench != nil {
 		lag.LateS = estimate.Unknown("not looked for with a torque wrench: its torque is read when it is let go")
-		return false
+		return 0, false
 	}
 	runs := w.runs()
-	d, err := estimate.FindDelay(w.trace.smoothed(w.delayWindow()), estimate.Trace{T: w.t, V: w.e}, runs, estimate.DelaySearch{RunStd: w.runStdM()})
+	d, err := estimate.FindDelay(w.trace.smoothed(w.delayWindow(runs)), estimate.Trace{T: w.t, V: w.e}, runs, estimate.DelaySearch{Count: w.setup.CountM, RunStd: w.runStdM()})
 	switch {
 	case len(runs) == 0:
 		lag.LateS = estimate.Unknown("not identifiable: no branch was found")
@@ -46,22 +50,34 @@ func (w *work) findLag() bool {
 		lag.LateS = estimate.Unknown("not identifiable: " + d.Late.Why)
 	default:
 		lag.LateS = d.Late
-		lag.Corrected = math.Abs(d.Late.Value) > toldFromNone*d.Late.Random
+		if d.Alone.Known() { // smoothing blurs when a hold or stroke begins
+			lag.LateS.System = blurShare * w.delayWindow(runs)
+		}
+		lag.Corrected = math.Abs(d.Late.Value) > toldFromNone*lag.LateS.Std()
 	}
 	if lag.Corrected {
-		w.lateS = lag.LateS.Value
+		lateS = lag.LateS.Value
 	}
-	return lag.Corrected
+	return lateS, lag.LateS.Known()
 }
 
 // delayWindow is so long that the highest setting so far is not made by noise:
-// over it the setting rises by three times the noise of one value.
-func (w *work) delayWindow() float64 {
+// over it the setting, where it moves, rises by three times the noise of one
+// value.
+func (w *work) delayWindow(runs []estimate.Run) float64 {
 	const times, longest = 3.0, 3.0
-	if !(w.rate > 0) {
+	var rates []float64
+	for _, r := range runs {
+		for i := r.First; i <= r.Last; i++ {
+			if gain := w.trace.gain(w.t[i], w.trace.windowS); r.Sign*gain > 2*math.Sqrt2*w.trace.doubt(w.trace.windowS) {
+				rates = append(rates, math.Abs(gain)/w.trace.windowS)
+			}
+		}
+	}
+	if len(rates) == 0 {
 		return w.trace.windowS
 	}
-	return math.Min(longest, math.Max(w.trace.windowS, times*w.trace.noise/w.rate))
+	return math.Min(longest, math.Max(w.trace.windowS, times*w.trace.noise/estimate.Median(rates)))
 }
 
 // runs is the branches of the fitted cycles, each with the holds in it: rising
@@ -108,17 +124,79 @@ func (w *work) runStdM() float64 {
 	return math.Hypot(w.setup.CountM/2, widthWander*half)
 }
 
-// align moves the pairs to the setting that their extension answers to, and
-// cuts and fits them anew.
-func (w *work) align() error {
-	for i := range w.p {
-		w.p[i] = w.trace.value(w.own(i))
+// settle finds cycles and branches, delay and steps. Slips are looked for in
+// pairs that the delay no longer opens at every stroke; where there are any, all
+// begins anew in what is left before them.
+func (w *work) settle() error {
+	if err := w.lay(0); err != nil {
+		return err
+	}
+	late, told := w.findLag()
+	trial := late
+	if !told { // a slip may hide it in all cycles together
+		trial = w.lateOfCycles()
+	}
+	if err := w.stepsAt(trial); err != nil {
+		return err
+	}
+	switch {
+	case w.isCut():
+		if err := w.lay(0); err != nil {
+			return err
+		}
+		late, _ = w.findLag()
+	case trial == late:
+		return nil
+	}
+	if err := w.stepsAt(late); err != nil || !w.isCut() {
+		return err
+	}
+	return w.lay(late)
+}
+
+// stepsAt looks for steps at a delay.
+func (w *work) stepsAt(lateS float64) error {
+	if lateS != w.lateS {
+		if err := w.lay(lateS); err != nil {
+			return err
+		}
+	}
+	w.findSteps()
+	return nil
+}
+
+// lateOfCycles is the delay as the most of the cycles show it, each alone; 0
+// where they do not.
+func (w *work) lateOfCycles() float64 {
+	runs := w.runs()
+	setting := w.trace.smoothed(w.delayWindow(runs))
+	var late []float64
+	for i := 0; i+1 < len(runs); i += 2 {
+		d, err := estimate.FindDelay(setting, estimate.Trace{T: w.t, V: w.e}, runs[i:i+2], estimate.DelaySearch{Count: w.setup.CountM})
+		if err == nil && d.Alone.Known() {
+			late = append(late, d.Alone.Value)
+		}
+	}
+	if len(late) < 2 {
+		return 0
+	}
+	return estimate.Median(late)
+}
+
+// lay pairs the extension with the setting so much earlier, and finds cycles and
+// branches in that.
+func (w *work) lay(lateS float64) error {
+	w.lateS = lateS
+	for i, q := range w.set.Pairs {
+		if w.p[i] = q.Setting; lateS != 0 {
+			w.p[i] = w.trace.value(w.own(i))
+		}
 	}
 	w.res.Cycles, w.fitted = nil, nil
 	if err := w.findCycles(); err != nil {
 		return err
 	}
-	w.findSteps()
+	w.cut()
 	w.fitCycles()
 	return nil
 }
@@ -130,7 +208,7 @@ func (w *work) widthOfLag() {
 	for _, i := range w.fitted {
 		rates = append(rates, w.res.Cycles[i].RateSI)
 	}
-	lag.RateSI = estimate.Median(rates)
+	lag.RateSI = w.branchRate()
 	lag.CouldBeSI = estimate.Unknown("the delay is not known")
 	if late := lag.LateS; late.Known() {
 		if lag.Corrected {
@@ -175,5 +253,12 @@ func (w *work) lagStdSI() float64 {
 	if !late.Known() {
 		return 0
 	}
-	return math.Abs(w.rate) * math.Hypot(late.Random, late.Value-w.lateS)
+	return w.branchRate() * math.Hypot(late.Std(), late.Value-w.lateS)
+}
+
+// branchRate is the rate of the setting where the branches were fitted, the mean
+// of rising and falling: strokes rise far faster than the ramp as a whole.
+func (w *work) branchRate() float64 {
+	up, down := w.rateOf(0, len(w.t)-1, Loading), w.rateOf(0, len(w.t)-1, Unloading)
+	return (up + down) / 2
 }

@@ -69,7 +69,7 @@ func (w *work) predict(b, measured mill.Band, targetPa float64) *Result {
 	o.setup.Band, o.setup.NetAreaM2, o.setup.TargetPa = b, b.NetAreaM2(), targetPa
 	o.res = &Result{
 		Setup: o.setup, Cycles: was.Cycles, Points: append([]Point(nil), was.Points...), Marks: was.Marks,
-		Simulated: was.Simulated, Ended: was.Ended, work: &o, Warnings: append([]Warning(nil), was.Warnings[:w.early]...),
+		Simulated: was.Simulated, Ended: was.Ended, Lag: was.Lag, work: &o, Warnings: append([]Warning(nil), was.Warnings[:w.early]...),
 	}
 	o.k.otherM2 = 0
 	if !sameSection(b, measured) {

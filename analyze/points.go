@@ -2,8 +2,7 @@ package analyze
 
 import (
 	"math"
-
-	"tautramp/analyze/estimate"
+	"slices"
 )
 
 // markPoints says of every pair what the tensioner was doing, and which line
@@ -18,7 +17,6 @@ func (w *work) markPoints() {
 	}
 	for n := range w.res.Cycles {
 		c := &w.res.Cycles[n]
-		var rates []float64
 		for i := c.First; i <= c.Last; i++ {
 			pt := &w.res.Points[i]
 			pt.Cycle = n
@@ -26,15 +24,32 @@ func (w *work) markPoints() {
 			if c.Zero.Known() {
 				pt.Stress = (w.e[i] - c.Zero.Value) * w.k.paPerM()
 			}
-			if pt.Phase == Loading || pt.Phase == Unloading {
-				rates = append(rates, math.Abs(w.trace.gain(w.own(i), w.trace.windowS))/w.trace.windowS)
-			}
 		}
-		c.RateSI = estimate.Median(rates)
+		c.RateSI = w.rateOf(c.First, c.Last, Loading, Unloading)
 	}
 	for _, n := range w.fitted {
 		w.markFitted(&w.res.Cycles[n], &w.legs[n])
 	}
+}
+
+// rateOf is the mean rate of the setting over the pairs from first to last that
+// are in one of the phases, SI/s; NaN where none are. Pairs that noise left out
+// in between belong to the movement, rests between strokes do not.
+func (w *work) rateOf(first, last int, phases ...PhaseKind) float64 {
+	moved, took, was := 0.0, 0.0, -1
+	gap := 3 * math.Max(w.trace.windowS, w.pairStepS)
+	for i := first; i <= last; i++ {
+		is := w.res.Points[i].Phase
+		if !slices.Contains(phases, is) {
+			continue
+		}
+		if was >= 0 && is == w.res.Points[was].Phase && w.t[i]-w.t[was] <= gap {
+			moved += math.Abs(w.x[i] - w.x[was])
+			took += w.t[i] - w.t[was]
+		}
+		was = i
+	}
+	return moved / took
 }
 
 // place is the phase of one pair of a cycle.

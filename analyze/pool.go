@@ -15,7 +15,7 @@ func (w *work) pool() error {
 		return fmt.Errorf("analyze: no closed cycle has two straight branches: %w", ErrNoCycle)
 	}
 	w.markPoints()
-	w.timeStd = w.medianTimeStd()
+	w.timeStd = math.Hypot(w.medianTimeStd(), w.lagStdSI())
 	w.early = len(w.res.Warnings)
 	w.figures()
 	w.warnings()
@@ -32,6 +32,7 @@ func (w *work) figures() {
 	w.branch(&w.res.Falling)
 	w.friction()
 	w.widths()
+	w.widthOfLag()
 	w.screw()
 	w.chain()
 	w.aim()

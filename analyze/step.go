@@ -41,13 +41,11 @@ const (
 	lowEnd = 0.05
 )
 
-// findSteps finds the sudden changes of the extension, and cuts cycles where
-// the mount slipped: nothing after that is fitted, for its zero is another.
+// findSteps finds the sudden changes of the extension, and cuts the cycles where
+// the mount slipped: nothing after that is to be fitted, for its zero is another.
 func (w *work) findSteps() {
 	w.res.Steps = nil
-	for i := range w.res.Cycles {
-		w.res.Cycles[i].CutAt = w.res.Cycles[i].Last + 1
-	}
+	defer w.cut()
 	if w.wrench != nil { // between two pulls the torque says nothing of the band
 		return
 	}
@@ -64,12 +62,31 @@ func (w *work) findSteps() {
 	}
 	w.tellStickSlip()
 	w.tellUndone()
-	for _, s := range w.res.Steps {
-		if s.Kind == MountStep && s.Cycle >= 0 && !w.beforeRise(s) {
+}
+
+// cut marks in each cycle where the mount slipped.
+func (w *work) cut() {
+	for i := range w.res.Cycles {
+		w.res.Cycles[i].CutAt = w.res.Cycles[i].Last + 1
+	}
+	for k := range w.res.Steps {
+		s := &w.res.Steps[k]
+		s.Cycle = w.cycleOf(s.Pair)
+		if s.Kind == MountStep && s.Cycle >= 0 && !w.beforeRise(*s) {
 			c := &w.res.Cycles[s.Cycle]
 			c.CutAt = min(c.CutAt, s.Pair)
 		}
 	}
+}
+
+// isCut is whether the mount slipped in any cycle.
+func (w *work) isCut() bool {
+	for _, c := range w.res.Cycles {
+		if c.CutAt <= c.Last {
+			return true
+		}
+	}
+	return false
 }
 
 // beforeRise is whether a step happened at the low end, before the setting rose.
@@ -78,8 +95,23 @@ func (w *work) beforeRise(s Step) bool {
 	return s.Pair < c.Peak && w.x[s.Pair]-w.x[c.First] < lowEnd*(w.x[c.Peak]-w.x[c.First])
 }
 
-// tellUndone marks the steps on the way up that one on the way down takes back.
+// tellUndone marks the steps on the way up that one on the way down takes back,
+// and those of a cycle that has several to and fro.
 func (w *work) tellUndone() {
+	up, down := map[int]int{}, map[int]int{}
+	for _, s := range w.res.Steps {
+		if s.SizeM.Value > 0 {
+			up[s.Cycle]++
+		} else {
+			down[s.Cycle]++
+		}
+	}
+	for k := range w.res.Steps {
+		s := &w.res.Steps[k]
+		if n := s.Cycle; s.Kind == MountStep && up[n] > 0 && down[n] > 0 && up[n]+down[n] >= sticksOften {
+			s.Kind = Undone
+		}
+	}
 	for i := range w.res.Steps {
 		up := &w.res.Steps[i]
 		for k := i + 1; k < len(w.res.Steps); k++ {

@@ -29,6 +29,7 @@ type bench struct {
 	stopPa, beyond           float64 // above this stress, where it is not 0, the band takes this share of what it would
 	slipS, slipM             float64 // the mount slips by so much at a time; none where slipM is 0
 	jumpN                    float64 // by which friction is larger at rest: the load jumps once the setting has overcome it
+	lateS                    float64 // by which the extension is shown late, a whole number of pathStepS
 	countM, noiseM           float64
 	countSI, noiseSI         float64
 	settingHz, extensionHz   float64
@@ -187,6 +188,22 @@ func cycles(s shape, n int, low, top float64) *path {
 	return h
 }
 
+// rated is a visit of smooth ramps, psi/s each, one cycle of each rate; the
+// first for exercise.
+func rated(low, top, restS float64, rates ...float64) *path {
+	h := &path{}
+	h.add(low * psi)
+	h.hold(5)
+	for _, rate := range rates {
+		h.begins = append(h.begins, len(h.p))
+		h.to(top*psi, rate*psi)
+		h.hold(restS)
+		h.to(low*psi, rate*psi)
+		h.hold(5)
+	}
+	return h
+}
+
 // measure runs a path through the bench and pairs what it shows.
 func (b *bench) measure(h *path) *pairing.Set {
 	truth := make([]float64, len(h.p))
@@ -219,7 +236,7 @@ func (b *bench) measure(h *path) *pairing.Set {
 		}
 		lo, hi := set.Setting.Readings[k], set.Setting.Readings[k+1]
 		p := lo.Value + (hi.Value-lo.Value)*(h.t[i]-lo.T)/(hi.T-lo.T)
-		e := b.shown(truth[i] + b.noiseM*b.rng.NormFloat64())
+		e := b.shown(truth[max(0, i-int(math.Round(b.lateS/pathStepS)))] + b.noiseM*b.rng.NormFloat64())
 		set.Pairs = append(set.Pairs, pairing.Pair{T: h.t[i], Setting: p, Extension: e, SettingStd: 1e-4 * 8 * psi})
 	}
 	return set

@@ -118,15 +118,27 @@ func (tr *trace) value(t float64) float64 {
 	return tr.p[i] + (tr.p[i+1]-tr.p[i])*(t-tr.t[i])/(tr.t[i+1]-tr.t[i])
 }
 
-// smoothed is the whole setting, each value the mean over a window about it.
+// smoothed is the whole setting, each value the mean over a window about it; a
+// longer one where it rests, so that the highest value of a rest is not its
+// noise's.
 func (tr *trace) smoothed(windowS float64) estimate.Trace {
+	const longest = 4.0 // s
 	out := estimate.Trace{T: tr.t, V: make([]float64, len(tr.t))}
 	last := tr.t[len(tr.t)-1]
 	for i, t := range tr.t {
-		half := math.Min(windowS/2, math.Min(t-tr.t[0], last-t)) // evenly to both sides
-		out.V[i], _ = tr.mean(t-half, t+half)
+		room := 2 * math.Min(t-tr.t[0], last-t) // evenly to both sides
+		w := math.Min(windowS, room)
+		for ; 2*w <= math.Min(longest, room) && tr.rests(t, w); w *= 2 {
+		}
+		out.V[i], _ = tr.mean(t-w/2, t+w/2)
 	}
 	return out
+}
+
+// rests is whether the means over a window before t and after it are alike.
+func (tr *trace) rests(t, windowS float64) bool {
+	const alike = 2.0
+	return math.Abs(tr.gain(t, windowS)) < alike*math.Sqrt2*tr.doubt(windowS)
 }
 
 // sides is the means over a window before t and after it. NaN at the ends.

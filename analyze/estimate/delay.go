@@ -32,6 +32,7 @@ type Delay struct {
 type DelaySearch struct {
 	Least, Most float64 // s; both 0: -1 to 3
 	Enough      float64 // largest standard uncertainty that counts as identifiable, s; 0: 0.25
+	Count       float64 // of the display that shows y: in a hold it errs by the same part of it all along; 0: none
 	RunStd      float64 // standard deviation of y from ramp to ramp at a setting; 0: from the runs where they tell it
 }
 

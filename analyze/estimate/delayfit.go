@@ -1,6 +1,7 @@
 package estimate
 
 import (
+	"maps"
 	"math"
 	"slices"
 
@@ -115,7 +116,7 @@ func (f *delayFit) uncertain(of offsets, late float64) Estimate {
 	if apart, ok := project(x, rate); !ok || sumSquares(apart) < leastApart*sumSquares(rate) {
 		return Unknown("one rate all along: no hold, stroke, step or ramp at another rate")
 	}
-	parts := f.scatter(alone, rest, len(x)+1)
+	parts := append(f.scatter(alone, rest, len(x)+1), f.roundingOfHolds(alone, f.extreme(late)))
 	if of == offsetsOfCycles {
 		parts = append(parts, f.betweenRuns(alone, rest))
 	}
@@ -146,17 +147,41 @@ func (f *delayFit) scatter(alone, rest []float64, parameters int) []Component {
 	length := int(math.Ceil(blocksPerTime * Dependence(rest)))
 	length = max(length, (len(rest)+2*mostBlocks-1)/(2*mostBlocks))
 	sum, count, blocks, squares := 0.0, 0, 0.0, 0.0
+	var tells, told, toldSquares float64
 	for i := range rest {
 		sum += alone[i] * rest[i]
+		tells += alone[i] * alone[i]
 		count++
 		if count >= length || i+1 == len(rest) || f.run[i+1] != f.run[i] {
 			squares += sum * sum
+			told += tells
+			toldSquares += tells * tells
 			blocks++
-			sum, count = 0, 0
+			sum, count, tells = 0, 0, 0
 		}
 	}
-	dof := blocks - float64(parameters)
-	return []Component{{Std: math.Sqrt(squares*blocks/math.Max(1, dof)) / sumSquares(alone), DoF: dof}}
+	// Where few blocks tell nearly all, as the starts of few holds do, their number
+	// counts and not that of all blocks.
+	dof := math.Min(blocks-float64(parameters), told*told/toldSquares-1)
+	return []Component{{Std: math.Sqrt(squares*blocks/math.Max(1, blocks-float64(parameters))) / sumSquares(alone), DoF: dof}}
+}
+
+// roundingOfHolds is what the display's rounding does where the setting's
+// extreme stands, and with it y: each code shown there errs by one value,
+// wherever it is shown.
+func (f *delayFit) roundingOfHolds(alone, extreme []float64) Component {
+	shown := map[float64]float64{}
+	for i := 1; i < len(alone); i++ {
+		if f.run[i] == f.run[i-1] && extreme[i] == extreme[i-1] {
+			shown[f.y[i]] += alone[i]
+		}
+	}
+	codes := slices.Sorted(maps.Keys(shown))
+	sum := 0.0
+	for _, c := range codes {
+		sum += shown[c] * shown[c]
+	}
+	return Component{Std: f.Count / math.Sqrt(12) * math.Sqrt(sum) / sumSquares(alone), DoF: math.Inf(1)}
 }
 
 // betweenRuns is what scatter of whole runs adds: as stated, or as the runs'

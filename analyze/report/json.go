@@ -40,6 +40,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 		{"predicted", predictedJSON(r)},
 		{"cycles", each(r.Cycles, func(c analyze.Cycle) object { return cycleJSON(c, by) })},
 		{"steps", each(r.Steps, stepJSON)},
+		{"lag", lagJSON(r.Lag, by)},
 		{"zero_marks", object{
 			{"given", r.Marks.Given}, {"used", r.Marks.Used}, {"agree", r.Marks.Agree},
 			{"differ", r.Marks.Differ}, {"loaded", r.Marks.Loaded}, {"unread", r.Marks.Unread},
@@ -181,6 +182,14 @@ func stepJSON(s analyze.Step) object {
 		cycle = s.Cycle + 1
 	}
 	return object{{"at_s", number(s.T)}, {"cycle", cycle}, {"size_m", estimateJSON(s.SizeM)}, {"kind", clean(string(s.Kind), nameLength)}}
+}
+
+func lagJSON(l analyze.Lag, by setBy) object {
+	return object{
+		{"late_s", estimateJSON(l.LateS)}, {"corrected", l.Corrected}, {"rate_per_s", by.inSetting(given(l.RateSI))},
+		{"half_width_it_could_be", by.inSetting(estimateJSON(l.CouldBeSI))},
+		{"half_width_without_rate", by.inSetting(estimateJSON(l.StaticSI))}, {"half_width_per_rate_s", estimateJSON(l.PerRateS)},
+	}
 }
 
 func shapeJSON(s estimate.Shape) string {

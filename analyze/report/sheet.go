@@ -65,7 +65,7 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		Branches:    []fact{branchFact(analyze.Rising, r.Rising, u), branchFact(analyze.Falling, r.Falling, u)},
 		Table:       rowsOf(r, u),
 		Assumptions: assumptions(r, u),
-		Fitted:      fitted(r),
+		Fitted:      fitted(r, u),
 		Warnings:    warningTexts(r, m),
 		Unchecked:   unchecked(),
 		Cautions:    Cautions(),
