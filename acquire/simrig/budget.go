@@ -1,6 +1,7 @@
 package simrig
 
 import (
+	"fmt"
 	"math"
 	"math/rand/v2"
 )
@@ -21,9 +22,13 @@ type Budget struct {
 }
 
 // Draw puts errors on a configuration, each drawn by chance from a normal
-// distribution of its standard uncertainty. The truth of the rig tells them.
+// distribution of its standard uncertainty. The truth of the rig tells them. Its
+// errors are ErrConfig and mill.ErrUnknownName.
 func (b Budget) Draw(c *Config, by *rand.Rand) error {
-	r, err := New(*c)
+	if c.Profile == nil {
+		return fmt.Errorf("%w: no profile given", ErrConfig)
+	}
+	tensioner, err := c.Profile.FindTensioner(c.Tensioner)
 	if err != nil {
 		return err
 	}
@@ -33,7 +38,7 @@ func (b Budget) Draw(c *Config, by *rand.Rand) error {
 		n[i] = by.NormFloat64()
 	}
 	phase, pitch := 2*math.Pi*by.Float64(), within(by, 0.15e-3, 0.6e-3)
-	gauge := c.gauge(r.conf.tensioner.SetBy)
+	gauge := c.gauge(tensioner.SetBy)
 	gauge.OffsetSI += n[0] * b.GaugeZero
 	gauge.Span = orElse(gauge.Span, 1) * (1 + n[1]*b.GaugeSpan)
 	if b.Indicator > 0 {

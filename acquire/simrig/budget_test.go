@@ -20,8 +20,9 @@ func TestBudgetDrawsEachErrorByItsUncertainty(t *testing.T) {
 	rng := rand.New(rand.NewPCG(5, 6))
 	sum, squares := map[string]float64{}, map[string]float64{}
 	const n = 600
+	base := t1(t)
 	for range n {
-		c := t1(t)
+		c := base
 		if err := b.Draw(&c, rng); err != nil {
 			t.Fatal(err)
 		}

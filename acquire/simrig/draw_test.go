@@ -59,7 +59,7 @@ func TestDrawIsTheSamePerSeed(t *testing.T) {
 
 func TestDrawnScrewsAreHealthy(t *testing.T) {
 	rng := rand.New(rand.NewPCG(21, 22))
-	for i := range 30 {
+	for i := range 12 {
 		by := []mill.SetBy{mill.SetByTorque, mill.SetByTurns, mill.SetBySpring}[i%3]
 		c, err := DrawSetBy(rng, by)
 		if err != nil {

@@ -33,8 +33,9 @@ func TestVariationHasTheSpreadAskedFor(t *testing.T) {
 	var sum, squares, n float64
 	for seed := range uint64(150) {
 		c.Seed = seed
-		for i := range mustNew(t, c).Truth().Cycles {
-			off := mustNew(t, c).Truth().InCycle(i).RisingPa(65.5e6)/mustNew(t, c).Truth().RisingPa(65.5e6) - 1
+		truth := mustNew(t, c).Truth()
+		for i := range truth.Cycles {
+			off := truth.InCycle(i).RisingPa(65.5e6)/truth.RisingPa(65.5e6) - 1
 			sum, squares, n = sum+off, squares+off*off, n+1
 		}
 	}
