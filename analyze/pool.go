@@ -68,6 +68,9 @@ func (w *work) keepRamps() {
 func (w *work) zeroKnown() bool { return w.zeroFrom != "" }
 
 func (w *work) medianTimeStd() float64 {
+	if w.set.Stepped {
+		return w.set.StepStd
+	}
 	var all []float64
 	for i, pt := range w.res.Points {
 		if pt.Fitted {

@@ -60,8 +60,18 @@ func (w *work) systematics() []source {
 			r.zeroM += sign * w.zeroStd
 			return r, k
 		}},
-		{name: "time alignment", from: "time between the channels x rate of the setting", move: shiftSetting(w.timeStd, true)},
+		w.instantSource(),
 	})
+}
+
+// instantSource is the doubt about which setting belongs to a reading of the
+// stretch.
+func (w *work) instantSource() source {
+	s := source{name: "time alignment", from: "time between the channels x rate of the setting", move: shiftSetting(w.timeStd, true)}
+	if w.set.Stepped {
+		s.name, s.from = "step reached", "how near each step is met, as declared or a twentieth of a step"
+	}
+	return s
 }
 
 func (w *work) zeroDoubt() string {

@@ -55,7 +55,7 @@ func newWork(set *pairing.Set, s Setup) (*work, error) {
 		return nil, fmt.Errorf("analyze: %d pairs where %d are needed: %w", n, leastPairs, ErrTooFewPairs)
 	}
 	var wrench *wrench
-	if s.Tensioner.SetBy == mill.SetByTorque {
+	if s.Tensioner.SetBy == mill.SetByTorque && !set.Stepped {
 		wrench = newWrench(set)
 		set = wrench.read(set)
 	}

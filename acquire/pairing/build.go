@@ -27,7 +27,6 @@ func FromRecording(rec *recording.Recording) (*Set, error) {
 		return &Set{Counters: in.counters(), Simulated: in.simulated()}, err
 	}
 	set := &Set{
-		Setting:   in.channel(chosen.setting, samples),
 		Extension: in.channel(chosen.extension, samples),
 		Others:    in.others(chosen, samples),
 		Marks:     in.marks.placed(),
@@ -36,11 +35,19 @@ func FromRecording(rec *recording.Recording) (*Set, error) {
 		Plan:      Plan{Exercise: rec.Header.Plan.Exercise, Ramps: rec.Header.Plan.Ramps},
 		Alarms:    in.telling.alarms, Ended: in.telling.ended, Simulated: in.simulated(),
 	}
-	set.Warnings = append(chosen.warnings, in.warnings(set)...)
-	if err := in.checkTime(chosen); err != nil {
-		return set, err
+	if chosen.stepped {
+		set.Stepped, set.StepStd = true, chosen.steps.std
+		set.Setting = chosen.steps.channel(chosen.quantity, set.Marks)
+		set.Warnings = append(chosen.warnings, in.warnings(set)...)
+		set.joinSteps(chosen.steps)
+	} else {
+		set.Setting = in.channel(chosen.setting, samples)
+		set.Warnings = append(chosen.warnings, in.warnings(set)...)
+		if err := in.checkTime(chosen); err != nil {
+			return set, err
+		}
+		set.join(in.joiner(chosen))
 	}
-	set.join(in.joiner(chosen))
 	if len(set.Pairs) == 0 {
 		return set, fmt.Errorf("%w: %d readings of the setting, %d of the extension", ErrNoPairs,
 			len(set.Setting.Readings), len(set.Extension.Readings))

@@ -10,6 +10,9 @@ import (
 // choice is the channels that a recording's pairs are made of.
 type choice struct {
 	setting, extension source
+	quantity           protocol.Quantity // of the setting
+	steps              steps             // in place of the setting's channel,
+	stepped            bool              // where the presses tell it
 	warnings           []string
 }
 
@@ -21,15 +24,27 @@ func (in *intake) choose(h recording.Header) (choice, error) {
 	if err != nil {
 		return c, fmt.Errorf("%w: %w", ErrNoSetting, err)
 	}
+	c.quantity = quantity
+	if c.steps, c.stepped, err = stepsOf(h); err != nil {
+		return c, err
+	}
 	settings, extensions := in.candidates(quantity), in.candidates(protocol.Extension)
 	switch {
+	case c.stepped: // whatever measures it is not asked
 	case len(settings) == 0:
 		return c, fmt.Errorf("%w: tensioner %q is set by %s, and no device declared a channel of it%s", ErrNoSetting, h.Tensioner, quantity, in.declared())
-	case len(extensions) == 0:
+	default:
+		c.setting = settings[0]
+		c.warnings = several(settings, "setting")
+	}
+	if len(extensions) == 0 {
 		return c, fmt.Errorf("%w: no device declared one%s", ErrNoExtension, in.declared())
 	}
-	c.setting, c.extension = settings[0], extensions[0]
-	c.warnings = append(several(settings, "setting"), several(extensions, "extension")...)
+	c.extension = extensions[0]
+	if c.stepped {
+		c.setting = c.extension // the same clock, and no channel of its own
+	}
+	c.warnings = append(c.warnings, several(extensions, "extension")...)
 	return c, nil
 }
 

@@ -56,12 +56,13 @@ type intake struct {
 	marks   *marks // nil: not kept
 	telling telling
 	plan    recording.Plan
+	keep    bool // all of the recording: segments, and what the host tells
 	news    bool // a declaration came; whoever acts on it clears it
 	edge    edge // the button's edge in the last entry; seg is nil where it held none
 }
 
 func newIntake(h recording.Header, keep bool) *intake {
-	in := &intake{devices: make([]device, len(h.Devices)), plan: h.Plan}
+	in := &intake{devices: make([]device, len(h.Devices)), plan: h.Plan, keep: keep}
 	factor := h.ClockFactor
 	if !(factor > 0) {
 		factor = 1
@@ -69,7 +70,7 @@ func newIntake(h recording.Header, keep bool) *intake {
 	for i := range in.devices {
 		in.devices[i] = device{counters: Counters{Device: i}, factor: factor, keep: keep}
 	}
-	if keep {
+	if keep || h.Presses.As != "" {
 		in.marks = &marks{presses: h.Presses}
 	}
 	return in
@@ -138,7 +139,7 @@ func (in *intake) event(e recording.Entry) {
 		}
 	default:
 		in.marks.event(e)
-		if in.marks != nil {
+		if in.keep {
 			in.telling.event(e, in.plan)
 		}
 	}

@@ -62,6 +62,13 @@ func (l *Live) Add(e recording.Entry) []Pair {
 		return nil
 	}
 	h := held{sample: s, r: s.reading()}
+	if l.chosen.stepped {
+		if from != l.chosen.extension {
+			return nil
+		}
+		l.latest[1] = h.r
+		return l.settleSteps(h)
+	}
 	switch from {
 	case l.chosen.setting:
 		l.settings = push(l.settings, h, settingsMax)
@@ -166,5 +173,11 @@ func (l *Live) Channels() (setting, extension Channel, ok bool) {
 	if l.join == nil {
 		return Channel{}, Channel{}, false
 	}
-	return l.in.channel(l.chosen.setting, nil), l.in.channel(l.chosen.extension, nil), true
+	extension = l.in.channel(l.chosen.extension, nil)
+	if l.chosen.stepped {
+		setting = l.chosen.steps.channel(l.chosen.quantity, nil)
+		setting.Device, setting.PeriodS = extension.Device, extension.PeriodS
+		return setting, extension, true
+	}
+	return l.in.channel(l.chosen.setting, nil), extension, true
 }

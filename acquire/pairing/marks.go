@@ -81,6 +81,17 @@ func (p pendingMark) at() float64 {
 	return p.seg.at(p.tick)
 }
 
+// pressed counts the presses that stand.
+func (m *marks) pressed() int {
+	n := 0
+	for _, p := range m.all {
+		if p.mark.Kind != Zero {
+			n++
+		}
+	}
+	return n
+}
+
 // placed returns the marks in time order. Presses take what is declared in the
 // order in which they were recorded.
 func (m *marks) placed() []Mark {

@@ -34,7 +34,7 @@ type Pair struct {
 	T          float64 // s since the recording's start
 	Setting    float64 // SI: Pa, N.m, rad or m as the channel's quantity says
 	Extension  float64 // m, as indicated: no zero subtracted
-	SettingStd float64 // standard uncertainty from the time error, SI
+	SettingStd float64 // standard uncertainty from the time error, SI; of steps from how well one is met, enlarged so that their mean has a step's
 	Part       int     // pairs of different parts have a gap between them
 }
 
@@ -109,9 +109,11 @@ type Set struct {
 	Counters  []Counters
 	Unpaired  int // good extension readings without a setting at their instant
 	Plan      Plan
-	Alarms    []Mark // raised during the visit, in the order of the recording
-	Ended     string // how the visit ended, in words; "" where nothing says so
-	Simulated bool   // a device says that what it measures is made up
+	Alarms    []Mark  // raised during the visit, in the order of the recording
+	Ended     string  // how the visit ended, in words; "" where nothing says so
+	Stepped   bool    // the setting is known at the presses alone; Setting has a reading at each
+	StepStd   float64 // standard uncertainty of each of them, SI
+	Simulated bool    // a device says that what it measures is made up
 	Warnings  []string
 }
 

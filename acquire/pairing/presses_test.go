@@ -82,3 +82,59 @@ func TestStreamGivesReadingsAndEdges(t *testing.T) {
 		t.Errorf("presses %+v", presses)
 	}
 }
+
+// Where the presses tell the setting, pairs are made of the readings just
+// before each press, of a band that stands still, and of no others.
+func TestSteppedSettingPairsAtThePressesAlone(t *testing.T) {
+	h := header(t, 1)
+	h.Presses = recording.Presses{As: recording.PressStep, Marks: []string{"0 psi", "100 psi", "200 psi", "100 psi"}, Doubt: "4 psi"}
+	b := &board{t: t, hz: 1e6, delayS: noDelay}
+	b.hello(0, protocol.CausePower, 1, extensionChan('b', 100_000))
+	// It turns for five seconds of each ten, and stands for the other five.
+	stretch := func(s float64) int32 {
+		n, part := math.Modf(s / 10)
+		return int32(40 * (n + math.Min(1, 2*part)))
+	}
+	next := 0
+	presses := []float64{9.5, 19.5, 29.5, 34}
+	for s := 0.1; s < 40; s += 0.1 {
+		b.val(s, 'b', stretch(s))
+		if next < len(presses) && s >= presses[next] {
+			b.pressing(s+0.01, 0.05)
+			next++
+		}
+	}
+	set := build(t, h, b.lines)
+	if !set.Stepped || len(set.Setting.Readings) != 4 || math.Round(set.Setting.Readings[3].Value/psiPa) != 100 {
+		t.Fatalf("setting: %+v", set.Setting.Readings)
+	}
+	count := map[float64]int{}
+	for _, p := range set.Pairs {
+		psi := math.Round(p.Setting / psiPa)
+		count[psi]++
+		if psi == 200 {
+			near(t, "its doubt", p.SettingStd, 4*psiPa*math.Sqrt(5), 1)
+		}
+	}
+	// Five readings of each rest; the fourth press comes while it turns, and only
+	// the two readings next to it lie within a count and a half.
+	if want := map[float64]int{0: 5, 100: 5 + 2, 200: 5}; !reflect.DeepEqual(count, want) {
+		t.Errorf("pairs by setting: %v, want %v", count, want)
+	}
+	near(t, "the doubt of a step", set.StepStd, 4*psiPa, 1)
+	live, err := NewLive(h)
+	if err != nil {
+		t.Fatal(err)
+	}
+	n := 0
+	for _, e := range b.lines {
+		for _, p := range live.Add(e) {
+			if n++; p.Setting != 0 && p.T < 19.4 {
+				t.Fatalf("at %.1f s the live setting is %.0f psi", p.T, p.Setting/psiPa)
+			}
+		}
+	}
+	if standing, next := live.Presses(); n < 250 || standing != 4 || next != "0 psi" {
+		t.Errorf("%d live pairs, %d presses, next %q", n, standing, next)
+	}
+}

@@ -265,11 +265,12 @@ func (r *Rig) BenchPresses() []BenchPress {
 // switchS is how often a board looks at the switch.
 const switchS = 0.02
 
-// watchSwitch sends the edges of the bench's foot switch.
-func (b *Board) watchSwitch(startS float64) {
+// watchSwitch sends the edges of a foot switch.
+func (b *Board) watchSwitch(startS float64, pressed func(atS float64) bool) {
 	down := false
+	b.switchOn = pressed
 	b.presses = append(b.presses, &task{startS, func(v view) float64 {
-		if now := b.rig.bench.pressed; now != down {
+		if now := pressed(v.t); now != down {
 			down = now
 			b.numbered(protocol.Button{ID: '1', Seq: b.number(), Tick: b.tickAt(v.t), Down: down})
 		}

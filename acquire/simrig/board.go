@@ -32,8 +32,9 @@ type Board struct {
 	spec     BoardSpec
 	serial   string
 	channels []*channel
-	tasks    []*task // while running
-	presses  []*task // from the start of the drive
+	tasks    []*task                // while running
+	presses  []*task                // from the start of the drive
+	switchOn func(atS float64) bool // the foot switch; nil: none is watched
 	booted   bool
 	bootID   uint32
 	bootS    float64 // rig's timeline at boot

@@ -44,6 +44,7 @@ type Drive struct {
 	StrokeS   float64 // Strokes: s from stroke to stroke; 0 means 2
 	Steps     int     // Stairs: steps to the top; 0 means 8
 	StepHoldS float64 // Stairs: s on each step; 0 means 6, negative none
+	Presses   bool    // the operator presses the first board's switch near the end of each wait, at rest, on steps and at both ends
 }
 
 // leg is one piece of a drive: go to a mark, or wait.
@@ -177,6 +178,17 @@ func (r *driver) wait(s float64, cycle int) {
 
 // over tells whether every leg is done.
 func (r *driver) over() bool { return r.at == len(r.legs) }
+
+// pressesNow tells whether the operator's foot is on the switch, t seconds into
+// the drive: a second before the end of a wait, for a fifth of one.
+func (r *driver) pressesNow(t float64) bool {
+	const before, held = 1.0, 0.2 // s
+	if r.over() || math.IsNaN(r.begunS) {
+		return false
+	}
+	left := r.legs[r.at].waitS - (t - r.begunS)
+	return r.legs[r.at].waitS > before && left <= before && left > before-held
+}
 
 // cycleNow is the cycle of the leg that is on.
 func (r *driver) cycleNow() int {

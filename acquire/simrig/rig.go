@@ -73,7 +73,7 @@ func (r *Rig) boardRuns(s float64) {
 	}
 	if r.bench != nil {
 		if r.bench.begin(s) {
-			r.boards[0].watchSwitch(s)
+			r.boards[0].watchSwitch(s, func(float64) bool { return r.bench.pressed })
 		}
 		return
 	}
@@ -83,6 +83,9 @@ func (r *Rig) boardRuns(s float64) {
 	r.world.start(s)
 	for _, b := range r.boards {
 		b.plan(s)
+	}
+	if r.conf.Drive.Presses && r.boards[0].switchOn == nil {
+		r.boards[0].watchSwitch(s, func(at float64) bool { return r.world.drive.pressesNow(at - r.world.startS) })
 	}
 }
 
