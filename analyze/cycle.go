@@ -49,6 +49,9 @@ const (
 func (w *work) deadBand() float64 {
 	low, high := estimate.Quantile(w.p, 0.001), estimate.Quantile(w.p, 0.999)
 	noise := math.Max(estimate.Noise(w.p), w.setup.CountSI/math.Sqrt(12))
+	if w.set.Stepped { // the steps themselves would pass for noise
+		noise = w.set.StepStd
+	}
 	return math.Max(2*noise*math.Sqrt(2*math.Log(float64(len(w.p)))), cycleShare*(high-low))
 }
 
@@ -121,7 +124,9 @@ func (w *work) chooseWindow() {
 	}
 	w.x = make([]float64, len(w.t))
 	for i := range w.t {
-		w.x[i] = w.trace.smooth(w.own(i))
+		if w.x[i] = w.p[i]; !w.set.Stepped { // a step is what was pressed for
+			w.x[i] = w.trace.smooth(w.own(i))
+		}
 	}
 	w.noiseM = w.stillNoise()
 }

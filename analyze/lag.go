@@ -35,6 +35,10 @@ const (
 func (w *work) findLag() (lateS float64, told bool) {
 	w.res.Lag = Lag{}
 	lag := &w.res.Lag
+	if w.set.Stepped {
+		lag.LateS = estimate.Unknown("not looked for: the setting is known at presses alone")
+		return 0, false
+	}
 	if w.wrench != nil {
 		lag.LateS = estimate.Unknown("not looked for with a torque wrench: its torque is read when it is let go")
 		return 0, false

@@ -60,6 +60,9 @@ func (w *work) leading(c *Cycle, first, last int, sign float64) []bool {
 		times[k] = w.own(first + k)
 	}
 	leads := w.trace.leading(times[0], times, sign)
+	if w.set.Stepped {
+		leads = leadingSteps(w.p[first:last+1], sign)
+	}
 	for k := max(0, c.CutAt-first); k < len(leads); k++ {
 		leads[k] = false
 	}

@@ -26,6 +26,9 @@ const (
 // known far better than a count (code transition levels, as in the testing of
 // converters, IEEE 1057); else the means of neighbouring readings.
 func (w *work) outline(at []int) (x, y []float64) {
+	if w.set.Stepped {
+		return w.plateaus(at)
+	}
 	e := pick(w.e, at)
 	steps := (estimate.Quantile(e, 1) - estimate.Quantile(e, 0)) / w.setup.CountM // +Inf where there is no count
 	if steps >= leastSteps && readingsPerStep*steps <= float64(len(at)) {
@@ -34,6 +37,21 @@ func (w *work) outline(at []int) (x, y []float64) {
 		}
 	}
 	return grouped(pick(w.x, at), mostPoints), grouped(e, mostPoints)
+}
+
+// plateaus is one point for each press of a setting that is known at presses
+// alone.
+func (w *work) plateaus(at []int) (x, y []float64) {
+	for first := 0; first < len(at); {
+		next := first
+		for next < len(at) && w.x[at[next]] == w.x[at[first]] {
+			next++
+		}
+		m, _ := estimate.Mean(pick(w.e, at[first:next]))
+		x, y = append(x, w.x[at[first]]), append(y, m)
+		first = next
+	}
+	return x, y
 }
 
 // transitions is, for every two neighbouring codes that readings show, the

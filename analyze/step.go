@@ -46,7 +46,7 @@ const (
 func (w *work) findSteps() {
 	w.res.Steps = nil
 	defer w.cut()
-	if w.wrench != nil { // between two pulls the torque says nothing of the band
+	if w.set.Stepped || w.wrench != nil { // between two presses, or pulls, the setting says nothing of the band
 		return
 	}
 	all := make([]int, len(w.t))

@@ -19,13 +19,12 @@ type trace struct {
 	noise   float64 // standard deviation of one value
 	stepS   float64 // median time between values
 	windowS float64 // over which the setting is smoothed
-	stepped bool    // the setting is known at the presses alone
 }
 
 // newTrace takes the setting's own readings, or the pairs where there are no
 // more readings than pairs.
 func newTrace(set *pairing.Set, countSI float64) *trace {
-	tr := &trace{stepped: set.Stepped}
+	tr := &trace{}
 	if len(set.Setting.Readings) > len(set.Pairs) {
 		for _, r := range set.Setting.Readings {
 			if r.Status.Ok() && finite(r.T) && finite(r.Value) {
@@ -51,6 +50,9 @@ func newTrace(set *pairing.Set, countSI float64) *trace {
 	}
 	tr.stepS = estimate.Median(steps)
 	tr.noise = math.Max(estimate.Noise(tr.p), countSI/math.Sqrt(12))
+	if set.Stepped {
+		tr.noise = set.StepStd
+	}
 	return tr
 }
 
@@ -180,9 +182,6 @@ func (tr *trace) doubt(window float64) float64 {
 // the band, and the next stroke has to win that back first. The last window is
 // left out so that a steady ramp is not asked to beat its own noise.
 func (tr *trace) leading(from float64, times []float64, sign float64) []bool {
-	if tr.stepped {
-		return tr.leadingSteps(from, times, sign)
-	}
 	still := 2 * math.Sqrt2 * tr.doubt(tr.windowS)
 	out := make([]bool, len(times))
 	best := math.Inf(-1)
@@ -198,17 +197,15 @@ func (tr *trace) leading(from float64, times []float64, sign float64) []bool {
 
 // leadingSteps is leading where the setting is known at presses alone: a step
 // leads that was come to in the branch's direction and is farther than all
-// before it.
-func (tr *trace) leadingSteps(from float64, times []float64, sign float64) []bool {
-	out := make([]bool, len(times))
-	best := sign * tr.p[max(0, tr.at(from))]
-	now := math.Inf(-1) // the step that leads
-	for k, t := range times {
-		p := sign * tr.p[max(0, tr.at(t))]
-		if p > best {
-			best, now = p, p
+// before it; the first one was not.
+func leadingSteps(p []float64, sign float64) []bool {
+	out := make([]bool, len(p))
+	best, leads := sign*p[0], math.Inf(-1)
+	for k := range p {
+		if sign*p[k] > best {
+			best, leads = sign*p[k], sign*p[k]
 		}
-		out[k] = p == now
+		out[k] = sign*p[k] == leads
 	}
 	return out
 }

@@ -48,7 +48,7 @@ func analyzeFile(path string, r resultFlags, other otherBand, system mill.System
 	}
 	res, meta, err := computeResult(path, measuredTarget)
 	if errors.Is(err, errBenchTest) {
-		return analyzeBench(path, r, system, e)
+		return analyzeBench(path, r, cautionsShown, e)
 	}
 	if err != nil {
 		return err

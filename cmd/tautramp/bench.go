@@ -16,6 +16,7 @@ import (
 	"tautramp/acquire/port"
 	"tautramp/acquire/recording"
 	"tautramp/analyze/gauge"
+	"tautramp/analyze/report"
 	"tautramp/cmd/tautramp/station"
 )
 
@@ -42,11 +43,16 @@ func runBench(ctx context.Context, args []string, e env) error {
 	var o benchOptions
 	fs := flags("bench", "--plan PLAN --instrument NAME --reference NAME --port PORT",
 		"Tests a gauge, a transducer, an indicator or the whole measuring rig against a\nreference, by foot switch: the screen says where to go, a short press marks the\npoint, a long one (1.5 s) takes the last one back. It ends by itself.\nPlans here: "+strings.Join(gauge.PlanNames(), ", ")+"; or a file ending in .toml.", e)
+	var schema bool
 	o.add(fs)
+	fs.BoolVar(&schema, "schema", false, "print the JSON Schema of --json and stop")
 	if err := parse(fs, args, 0, 0); err != nil {
 		return err
 	}
 	switch {
+	case schema:
+		_, err := e.stdout.Write(report.BenchSchema())
+		return err
 	case o.planTo != "":
 		return o.writePlan(e)
 	case o.continues != "":

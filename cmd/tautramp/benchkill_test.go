@@ -136,15 +136,15 @@ func continueBench(t *testing.T, dir, port string) {
 // wholeTest wants the nineteen points of both recordings together.
 func wholeTest(t *testing.T, dir string) {
 	t.Helper()
-	res, last, err := computeBench(filepath.Join(dir, "second.ramp"))
+	res, meta, err := computeBench(filepath.Join(dir, "second.ramp"))
 	if err != nil {
 		t.Fatal(err)
 	}
 	if n := len(res.Test.Points); n != 19 || res.Missing != 0 {
 		t.Errorf("%d points, %d missing", n, res.Missing)
 	}
-	if first, err := recording.ReadFile(filepath.Join(dir, "first.ramp")); err != nil || first.Outcome != recording.Torn || last.Header.Continues != first.Seal {
-		t.Errorf("the first recording is %+v (%v), the second continues %s", first.Outcome, err, last.Header.Continues)
+	if first, err := recording.ReadFile(filepath.Join(dir, "first.ramp")); err != nil || first.Outcome != recording.Torn || meta.Continues != first.Seal {
+		t.Errorf("the first recording is %+v (%v), the second continues %s", first.Outcome, err, meta.Continues)
 	}
 	for i, p := range res.Test.Points {
 		if want := min(i, 18-i); p.Index != want {

@@ -26,6 +26,7 @@ const syncEveryReal = 500 * time.Millisecond
 type captureOptions struct {
 	profileFlags
 	resultFlags
+	pressFlags
 	ports     []string
 	baud      int
 	out       string
@@ -48,6 +49,7 @@ func runCapture(ctx context.Context, args []string, e env) error {
 	fs.DurationVar(&o.patience, "patience", 20*time.Second, "how long a port that went away may take to come back")
 	fs.Float64Var(&o.speed, "speed", 1, "rehearsal only: the simulated rig's clock factor")
 	o.profileFlags.add(fs, "mill.toml", "the mill's profile")
+	o.pressFlags.add(fs)
 	o.resultFlags.add(fs)
 	if err := parse(fs, args, 0, 0); err != nil {
 		return err
@@ -119,13 +121,17 @@ func (o *captureOptions) check() (mill.System, mill.Pressure, error) {
 
 // header fills in what the wire cannot say, and settles the file's name.
 func (o *captureOptions) header(s site, e env) (recording.Header, error) {
+	presses, err := o.presses(s.tensioner)
+	if err != nil {
+		return recording.Header{}, err
+	}
 	now := e.wall()
 	if o.out == "" {
 		o.out = fileWord(s.tensioner.Name) + "-" + now.Format("20060102-150405") + ".ramp"
 	}
 	h := recording.Header{
 		Program: programVersion(), Started: now, Source: recording.Live, ClockFactor: o.speed,
-		Devices: o.ports, Tensioner: s.tensioner.Name, Band: s.band.Name, Plan: o.plan, Profile: s.text, Parsed: s.profile,
+		Devices: o.ports, Tensioner: s.tensioner.Name, Band: s.band.Name, Plan: o.plan, Presses: presses, Profile: s.text, Parsed: s.profile,
 	}
 	if o.continues == "" {
 		return h, nil

@@ -15,6 +15,7 @@ import (
 
 func runImport(ctx context.Context, args []string, e env) error {
 	var p profileFlags
+	var press pressFlags
 	var plan recording.Plan
 	var out string
 	fs := flags("import", "FILE.txt",
@@ -23,6 +24,7 @@ func runImport(ctx context.Context, args []string, e env) error {
 	fs.IntVar(&plan.Exercise, "exercise", 1, "cycles first that are never fitted")
 	fs.IntVar(&plan.Ramps, "ramps", 0, "cycles expected after them (0 = as many as there are)")
 	p.add(fs, "mill.toml", "the mill's profile")
+	press.add(fs)
 	if err := parse(fs, args, 1, 1); err != nil {
 		return err
 	}
@@ -37,9 +39,13 @@ func runImport(ctx context.Context, args []string, e env) error {
 	if err != nil {
 		return err
 	}
+	presses, err := press.presses(s.tensioner)
+	if err != nil {
+		return err
+	}
 	counts, err := importFile(ctx, in, out, recording.Header{
 		Program: programVersion(), Started: e.wall(), Source: recording.Imported, ClockFactor: 1,
-		Devices: []string{filepath.Base(in)}, Tensioner: s.tensioner.Name, Band: s.band.Name, Plan: plan, Profile: s.text,
+		Devices: []string{filepath.Base(in)}, Tensioner: s.tensioner.Name, Band: s.band.Name, Plan: plan, Presses: presses, Profile: s.text,
 	})
 	if err != nil {
 		return err

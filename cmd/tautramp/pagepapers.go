@@ -9,7 +9,6 @@ import (
 	"slices"
 
 	"tautramp/acquire/mill"
-	"tautramp/acquire/pairing"
 	"tautramp/acquire/recording"
 	"tautramp/analyze"
 	"tautramp/analyze/estimate"
@@ -70,7 +69,8 @@ func openPapers(r io.Reader) (page.Papers, error) {
 		return page.Papers{}, err
 	}
 	res, err := gauge.Evaluate(bench.Test(rec.Seal))
-	return benchPapers(res, rec, h.Bench.Tested+h.Started.Format(" 2006-01-02 15:04"), err)
+	name = h.Bench.Tested + h.Started.Format(" 2006-01-02 15:04")
+	return benchPapers(res, benchMeta(name, []*recording.Recording{rec}, bench.Lost()), err)
 }
 
 // papersOf computes a recording's result. A recording that gives none has a
@@ -180,8 +180,8 @@ func (o *pageOptions) benchTest(ctx context.Context, order page.Order, e env) (p
 	if testErr != nil && !onlyAlarm(testErr) {
 		return page.Papers{}, explained(testErr)
 	}
-	res, rec, err := computeBench(b.out)
-	papers, err := benchPapers(res, rec, filepath.Base(b.out), err)
+	res, meta, err := computeBench(b.out)
+	papers, err := benchPapers(res, meta, err)
 	if alarm, ok := errors.AsType[*alarmError](testErr); ok {
 		papers.Alarm = alarm.text
 	}
@@ -189,12 +189,11 @@ func (o *pageOptions) benchTest(ctx context.Context, order page.Order, e env) (p
 }
 
 // benchPapers are the papers of a bench test.
-func benchPapers(res *gauge.Result, rec *recording.Recording, name string, err error) (page.Papers, error) {
+func benchPapers(res *gauge.Result, meta report.Meta, err error) (page.Papers, error) {
 	if err != nil {
-		return page.Papers{Name: name}, explained(err)
+		return page.Papers{Name: meta.File}, explained(err)
 	}
-	meta := reportMeta(name, rec, &pairing.Set{})
-	papers := page.Papers{Name: name, Seal: rec.Seal, Verdict: res.Verdict.Outcome.String(), Own: paperwork{rec: rec},
+	papers := page.Papers{Name: meta.File, Seal: meta.Seal, Verdict: res.Verdict.Outcome.String(), Own: paperwork{meta: meta},
 		Sheet: func(w io.Writer, _ mill.System) error { return report.BenchHTML(w, res, meta) },
 		Plot:  func(w io.Writer, _ mill.System) error { return report.BenchSVG(w, res) }}
 	papers.Says = fmt.Sprintf("%s against %s, %s", res.Test.Instruments.Tested.Name, res.Test.Instruments.Reference.Name, res.Test.Plan.Name)

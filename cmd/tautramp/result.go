@@ -31,6 +31,7 @@ type resultFlags struct {
 	svg    string
 	png    string
 	plot   string
+	record string // of the tested instrument; bench tests only
 }
 
 func (r *resultFlags) add(fs *pflag.FlagSet) {
@@ -42,6 +43,7 @@ func (r *resultFlags) add(fs *pflag.FlagSet) {
 	fs.StringVar(&r.pairs, "pairs", "", "write every pair with its phase and cycle to this file (- for the screen)")
 	fs.StringVar(&r.svg, "svg", "", "write a plot as SVG to this file")
 	fs.StringVar(&r.png, "png", "", "write a plot as PNG to this file")
+	fs.StringVar(&r.record, "record", "", "bench test: write the record of the tested instrument, with its corrections, to this .toml file")
 	fs.StringVar(&r.plot, "plot", string(report.PlotLoop), "which plot --svg and --png show: "+plotNames())
 }
 
@@ -75,6 +77,14 @@ func (r *resultFlags) check() (mill.System, mill.Pressure, error) {
 			return "", target, &usageError{fmt.Sprintf("--target: %s is no band stress to set a band to", r.target)}
 		}
 		target.Quantity = q
+	}
+	if r.record != "" {
+		if filepath.Ext(r.record) != ".toml" {
+			return "", target, &usageError{fmt.Sprintf("--record %s: the name of an instrument record ends in .toml", r.record)}
+		}
+		if err := refuseExisting(r.record); err != nil {
+			return "", target, err
+		}
 	}
 	return system, target, checkOutputs(r.outputs())
 }
@@ -135,14 +145,20 @@ func reportMeta(path string, rec *recording.Recording, set *pairing.Set) report.
 		Started: rec.Header.Started, Imported: rec.Header.Source == recording.Imported, ClockFactor: rec.Header.ClockFactor, Continues: rec.Header.Continues,
 		Notes: append([]string(nil), set.Warnings...),
 	}
-	for _, c := range set.Counters {
+	meta.Notes = append(meta.Notes, lostNotes(set.Counters)...)
+	meta.Notes = append(meta.Notes, notConfirmed(rec)...)
+	return meta
+}
+
+// lostNotes says what went missing on the way.
+func lostNotes(counters []pairing.Counters) (notes []string) {
+	for _, c := range counters {
 		if c.Lost > 0 || c.Rejected > 0 || c.Restarts > 0 {
-			meta.Notes = append(meta.Notes, fmt.Sprintf("device %d: %d lines lost (%d by its own count), %d refused, %d restarts",
+			notes = append(notes, fmt.Sprintf("device %d: %d lines lost (%d by its own count), %d refused, %d restarts",
 				c.Device+1, c.Lost, c.DeviceSaid, c.Rejected, c.Restarts))
 		}
 	}
-	meta.Notes = append(meta.Notes, notConfirmed(rec)...)
-	return meta
+	return notes
 }
 
 // notConfirmed is what the operator was asked to confirm and did not.
@@ -165,17 +181,25 @@ func (r *resultFlags) write(res *analyze.Result, meta report.Meta, system mill.S
 		}
 	}
 	plot := report.Plot(r.plot)
-	for _, out := range []struct {
-		path  string
-		write func(io.Writer) error
-	}{
+	return writeAll([]output{
 		{r.json, func(w io.Writer) error { return report.JSON(w, res, meta) }},
 		{r.csv, func(w io.Writer) error { return report.CSV(w, res, meta, system) }},
 		{r.pairs, func(w io.Writer) error { return report.PairsCSV(w, res, system) }},
 		{r.html, func(w io.Writer) error { return report.HTML(w, res, meta, system) }},
 		{r.svg, func(w io.Writer) error { return report.SVG(w, res, meta, plot, system) }},
 		{r.png, func(w io.Writer) error { return report.PNG(w, res, meta, plot, system) }},
-	} {
+	}, e)
+}
+
+// output is one file that a result goes to; its path is "" where nobody asked
+// for it.
+type output struct {
+	path  string
+	write func(io.Writer) error
+}
+
+func writeAll(outputs []output, e env) error {
+	for _, out := range outputs {
 		if out.path == "" {
 			continue
 		}

@@ -48,6 +48,9 @@ type rigOptions struct {
 	links      []string
 	log        string
 	bench      rigBench
+	low        string
+	steps      int
+	presses    bool
 	faults     []string
 
 	thermometers bool
@@ -98,6 +101,9 @@ func (o *rigOptions) add(fs *pflag.FlagSet) {
 	fs.Float64Var(&o.speed, "speed", 1, "clock factor; give capture the same")
 	fs.StringArrayVar(&o.tcp, "tcp", nil, "serve on this address instead of a pseudo-terminal, such as 127.0.0.1:7117; once for each board")
 	fs.StringArrayVar(&o.links, "link", nil, "fixed name for the port, a link to it; once for each board")
+	fs.StringVar(&o.low, "low", "", "pressure at the low end, where the band is slack, such as \"20 psi\"")
+	fs.IntVar(&o.steps, "steps", 8, "of --drive stairs, to the top")
+	fs.BoolVar(&o.presses, "presses", false, "the operator presses the switch near the end of each wait, on steps and at both ends")
 	o.bench.add(fs)
 	fs.StringArrayVar(&o.faults, "fault", nil, "something wrong with it, KIND=SIZE with the size in SI, such as \"stick-slip=0.05\"; give it again for another; \"list\" shows the kinds")
 	fs.StringVar(&o.log, "log", "", "write the lines as a memory card would hold them to this file, and stop")
@@ -124,7 +130,7 @@ func (o *rigOptions) build(e env) (*simrig.Rig, error) {
 	c := simrig.Config{
 		Profile: s.profile, Tensioner: s.tensioner.Name, Band: s.band.Name, Seed: o.seed,
 		Law:    simrig.Law{Kind: simrig.LawKind(o.law)},
-		Drive:  simrig.Drive{Shape: simrig.Shape(o.shape), Exercise: noneIfZero(o.exercise), Ramps: noneIfZero(o.ramps), Repeat: true},
+		Drive:  simrig.Drive{Shape: simrig.Shape(o.shape), Exercise: noneIfZero(o.exercise), Ramps: noneIfZero(o.ramps), Repeat: true, Steps: o.steps, Presses: o.presses},
 		Boards: boards,
 	}
 	if err := o.pace(s.tensioner, &c.Drive); err != nil {

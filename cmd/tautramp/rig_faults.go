@@ -59,6 +59,13 @@ func (o *rigOptions) pace(t mill.Tensioner, d *simrig.Drive) error {
 		}
 		*q.to = quantity.SI
 	}
+	if o.low != "" {
+		low, err := mill.ParseQuantity(o.low, mill.DimPressure)
+		if err != nil {
+			return &usageError{"--low: " + err.Error()}
+		}
+		d.LowPa = low.SI
+	}
 	if d.TopSI != 0 {
 		d.TopSI = t.Rising(d.TopSI)
 	}

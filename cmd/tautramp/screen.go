@@ -26,6 +26,7 @@ type screen struct {
 	reply   visit.Reply
 	limitSI float64
 	phase   string
+	mark    string
 	alarm   visit.AlarmKind
 	drawnAt time.Duration
 	open    bool // an unfinished line stands on the terminal
@@ -56,6 +57,10 @@ func (s *screen) draw(now visit.Status) {
 	if now.Reply.Kind != s.reply.Kind || now.Reply.At != s.reply.At {
 		s.reply = now.Reply
 		s.line(s.answer(now.Reply))
+	}
+	if now.Mark != s.mark {
+		s.mark = now.Mark
+		s.line("PRESS at " + now.Mark)
 	}
 	phase := fmt.Sprintf("%s %d", now.Phase, now.Cycle)
 	realGap := time.Duration(float64(now.At-s.drawnAt) / s.factor)
@@ -102,6 +107,12 @@ func (s *screen) answer(r visit.Reply) string {
 	text := string(r.Kind)
 	if r.Kind == visit.MarkTaken {
 		text = fmt.Sprintf("mark %d taken", r.Number)
+		if r.Mark != "" {
+			text = r.Mark + " taken"
+		}
+	}
+	if math.IsNaN(r.SettingSI) {
+		return "key: " + text
 	}
 	return "key: " + text + ", at " + s.show(r.SettingSI, s.role, 0, "gauge")
 }

@@ -51,11 +51,11 @@ func steppedRehearsal(t *testing.T, steps int, presses recording.Presses) string
 // alone: 724 psi rising and 621 falling for 9,500 psi of band stress, the
 // invented demo mill's.
 func TestASteppedSettingGivesTheTrueSettings(t *testing.T) {
-	presses, err := steppedPresses(stepFlags{step: "20 psi", from: "20 psi", top: "860 psi", doubt: "1 psi"}, mill.Tensioner{SetBy: mill.SetByPressure})
+	presses, err := steppedPresses(stepFlags{step: "40 psi", from: "20 psi", top: "860 psi", doubt: "1 psi"}, mill.Tensioner{SetBy: mill.SetByPressure})
 	if err != nil {
 		t.Fatal(err)
 	}
-	ramp := steppedRehearsal(t, 42, presses)
+	ramp := steppedRehearsal(t, 21, presses)
 	res, _, err := computeResult(ramp, mill.Pressure{})
 	if err != nil {
 		t.Fatal(err)

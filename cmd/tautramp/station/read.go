@@ -6,6 +6,7 @@ import (
 	"time"
 
 	"tautramp/acquire/mill"
+	"tautramp/acquire/pairing"
 	"tautramp/acquire/recording"
 	"tautramp/analyze/estimate"
 	"tautramp/analyze/gauge"
@@ -21,6 +22,9 @@ func Read(recordings ...*recording.Recording) (*Bench, error) {
 	b, err := New(recordings[0].Header)
 	if err != nil {
 		return nil, err
+	}
+	if recordings[0].Header.Continues != "" {
+		return nil, fmt.Errorf("%w: it goes on from an earlier recording, which is not here", ErrNotNext)
 	}
 	for i, rec := range recordings {
 		if i > 0 {
@@ -38,17 +42,25 @@ func Read(recordings ...*recording.Recording) (*Bench, error) {
 	return b, nil
 }
 
+// readParts is the part of a division to which a pointer is brought to a mark by
+// eye. Judgement.
+const readParts = 5
+
 // Test is what was captured by now, for gauge.Evaluate. seal is that of the
 // last recording.
 func (b *Bench) Test(seal string) gauge.Test {
+	tested := instrument(b.first.Parsed, b.about.Tested)
 	t := gauge.Test{
 		Plan: b.plan, Points: b.points, ZeroBefore: b.before, ZeroAfter: b.after, Seal: seal,
 		Instruments: gauge.Instruments{
-			Tested: instrument(b.first.Parsed, b.about.Tested), Reference: instrument(b.first.Parsed, b.about.Reference),
+			Tested: tested, Reference: instrument(b.first.Parsed, b.about.Reference),
 			TestedCountSI: b.count(b.roles.tested), ReferenceCountSI: b.count(b.roles.reference),
 		},
 		Conditions: b.conditions(),
 		Limit:      b.about.Limit, Rule: b.about.Rule, NextDue: b.about.NextDue,
+	}
+	if !b.plan.IndicatedStreams() {
+		t.Instruments.TestedCountSI = tested.Division.SI / readParts
 	}
 	if b.first.Parsed != nil {
 		t.Limits = b.first.Parsed.GaugeLimits
@@ -85,3 +97,6 @@ func (b *Bench) meanCelsius() estimate.Estimate {
 	return estimate.Estimate{Value: m, Random: sd, System: system, DoF: math.Max(1, float64(len(all)-1)),
 		Method: fmt.Sprintf("mean of %d points", len(all))}
 }
+
+// Lost is what went missing on the way, by device of the latest recording.
+func (b *Bench) Lost() []pairing.Counters { return b.stream.Counters() }

@@ -97,7 +97,12 @@ func (k *tracker) low() bool {
 }
 
 // closesAt is the setting below which a cycle closes at rest.
-func (k *tracker) closesAt() float64 { return k.cycle.start + max(closedRest*k.rise(), k.band) }
+func (k *tracker) closesAt() float64 {
+	if k.site.stepped { // somebody stands still on every step: only the first one again ends it
+		return k.cycle.start + 1e-6*k.site.limit
+	}
+	return k.cycle.start + max(closedRest*k.rise(), k.band)
+}
 
 // paceBounds are the slowest and the fastest good pace, setting per second.
 func (k *tracker) paceBounds() (slow, fast float64) {

@@ -44,6 +44,11 @@ func (w *watch) button(wire []byte) []recording.Event {
 	if !long {
 		return nil
 	}
+	if w.cfg.Header.Presses.As != "" { // the reader takes both back
+		w.tracker.zero.undo()
+		w.answer(w.tracker.zero.undo(), 0)
+		return nil
+	}
 	return w.takeBack("long press: its own mark", "long press")
 }
 

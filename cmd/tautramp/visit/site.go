@@ -26,6 +26,7 @@ type site struct {
 
 	modulus float64
 	gauge   float64 // L, m
+	stepped bool    // the setting is known at presses alone
 }
 
 // words are what people do to one kind of tensioner.
@@ -63,7 +64,8 @@ func newSite(h recording.Header) (site, error) {
 	nan := math.NaN()
 	s := site{tensioner: t, limit: t.LimitSI(), slack: slackOf(t.SetBy), unit: t.SettingLimit.Unit, words: wordsOf(t.SetBy),
 		target: orNaN(b.Target.SI), full: nan, half: nan, slope: nan, lift: nan,
-		modulus: b.Modulus.SI, gauge: h.Parsed.Rig.GaugeLength.SI}
+		modulus: b.Modulus.SI, gauge: h.Parsed.Rig.GaugeLength.SI,
+		stepped: h.Presses.As == recording.PressStep}
 	area, net := t.GeometryAreaM2(), b.NetAreaM2()
 	if !(area > 0) {
 		return s, nil

@@ -25,6 +25,12 @@ func (w *watch) answer(kind ReplyKind, number int) {
 	if w.fresh(0) {
 		w.reply.SettingSI = w.latest[0].Value
 	}
+	if kind == MarkTaken { // the entry is not paired yet: this press is still the next one
+		_, w.reply.Mark = w.live.Presses()
+	}
+	if w.tracker.site.stepped { // it is the last press's, not this one's
+		w.reply.SettingSI = math.NaN()
+	}
 }
 
 // fresh reports that the newest reading of a channel is good and of now.
@@ -60,6 +66,7 @@ func (w *watch) status() Status {
 	}
 	var away bool
 	s.Link, away = w.links()
+	w.stepped(&s)
 	said := s.Next
 	if s.Alarm, s.AlarmText = w.alarms.gravest(); s.Alarm != NoAlarm {
 		s.Next = "STOP - " + k.site.words.release
@@ -87,5 +94,19 @@ func (w *watch) figures(s *Status) {
 	if setting && extension {
 		s.StretchM, s.StressPa = w.tracker.stretchM(), w.tracker.stressPa()
 		s.RateSI = orElse(w.tracker.shownRate(), s.RateSI)
+	}
+}
+
+// stepped is what differs where presses stand for something: the next mark, and
+// where they tell the setting that it jumps, and has no rate.
+func (w *watch) stepped(s *Status) {
+	var standing int
+	standing, s.Mark = w.live.Presses()
+	if !w.tracker.site.stepped {
+		return
+	}
+	s.RateSI, s.PaceSI, s.Pace = math.NaN(), math.NaN(), ""
+	if standing == 0 && w.latest[1].Status != 0 {
+		s.Next = "set " + s.Mark + ", hold still, then press: there the steps begin"
 	}
 }

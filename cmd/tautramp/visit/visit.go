@@ -86,6 +86,7 @@ type Reply struct {
 	At        time.Duration // when; tells one reply from the next
 	SettingSI float64       // then; NaN when it was not known
 	Number    int           // of marks that stand, for MarkTaken
+	Mark      string        // what the press stands for, where the recording declares it
 }
 
 // Status is all that a screen shows. Unknown numbers are NaN. A number is
@@ -115,6 +116,7 @@ type Status struct {
 	AlarmText string
 	Next      string // what to do next, one sentence without figures
 	Reply     Reply  // to the last key
+	Mark      string // what the next press stands for; "" where nothing is declared
 	Done      bool
 	Simulated bool // a board says that what it measures is made up
 }
