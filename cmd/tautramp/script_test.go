@@ -169,7 +169,8 @@ func runReadmeLine(t *testing.T, dir, line string) {
 	t.Logf("$ %s\n%s", line, out)
 }
 
-// startInBackground starts a command that ends with &, and waits for its port.
+// startInBackground starts a command that ends with &, and waits for the port
+// that its --link names.
 func startInBackground(t *testing.T, cmd *exec.Cmd, dir string) {
 	t.Helper()
 	if err := cmd.Start(); err != nil {
@@ -181,8 +182,9 @@ func startInBackground(t *testing.T, cmd *exec.Cmd, dir string) {
 		}
 		cmd.Wait() // it was killed: its error says only that
 	})
+	link := cmd.Args[slices.Index(cmd.Args, "--link")+1]
 	for end := time.Now().Add(20 * time.Second); ; time.Sleep(10 * time.Millisecond) {
-		if _, err := os.Stat(dir + "/band-port"); err == nil {
+		if _, err := os.Stat(dir + "/" + link); err == nil {
 			return
 		}
 		if time.Now().After(end) {
