@@ -9,7 +9,6 @@ import (
 
 	"tautramp/acquire/mill"
 	"tautramp/analyze"
-	"tautramp/analyze/estimate"
 )
 
 //go:embed card.html
@@ -133,15 +132,15 @@ func aimed(r *analyze.Result, d analyze.Direction) analyze.TargetSetting {
 
 func newCard(r *analyze.Result, m Meta, o CardOrder, s mill.System) card {
 	u, v := unitsFor(r.Setup.Tensioner, s), unitsFor(r.Setup.Tensioner, otherSystem(s))
-	rows := []cardRow{rowFor(r, o, u, v)}
+	rows := []cardRow{rowFor(r, r.Dial, o, u, v)}
 	for _, each := range o.Others {
-		rows = append(rows, rowFor(each, o, u, v))
+		rows = append(rows, rowFor(each, r.Dial, o, u, v))
 	}
 	return card{
 		Style: template.CSS(cardCSS), Title: named(r.Setup.Tensioner.Name, "tensioner of no name"), Mill: named(r.Setup.Mill.Name, ""),
 		Rehearsal: rehearsalText(r, m), Direction: o.Direction, Rule: cardRule(o.Direction),
 		Rows: rows, OnFile: onFile(r, o, u),
-		Limit: bothUnits(r.Setup.LimitSI, u.setting, v.setting), ReadOn: "the transducer that measured it only", HeldBy: heldBy(r, o.Hold),
+		Limit: bothUnits(r.Setup.LimitSI, u.setting, v.setting), ReadOn: readOn(r, o.Direction), HeldBy: heldBy(r, o.Hold),
 		Measured: startedText(m), Doubts: cardDoubts(r, o), Void: cardVoid(), Cautions: cardCautions(),
 		Recording: m.base(), Seal: m.seal(),
 	}
@@ -154,7 +153,7 @@ func otherSystem(s mill.System) mill.System {
 	return mill.SI
 }
 
-func rowFor(r *analyze.Result, o CardOrder, u, v units) cardRow {
+func rowFor(r *analyze.Result, dial analyze.Dial, o CardOrder, u, v units) cardRow {
 	at := aimed(r, o.Direction)
 	all := at.TrueSI
 	if !all.Known() {
@@ -165,26 +164,26 @@ func rowFor(r *analyze.Result, o CardOrder, u, v units) cardRow {
 		Band: named(r.Setup.Band.Name, "band of no name"), Stress: bothUnits(r.Setup.TargetPa, u.stress, v.stress),
 		Number: number, Other: other.short(), Drift: driftText(r, o, u, v), Made: madeText(r),
 	}
-	if number.PlusMinus != "" {
+	if onDial := dial.Read(o.Direction, all); onDial.Reading.Known() {
+		row.Number = dialFigure(onDial.Reading, dial)
+		row.Other = number.short() + " on the transducer, " + other.short()
+	}
+	if number := row.Number; number.PlusMinus != "" {
 		row.Between = fmt.Sprintf("%s to %s %s, counting all doubt", number.Low, number.High, number.Unit)
 	}
-	switch reset := figureOf(r.ResetSI, u.setting); {
+	switch reset := r.ResetSI; {
 	case o.Direction == analyze.Falling:
-		past := upTo(r.LoadPastSI(), u.setting)
-		row.First = fmt.Sprintf("First load up to %s, never past the limit.", past)
-		row.Overshot = fmt.Sprintf("Went below it? Load up to %s again, then come down.", past)
-	case reset.Why == "":
-		row.Overshot = fmt.Sprintf("Went past it? Drop to %s (%s), then come up again.", reset.short(), figureOf(r.ResetSI, v.setting).short())
+		past := r.LoadPastSI()
+		_, past.Value = past.Interval95() // an amount to be exceeded
+		text := readAt(dial, analyze.Rising, past, u, v)
+		row.First = fmt.Sprintf("First load up to %s, never past the limit.", text)
+		row.Overshot = fmt.Sprintf("Went below it? Load up to %s again, then come down.", text)
+	case reset.Known():
+		row.Overshot = fmt.Sprintf("Went past it? Drop to %s, then come up again.", readAt(dial, analyze.Falling, reset, u, v))
 	default:
 		row.Overshot = "Went past it? Release well below the number, then come up again."
 	}
 	return row
-}
-
-// upTo is the upper end of an estimate's interval: an amount to be exceeded.
-func upTo(e estimate.Estimate, u unit) string {
-	_, high := e.Interval95()
-	return u.with(plain(u.show(high), 3))
 }
 
 func bothUnits(si float64, u, v unit) string {

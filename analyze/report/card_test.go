@@ -148,3 +148,31 @@ func TestFileSaysWhichBandsLiePastTheLimit(t *testing.T) {
 		t.Error(text)
 	}
 }
+
+// comparedDial is a dial of the mill that shows 2 % too much, one mark every
+// 20 psi.
+func comparedDial() analyze.Dial {
+	line := estimate.Line{A: 0, B: 1.02 / psi, ResidualSD: 2, DoF: 4, N: 6, VarA: 1, VarB: 1e-12 / psi / psi}
+	way := analyze.DialLine{Line: line, SpreadDoF: 4, LowSI: 300 * psi, HighSI: 850 * psi}
+	return analyze.Dial{Name: "panel dial", Unit: "psi", Graduation: 20, Rising: way, Falling: way}
+}
+
+func TestCardIsReadOnTheMillsOwnDial(t *testing.T) {
+	r := t1(t)
+	r.Dial = comparedDial()
+	r.Dial.AtRising = r.Dial.Read(analyze.Rising, r.AtRising.TrueSI)
+	text, err := cardOfT1(t, r, CardOrder{Direction: analyze.Rising}, mill.US)
+	if err != nil {
+		t.Fatal(err)
+	}
+	// 1.02 x 724.5 = 739, to the nearest 20; 1.02 x 570 = 581.
+	for _, want := range []string{"740 <span class=\"unit\">psi on panel dial", "Drop to 580 psi on panel dial", "on the transducer", "to its graduation"} {
+		if !strings.Contains(text, want) {
+			t.Errorf("the card lacks %q", want)
+		}
+	}
+	r.Dial = analyze.Dial{}
+	if text, err = cardOfT1(t, r, CardOrder{Direction: analyze.Rising}, mill.US); err != nil || !strings.Contains(text, "the transducer only") {
+		t.Errorf("without a dial: %v", err)
+	}
+}
