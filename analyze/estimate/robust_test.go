@@ -79,3 +79,13 @@ func TestRobustLinesPassThroughAnExactMajority(t *testing.T) {
 		t.Errorf("a line: %+v, %v", r, err)
 	}
 }
+
+// All readings at one value, as a display shows them: the line is flat, and
+// nothing is divided by what is not there.
+func TestTheilSenOfAConstantWithTies(t *testing.T) {
+	x, y := []float64{1, 1, 1, 2, 2, 2}, []float64{5, 5, 5, 5, 5, 5}
+	m, err := TheilSen(x, y)
+	if err != nil || m.Slope != 0 || m.Low != 0 || m.High != 0 || m.A != 5 {
+		t.Errorf("%+v, %v", m, err)
+	}
+}

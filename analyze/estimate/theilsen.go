@@ -28,7 +28,8 @@ func TheilSen(x, y []float64) (MedianSlope, error) {
 	}
 	m := MedianSlope{Slope: middle(slopes)}
 	n := float64(len(y))
-	spread := math.Sqrt((n*(n-1)*(2*n+5) - ties(x) - ties(y)) / 18)
+	// Ties in both take the variance below zero where hardly a pair tells.
+	spread := math.Sqrt(math.Max(0, n*(n-1)*(2*n+5)-ties(x)-ties(y)) / 18)
 	reach := distuv.UnitNormal.Quantile(0.975) * spread
 	all := float64(len(slopes))
 	m.Low = slopes[int(math.Max(math.RoundToEven((all-reach)/2)-1, 0))]

@@ -129,7 +129,7 @@ func quoteJS(s string) string { return "`" + s + "`" }
 
 // runHere runs a command line in this process until the test ends, and returns
 // the first line that it prints.
-func runHere(t *testing.T, args ...string) string {
+func runHere(t testing.TB, args ...string) string {
 	t.Helper()
 	ctx, stop := context.WithCancel(context.Background())
 	out, in := io.Pipe()
@@ -160,7 +160,7 @@ func runHere(t *testing.T, args ...string) string {
 
 // testLog is a stderr that shows in the test's log.
 type testLog struct {
-	t    *testing.T
+	t    testing.TB
 	what string
 }
 

@@ -16,6 +16,7 @@ import (
 	"tautramp/acquire/port"
 	"tautramp/acquire/recording"
 	"tautramp/analyze/report"
+	"tautramp/cmd/tautramp/page"
 	"tautramp/cmd/tautramp/visit"
 )
 
@@ -27,6 +28,8 @@ type captureOptions struct {
 	profileFlags
 	resultFlags
 	pressFlags
+	serveFlags
+	page      bool
 	ports     []string
 	baud      int
 	out       string
@@ -48,6 +51,8 @@ func runCapture(ctx context.Context, args []string, e env) error {
 	fs.IntVar(&o.plan.Ramps, "ramps", 3, "cycles to fit; it ends when they are closed (0 = until Ctrl-C)")
 	fs.DurationVar(&o.patience, "patience", 20*time.Second, "how long a port that went away may take to come back")
 	fs.Float64Var(&o.speed, "speed", 1, "rehearsal only: the simulated rig's clock factor")
+	fs.BoolVar(&o.page, "page", false, "show the visit in a browser too, as tautramp page does")
+	o.serveFlags.add(fs)
 	o.profileFlags.add(fs, "mill.toml", "the mill's profile")
 	o.pressFlags.add(fs)
 	o.resultFlags.add(fs)
@@ -82,9 +87,42 @@ func (o *captureOptions) run(ctx context.Context, e env) error {
 	if _, err := fmt.Fprintln(e.stderr, keyHelp); err != nil {
 		return err
 	}
-	visitErr := record(ctx, recordJob{header: header, path: o.out, devices: o.devices(), system: system, patience: o.patience}, e)
+	job := recordJob{header: header, path: o.out, devices: o.devices(), system: system, patience: o.patience}
+	visitErr := o.recordAndShow(ctx, job, e)
 	return finish(o.out, visitErr, o.resultFlags, system, target, e)
 }
+
+// recordAndShow records, and lets a page look on and press where one is wanted.
+func (o *captureOptions) recordAndShow(ctx context.Context, job recordJob, e env) error {
+	if !o.page {
+		return record(ctx, job, e)
+	}
+	visitErr := errNotRun
+	deps := func(access page.Access) page.Deps {
+		return page.Deps{Program: programVersion(), System: job.system, Access: access, OneVisit: true,
+			Mill: func() ([]byte, error) { return job.header.Profile, nil },
+			Bell: func() { fmt.Fprint(e.stderr, "\a") }, // lost at worst
+			Visit: func(ctx context.Context, order page.Order) (page.Papers, error) {
+				job.said, job.show = order.Said, order.Show
+				visitErr = record(ctx, job, e)
+				return page.Papers{}, visitErr
+			}}
+	}
+	quiet := e
+	quiet.stdout = e.stderr // the result alone goes to stdout
+	server, err := o.start(ctx, deps, quiet)
+	if err != nil {
+		return err
+	}
+	_, runErr := server.Run(page.Order{Kind: page.Ramps, Tensioner: job.header.Tensioner, Band: job.header.Band, Ports: o.ports, Plan: job.header.Plan})
+	if err := server.close(); err != nil || visitErr == errNotRun {
+		return errors.Join(visitErr, runErr, err)
+	}
+	return visitErr
+}
+
+// errNotRun stands until a visit has ended.
+var errNotRun = errors.New("the visit was not run")
 
 // finish computes the result of what was recorded. After an alarm it does so
 // too, and what is said last is the alarm.

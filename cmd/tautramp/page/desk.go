@@ -189,7 +189,8 @@ func siteOf(deps Deps, o Order) siteView {
 	}
 	v.Mill = p.Mill.Name
 	if t, err := p.FindTensioner(o.Tensioner); err == nil {
-		v.Tensioner, v.Role, v.Limit, v.Screw = t.Name, t.SettingRole(), number(t.SettingLimit.SI), t.SetBy != mill.SetByPressure
+		v.Tensioner, v.Role, v.Limit, v.Screw = t.Name, t.SettingRole(), number(t.LimitSI()), t.SetBy != mill.SetByPressure
+		v.Shorter = t.FallsWithLoad()
 	}
 	if b, err := p.FindBand(o.Band); err == nil {
 		v.Band = b.Name

@@ -27,18 +27,23 @@ func (s *Server) live(w http.ResponseWriter, r *http.Request) {
 		case <-r.Context().Done():
 			return
 		case <-s.desk.over.Done():
+			s.sendNew(&line, v) // how it ended
 			return
 		case <-beat.C:
 			line.send("beat", []byte("{}"))
 		case <-v.wake:
-			for t := range topics {
-				if text := s.hub.next(v, t); text != nil {
-					line.send(t.String(), text)
-				}
-			}
+			s.sendNew(&line, v)
 		}
 	}
 	s.hub.dropped.Add(1)
+}
+
+func (s *Server) sendNew(line *eventLine, v *viewer) {
+	for t := range topics {
+		if text := s.hub.next(v, t); text != nil {
+			line.send(t.String(), text)
+		}
+	}
 }
 
 // eventLine writes events, each within lineWait. Texts hold no line ends: they

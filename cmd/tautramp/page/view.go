@@ -107,10 +107,11 @@ type siteView struct {
 	Mill      string    `json:"mill"`
 	Tensioner string    `json:"tensioner"`
 	Band      string    `json:"band"`
-	Role      mill.Role `json:"role"`   // of the setting
-	Limit     number    `json:"limit"`  // of the setting
-	Target    number    `json:"target"` // band stress
-	Screw     bool      `json:"screw"`  // a lower turn may have to be declared
+	Role      mill.Role `json:"role"`    // of the setting
+	Limit     number    `json:"limit"`   // of the setting
+	Target    number    `json:"target"`  // band stress
+	Screw     bool      `json:"screw"`   // a lower turn may have to be declared
+	Shorter   bool      `json:"shorter"` // the setting is how much shorter a spring is than without a load
 	Vent      bool      `json:"vent"`
 	Tested    string    `json:"tested"` // of a bench test
 	Reference string    `json:"reference"`

@@ -17,6 +17,13 @@ const tables = {
     ["bore", "Bore", "inside diameter of one cylinder", "2.5 in", { draw: "bore", only: "pressure" }],
     ["travel_ratio", "Travel ratio", "cylinder travel / wheel travel; 1 where the cylinders lift the wheel itself", "1", { number: true, only: "pressure", more: true }],
     ["lifted_weight", "Lifted weight", "of wheel, shaft and slide; may be left out", "820 lbf", { only: "pressure", draw: "spans", more: true }],
+    ["screw.diameter", "Screw: diameter", "outside its thread", "24 mm", { only: "torque" }],
+    ["screw.lead", "Screw: lead", "how far one full turn moves it", "5 mm", { only: "torque" }],
+    ["screw.collar_radius", "Screw: collar radius", "mean radius of the washer that the nut turns on", "14 mm", { only: "torque", more: true }],
+    ["turns.lead", "Lead", "how far one full turn moves the screw", "5 mm", { only: "turns" }],
+    ["spring.under_load", "Under load the spring gets", "pressed together: shorter; drawn apart: longer", "", { words: ["", "shorter", "longer"], only: "spring" }],
+    ["spring.free_length", "Spring: free length", "with the wheel let down", "80 mm", { only: "spring" }],
+    ["spring.rate", "Spring: rate", "of one spring; may be left out", "1.2 kN/mm", { only: "spring", more: true }],
     ["hold", "While the mill runs, the oil is", "maintained: pump or accumulator keeps the pressure up. locked: a valve shuts it in.", "", { words: ["", "maintained", "locked"], only: "pressure" }],
     ["note", "Remark", "for the report", "", { more: true }],
   ] },
@@ -93,21 +100,25 @@ function entry(box, key, t, values, path, i) {
     make("summary", {}, values.name || (t.one ? t.title : "new " + t.title.toLowerCase())),
     own,
     fields.filter((f) => !f[4]?.more).map((f) => field(box, values, path, f)),
-    fields.some((f) => f[4]?.more) && make("details", { class: "more", open: fields.some((f) => f[4]?.more && values[f[0]]) }, make("summary", {}, "more, if it is known"), fields.filter((f) => f[4]?.more).map((f) => field(box, values, path, f))),
+    fields.some((f) => f[4]?.more) && make("details", { class: "more", open: fields.some((f) => f[4]?.more && f[0].split(".").reduce((v, k) => v?.[k], values)) }, make("summary", {}, "more, if it is known"), fields.filter((f) => f[4]?.more).map((f) => field(box, values, path, f))),
     !t.one && draft[key].length > 1 && make("button", { type: "button", class: "minor", onclick: () => { draft[key].splice(i, 1); faults = []; paint(box); } }, `Take ${values.name || "this one"} out`));
 }
 
 function field(box, values, path, [key, label, about, example, more = {}]) {
-  const id = (path + "." + key).replaceAll(".", "-"), wrong = faults.filter((f) => f.path === path + "." + key);
+  const id = (path + "." + key).replaceAll(".", "-"), wrong = faults.filter((f) => f.path === path + "." + key || (key.includes(".") && f.path === path + "." + key.split(".")[0]));
+  const [table, leaf] = key.includes(".") ? key.split(".") : ["", key];
+  const holds = table ? values[table] || {} : values;
   const set = (text) => {
-    if (text === "") delete values[key];
-    else values[key] = more.number && text.trim() !== "" && !Number.isNaN(Number(text)) ? Number(text) : text;
+    if (table) values[table] = holds;
+    if (text === "") delete holds[leaf];
+    else holds[leaf] = more.number && text.trim() !== "" && !Number.isNaN(Number(text)) ? Number(text) : text;
+    if (table && !Object.keys(holds).length) delete values[table];
     said = "";
   };
   const common = { id, "aria-describedby": `${id}-about ${id}-fault`, "aria-invalid": wrong.length ? "true" : null };
   const input = more.words
-    ? make("select", { ...common, onchange: (e) => { set(e.target.value); if (key === "set_by") paint(box); } }, more.words.map((w) => make("option", { value: w, selected: (values[key] ?? "") === w }, w || "not known")))
-    : make("input", { ...common, type: "text", value: values[key] ?? "", placeholder: example && `such as ${example}`, autocomplete: "off", oninput: (e) => set(e.target.value) });
+    ? make("select", { ...common, onchange: (e) => { set(e.target.value); if (key === "set_by") paint(box); } }, more.words.map((w) => make("option", { value: w, selected: (holds[leaf] ?? "") === w }, w || "not known")))
+    : make("input", { ...common, type: "text", value: holds[leaf] ?? "", placeholder: example && `such as ${example}`, autocomplete: "off", oninput: (e) => set(e.target.value) });
   return make("div", { class: "field" + (more.draw ? " drawn-field" : "") },
     make("label", { for: id }, label), input, more.draw && drawing(more.draw),
     make("p", { class: "about", id: id + "-about" }, about),

@@ -8,6 +8,10 @@ export function home(box) {
     fill(box, make("h1", {}, "Looking for the program"));
     return;
   }
+  if (desk.oneVisit) {
+    fill(box, make("h1", {}, "The capture has ended"), make("p", {}, "Its result stands where it was started, and in the files that were asked for."));
+    return;
+  }
   const kinds = { ramps: "ramps", face: "other face", verify: "check of the number", bench: "bench test", opened: "opened" };
   const says = make("p", { role: "status" });
   const file = make("input", { type: "file", accept: ".ramp", id: "file", onchange: (e) => upload(e.target.files[0], says) });

@@ -16,7 +16,7 @@ export const here = () => Boolean(state.desk?.run) && state.desk.run.kind !== "b
 function figures(now, run) {
   const stale = Boolean(state.away);
   byId("ramp").classList.toggle("old", stale);
-  byId("settingName").textContent = settingNames[run.role] || "Setting now";
+  byId("settingName").textContent = run.shorter ? "Spring shorter by" : settingNames[run.role] || "Setting now";
   put("setting", stale ? null : now.setting, run.role, 1);
   put("stress", stale ? null : now.stress, "stress", stressStep());
   const known = now.setting != null && !stale, up = known && now.goal != null, down = known && now.low != null;
