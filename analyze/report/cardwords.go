@@ -41,6 +41,10 @@ func cardDoubts(r *analyze.Result, o CardOrder) []string {
 	for _, i := range r.Setup.Overdue {
 		doubts = append(doubts, "The check of "+clean(named(i.Name, "an instrument"), nameLength)+" was overdue.")
 	}
+	for _, w := range r.Warnings {
+		add(w.Code == "instrument-uncorrected", "Instruments not corrected on the bench.")
+		add(w.Code == "instrument-failed" || w.Code == "instrument-undecided", clean(w.Text, textLength))
+	}
 	add(r.Grade == analyze.Service, "The tensioner asks for service: its friction takes more than it should.")
 	add(r.Grade == analyze.Inconclusive, "The friction could not be graded.")
 	return doubts

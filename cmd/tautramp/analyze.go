@@ -16,6 +16,7 @@ func runAnalyze(_ context.Context, args []string, e env) error {
 	fs := flags("analyze", "FILE.ramp", "Computes the result of a recording again, from its raw lines.", e)
 	r.add(fs)
 	other.add(fs)
+	fs.StringVar(&r.instruments, "instruments", "", instrumentsAbout)
 	fs.BoolVar(&schema, "schema", false, "print the JSON Schema of --json and stop")
 	if err := parse(fs, args, 0, 1); err != nil {
 		return err
@@ -46,7 +47,7 @@ func analyzeFile(path string, r resultFlags, other otherBand, system mill.System
 	if other.asked() { // the target is the other band's
 		measuredTarget = mill.Pressure{}
 	}
-	res, meta, err := computeResult(path, measuredTarget)
+	res, meta, err := computeOverridden(path, measuredTarget, r.instruments)
 	if errors.Is(err, errBenchTest) {
 		return analyzeBench(path, r, cautionsShown, e)
 	}

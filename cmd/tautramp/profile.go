@@ -34,10 +34,11 @@ func runProfile(_ context.Context, args []string, e env) error {
 }
 
 // profileFlags choose a mill, a tensioner and a band.
-type profileFlags struct{ mill, tensioner, band string }
+type profileFlags struct{ mill, tensioner, band, instruments string }
 
 func (p *profileFlags) add(fs *pflag.FlagSet, millDefault, about string) {
 	fs.StringVar(&p.mill, "mill", millDefault, about)
+	fs.StringVar(&p.instruments, "instruments", "", instrumentsAbout)
 	fs.StringVar(&p.tensioner, "tensioner", "", "name of the tensioner in mill.toml (needed when there are several)")
 	fs.StringVar(&p.band, "band", "", "name of the band in mill.toml (needed when there are several)")
 }
@@ -55,6 +56,14 @@ func (p *profileFlags) load(e env) (site, error) {
 	var err error
 	if s.text, s.profile, err = readProfile(p.mill); err != nil {
 		return s, err
+	}
+	if p.instruments != "" {
+		if s.text, err = withInstruments(s.text, p.instruments); err != nil {
+			return s, err
+		}
+		if s.profile, err = mill.Parse(s.text); err != nil {
+			return s, fmt.Errorf("%s with %s: %w", p.mill, p.instruments, err)
+		}
 	}
 	if s.tensioner, err = s.profile.FindTensioner(p.tensioner); err != nil {
 		return s, fmt.Errorf("--tensioner: %w", err)

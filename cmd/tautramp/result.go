@@ -32,6 +32,8 @@ type resultFlags struct {
 	png    string
 	plot   string
 	record string // of the tested instrument; bench tests only
+
+	instruments string // analyze: records in the place of the recording's
 }
 
 func (r *resultFlags) add(fs *pflag.FlagSet) {
@@ -111,6 +113,12 @@ func computeResult(path string, target mill.Pressure) (*analyze.Result, report.M
 
 // resultOf analyses a recording that was read; path is its name.
 func resultOf(rec *recording.Recording, path string, target mill.Pressure) (*analyze.Result, report.Meta, error) {
+	return resultBy(rec, path, target, "")
+}
+
+// resultBy is resultOf with the file that instrument records of the recording's
+// profile were replaced from; "" for none.
+func resultBy(rec *recording.Recording, path string, target mill.Pressure, records string) (*analyze.Result, report.Meta, error) {
 	if rec.Header.Bench != nil {
 		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, errBenchTest)
 	}
@@ -120,7 +128,7 @@ func resultOf(rec *recording.Recording, path string, target mill.Pressure) (*ana
 	}
 	res, err := analyze.Analyze(analyze.Input{
 		Profile: rec.Header.Parsed, Tensioner: rec.Header.Tensioner, Band: rec.Header.Band,
-		Target: target, Set: set, Day: measuredOn(rec.Header),
+		Target: target, Set: set, Day: measuredOn(rec.Header), Records: records,
 	})
 	if err != nil {
 		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
