@@ -113,7 +113,7 @@ func TestBudgetSumsToTheTrueStressAndNamesItsParts(t *testing.T) {
 		}
 	}
 	near(t, "root sum of the lines", math.Sqrt(sum), r.AtRising.TrueSI.Std(), 1e-9)
-	for _, name := range []string{"fitted curve", "next ramp against the curve", "modulus of the steel", "gauge length",
+	for _, name := range []string{"fitted curve", "next ramp against the curve", "reading of the setting gauge", "modulus of the steel", "gauge length",
 		"stretch indicator", "setting gauge", "zero", "time alignment"} {
 		if seen[name].StdSI <= 0 {
 			t.Errorf("no line for %q", name)
@@ -127,7 +127,8 @@ func TestBudgetSumsToTheTrueStressAndNamesItsParts(t *testing.T) {
 	// 1 % of the modulus is 1 % of the stretch wanted, which takes T-1 from the
 	// slack lift at 108.7 psi to 724.5 psi.
 	near(t, "modulus line, psi", seen["modulus of the steel"].StdSI/psi, 6.158, 0.01)
-	near(t, "setting gauge line, psi", seen["setting gauge"].StdSI/psi, 3.75/math.Sqrt(3), 1e-6)
+	// A curve within 3.75 psi, seen by a straight line over most of the scale.
+	near(t, "setting gauge line, psi", seen["setting gauge"].StdSI/psi, 3.75/math.Sqrt(3), 0.05)
 }
 
 func TestDoublingTheZerosDoubtChangesOnlyTheZerosLine(t *testing.T) {

@@ -64,7 +64,7 @@ func (r *Result) StressAt(d Direction, settingSI float64) (estimate.Estimate, er
 
 // stressAt is the stress at a setting, by the ramps that reach it.
 func (w *work) stressAt(d Direction, settingSI float64) estimate.Estimate {
-	return w.reaching(d, at(settingSI)).combine(stressFigure(d, settingSI), onePoint, noZero)
+	return w.reaching(d, at(settingSI)).combine(stressFigure(d, settingSI), noZero)
 }
 
 func (r *Result) usable() error {

@@ -43,11 +43,11 @@ func (w *work) chain() {
 		return
 	}
 	c.TravelM = t.WheelTravelM()
-	c.PerRadPa = w.combine(func(r ramp, k constants) float64 { return perRad(r) * k.paPerM() }, wholeLoop, "not a finite number")
+	c.PerRadPa = w.combine(func(r ramp, k constants) float64 { return perRad(r) * k.paPerM() }, "not a finite number")
 	c.LostRad = w.res.Working.HalfSI.Scale(2)
 	c.LostIdle = w.combine(func(r ramp, _ constants) float64 {
 		return (r.zeroM-r.rising.A)/r.rising.B - (r.zeroM-r.falling.A)/r.falling.B
-	}, wholeLoop, noZero)
+	}, noZero)
 	c.BoundRad = w.bound()
 	w.give(c, t)
 	c.expect(t)
@@ -82,7 +82,7 @@ func (w *work) give(c *Chain, t mill.Tensioner) {
 
 // ofLoop is a figure that the length of the band enters, with its doubt.
 func (w *work) ofLoop(of func(loop float64) figure, loop float64) estimate.Estimate {
-	e := w.combine(of(loop), wholeLoop, "not a finite number")
+	e := w.combine(of(loop), "not a finite number")
 	if e.Known() {
 		by := (w.meanOf(of(loop*(1+assumedLoopStd))) - w.meanOf(of(loop*(1-assumedLoopStd)))) / 2
 		e.System = math.Hypot(e.System, by)

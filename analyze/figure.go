@@ -57,11 +57,14 @@ type figure func(r ramp, k constants) float64
 // at is the same setting for every ramp.
 func at(settingSI float64) figure { return func(ramp, constants) float64 { return settingSI } }
 
-// combine is a figure over all fitted ramps. Scatter is the ramps' own, with
-// what one ramp's line leaves open as its floor; what repeats is found by
-// moving each source of doubt up and down by its standard uncertainty and
-// seeing how far the figure follows (JCGM 100, 5.1.3 note 2).
-func (w *work) combine(f figure, of scope, why string) estimate.Estimate {
+// combine is a figure over all fitted ramps: scatter by what differs from ramp to
+// ramp (estimate.Repeat), and what repeats by following each source.
+func (w *work) combine(f figure, why string) estimate.Estimate {
+	return w.doubted(w.repeat(f).Mean, f, inForces, why)
+}
+
+// repeat is a figure over the ramps, with what each ramp's own line leaves open.
+func (w *work) repeat(f figure) estimate.Repeated {
 	values, vars := make([]float64, len(w.ramps)), make([]float64, len(w.ramps))
 	dof := 0.0
 	for i, r := range w.ramps {
@@ -69,32 +72,49 @@ func (w *work) combine(f figure, of scope, why string) estimate.Estimate {
 		vars[i] = withinVar(f, r, w.k)
 		dof += math.Min(r.rising.DoF, r.falling.DoF)
 	}
-	e := estimate.OverRamps(values, vars, dof)
+	return estimate.Repeat(values, vars, dof)
+}
+
+// doubted gives an estimate of a figure what repeats, of the sources that enter
+// up to a stage.
+func (w *work) doubted(e estimate.Estimate, f figure, upTo stage, why string) estimate.Estimate {
 	if !e.Known() || math.IsNaN(e.Value) || math.IsInf(e.Value, 0) {
 		return estimate.Unknown(why)
 	}
 	var parts []estimate.Component
+	e.Flat = 0
 	for _, s := range w.sources {
-		if of == wholeLoop || !s.wholeOnly {
-			parts = append(parts, estimate.Component{Std: w.follow(f, s), DoF: math.Inf(1)})
+		if s.enter > upTo {
+			continue
+		}
+		std := w.follow(f, s)
+		parts = append(parts, estimate.Component{Std: std, DoF: math.Inf(1)})
+		if s.flat {
+			e.Flat = math.Max(e.Flat, std)
 		}
 	}
 	e.System = estimate.RootSum(parts)
 	return e
 }
 
-// follow is how far a figure, as the mean of the ramps, moves with one standard
-// uncertainty of a source.
+// follow is the standard uncertainty that a source gives a figure: it is moved
+// up and down by its own, and the mean of the ramps watched (JCGM 100, 5.1.3
+// note 2).
 func (w *work) follow(f figure, s source) float64 {
-	moved, size := 0.0, 0.0
-	for _, r := range w.ramps {
-		up, kUp := s.move(r, w.k, +1)
-		down, kDown := s.move(r, w.k, -1)
-		high, low := f(up, kUp), f(down, kDown)
-		moved += (high - low) / 2
-		size += math.Abs(high) + math.Abs(low)
+	sum := 0.0
+	for _, move := range s.moves {
+		moved, size := 0.0, 0.0
+		for _, r := range w.ramps {
+			up, kUp := move(r, w.k, +1)
+			down, kDown := move(r, w.k, -1)
+			high, low := f(up, kUp), f(down, kDown)
+			moved += (high - low) / 2
+			size += math.Abs(high) + math.Abs(low)
+		}
+		by := unlessRounding(math.Abs(moved), size) / float64(len(w.ramps))
+		sum += by * by
 	}
-	return unlessRounding(math.Abs(moved), size) / float64(len(w.ramps))
+	return math.Sqrt(sum)
 }
 
 // unlessRounding is v, or 0 where it is no more than the rounding of figures of

@@ -57,7 +57,7 @@ func (w *work) fitBranch(at []int) (f Fit, ok bool) {
 		return Fit{}, false
 	}
 	x, y := w.outline(at)
-	shape, bend, err := estimate.ShapeOf(x, y)
+	shape, bend, err := estimate.ShapeOf(x, y, w.scaleBendM())
 	if err != nil {
 		bend = estimate.Unknown("too few steps of the display to tell")
 	}

@@ -58,16 +58,16 @@ func (w *work) friction() {
 	of := func(g func(balance) float64) figure {
 		return func(r ramp, k constants) float64 { return g(balanceOf(r, k)) }
 	}
-	f.Mu = w.combine(of(balance.mu), wholeLoop, "not a finite number")
-	f.AreaM2 = w.combine(of(balance.areaM2), wholeLoop, "not a finite number")
-	f.WeightN = w.combine(of(balance.weightN), wholeLoop, noZero)
-	f.F0MuWN = w.combine(of(balance.f0MuWN), wholeLoop, noZero)
+	f.Mu = w.combine(of(balance.mu), "not a finite number")
+	f.AreaM2 = w.combine(of(balance.areaM2), "not a finite number")
+	f.WeightN = w.combine(of(balance.weightN), noZero)
+	f.F0MuWN = w.combine(of(balance.f0MuWN), noZero)
 	f.F0N = w.combine(func(r ramp, k constants) float64 {
 		if math.IsNaN(r.zeroM) { // any extension serves
 			r.zeroM = r.rising.A
 		}
 		return balanceOf(r, k).f0N()
-	}, wholeLoop, "not a finite number")
+	}, "not a finite number")
 	if by == mill.SetBySpring { // A* is then a rate: see springs
 		f.AreaM2 = estimate.Unknown("set by spring length")
 	}

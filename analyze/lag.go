@@ -251,13 +251,13 @@ func (w *work) byRate(rates []float64) (static, perRate estimate.Estimate) {
 	return static, perRate
 }
 
-// lagStdSI is what is not known of the delay, as a setting.
-func (w *work) lagStdSI() float64 {
+// lagStdS is what is not known of the delay.
+func (w *work) lagStdS() float64 {
 	late := w.res.Lag.LateS
 	if !late.Known() {
 		return 0
 	}
-	return w.branchRate() * math.Hypot(late.Std(), late.Value-w.lateS)
+	return math.Hypot(late.Std(), late.Value-w.lateS)
 }
 
 // branchRate is the rate of the setting where the branches were fitted, the mean

@@ -182,8 +182,28 @@ func (w *work) fitFalling(c *Cycle, l *legs) bool {
 		if w.wrench != nil { // that is the wrench turned round, the screw standing: nothing slides
 			rounded = 0
 		}
+		if nominal := w.topSI(c) - reversalShare*c.ReversalSI.Value; l.foundKneeSI < nominal && w.carriesOn(c, l, nominal) {
+			l.foundKneeSI = nominal
+		}
 		l.kneeSI = math.Min(l.foundKneeSI, knee-(reversalShare-1)*rounded)
 	}
+}
+
+// carriesOn is whether the readings above the knee that was found lie on the line
+// below it up to a setting, within what the indicator's own scale may bend: a
+// bend that small was taken for the knee.
+func (w *work) carriesOn(c *Cycle, l *legs, toSI float64) bool {
+	at := leaders(c.Peak, l.fall, func(i int) bool { return w.x[i] > l.foundKneeSI && w.x[i] <= toSI })
+	rest := make([]float64, len(at))
+	for k, i := range at {
+		rest[k] = w.e[i] - c.Falling.Line.A - c.Falling.Line.B*w.x[i]
+	}
+	for _, off := range grouped(rest, 8) {
+		if math.Abs(off) > 2*w.scaleBendM() {
+			return false
+		}
+	}
+	return len(rest) > 0
 }
 
 // unloads is whether a pair lies within the straight part of the falling

@@ -56,7 +56,7 @@ func (w *work) locked(settingSI float64) LockedBand {
 	}
 	of := func(pick func(gainPa, dropSI float64) float64) estimate.Estimate {
 		with := func(bulkPa float64) estimate.Estimate {
-			return w.combine(func(r ramp, k constants) float64 { return pick(share(r, k, bulkPa)) }, wholeLoop, "not a finite number")
+			return w.combine(func(r ramp, k constants) float64 { return pick(share(r, k, bulkPa)) }, "not a finite number")
 		}
 		e := with(oilBulkPa)
 		if e.Known() {

@@ -110,17 +110,17 @@ func (w *work) ofOther(sources []source) []source {
 	}
 	for i := range sources {
 		if s := &sources[i]; s.name == ofSection {
-			s.name, s.from, s.forces = name+" of "+p.Measured.Name+", measured", from, false
-			s.move = func(r ramp, k constants, sign float64) (ramp, constants) {
-				k.areaM2 *= 1 + sign*std
+			s.name, s.from, s.enter = name+" of "+p.Measured.Name+", measured", from, inTruth
+			s.moves = []mover{func(r ramp, k constants, by float64) (ramp, constants) {
+				k.areaM2 *= 1 + by*std
 				return r, k
-			}
+			}}
 		}
 	}
-	return append(sources, source{name: name + " of " + w.setup.Band.Name, from: from, move: func(r ramp, k constants, sign float64) (ramp, constants) {
-		k.otherM2 *= 1 + sign*std
+	return append(sources, source{name: name + " of " + w.setup.Band.Name, from: from, enter: inTruth, moves: []mover{func(r ramp, k constants, by float64) (ramp, constants) {
+		k.otherM2 *= 1 + by*std
 		return r, k
-	}})
+	}}})
 }
 
 // warnPredicted says what a prediction rests on.

@@ -102,12 +102,14 @@ type stretch struct{ fromSI, toSI, beyond float64 }
 // straight finds the stretch on which a branch is straight. A coarse count's
 // first code may hide a slack band, so what lies below its first step is left
 // out.
+//
+// What bends less than the indicator's own curve may is not cut.
 func (w *work) straight(at []int, d Direction) (stretch, error) {
 	x, y := w.outline(at)
 	if d == Rising {
 		x, y = w.stood(at, x, y)
 	}
-	r, err := estimate.StraightWithin(x, y)
+	r, err := estimate.StraightWithin(x, y, w.scaleBendM())
 	if err != nil {
 		return stretch{}, err
 	}
@@ -119,6 +121,10 @@ func (w *work) straight(at []int, d Direction) (stretch, error) {
 	main := r.Found.Main(estimate.Quantile(x, 0), high)
 	return stretch{r.From, r.To, lines[len(lines)-1][1] / lines[main][1]}, nil
 }
+
+// scaleBendM is how far the indicator's own error curve may leave a straight line:
+// 0.3 of its limit in the middle, and at the ends of the branch nearly as much.
+func (w *work) scaleBendM() float64 { return 0.3 * math.Sqrt(3) * w.setup.ExtensionSd }
 
 // grouped averages neighbours so that at most so many points are left.
 func grouped(v []float64, most int) []float64 {

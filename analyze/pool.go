@@ -15,7 +15,7 @@ func (w *work) pool() error {
 		return fmt.Errorf("analyze: no closed cycle has two straight branches: %w", ErrNoCycle)
 	}
 	w.markPoints()
-	w.timeStd = math.Hypot(w.medianTimeStd(), w.lagStdSI())
+	w.timeStd = w.alignment()
 	w.early = len(w.res.Warnings)
 	w.figures()
 	w.warnings()
@@ -67,17 +67,34 @@ func (w *work) keepRamps() {
 
 func (w *work) zeroKnown() bool { return w.zeroFrom != "" }
 
-func (w *work) medianTimeStd() float64 {
+// alignment is what the time between the channels leaves open of the setting,
+// rising and falling: the instants' own doubt times the rate on the branch. The
+// pairs state it with the mean rate about them, which strokes of a pump are
+// shorter than.
+func (w *work) alignment() (stdSI [2]float64) {
 	if w.set.Stepped {
-		return w.set.StepStd
+		return [2]float64{w.set.StepStd, w.set.StepStd}
 	}
-	var all []float64
+	const around = 0.5 // s to either side, by which the pairs know the rate
+	var late []float64
+	var rates [2][]float64
 	for i, pt := range w.res.Points {
-		if pt.Fitted {
-			all = append(all, w.set.Pairs[i].SettingStd)
+		if !pt.Fitted {
+			continue
 		}
+		if rate := math.Abs(w.trace.gain(w.t[i], around)) / around; rate > 0 {
+			late = append(late, w.set.Pairs[i].SettingStd/rate)
+		}
+		way := 0
+		if pt.Phase == Unloading {
+			way = 1
+		}
+		rates[way] = append(rates[way], math.Abs(w.trace.gain(w.t[i], w.trace.windowS))/w.trace.windowS)
 	}
-	return estimate.Median(all)
+	for way := range stdSI {
+		stdSI[way] = math.Hypot(estimate.Median(late), w.lagStdS()) * estimate.Median(rates[way])
+	}
+	return stdSI
 }
 
 // captured is the range of setting that at least two ramps cover, or the only
@@ -125,8 +142,8 @@ func (w *work) reaching(d Direction, setting figure) *work {
 // branch is the line of all ramps together.
 func (w *work) branch(b *Branch) {
 	d := b.Direction
-	b.Slope = w.combine(func(r ramp, k constants) float64 { return r.line(d).B * k.paPerM() }, wholeLoop, "no ramp gives a slope")
-	b.Stress0 = w.combine(func(r ramp, k constants) float64 { return (r.line(d).A - r.zeroM) * k.paPerM() }, wholeLoop, noZero)
+	b.Slope = w.combine(func(r ramp, k constants) float64 { return r.line(d).B * k.paPerM() }, "no ramp gives a slope")
+	b.Stress0 = w.combine(func(r ramp, k constants) float64 { return (r.line(d).A - r.zeroM) * k.paPerM() }, noZero)
 	b.LowPa, b.HighPa = math.NaN(), math.NaN()
 	if w.zeroKnown() {
 		b.LowPa = w.stressAt(d, b.LowSI).Value
@@ -134,10 +151,16 @@ func (w *work) branch(b *Branch) {
 	}
 }
 
-// reach is the captured range of both branches: of setting, and of extension.
-func (w *work) reach() (lowSI, highSI, spanM float64) {
-	lowSI = math.Min(w.res.Rising.LowSI, w.res.Falling.LowSI)
-	highSI = math.Max(w.res.Rising.HighSI, w.res.Falling.HighSI)
-	line := w.ramps[0].rising
-	return lowSI, highSI, line.B * (w.res.Rising.HighSI - w.res.Rising.LowSI)
+// reachM is the range of extension that all fitted lines cover.
+func (w *work) reachM() (low, high float64) {
+	low, high = math.Inf(1), math.Inf(-1)
+	for _, r := range w.ramps {
+		for _, d := range []Direction{Rising, Falling} {
+			fromSI, toSI := r.covers(d)
+			from, _ := r.line(d).At(fromSI)
+			to, _ := r.line(d).At(toSI)
+			low, high = math.Min(low, from), math.Max(high, to)
+		}
+	}
+	return low, high
 }

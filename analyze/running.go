@@ -45,7 +45,7 @@ func (w *work) running() {
 		setting := settingFigure(from, target)
 		return w.reaching(from, setting).combine(func(r ramp, k constants) float64 {
 			return stressFigure(to, setting(r, k))(r, k) - target
-		}, wholeLoop, "not a finite number")
+		}, "not a finite number")
 	}
 	rise, fall := other(Rising, Falling), other(Falling, Rising)
 	rise, fall = w.within(rise, target+rise.Value), w.within(fall, target+fall.Value)
@@ -53,7 +53,7 @@ func (w *work) running() {
 	b.AfterFallingPa = [2]estimate.Estimate{fall, none}
 	middle := w.reaching(Rising, settingFigure(Rising, target)).combine(func(r ramp, k constants) float64 {
 		return middleStress(r, k, settingFigure(Rising, target)(r, k))
-	}, wholeLoop, "not a finite number")
+	}, "not a finite number")
 	b.MiddlePa = w.within(middle, middle.Value)
 	b.Locked = w.locked(w.res.AtRising.SettingSI.Value)
 }

@@ -66,14 +66,14 @@ func (w *work) screw() {
 	s := &w.res.Screw
 	s.Opposed = w.opposed()
 	of := func(g func(torques) float64) estimate.Estimate {
-		return w.combine(func(r ramp, k constants) float64 { return g(torquesOf(anyZero(r), k)) }, wholeLoop, "not a finite number")
+		return w.combine(func(r ramp, k constants) float64 { return g(torquesOf(anyZero(r), k)) }, "not a finite number")
 	}
 	s.RaisePerN = of(func(t torques) float64 { return t.up })
 	s.LoosenPerN = of(func(t torques) float64 { return t.down })
 	perPa := func(g func(torques) float64) estimate.Estimate {
 		return w.combine(func(r ramp, k constants) float64 {
 			return g(torquesOf(anyZero(r), k)) * k.pullPerM() / k.paPerM()
-		}, wholeLoop, "not a finite number")
+		}, "not a finite number")
 	}
 	s.RaisePerPa = perPa(func(t torques) float64 { return t.up })
 	s.LoosenPerPa = perPa(func(t torques) float64 { return t.down })
@@ -103,8 +103,8 @@ func (w *work) screwShares(s *Screw) {
 	working := w.res.Working.RisingSI
 	s.FrictionNm = w.res.Working.HalfSI
 	some := w.reaching(Rising, at(working))
-	s.LeadNm = some.combine(func(r ramp, k constants) float64 { return working - halfWidth(working)(r, k) }, wholeLoop, "not a finite number")
-	s.PullN = some.combine(pullFigure(working), wholeLoop, noZero)
+	s.LeadNm = some.combine(func(r ramp, k constants) float64 { return working - halfWidth(working)(r, k) }, "not a finite number")
+	s.PullN = some.combine(pullFigure(working), noZero)
 }
 
 // pullFigure is the wheel pull at a rising setting.
@@ -121,7 +121,7 @@ func (w *work) threadFriction(s *Screw, law ScrewLaw) {
 		l.CollarMu *= collar
 		return func(r ramp, k constants) float64 { return l.threadMu(torquesOf(anyZero(r), k).mean() * ratio) }
 	}
-	s.ThreadMu = w.combine(mu(1), wholeLoop, "not a finite number")
+	s.ThreadMu = w.combine(mu(1), "not a finite number")
 	s.CollarNotice = "no friction of a collar is given: all of it is counted to the thread"
 	if law.CollarMu*law.CollarM > 0 && s.ThreadMu.Known() {
 		by := (w.meanOf(mu(1+collarDoubt)) - w.meanOf(mu(1-collarDoubt))) / 2
@@ -132,7 +132,7 @@ func (w *work) threadFriction(s *Screw, law ScrewLaw) {
 		t, l := torquesOf(anyZero(r), k), law
 		l.ThreadMu = l.threadMu(t.mean() * ratio)
 		return (t.up - t.down) / 2 * ratio / l.leadShare()
-	}, wholeLoop, "not a finite number")
+	}, "not a finite number")
 }
 
 // meanOf is a figure as the mean of the ramps.
@@ -151,7 +151,7 @@ func (w *work) efficiency(s *Screw, law ScrewLaw) {
 	working, ratio := w.res.Working.RisingSI, w.setup.Tensioner.Ratio()
 	some := w.reaching(Rising, at(working))
 	work := law.LeadM / (2 * math.Pi * ratio)
-	s.Efficiency = some.combine(func(r ramp, k constants) float64 { return pullFigure(working)(r, k) * work / working }, wholeLoop, noZero)
+	s.Efficiency = some.combine(func(r ramp, k constants) float64 { return pullFigure(working)(r, k) * work / working }, noZero)
 	if law.ThreadMu == 0 {
 		s.Expected = estimate.Unknown("the profile gives no expected friction of the thread")
 		s.EffOfExpect = s.Expected
@@ -162,10 +162,10 @@ func (w *work) efficiency(s *Screw, law ScrewLaw) {
 		l.RestNm = torquesOf(anyZero(r), k).restNm()
 		return l.Efficiency(pullFigure(working)(r, k) / ratio)
 	}
-	s.Expected = some.combine(expected, wholeLoop, noZero)
+	s.Expected = some.combine(expected, noZero)
 	s.EffOfExpect = some.combine(func(r ramp, k constants) float64 {
 		return pullFigure(working)(r, k) * work / working / expected(r, k)
-	}, wholeLoop, noZero)
+	}, noZero)
 }
 
 // A screw that asks for 20 % more torque than expected wants service, up to 10 %

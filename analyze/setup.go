@@ -26,6 +26,8 @@ type Setup struct {
 	CountSI       float64           // setting least count
 	SettingStd    float64           // SI, from the instrument's limit; 0 and a warning when not given
 	ExtensionSd   float64           // m, from the instrument's limit; 0 and a warning when not given
+	ReversalSd    float64           // m, of how far the indicator reads rising and falling apart
+	ReversalFrom  string            // where ReversalSd comes from
 	Bands         []mill.Band       // all on file
 	Overdue       []mill.Instrument // in use, and their check was due before the day
 	Used          []Used            // instruments that the figures rest on: of the setting, of the extension
@@ -73,6 +75,7 @@ func resolve(in Input) (Setup, error) {
 		s.overdue(gauge, hasGauge, in.Day)
 		s.overdue(indicator, hasIndicator, in.Day)
 		s.useBench(gauge, indicator, in.Set)
+		s.reversal()
 	}
 	return s, nil
 }
@@ -80,6 +83,19 @@ func resolve(in Input) (Setup, error) {
 // limitStd is an instrument's standard uncertainty, its largest permitted error
 // taken as a rectangular distribution (JCGM 100 4.3.7); 0 when not given.
 func limitStd(i mill.Instrument) float64 { return math.Abs(i.Limit.SI) / math.Sqrt(3) }
+
+// An indicator's own reversal is taken for at most this share of its limit of
+// error where nobody measured it. Judgement, after bench limits of 3 um for error
+// and 2 um for reversal.
+const reversalOfLimit = 2.0 / 3
+
+func (s *Setup) reversal() {
+	if b := s.bench(mill.MeasuresExtension); b != nil { // both ways corrected: both corrections are in doubt
+		s.ReversalSd, s.ReversalFrom = math.Sqrt2*s.ExtensionSd, "corrections of the bench record of "+b.Checked
+		return
+	}
+	s.ReversalSd, s.ReversalFrom = reversalOfLimit*s.ExtensionSd, "assumed: 2/3 of its "+limitOf("error")
+}
 
 func (s *Setup) overdue(i mill.Instrument, found bool, day time.Time) {
 	if found && !day.IsZero() && i.OverdueOn(day) {

@@ -6,103 +6,164 @@ import (
 	"tautramp/analyze/estimate"
 )
 
-// scope says what a figure is made of.
-type scope int
+// stage is which of the three intervals a cause of doubt first enters.
+type stage int
 
 const (
-	onePoint  scope = iota // one setting, stress or load on one branch
-	wholeLoop              // slopes, or both branches against each other
+	inCurve  stage = iota // the fitted curve already: the indicator's own error, and the zero
+	inTruth               // only what is true: constants, the gauge, what the rig cannot see
+	inForces              // only forces and areas
 )
 
-// source is one cause of doubt that repeats from ramp to ramp.
+// source is one cause of doubt that repeats from ramp to ramp: it is not made
+// less by ramping again.
 type source struct {
-	name      string
-	from      string
-	wholeOnly bool // only touches figures made of the whole loop
-	forces    bool // only touches forces and areas
-	move      func(r ramp, k constants, sign float64) (ramp, constants)
+	name  string
+	from  string
+	enter stage
+	flat  bool    // rectangular, and not normal
+	moves []mover // each by one standard uncertainty, independent of the others
 }
 
-// An indicator's own reversal is taken for at most this share of its limit of
-// error. Judgement, after bench limits of 3 um for error and 2 um for
-// reversal.
-const reversalOfLimit = 2.0 / 3
+// mover changes a ramp and the constants by so many standard uncertainties.
+type mover func(r ramp, k constants, by float64) (ramp, constants)
 
-// systematics lists what repeats. An instrument's error is one shift where a
-// figure belongs to one point of its scale; where a figure is made of the
-// whole loop, its gain may be off besides, by as much from end to end of the
-// captured range, and an indicator reads rising and falling apart.
+// systematics lists what repeats.
 func (w *work) systematics() []source {
 	s := w.setup
-	lowSI, highSI, spanM := w.reach()
-	middle, spanSI := (lowSI+highSI)/2, highSI-lowSI
-	limit := "limit of its error / sqrt 3"
-	return w.ofOther([]source{
-		{name: "modulus of the steel", from: s.ModulusPa.Method, move: func(r ramp, k constants, sign float64) (ramp, constants) {
-			k.modulusPa += sign * s.ModulusPa.System
+	return w.ofOther(append(w.rigSources(),
+		source{name: "modulus of the steel", from: s.ModulusPa.Method, enter: inTruth, moves: []mover{func(r ramp, k constants, by float64) (ramp, constants) {
+			k.modulusPa += by * s.ModulusPa.System
 			return r, k
-		}},
-		{name: "gauge length", from: s.GaugeM.Method, move: func(r ramp, k constants, sign float64) (ramp, constants) {
-			k.gaugeM += sign * s.GaugeM.System
+		}}},
+		source{name: "gauge length", from: s.GaugeM.Method, enter: inTruth, moves: []mover{func(r ramp, k constants, by float64) (ramp, constants) {
+			k.gaugeM += by * s.GaugeM.System
 			return r, k
-		}},
-		{name: ofSection, from: "assumed 1 %", forces: true, move: func(r ramp, k constants, sign float64) (ramp, constants) {
-			k.areaM2 *= 1 + sign*s.SectionRelStd
+		}}},
+		source{name: ofSection, from: "assumed 1 %", enter: inForces, moves: []mover{func(r ramp, k constants, by float64) (ramp, constants) {
+			k.areaM2 *= 1 + by*s.SectionRelStd
 			return r, k
-		}},
-		{name: "stretch indicator", from: limit, move: shiftExtension(s.ExtensionSd, false)},
-		{name: "stretch indicator, gain", from: limit, wholeOnly: true, move: turnLines(math.Sqrt2*s.ExtensionSd/spanM, middle)},
-		{name: "stretch indicator, its own reversal", from: "assumed 2/3 of " + limit, wholeOnly: true,
-			move: shiftExtension(reversalOfLimit*s.ExtensionSd/2, true)},
-		{name: "setting gauge", from: limit, move: shiftSetting(s.SettingStd, false)},
-		{name: "setting gauge, gain", from: limit, wholeOnly: true, move: turnLines(math.Sqrt2*s.SettingStd/spanSI, middle)},
-		{name: "zero", from: w.zeroDoubt(), move: func(r ramp, k constants, sign float64) (ramp, constants) {
-			r.zeroM += sign * w.zeroStd
-			return r, k
-		}},
+		}}},
+		source{name: "setting gauge", from: limitOf("its error"), enter: inTruth, flat: true, moves: w.gaugeCurve()},
 		w.instantSource(),
-	})
+	))
 }
 
 // instantSource is the doubt about which setting belongs to a reading of the
 // stretch.
 func (w *work) instantSource() source {
-	s := source{name: "time alignment", from: "time between the channels x rate of the setting", move: shiftSetting(w.timeStd, true)}
+	s := source{name: "time alignment", from: "time between the channels x rate of the setting", enter: inTruth, moves: []mover{late(w.timeStd)}}
 	if w.set.Stepped {
 		s.name, s.from = "step reached", "how near each step is met, as declared or a twentieth of a step"
 	}
 	return s
 }
 
+// rigSources is what the measuring of the stretch repeats.
+func (w *work) rigSources() []source {
+	s := w.setup
+	return []source{
+		{name: "stretch indicator", from: limitOf("its error"), flat: true, moves: w.indicatorCurve()},
+		{name: "indicator's own reversal", from: s.ReversalFrom, flat: true, moves: []mover{shiftExtension(s.ReversalSd/2, true)}},
+		{name: "zero", from: w.zeroDoubt(), flat: true, moves: []mover{func(r ramp, k constants, by float64) (ramp, constants) {
+			r.zeroM += by * w.zeroStd
+			return r, k
+		}}},
+	}
+}
+
+func limitOf(what string) string { return "limit of " + what + " / sqrt 3" }
+
 func (w *work) zeroDoubt() string {
 	return "least count of the stretch indicator, at the " + w.zeroFrom
 }
 
-type mover func(r ramp, k constants, sign float64) (ramp, constants)
+// An instrument's error over its scale is one curve, the same for every ramp:
+// anything within its limit at each point, one end of the captured range half
+// independent of the other. Such a curve is u cos(q) + v sin(q) with q from -30
+// to +30 degrees over that range and u, v of one standard uncertainty each; a
+// branch's line sees of it what the best line through it over the branch's own
+// stretch of the scale has. So a shift, a wrong gain and a bend all come of it.
+type errorCurve struct{ from, to float64 } // the captured range
+
+// lines is the best straight lines through the cosine and the sine over part of
+// the scale: value at its middle, and slope.
+func (c errorCurve) lines(low, high float64) (cos, sin [2]float64) {
+	q := math.Pi / 3 / (c.to - c.from)
+	half := (high - low) / 2
+	at := q * ((low+high)/2 - (c.from+c.to)/2)
+	flat, steep := 1.0, q
+	if z := q * half; z > 1e-3 {
+		flat = math.Sin(z) / z
+		steep = 3 * (math.Sin(z) - z*math.Cos(z)) / (z * z * z) * q
+	}
+	return [2]float64{math.Cos(at) * flat, -math.Sin(at) * steep}, [2]float64{math.Sin(at) * flat, math.Cos(at) * steep}
+}
+
+// pick is the cosine's line or the sine's, as y = a + b x.
+func (c errorCurve) line(low, high float64, sine bool) (a, b float64) {
+	l, s := c.lines(low, high)
+	if sine {
+		l = s
+	}
+	return l[0] - l[1]*(low+high)/2, l[1]
+}
+
+// indicatorCurve moves the lines as the indicator's error curve does.
+func (w *work) indicatorCurve() []mover {
+	std := w.setup.ExtensionSd
+	low, high := w.reachM()
+	curve := errorCurve{low, high}
+	move := func(sine bool) mover {
+		return lineMover(func(r ramp, d Direction, by float64) estimate.Line {
+			l := r.line(d)
+			fromSI, toSI := r.covers(d)
+			a, b := curve.line(l.A+l.B*fromSI, l.A+l.B*toSI, sine)
+			l.A += by * std * (a + b*l.A)
+			l.B += by * std * b * l.B
+			return l
+		})
+	}
+	return []mover{move(false), move(true)}
+}
+
+// gaugeCurve moves the lines as the setting gauge's error curve does.
+func (w *work) gaugeCurve() []mover {
+	std := w.setup.SettingStd
+	curve := errorCurve{math.Min(w.res.Rising.LowSI, w.res.Falling.LowSI), math.Max(w.res.Rising.HighSI, w.res.Falling.HighSI)}
+	move := func(sine bool) mover {
+		return lineMover(func(r ramp, d Direction, by float64) estimate.Line {
+			l := r.line(d)
+			fromSI, toSI := r.covers(d)
+			a, b := curve.line(fromSI, toSI, sine)
+			l.A += by * std * a * l.B
+			l.B += by * std * b * l.B
+			return l
+		})
+	}
+	return []mover{move(false), move(true)}
+}
 
 // shiftExtension moves the lines by std in extension, the falling one the
 // other way where apart is set.
 func shiftExtension(std float64, apart bool) mover {
-	return lineMover(func(l estimate.Line, d Direction, sign float64) estimate.Line {
-		l.A += sign * std * side(d, apart)
+	return lineMover(func(r ramp, d Direction, by float64) estimate.Line {
+		l := r.line(d)
+		l.A += by * std * side(d, apart)
 		return l
 	})
 }
 
-// shiftSetting moves the lines by std in setting.
-func shiftSetting(std float64, apart bool) mover {
-	return lineMover(func(l estimate.Line, d Direction, sign float64) estimate.Line {
-		l.A += l.B * sign * std * side(d, apart)
-		return l
-	})
-}
-
-// turnLines changes the slopes by a share, about a setting.
-func turnLines(share, aboutSI float64) mover {
-	return lineMover(func(l estimate.Line, _ Direction, sign float64) estimate.Line {
-		by := l.B * sign * share
-		l.B += by
-		l.A -= by * aboutSI
+// late moves the rising line by the first in setting, and the falling one the
+// other way by the second.
+func late(stdSI [2]float64) mover {
+	return lineMover(func(r ramp, d Direction, by float64) estimate.Line {
+		l := r.line(d)
+		std := stdSI[0]
+		if d == Falling {
+			std = stdSI[1]
+		}
+		l.A += l.B * by * std * side(d, true)
 		return l
 	})
 }
@@ -114,10 +175,12 @@ func side(d Direction, apart bool) float64 {
 	return 1
 }
 
-func lineMover(move func(l estimate.Line, d Direction, sign float64) estimate.Line) mover {
-	return func(r ramp, k constants, sign float64) (ramp, constants) {
-		r.rising = move(r.rising, Rising, sign)
-		r.falling = move(r.falling, Falling, sign)
-		return r, k
+// lineMover moves both lines of a ramp.
+func lineMover(move func(r ramp, d Direction, by float64) estimate.Line) mover {
+	return func(r ramp, k constants, by float64) (ramp, constants) {
+		out := r
+		out.rising = move(r, Rising, by)
+		out.falling = move(r, Falling, by)
+		return out, k
 	}
 }

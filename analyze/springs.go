@@ -28,7 +28,7 @@ func (w *work) springs() {
 	if t.SetBy != mill.SetBySpring || t.Spring == nil {
 		return
 	}
-	s.RateNM = w.combine(func(r ramp, k constants) float64 { return balanceOf(anyZero(r), k).areaM2() }, wholeLoop, "not a finite number").
+	s.RateNM = w.combine(func(r ramp, k constants) float64 { return balanceOf(anyZero(r), k).areaM2() }, "not a finite number").
 		Scale(1 / (float64(max(t.Spring.Parallel, 1)) * t.Ratio()))
 	s.Ratio = estimate.Unknown("the profile gives no rate of the springs")
 	if rate := t.Spring.Rate.SI; rate > 0 {

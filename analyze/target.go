@@ -10,9 +10,10 @@ import (
 
 // TargetSetting is the setting for the target stress on one branch.
 type TargetSetting struct {
-	SettingSI estimate.Estimate // of the fitted curve
-	NextSI    estimate.Estimate // of the next setting: adds ramp-to-ramp scatter; unknown with one ramp
+	SettingSI estimate.Estimate // of the fitted curve, mean over the ramps; with the indicator's own error and the zero
+	NextSI    estimate.Estimate // of the next setting: adds ramp-to-ramp scatter and the gauge's reading; unknown with one ramp
 	TrueSI    estimate.Estimate // so that the band's true stress is the target: adds everything that repeats
+	StressPa  estimate.Estimate // the band's true stress at the setting: TrueSI as stress
 	Budget    []Term            // of TrueSI, in setting units
 }
 
@@ -42,64 +43,74 @@ func (r *Result) SettingAt(d Direction, stressPa float64) (TargetSetting, error)
 func (w *work) settingAt(d Direction, stressPa float64) TargetSetting {
 	f := settingFigure(d, stressPa)
 	w = w.reaching(d, f)
-	all := w.combine(f, onePoint, "not a finite number")
-	t := TargetSetting{SettingSI: all, NextSI: w.next(f, all), TrueSI: all}
-	t.SettingSI.System = 0
+	const why = "not a finite number"
+	again := w.repeat(f)
+	t := TargetSetting{
+		SettingSI: w.doubted(again.Mean, f, inCurve, why),
+		NextSI:    w.doubted(w.read(again.Next), f, inCurve, "one ramp only: how well the next setting repeats is not known"),
+		TrueSI:    again.Mean,
+	}
 	if t.NextSI.Known() {
-		t.TrueSI.Random, t.TrueSI.DoF = t.NextSI.Random, t.NextSI.DoF
-		t.TrueSI.Method = t.NextSI.Method + ", and all that repeats"
+		t.TrueSI = t.NextSI
+		t.TrueSI.Method += ", and all that repeats"
 	} else {
 		t.TrueSI.Method += ", and all that repeats; scatter between ramps is not known"
 	}
+	t.TrueSI = w.doubted(t.TrueSI, f, inTruth, why)
+	t.StressPa = w.trueStress(d, stressPa, t.TrueSI)
 	t.Budget = w.budget(f, t)
 	return t
 }
 
-// next adds to the curve how far one ramp strays from the mean of all, and the
-// least count of the reading.
-func (w *work) next(f figure, curve estimate.Estimate) estimate.Estimate {
-	if len(w.ramps) < 2 {
-		return estimate.Unknown("one ramp only: how well the next setting repeats is not known")
+// read adds to the next ramp what one reading of the setting gauge hides: its
+// count, and its noise.
+func (w *work) read(next estimate.Estimate) estimate.Estimate {
+	if !next.Known() {
+		return next
 	}
-	parts := w.nextParts(f, curve)
-	return estimate.Estimate{
-		Value: curve.Value, Random: estimate.RootSum(parts), DoF: estimate.EffectiveDoF(parts),
-		Method: "mean of the ramps, and scatter of one",
-	}
+	parts := []estimate.Component{{Std: next.Random, DoF: next.DoF}, {Std: w.readingStd(), DoF: math.Inf(1)}}
+	next.Random, next.DoF = estimate.RootSum(parts), estimate.EffectiveDoF(parts)
+	next.Method += ", and one reading of the gauge"
+	return next
 }
 
-// nextParts is the curve, the scatter of a single ramp and the least count.
-// Curve and scatter come from the same ramps: their degrees of freedom are
-// shared, so they go in as one.
-func (w *work) nextParts(f figure, curve estimate.Estimate) []estimate.Component {
-	return []estimate.Component{
-		{Std: math.Hypot(curve.Random, w.rampSD(f)), DoF: math.Min(curve.DoF, float64(len(w.ramps)-1))},
-		{Std: w.setup.CountSI / math.Sqrt(12), DoF: math.Inf(1)},
-	}
-}
-
+// rampSD is the standard deviation of a figure from ramp to ramp.
 func (w *work) rampSD(f figure) float64 {
-	values := make([]float64, len(w.ramps))
-	for i, r := range w.ramps {
-		values[i] = f(r, w.k)
-	}
-	_, sd := estimate.Mean(values)
-	return sd
+	return w.repeat(f).Mean.Random * math.Sqrt(float64(len(w.ramps)))
+}
+
+// readingStd is the standard uncertainty of one reading of the setting gauge;
+// the trace's noise is never below what the count alone gives.
+func (w *work) readingStd() float64 { return w.trace.noise }
+
+// trueStress is the band's true stress at the setting for a stress: the stress
+// itself, doubted as the setting is.
+func (w *work) trueStress(d Direction, stressPa float64, setting estimate.Estimate) estimate.Estimate {
+	slope := w.repeat(func(r ramp, k constants) float64 { return r.line(d).B * k.paPerM() }).Mean
+	e := setting.Scale(slope.Value)
+	e.Value = stressPa
+	return e
 }
 
 // budget has a line for everything that the true stress rests on (JCGM 100,
 // clause 8).
 func (w *work) budget(f figure, t TargetSetting) []Term {
 	n := len(w.ramps)
-	lines := []Term{{"fitted curve", t.SettingSI.Random, t.SettingSI.DoF, "A", t.SettingSI.Method}}
+	mean := t.SettingSI
+	lines := []Term{{"fitted curve", mean.Random, mean.DoF, "A", mean.Method}}
 	if n >= 2 {
-		lines = append(lines, Term{"next ramp against the curve", w.rampSD(f), float64(n - 1), "A", fmt.Sprintf("scatter of %d ramps", n)})
+		lines = append(lines,
+			Term{"next ramp against the curve", w.rampSD(f), float64(n - 1), "A", fmt.Sprintf("scatter of %d ramps", n)},
+			Term{"reading of the setting gauge", w.readingStd(), math.Inf(1), "B", "noise and least count of one reading"})
 	}
-	if w.setup.CountSI > 0 {
-		lines = append(lines, Term{"least count of the setting gauge", w.setup.CountSI / math.Sqrt(12), math.Inf(1), "B", "least count / sqrt 12"})
-	}
+	return append(lines, w.terms(f, inTruth)...)
+}
+
+// terms has a line for every source that enters a figure up to a stage.
+func (w *work) terms(f figure, upTo stage) []Term {
+	var lines []Term
 	for _, s := range w.sources {
-		if !s.wholeOnly && !s.forces {
+		if s.enter <= upTo {
 			lines = append(lines, Term{s.name, w.follow(f, s), math.Inf(1), "B", s.from})
 		}
 	}
@@ -126,7 +137,7 @@ func (w *work) aim() {
 	rising, falling := settingFigure(Rising, w.setup.TargetPa), settingFigure(Falling, w.setup.TargetPa)
 	w.res.ResetSI = w.reaching(Rising, rising).reaching(Falling, falling).combine(func(r ramp, k constants) float64 {
 		return falling(r, k) - (rising(r, k)-falling(r, k))/2
-	}, wholeLoop, "not a finite number")
+	}, "not a finite number")
 }
 
 func (w *work) targetOn(d Direction) TargetSetting {

@@ -24,7 +24,7 @@ func (r *Result) LoadPastSI() estimate.Estimate {
 			p = falling(m, k) + reversalShare*2*halfWidth(p)(m, k)
 		}
 		return max(p, rising(m, k))
-	}, wholeLoop, "not a finite number")
+	}, "not a finite number")
 	if _, high := past.Interval95(); past.Known() && r.Setup.LimitSI > 0 && high > r.Setup.LimitSI {
 		return estimate.Unknown("it would have to be loaded past the tensioner's limit first")
 	}

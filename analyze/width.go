@@ -66,7 +66,7 @@ func (w *work) widths() {
 	w.res.Working = w.widthAt(working)
 	w.res.WidthRatio = w.reaching(Rising, at(working)).combine(func(r ramp, k constants) float64 {
 		return halfWidth(working)(r, k) / working
-	}, wholeLoop, "not a finite number")
+	}, "not a finite number")
 	if w.res.WidthRatio.Known() {
 		w.res.WidthRatio.Method += ", at " + what
 	}
@@ -75,7 +75,7 @@ func (w *work) widths() {
 
 func (w *work) widthAt(risingSI float64) WidthAt {
 	row := WidthAt{StressPa: math.NaN(), RisingSI: risingSI}
-	row.HalfSI = w.reaching(Rising, at(risingSI)).combine(halfWidth(risingSI), wholeLoop, "not a finite number")
+	row.HalfSI = w.reaching(Rising, at(risingSI)).combine(halfWidth(risingSI), "not a finite number")
 	if w.zeroKnown() {
 		row.StressPa = w.stressAt(Rising, risingSI).Value
 	}
@@ -89,7 +89,7 @@ func (w *work) common() (low, high float64) {
 		return w.combine(func(r ramp, _ constants) float64 {
 			e := r.falling.A + r.falling.B*fallingSI
 			return (e - r.rising.A) / r.rising.B
-		}, onePoint, "").Value
+		}, "").Value
 	}
 	low = math.Max(w.res.Rising.LowSI, across(w.res.Falling.LowSI))
 	high = math.Min(w.res.Rising.HighSI, across(w.res.Falling.HighSI))

@@ -32,10 +32,10 @@ type work struct {
 	sources  []source
 	zeroStd  float64 // m, of the zero, what repeats
 	zeroFrom string
-	marks    zeroMarks // the operator's
-	timeStd  float64   // of the setting, SI, from the time between the channels
-	wrench   *wrench   // of a tensioner set by torque; else nil
-	early    int       // warnings raised before the figures
+	marks    zeroMarks  // the operator's
+	timeStd  [2]float64 // of the setting, SI, from the time between the channels: rising, falling
+	early    int        // warnings raised before the figures
+	wrench   *wrench    // of a tensioner set by torque; else nil
 }
 
 // Set is the pairs that the result was made from, their settings rising and

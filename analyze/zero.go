@@ -68,7 +68,7 @@ func (w *work) findZeros() {
 	w.zeroStd = math.Hypot(w.zeroStdM(), shared)
 	for i := range w.res.Cycles {
 		if z := &w.res.Cycles[i].Zero; z.Known() {
-			z.System = w.zeroStd
+			z.System, z.Flat = w.zeroStd, w.zeroStd
 		}
 	}
 }

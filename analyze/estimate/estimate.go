@@ -12,6 +12,7 @@ type Estimate struct {
 	Value  float64 // in the unit the field's name or comment states
 	Random float64 // standard uncertainty from scatter (JCGM 100 type A)
 	System float64 // standard uncertainty from everything that repeats (zero, instruments, constants)
+	Flat   float64 // the largest part of System that is a rectangular distribution; 0: none, or none that matters
 	DoF    float64 // degrees of freedom of Random; +Inf when known a priori
 	Method string  // how Value and Random were obtained; "" = unknown
 	Why    string  // why it is unknown, when it is
@@ -40,12 +41,17 @@ func (e Estimate) Std() float64 {
 
 // Interval95 holds the true value with 95 % confidence: Student's t at the
 // effective degrees of freedom of Random and System together (JCGM 100 G.4,
-// System taken as known well). With one or two degrees of freedom that
-// approximation may fall short of what scatter alone asks for; the interval is
-// never narrower than RandomInterval95. NaN when the value is unknown.
+// System taken as known well), narrower where a rectangular part stands out
+// (FlatFactor95). With one or two degrees of freedom that approximation may fall
+// short of what scatter alone asks for; the interval is never narrower than
+// RandomInterval95. NaN when the value is unknown.
 func (e Estimate) Interval95() (lo, hi float64) {
 	dof := EffectiveDoF([]Component{{Std: e.Random, DoF: e.DoF}, {Std: e.System, DoF: math.Inf(1)}})
-	lo, hi = e.interval(e.Std(), dof)
+	std := e.Std()
+	if std > 0 {
+		std *= FlatFactor95(e.Flat/std) / FlatFactor95(0)
+	}
+	lo, hi = e.interval(std, dof)
 	if rlo, rhi := e.RandomInterval95(); rhi-rlo > hi-lo {
 		return rlo, rhi
 	}
@@ -72,5 +78,6 @@ func (e Estimate) Scale(by float64) Estimate {
 	e.Value *= by
 	e.Random *= math.Abs(by)
 	e.System *= math.Abs(by)
+	e.Flat *= math.Abs(by)
 	return e
 }

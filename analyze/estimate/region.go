@@ -35,8 +35,12 @@ const worthTelling = 0.005
 // its low end moved up and its high end moved down past what is rounded there
 // (StraightAbove). x and y are in the order in which they were read. Errors as
 // FitStick.
-func StraightWithin(x, y []float64) (Region, error) {
-	found, err := FitSegments(x, y)
+//
+// worth is how far the instrument's own scale may leave a line, in y's unit:
+// nothing is cut for less, and no region is called curved for less. 0: no such
+// error is allowed for.
+func StraightWithin(x, y []float64, worth float64) (Region, error) {
+	found, err := fitSegments(x, y, worth)
 	if err != nil {
 		return Region{}, err
 	}
@@ -45,7 +49,7 @@ func StraightWithin(x, y []float64) (Region, error) {
 	_, r.To = found.ends(i, r.From, r.To)
 	if i > 0 {
 		bx, by := between(x, y, r.From, r.To)
-		if r.From, _, err = StraightAbove(bx, by); err != nil {
+		if r.From, _, err = straightAbove(bx, by, worth); err != nil {
 			return Region{}, err
 		}
 	}
@@ -54,24 +58,26 @@ func StraightWithin(x, y []float64) (Region, error) {
 		for k := range bx {
 			bx[k] = -bx[k]
 		}
-		low, _, err := StraightAbove(bx, by)
+		low, _, err := straightAbove(bx, by, worth)
 		if err != nil {
 			return Region{}, err
 		}
 		r.To = -low
 	}
-	r.Shape, r.Bend, err = ShapeOf(between(x, y, r.From, r.To))
+	bx, by := between(x, y, r.From, r.To)
+	r.Shape, r.Bend, err = ShapeOf(bx, by, worth)
 	return r, err
 }
 
 // ShapeOf is what a series is taken for, and its bend (FitBend). Errors as
-// FitBend.
-func ShapeOf(x, y []float64) (Shape, Estimate, error) {
+// FitBend; worth as in StraightWithin.
+func ShapeOf(x, y []float64, worth float64) (Shape, Estimate, error) {
 	bend, err := FitBend(x, y)
 	if err != nil {
 		return Unsettled, Estimate{}, err
 	}
-	return shapeOf(bend), bend, nil
+	span := math.Max(Quantile(y, 1)-Quantile(y, 0), math.SmallestNonzeroFloat64)
+	return shapeOf(bend, math.Max(worthTelling, worth/span)), bend, nil
 }
 
 func between(x, y []float64, from, to float64) (bx, by []float64) {
@@ -83,13 +89,13 @@ func between(x, y []float64, from, to float64) (bx, by []float64) {
 	return bx, by
 }
 
-func shapeOf(bend Estimate) Shape {
+func shapeOf(bend Estimate, worth float64) Shape {
 	lo, hi := bend.RandomInterval95()
 	told := math.Abs(bend.Value) > Student(0.99, bend.DoF)*bend.Random
 	switch {
-	case told && math.Abs(bend.Value) > worthTelling:
+	case told && math.Abs(bend.Value) > worth:
 		return Curved
-	case lo > -worthTelling && hi < worthTelling:
+	case lo > -worth && hi < worth:
 		return Straight
 	}
 	return Unsettled

@@ -49,7 +49,7 @@ func TestRegionFindsTheToeVector(t *testing.T) {
 	// project: zero 0.5, slope 200.
 	x := []float64{0, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 1, 1.2, 1.4, 1.6, 1.8, 2}
 	y := []float64{0, 0, 1.37268202386e-81, 1.66666666667, 6.66666666667, 15, 26.6666666667, 41.6666666667, 60, 80, 100, 140, 180, 220, 260, 300}
-	r, err := StraightWithin(x, y)
+	r, err := StraightWithin(x, y, 0)
 	if err != nil || r.Shape != Straight || r.To != 2 {
 		t.Fatalf("%+v, %v", r, err)
 	}
@@ -101,7 +101,7 @@ func TestRegionLeavesOutToeAndEndStop(t *testing.T) {
 		wrong := 0
 		for seed := range uint64(trials(16)) {
 			x, y := bentRamp(rand.New(rand.NewPCG(seed, 3)), 300, c.toe, c.stop, 0, c.noise, c.count)
-			r, err := StraightWithin(x, y)
+			r, err := StraightWithin(x, y, 0)
 			if err != nil {
 				t.Fatal(err)
 			}
@@ -141,7 +141,7 @@ func TestRegionTellsStraightFromCurved(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
-			got[shapeOf(b)]++
+			got[shapeOf(b, worthTelling)]++
 		}
 		if got[c.want] < 18 {
 			t.Errorf("%s: %v", c.name, got)
@@ -163,7 +163,7 @@ func TestBendIsTheParabolasSag(t *testing.T) {
 }
 
 func TestShapeStartsUnsettled(t *testing.T) {
-	if s := shapeOf(Estimate{}); s != Unsettled {
+	if s := shapeOf(Estimate{}, worthTelling); s != Unsettled {
 		t.Errorf("nothing known is %s", s)
 	}
 }

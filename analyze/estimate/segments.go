@@ -2,6 +2,7 @@ package estimate
 
 import (
 	"math"
+	"slices"
 	"sort"
 
 	"gonum.org/v1/gonum/mat"
@@ -23,7 +24,12 @@ type Segments struct {
 // two by a search on a grid that is refined.
 //
 // x and y are in the order in which they were read. Errors as FitStick.
-func FitSegments(x, y []float64) (Segments, error) {
+func FitSegments(x, y []float64) (Segments, error) { return fitSegments(x, y, 0) }
+
+// fitSegments takes a broken line for one only where it leaves the one line
+// through all by so much somewhere: less than that the instrument's own scale may
+// bend.
+func fitSegments(x, y []float64, worth float64) (Segments, error) {
 	stick, err := FitStick(x, y)
 	if err != nil {
 		return Segments{}, err
@@ -39,7 +45,10 @@ func FitSegments(x, y []float64) (Segments, error) {
 	if two, ok := twoBreaks(x, y, stick.Break); ok {
 		all = append(all, two)
 	}
-	best := cheapest(all, x, y)
+	low, high := Quantile(x, 0), Quantile(x, 1)
+	best := cheapest(slices.DeleteFunc(all, func(s Segments) bool {
+		return len(s.Breaks) > 0 && s.leaves(all[0].Lines[0], low, high) < worth
+	}), x, y)
 	best.N = len(x)
 	return best, nil
 }
@@ -72,6 +81,18 @@ func (s Segments) ends(i int, low, high float64) (from, to float64) {
 		to = s.Breaks[i]
 	}
 	return from, to
+}
+
+// leaves is how far the broken line leaves another at most.
+func (s Segments) leaves(line [2]float64, low, high float64) float64 {
+	most := 0.0
+	for i, l := range s.Lines {
+		from, to := s.ends(i, low, high)
+		for _, x := range []float64{from, to} {
+			most = math.Max(most, math.Abs(l[0]-line[0]+(l[1]-line[1])*x))
+		}
+	}
+	return most
 }
 
 // cheapest chooses by the penalised likelihood. What a series is worth is taken

@@ -15,6 +15,12 @@ import (
 //
 // x and y are in the order in which they were read. Errors as FitStick.
 func StraightAbove(x, y []float64) (from float64, ok bool, err error) {
+	return straightAbove(x, y, 0)
+}
+
+// straightAbove is StraightAbove that cuts nothing where the broken line leaves
+// the one line through all by less than worth.
+func straightAbove(x, y []float64, worth float64) (from float64, ok bool, err error) {
 	const (
 		worthCutting = 0.002
 		leastLeft    = 1.0 / 3
@@ -35,7 +41,7 @@ func StraightAbove(x, y []float64) (from float64, ok bool, err error) {
 			return from, cuts > 0, err
 		}
 		gap := math.Abs(s.Left(from) - s.Right(from))
-		if gap < worthCutting*rangeY || !s.betterThanLine(x, y) {
+		if gap < worthCutting*rangeY || s.leaves(x, y) < worth || !s.betterThanLine(x, y) {
 			return from, !Bent(x, y), nil
 		}
 		if cuts == mostCuts {
@@ -57,6 +63,17 @@ func Bent(x, y []float64) bool {
 	low, high := Quantile(x, 0), Quantile(x, 1)
 	leaves := math.Abs(s.BR-s.BL) * (s.Break - low) * (high - s.Break) / (high - low)
 	return leaves > bendShare*(Quantile(y, 1)-Quantile(y, 0)) && s.betterThanLine(x, y)
+}
+
+// leaves is how far the stick leaves the line through all at most.
+func (s Stick) leaves(x, y []float64) float64 {
+	l, err := FitLine(x, y)
+	if err != nil {
+		return 0
+	}
+	low, high := Quantile(x, 0), Quantile(x, 1)
+	off := func(x, y float64) float64 { return math.Abs(y - l.A - l.B*x) }
+	return math.Max(off(low, s.Left(low)), math.Max(off(s.Break, s.Right(s.Break)), off(high, s.Right(high))))
 }
 
 // betterThanLine reports whether the stick's gain over one line is beyond
