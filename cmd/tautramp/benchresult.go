@@ -57,6 +57,11 @@ func analyzeBench(path string, r resultFlags, cautionsShown bool, e env) error {
 		{r.html, func(w io.Writer) error { return report.BenchHTML(w, res, meta) }},
 		{r.svg, func(w io.Writer) error { return report.BenchSVG(w, res) }},
 		{r.record, func(w io.Writer) error {
+			if res.Test.Conditions.Simulated {
+				if _, err := fmt.Fprintln(w, "# REHEARSAL: made up by a simulated bench. It does not belong into any mill.toml."); err != nil {
+					return err
+				}
+			}
 			_, err := w.Write(mill.EncodeInstruments([]mill.Instrument{res.Record()}))
 			return err
 		}},
