@@ -18,17 +18,20 @@ func round(v, count float64) float64 {
 // measure runs a path through the bench and pairs what it shows.
 func (b *bench) measure(h *path) *pairing.Set {
 	truth := make([]float64, len(h.p))
-	f0N := b.f0N
+	f0N, areaM2 := b.f0N, b.areaM2
 	for i, p := range h.p {
 		if slices.Contains(h.begins, i) {
 			b.f0N = f0N * (1 + b.wander*b.rng.NormFloat64())
+			if b.wanderArea > 0 {
+				b.areaM2 = areaM2 * (1 + b.wanderArea*b.rng.NormFloat64())
+			}
 		}
 		truth[i] = b.settle(p) + b.driftMPerS*h.t[i]
 		if b.slipM != 0 && h.t[i] >= b.slipS {
 			truth[i] += b.slipM
 		}
 	}
-	b.f0N = f0N
+	b.f0N, b.areaM2 = f0N, areaM2
 	set := &pairing.Set{
 		Setting:   pairing.Channel{CountSI: b.countSI, Spec: protocol.Chan{Quantity: protocol.Pressure}},
 		Extension: pairing.Channel{CountSI: b.countM, Spec: protocol.Chan{Quantity: protocol.Extension, Shows: b.shows}},

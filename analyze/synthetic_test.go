@@ -43,6 +43,7 @@ type bench struct {
 	driftMPerS               float64    // of the mount
 	memoryS                  float64    // of the noise: it dies away to 1/e; 0: none
 	wander                   float64    // relative standard deviation of F0 from cycle to cycle
+	wanderArea               float64    // relative standard deviation of the area that works, from cycle to cycle
 	timeStdS                 float64    // stated with the pairs
 	loadN                    float64    // S now; starts at nothing
 	falling                  bool       // it last fell

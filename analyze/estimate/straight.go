@@ -42,7 +42,7 @@ func straightAbove(x, y []float64, worth float64) (from float64, ok bool, err er
 		}
 		gap := math.Abs(s.Left(from) - s.Right(from))
 		if gap < worthCutting*rangeY || s.leaves(x, y) < worth || !s.betterThanLine(x, y) {
-			return from, !Bent(x, y), nil
+			return from, !bent(x, y), nil
 		}
 		if cuts == mostCuts {
 			return from, false, nil
@@ -52,9 +52,9 @@ func straightAbove(x, y []float64, worth float64) (from float64, ok bool, err er
 	}
 }
 
-// Bent reports whether points that pass for a line are bent beyond chance: a
+// bent reports whether points that pass for a line are bent beyond chance: a
 // broken stick leaves its chord by more than 0.5 % of the range of y.
-func Bent(x, y []float64) bool {
+func bent(x, y []float64) bool {
 	const bendShare = 0.005
 	s, err := FitStick(x, y)
 	if err != nil {
