@@ -259,3 +259,43 @@ func TestMissingInstrumentsAreSaid(t *testing.T) {
 		}
 	}
 }
+
+// A screw that stays under load after the first ramp: the fall to 40 % closes
+// nothing by itself, and does where the operator says so at the low end.
+func TestDeclaredLowerTurnClosesACycle(t *testing.T) {
+	path := &path{}
+	path.add(0)
+	path.hold(5)
+	for range 3 {
+		path.to(860*psi, 8*psi)
+		path.hold(5)
+		path.to(340*psi, 8*psi)
+		path.hold(5)
+	}
+	path.to(860*psi, 8*psi)
+	set := newBench(31).measure(path)
+	set.Plan = pairing.Plan{Ramps: 3}
+	// The first cycle takes 5 + 107.5 + 5 + 65 + 5 s: its low end is at 182.5 to 187.5 s.
+	for name, c := range map[string]struct {
+		turns []float64
+		first Role
+	}{
+		"nobody said so":         {nil, Incomplete},
+		"at the low end":         {[]float64{186}, Ramp},
+		"in the rise before":     {[]float64{100}, Incomplete},
+		"high in the next rise":  {[]float64{240}, Incomplete},
+		"at the next low end":    {[]float64{320}, Incomplete},
+		"a moment too late":      {[]float64{192}, Ramp},
+		"twice, as hands do it":  {[]float64{185, 186}, Ramp},
+		"before anything moved":  {[]float64{2}, Incomplete},
+		"after all of it, later": {[]float64{9999}, Incomplete},
+	} {
+		if testing.Short() && name != "at the low end" && name != "nobody said so" {
+			continue
+		}
+		set.Turns = c.turns
+		if got := roles(analyzed(t, set)); !slices.Equal(got, []Role{c.first, Ramp, Ramp, Incomplete}) {
+			t.Errorf("%s: %v", name, got)
+		}
+	}
+}
