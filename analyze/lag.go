@@ -137,7 +137,7 @@ func (w *work) settle() error {
 	}
 	late, told := w.findLag()
 	trial := late
-	if !told { // a slip may hide it in all cycles together
+	if !told && w.wrench == nil && !w.set.Stepped { // a slip may hide it in all cycles together
 		trial = w.lateOfCycles()
 	}
 	if err := w.stepsAt(trial); err != nil {
