@@ -1,6 +1,10 @@
 package gauge
 
-import "fmt"
+import (
+	"fmt"
+
+	"tautramp/acquire/mill"
+)
 
 // Limits are the built-in limits, each with its origin.
 func Limits() []Limit {
@@ -8,7 +12,7 @@ func Limits() []Limit {
 	all = append(all, asmeB40()...)
 	all = append(all, jisB7503()...)
 	return append(all, Limit{
-		Name: "band indicator", ErrorSI: 3e-6, HysteresisSI: 2e-6, Origin: Judgement, HystOrigin: Judgement,
+		Name: "band indicator", Dim: mill.DimLength, ErrorSI: 3e-6, HysteresisSI: 2e-6, Origin: Judgement, HystOrigin: Judgement,
 		Source: "what an indicator on a band of 20 in needs so that it does not lead the budget",
 	})
 }
@@ -96,6 +100,7 @@ func jisB7503() []Limit {
 		um := func(i int) float64 { return r.um[i] * 1e-6 }
 		all = append(all, Limit{
 			Name:         fmt.Sprintf("JIS B 7503:2011, %s", r.row),
+			Dim:          mill.DimLength,
 			HysteresisSI: um(0), RepeatSI: um(1), EntireSI: um(5),
 			Partial: []PartialSI{{0.1, um(2)}, {0.5, um(3)}, {1, um(4)}},
 			Origin:  FromStandard, HystOrigin: FromStandard, Source: "JIS B 7503:2011, reprinted table",

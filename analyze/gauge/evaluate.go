@@ -52,7 +52,7 @@ type Curve struct {
 
 // Evaluate works a test out. The same test gives the same result to the last
 // bit. Errors: ErrNoPoints, estimate.ErrBadValue, mill.ErrUnknownName for a limit
-// or rule that is not known.
+// or rule that is not known, ErrKind.
 func Evaluate(t Test) (*Result, error) {
 	w, err := newWork(t)
 	if err != nil {
@@ -108,8 +108,10 @@ func newWork(t Test) (*work, error) {
 	if w.res.Rule, err = FindRule(orText(t.Rule, t.Plan.Rule)); err != nil {
 		return nil, err
 	}
-	w.res.Limit, err = ChooseLimit(t)
-	return w, err
+	if w.res.Limit, err = ChooseLimit(t); err != nil {
+		return nil, err
+	}
+	return w, checkKinds(t, w.res.Limit)
 }
 
 // ChooseLimit is the limit that a test is judged by: the one named, the plan's,

@@ -376,6 +376,7 @@ func TestWhatWasNotCheckedIsListed(t *testing.T) {
 // JIS B 7503 judges how far errors spread within parts of a turn.
 func TestErrorsOverPartsOfATurn(t *testing.T) {
 	b := newBench(t, Indicator, 0, 100, 200, 300, 400)
+	b.test.Instruments.Reference.Limit = mill.Setting{}
 	b.test.Plan.Down = false
 	b.test.Instruments.Tested.Revolution.SI = 200
 	for i, off := range []float64{0, 3, 1, 6, 2} {
@@ -388,5 +389,35 @@ func TestErrorsOverPartsOfATurn(t *testing.T) {
 	near(t, "all", spanOfErrors(c, math.Inf(1)).Value, 6, 1e-9)
 	if spanOfErrors(c, 20).Known() {
 		t.Error("errors over a tenth of a turn from points half a turn apart")
+	}
+}
+
+// A limit of 0.002 mm would make a reference of 2e-6 Pa, and a limit of 3 psi
+// lets every indicator pass.
+func TestNothingInAnotherQuantityIsCompared(t *testing.T) {
+	for name, change := range map[string]func(*Test){
+		"reference's limit":  func(x *Test) { x.Instruments.Reference.Limit = setting(t, "0.002 mm") },
+		"reference's range":  func(x *Test) { x.Instruments.Reference.High = setting(t, "25 mm") },
+		"tested one's limit": func(x *Test) { x.Instruments.Tested.Limit = setting(t, "1.6 N m") },
+		"tested one's count": func(x *Test) { x.Instruments.Tested.Division = setting(t, "0.01 mm") },
+		"limit of the user's": func(x *Test) {
+			x.Limits, x.Limit = []mill.GaugeLimit{{Name: "mine", Error: setting(t, "3 mm")}}, "mine"
+		},
+		"limit of the program": func(x *Test) { x.Limit = "band indicator" },
+		"bench record": func(x *Test) {
+			x.Instruments.Reference.Bench = &mill.Bench{Points: []mill.BenchPoint{{At: setting(t, "1 mm"), Rising: setting(t, "0 mm"), Uncertainty: setting(t, "1 um")}}}
+		},
+	} {
+		b := newBench(t, Transducer, 0, 1e5)
+		b.read(0, Up, 0, 0, 0, 0)
+		b.read(1, Up, 0, 0, 1e5, 1e5)
+		b.evaluate()
+		change(&b.test)
+		if _, err := Evaluate(b.test); !errors.Is(err, ErrKind) {
+			t.Errorf("%s: evaluated: %v", name, err)
+		}
+		if _, err := BeforeStart(b.test, time.Time{}); !errors.Is(err, ErrKind) {
+			t.Errorf("%s: started: %v", name, err)
+		}
 	}
 }

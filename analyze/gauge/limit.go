@@ -24,6 +24,7 @@ const (
 // zero is none.
 type Limit struct {
 	Name            string
+	Dim             mill.Dim   // of the limits in SI; "" where all are shares
 	Shares          [3]float64 // of error: lower quarter, middle half and upper quarter of the scale
 	ErrorSI         float64    // of error, in place of Shares
 	HysteresisShare float64
@@ -117,6 +118,11 @@ func ownLimit(g mill.GaugeLimit) Limit {
 		HysteresisShare: g.HysteresisShare, HysteresisSI: g.Hysteresis.SI, RepeatSI: g.Repeatability.SI,
 		Origin: FromUser, Source: g.Source,
 	}
+	for _, q := range []mill.Setting{g.Error, g.Hysteresis, g.Repeatability} {
+		if q.Given() {
+			l.Dim = q.Unit.Dim
+		}
+	}
 	if l.HysteresisShare > 0 || l.HysteresisSI > 0 {
 		l.HystOrigin = FromUser
 	}
@@ -125,5 +131,5 @@ func ownLimit(g mill.GaugeLimit) Limit {
 
 // plateLimit is an instrument's own limit of error.
 func plateLimit(i mill.Instrument) Limit {
-	return Limit{Name: "its own limit, " + i.Limit.Entered, ErrorSI: i.Limit.SI, Origin: FromPlate, Source: "limit in mill.toml"}
+	return Limit{Name: "its own limit, " + i.Limit.Entered, Dim: i.Limit.Unit.Dim, ErrorSI: i.Limit.SI, Origin: FromPlate, Source: "limit in mill.toml"}
 }

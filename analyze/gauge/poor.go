@@ -22,7 +22,7 @@ const referenceShare = 0.25
 // BeforeStart says what is wrong with a test before it starts: a reference too
 // poor for the limit, out of its range, overdue, failed, or of unknown error. The
 // test needs its plan, instruments, limit and rule; day may be zero where it is
-// not known. The error is a mill.ErrUnknownName for a limit or rule.
+// not known. The errors are mill.ErrUnknownName for a limit or rule, and ErrKind.
 func BeforeStart(t Test, day time.Time) ([]Doubt, error) {
 	limit, err := ChooseLimit(t)
 	if err != nil {
@@ -30,6 +30,9 @@ func BeforeStart(t Test, day time.Time) ([]Doubt, error) {
 	}
 	rule, err := FindRule(orText(t.Rule, t.Plan.Rule))
 	if err != nil {
+		return nil, err
+	}
+	if err := checkKinds(t, limit); err != nil {
 		return nil, err
 	}
 	var found []Doubt

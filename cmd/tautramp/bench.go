@@ -179,15 +179,9 @@ func (o *benchOptions) check() error {
 	if !(o.speed > 0) || o.speed > 1000 || o.patience <= 0 {
 		return &usageError{"--speed must be above 0 and at most 1000, --patience above 0"}
 	}
-	for flag, q := range map[string]struct {
-		text string
-		dims []mill.Dim
-	}{"--height": {o.about.Height, []mill.Dim{mill.DimLength}}, "--stop-at": {o.about.StopAt, nil}} {
-		if q.text == "" {
-			continue
-		}
-		if _, err := mill.ParseQuantity(q.text, q.dims...); err != nil {
-			return &usageError{flag + ": " + err.Error()}
+	if o.about.Height != "" {
+		if _, err := mill.ParseQuantity(o.about.Height, mill.DimLength); err != nil {
+			return &usageError{"--height: " + err.Error()}
 		}
 	}
 	if o.about.NextDue != "" {
@@ -213,12 +207,18 @@ func (o *benchOptions) header(e env) (recording.Header, gauge.Plan, error) {
 	if _, err := namedInstrument(profile, "--reference", o.about.Reference); err != nil {
 		return h, gauge.Plan{}, err
 	}
+	if o.about.Tested == o.about.Reference {
+		return h, gauge.Plan{}, &usageError{"--instrument and --reference name the same one, " + tested.Name + ": nothing is tested against itself"}
+	}
 	low, high, err := o.span(tested)
 	if err != nil {
 		return h, gauge.Plan{}, err
 	}
 	plan, err := planFor(o.plan, low, high)
 	if err != nil {
+		return h, plan, err
+	}
+	if err := o.checkStopAt(plan); err != nil {
 		return h, plan, err
 	}
 	now := e.wall()
@@ -231,6 +231,21 @@ func (o *benchOptions) header(e env) (recording.Header, gauge.Plan, error) {
 		Program: programVersion(), Started: now, Source: recording.Live, ClockFactor: o.speed,
 		Devices: o.ports, Profile: text, Parsed: profile, Bench: &about,
 	}, plan, nil
+}
+
+// checkStopAt refuses an alarm that the plan itself would raise.
+func (o *benchOptions) checkStopAt(p gauge.Plan) error {
+	if o.about.StopAt == "" {
+		return nil
+	}
+	q, err := mill.ParseQuantity(o.about.StopAt, p.Dim())
+	if err != nil {
+		return &usageError{"--stop-at: " + err.Error()}
+	}
+	if top := p.Points[len(p.Points)-1]; q.SI <= top.SI {
+		return &usageError{fmt.Sprintf("--stop-at %s: the plan goes up to %s; give a shorter --range, or a plan that stays below", o.about.StopAt, top.Entered)}
+	}
+	return nil
 }
 
 func namedInstrument(p *mill.Profile, flag, name string) (mill.Instrument, error) {

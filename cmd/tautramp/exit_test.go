@@ -26,6 +26,7 @@ func TestEachClassOfErrorHasItsExitCode(t *testing.T) {
 		{&usageError{"no"}, 2},
 		{&mill.ProfileError{Line: 3, Key: "band.net_width", Problem: "no unit"}, 3},
 		{mill.ErrUnknownName, 2},
+		{gauge.ErrKind, 2},
 		{port.ErrNotFound, 4},
 		{port.ErrBusy, 4},
 		{port.ErrBadName, 4},
