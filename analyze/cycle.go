@@ -3,7 +3,6 @@ package analyze
 import (
 	"fmt"
 	"math"
-	"slices"
 
 	"tautramp/analyze/estimate"
 )
@@ -68,7 +67,7 @@ func (w *work) findCycles() error {
 		c := Cycle{Role: Incomplete, First: first, Peak: peak, Last: len(w.p) - 1, TopSI: w.p[peak]}
 		if i+1 < len(turns) {
 			c.Last = turns[i+1]
-			if w.p[peak]-w.p[c.Last] >= closedShare*(w.p[peak]-w.p[first]) || w.declared(peak, c.Last) {
+			if w.p[peak]-w.p[c.Last] >= closedShare*(w.p[peak]-w.p[first]) {
 				c.Role = Ramp
 			}
 		}
@@ -85,17 +84,6 @@ func (w *work) findCycles() error {
 	}
 	w.chooseWindow()
 	return nil
-}
-
-// declared tells whether the operator said, after the top and while the setting
-// stood low, that this is the low end: a screw never comes to rest at a slack
-// band.
-func (w *work) declared(peak, low int) bool {
-	until := w.t[low]
-	for i := low; i < len(w.p) && w.p[i] < (w.p[peak]+w.p[low])/2; i++ {
-		until = w.t[i]
-	}
-	return slices.ContainsFunc(w.set.Turns, func(t float64) bool { return t > w.t[peak] && t <= until })
 }
 
 // assignRoles makes the first closed cycles exercise, as planned, and returns

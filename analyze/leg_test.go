@@ -128,30 +128,3 @@ func TestEveryBranchSaysItsMethodAndShape(t *testing.T) {
 		}
 	}
 }
-
-func TestOutliersAreCountedAndMoveNothing(t *testing.T) {
-	clean := newBench(43).measure(cycles(smooth, 4, 20, 860))
-	before := analyzed(t, clean)
-	if warned(before, "outliers") {
-		t.Errorf("outliers in clean pairs: %v", before.Warnings)
-	}
-	// Every fortieth reading of the first ramp is off by a hundred counts.
-	c := before.Cycles[before.work.fitted[0]]
-	put := 0
-	for i := c.First; i <= c.Last; i += 40 {
-		clean.Pairs[i].Extension += 100 * before.Setup.CountM
-		if before.Points[i].Fitted {
-			put++
-		}
-	}
-	r := analyzed(t, clean)
-	c = r.Cycles[r.work.fitted[0]]
-	if n := c.Rising.Outliers + c.Falling.Outliers; n < put-2 || n > put+2 || put < 20 || !warned(r, "outliers") {
-		t.Errorf("%d outliers counted, %d put in: %v", n, put, r.Warnings)
-	}
-	near(t, "rising setting", r.AtRising.SettingSI.Value, before.AtRising.SettingSI.Value, 0.0005)
-	near(t, "falling setting", r.AtFalling.SettingSI.Value, before.AtFalling.SettingSI.Value, 0.0005)
-	if len(r.Steps) > 0 {
-		t.Errorf("steps: %s", stepsText(r.Steps))
-	}
-}

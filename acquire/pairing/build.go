@@ -30,8 +30,6 @@ func FromRecording(rec *recording.Recording) (*Set, error) {
 		Extension: in.channel(chosen.extension, samples),
 		Others:    in.others(chosen, samples),
 		Marks:     in.marks.placed(),
-		Vents:     in.marks.vents,
-		Turns:     in.marks.turns,
 		Clocks:    in.clocks(),
 		Counters:  in.counters(),
 		Plan:      Plan{Exercise: rec.Header.Plan.Exercise, Ramps: rec.Header.Plan.Ramps},

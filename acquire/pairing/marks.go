@@ -15,8 +15,6 @@ const longPressS = 1.5
 // marks collects what the operator said. A nil *marks keeps nothing.
 type marks struct {
 	all     []pendingMark
-	vents   []float64 // s
-	turns   []float64 // s
 	presses recording.Presses
 }
 
@@ -66,10 +64,6 @@ func (m *marks) event(e recording.Entry) {
 		m.host(e, Operator)
 	case recording.ZeroMark:
 		m.host(e, Zero)
-	case recording.Vented:
-		m.vents = append(m.vents, e.At.Seconds())
-	case recording.LowerTurn:
-		m.turns = append(m.turns, e.At.Seconds())
 	case recording.Undo:
 		m.undo()
 	}

@@ -105,8 +105,6 @@ type Set struct {
 	Others    []Channel // temperature and the like
 	Pairs     []Pair
 	Marks     []Mark
-	Vents     []float64 // s, at which the operator said that the setting's sensor was closed off and vented
-	Turns     []float64 // s, at which the operator declared the low end of a cycle; no undo takes them back
 	Clocks    []ClockFit
 	Counters  []Counters
 	Unpaired  int // good extension readings without a setting at their instant

@@ -325,7 +325,6 @@ func TestMarksStandOnTheHostTimeline(t *testing.T) {
 	entries := append(b.lines,
 		event(-1, 12*time.Second, recording.Mark, "pump squeals"),
 		event(-1, 13*time.Second, recording.ZeroMark, ""),
-		event(-1, 14*time.Second, recording.LowerTurn, ""),
 		event(-1, 14*time.Second, recording.Undo, ""),
 		event(-1, 11*time.Second, recording.ZeroMark, ""))
 	set := build(t, header(t, 1), entries)
@@ -335,9 +334,6 @@ func TestMarksStandOnTheHostTimeline(t *testing.T) {
 	want := []Mark{{T: 9.9, Kind: Button, Text: "1"}, {T: 11, Kind: Zero}, {T: 12, Kind: Operator, Text: "pump squeals"}}
 	if !reflect.DeepEqual(set.Marks, want) {
 		t.Errorf("marks %v, want %v", set.Marks, want)
-	}
-	if !reflect.DeepEqual(set.Turns, []float64{14}) { // the undo took the mark before it
-		t.Errorf("turns %v", set.Turns)
 	}
 }
 

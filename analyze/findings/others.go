@@ -15,9 +15,6 @@ func (d *data) vent() estimate.Estimate {
 	if !d.usable() || !d.pressureSet() {
 		return estimate.Unknown(noVent)
 	}
-	if e := d.atVent(); e.Known() {
-		return e
-	}
 	low := math.Inf(1)
 	for _, p := range d.follow.p {
 		low = math.Min(low, p)
@@ -27,27 +24,6 @@ func (d *data) vent() estimate.Estimate {
 		return known(-low/d.workingSI, 2*noise/d.workingSI, math.Inf(1), "lowest reading: below none")
 	}
 	return estimate.Unknown(noVent)
-}
-
-// atVent is the reading within a second of where the operator said last that
-// the gauge was vented, as a share of the working setting.
-func (d *data) atVent() estimate.Estimate {
-	if d.set == nil || len(d.set.Vents) == 0 {
-		return estimate.Unknown(noVent)
-	}
-	const about, least = 1.0, 5 // s, readings
-	at := d.set.Vents[len(d.set.Vents)-1]
-	var read []float64
-	for _, r := range d.set.Setting.Readings {
-		if r.Status.Ok() && math.Abs(r.T-at) <= about {
-			read = append(read, r.Value)
-		}
-	}
-	if len(read) < least {
-		return estimate.Unknown(noVent)
-	}
-	_, sd := estimate.Mean(read)
-	return known(math.Abs(estimate.Median(read))/d.workingSI, sd/math.Sqrt(float64(len(read)))/d.workingSI, float64(len(read)-1), "reading where it was said to be vented")
 }
 
 // spans is how far the slopes of two spans differ, where both were measured.
@@ -145,7 +121,7 @@ func (d *data) findLag() estimate.Estimate {
 
 // hiddenByCount is how much of the time from count to count on the ramp a lag is
 // in doubt by. Judgement.
-const hiddenByCount = 0.1
+const hiddenByCount = 0.3
 
 // intoHold goes on some seconds into a hold after a rise: where the setting
 // stops, a lag shows.

@@ -105,5 +105,6 @@ func widthRivals() []rival {
 	return []rival{
 		{"lag between the instruments", []test{{fLagWidth, Above, mill.LagWidth}}},
 		{"a mount that slipped between the branches", slipTests()},
+		{"stick-slip", jumpTests()},
 	}
 }

@@ -115,15 +115,26 @@ func (d *data) soft() estimate.Estimate {
 		return estimate.Unknown("too little was recorded")
 	}
 	var values, stds []float64
+	waits := 0.0
 	for _, c := range d.r.Cycles {
-		if v, ok := d.softness(c); ok && c.Role != analyze.Incomplete {
+		if v, wait, ok := d.softness(c); ok && c.Role != analyze.Incomplete {
 			values, stds = append(values, v), append(stds, 0.1)
+			waits = math.Max(waits, wait)
 		}
 	}
-	return over(values, stds, "time up to the slack lift", "the ramps do not begin with a slack band, well below its lift")
+	e := over(values, stds, "time up to the slack lift", "the ramps do not begin with a slack band, well below its lift")
+	if e.Known() {
+		e.System = waits
+	}
+	return e
 }
 
-func (d *data) softness(c analyze.Cycle) (ratio float64, ok bool) {
+// pauseS is how long an operator may pause or a stroke take, s: so much of the
+// time up to the lift is no sign of air. Judgement.
+const pauseS = 1.5
+
+// softness is of one rise; wait is what a pause makes of it.
+func (d *data) softness(c analyze.Cycle) (ratio, wait float64, ok bool) {
 	p := d.follow.p
 	zero := d.zeroM()
 	leaves := c.First
@@ -132,13 +143,13 @@ func (d *data) softness(c analyze.Cycle) (ratio float64, ok bool) {
 	}
 	rest := search(d.t, d.t[c.First]-3)
 	if leaves-rest < 16 {
-		return 0, false
+		return 0, 0, false
 	}
 	from := estimate.Quantile(p[rest:leaves], 0.05)
 	lift := math.Min((zero-d.up.a)/d.up.b, upperMedian(p[rest:leaves], (from+p[leaves-1])/2))
 	rise, rate := lift-from, d.meanRate(c)
 	if rise < 20*estimate.Noise(p) || !(rate > 0) {
-		return 0, false
+		return 0, 0, false
 	}
 	begun, end := -1, -1
 	for i := rest; i < leaves; i++ {
@@ -150,9 +161,10 @@ func (d *data) softness(c analyze.Cycle) (ratio float64, ok bool) {
 		}
 	}
 	if begun < 0 || end <= begun {
-		return 0, false
+		return 0, 0, false
 	}
-	return (d.t[end] - d.t[begun]) * rate / (0.75 * rise), true
+	pace := rate / (0.75 * rise)
+	return (d.t[end] - d.t[begun]) * pace, pauseS * pace, true
 }
 
 // upperMedian is the median of the values above a level: where the wheel crosses

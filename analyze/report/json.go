@@ -61,6 +61,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 		{"grade", gradeJSON(r.Grade)},
 		{"grade_says", v.Says},
 		{"findings", foundJSON(m.Found, by)},
+		{"found_and_left", beforeJSON(m.Before, r, by)},
 		{"running_band", runningJSON(r.Running)},
 		{"table", tableJSON(r, by)},
 		{"bands", reachJSON(r, by)},

@@ -33,6 +33,9 @@ type Meta struct {
 
 	Found *findings.Report // what is wrong with the tensioner; nil where nobody looked
 
+	Before     *findings.Comparison // condition found against left; nil where it was not asked for
+	BeforeFile string               // the recording of the condition found
+
 	CautionsShown bool // the reader of Text has had the cautions on the same screen: they are not repeated there
 }
 

@@ -28,6 +28,7 @@ type sheet struct {
 	Drivetrain  drivetrain
 	Bands       []fact // on file: whether this tensioner can bring them to their target
 	Found       foundSheet
+	Before      beforeSheet
 	Running     []fact    // the one-sided running band
 	RunningNote string    // what it is
 	Branches    []fact    // the two lines
@@ -60,6 +61,7 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		Drivetrain:  drivetrainOf(r, u, s),
 		Bands:       reachFacts(r, u),
 		Found:       foundOf(m.Found, u),
+		Before:      beforeOf(m.Before, m.BeforeFile, u),
 		Running:     runningFacts(r, u),
 		RunningNote: runningNote(),
 		Branches:    []fact{branchFact(analyze.Rising, r.Rising, u), branchFact(analyze.Falling, r.Falling, u)},

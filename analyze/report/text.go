@@ -25,6 +25,7 @@ func Text(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	p.facts(sh.Identity)
 	p.targets(sh)
 	p.friction(sh)
+	p.before(sh.Before)
 	p.found(sh.Found)
 	p.heading("Running band")
 	p.para(2, sh.RunningNote)

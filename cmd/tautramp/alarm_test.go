@@ -28,26 +28,15 @@ type puppet struct {
 	seq  uint16
 	psi  float64
 	run  bool
-
-	speed  float64       // clock factor
-	period time.Duration // between two readings of the gauge
-	slower int           // so many of them to one of the stretch
 }
 
-// every sets how often the puppet reads.
-func (p *puppet) every(period time.Duration, slower int) {
-	p.mu.Lock()
-	defer p.mu.Unlock()
-	p.period, p.slower = period, slower
-}
-
-func newPuppet(t testing.TB, speed float64) *puppet {
+func newPuppet(t testing.TB) *puppet {
 	t.Helper()
 	pair, err := port.NewPair()
 	if err != nil {
 		t.Fatal(err)
 	}
-	p := &puppet{t: t, pair: pair, born: time.Now(), psi: 35, speed: speed, period: 20 * time.Millisecond, slower: 5}
+	p := &puppet{t: t, pair: pair, born: time.Now(), psi: 35}
 	t.Cleanup(func() { pair.Close() })
 	go p.listen()
 	go p.speak()
@@ -56,7 +45,7 @@ func newPuppet(t testing.TB, speed float64) *puppet {
 
 // tick is the board's clock: it keeps the pace of a clock that runs factor
 // times as fast as the wall's.
-func (p *puppet) tick() uint32 { return uint32(int64(time.Since(p.born).Seconds() * 1e6 * p.speed)) }
+func (p *puppet) tick() uint32 { return uint32(time.Since(p.born).Microseconds() * alarmSpeed) }
 
 // send writes records; the puppet is locked.
 func (p *puppet) send(records ...protocol.Record) {
@@ -96,17 +85,14 @@ func (p *puppet) listen() {
 	}
 }
 
-// speak sends readings, 50 a second of the gauge and 10 of the stretch to begin
-// with.
+// speak sends 50 readings a second of the gauge, and 10 of the stretch.
 func (p *puppet) speak() {
-	due := time.Now()
 	for i := 0; p.t.Context().Err() == nil; i++ {
-		time.Sleep(time.Until(due))
+		time.Sleep(20 * time.Millisecond)
 		p.mu.Lock()
-		due = due.Add(p.period)
 		if p.run {
 			p.reading()
-			if i%p.slower == 0 {
+			if i%5 == 0 {
 				p.send(protocol.Val{Channel: 'b', Seq: p.next(), Tick: p.tick(), Status: protocol.Good, Count: 10, HasCount: true})
 			}
 		}
@@ -135,36 +121,30 @@ func (p *puppet) jump(psi float64) time.Time {
 const alarmSpeed = 10
 
 // alarmPage is a page on which a visit with a puppet runs.
-func alarmPage(t testing.TB, speed float64) (*puppet, string) {
+func alarmPage(t testing.TB) (*puppet, string) {
 	t.Helper()
 	t.Chdir(t.TempDir())
-	p := newPuppet(t, speed)
-	address := strings.TrimPrefix(runHere(t, "page", "--no-open", "--listen", "127.0.0.1:0", "--speed", fmt.Sprint(speed)), "page: ")
-	p.begin(address)
-	return p, address
-}
-
-// begin starts a visit with the puppet on a page.
-func (p *puppet) begin(address string) {
-	p.t.Helper()
 	if err := os.WriteFile("mill.toml", mill.Example(), 0o644); err != nil {
-		p.t.Fatal(err)
+		t.Fatal(err)
 	}
+	p := newPuppet(t)
+	address := strings.TrimPrefix(runHere(t, "page", "--no-open", "--listen", "127.0.0.1:0", "--speed", fmt.Sprint(alarmSpeed)), "page: ")
 	order := fmt.Sprintf(`{"kind":"ramps","tensioner":"T-1","band":"QW-6","ports":[%q],"exercise":1,"ramps":0}`, p.pair.Path)
 	r, err := http.NewRequest("POST", address+"start", strings.NewReader(order))
 	if err != nil {
-		p.t.Fatal(err)
+		t.Fatal(err)
 	}
 	r.Header.Set("Content-Type", "application/json")
 	r.Header.Set("Origin", strings.TrimSuffix(address, "/"))
 	answer, err := http.DefaultClient.Do(r)
 	if err != nil {
-		p.t.Fatal(err)
+		t.Fatal(err)
 	}
 	answer.Body.Close()
 	if answer.StatusCode != http.StatusAccepted {
-		p.t.Fatalf("the visit does not start: %s", answer.Status)
+		t.Fatalf("the visit does not start: %s", answer.Status)
 	}
+	return p, address
 }
 
 // watchAlarms tells, from the page's stream, when each alarm comes and when it
@@ -197,7 +177,7 @@ func watchAlarms(t testing.TB, address string) <-chan time.Time {
 
 // alarmDelays is how long each of n alarms took from the line to the stream.
 func alarmDelays(t testing.TB, n int) []time.Duration {
-	p, address := alarmPage(t, alarmSpeed)
+	p, address := alarmPage(t)
 	changes := watchAlarms(t, address)
 	var delays []time.Duration
 	for i := range n {
@@ -244,7 +224,7 @@ func BenchmarkAlarm(b *testing.B) {
 func TestAlarmIsOnTheScreenAtOnce(t *testing.T) {
 	needTerminals(t)
 	b := openBrowser(t, 800, 600)
-	p, address := alarmPage(t, alarmSpeed)
+	p, address := alarmPage(t)
 	b.do("open the page", chromedp.Navigate(address))
 	b.wait("!document.querySelector('#ramp').hidden && document.querySelector('#setting').innerText !== '--'", 20*time.Second)
 	ask[bool](b, `(() => { window.shown = []; new MutationObserver(() => { if (!document.querySelector("#alarm").hidden) requestAnimationFrame(() => window.shown.push(Date.now())); })

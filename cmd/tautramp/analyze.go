@@ -4,8 +4,11 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"path/filepath"
 
 	"tautramp/acquire/mill"
+	"tautramp/analyze"
+	"tautramp/analyze/findings"
 	"tautramp/analyze/report"
 )
 
@@ -13,10 +16,12 @@ func runAnalyze(_ context.Context, args []string, e env) error {
 	var r resultFlags
 	var other otherBand
 	var schema bool
+	var before string
 	fs := flags("analyze", "FILE.ramp", "Computes the result of a recording again, from its raw lines.", e)
 	r.add(fs)
 	other.add(fs)
 	fs.StringVar(&r.instruments, "instruments", "", instrumentsAbout)
+	fs.StringVar(&before, "before", "", "recording of the condition found, to compare this one with")
 	fs.BoolVar(&schema, "schema", false, "print the JSON Schema of --json and stop")
 	if err := parse(fs, args, 0, 1); err != nil {
 		return err
@@ -35,6 +40,7 @@ func runAnalyze(_ context.Context, args []string, e env) error {
 	if err != nil {
 		return err
 	}
+	r.before = before
 	return analyzeFile(fs.Arg(0), r, other, system, target, false, e)
 }
 
@@ -59,6 +65,11 @@ func analyzeFile(path string, r resultFlags, other otherBand, system mill.System
 			return fmt.Errorf("%s: %w", path, err)
 		}
 	}
+	if r.before != "" {
+		if err := compareWith(r.before, res, &meta, target); err != nil {
+			return err
+		}
+	}
 	meta.CautionsShown = cautionsShown
 	if err := r.write(res, meta, system, e); err != nil {
 		return err
@@ -67,6 +78,18 @@ func analyzeFile(path string, r resultFlags, other otherBand, system mill.System
 		// What was written stands: the other figures are good.
 		return fmt.Errorf("%s: %w", path, &explainedError{report.Explain(err, system), err})
 	}
+	return nil
+}
+
+// compareWith puts the comparison with an earlier recording into a result's
+// report.
+func compareWith(path string, left *analyze.Result, meta *report.Meta, target mill.Pressure) error {
+	found, _, err := computeResult(path, target)
+	if err != nil {
+		return err
+	}
+	c := findings.Compare(found, left)
+	meta.Before, meta.BeforeFile = &c, filepath.Base(path)
 	return nil
 }
 

@@ -367,7 +367,7 @@ func TestAlarmFillsTheScreen(t *testing.T) {
 	}
 	b := openPage(t, 360, 740, "band-port")
 	runHere(t, "rig", "--link", "band-port", "--speed", browserSpeed)
-	b.start(`{kind: "ramps", tensioner: "T-1", band: "QW-6", ports: ["band-port"], exercise: 1, ramps: 1}`)
+	ask[string](b, `fetch("/start", {method: "POST", headers: {"Content-Type": "application/json"}, body: JSON.stringify({kind: "ramps", tensioner: "T-1", band: "QW-6", ports: ["band-port"], exercise: 1, ramps: 1})}).then((r) => r.text())`)
 	b.wait("!document.querySelector('#alarm').hidden && document.activeElement.id === 'alarm'", 20*time.Second)
 	b.shot("alarm-phone")
 	words := b.text("#alarm")

@@ -22,6 +22,7 @@ import (
 // resultFlags are the ways a result leaves the program; capture and analyze
 // share them, and share computeResult, so that both give the same bytes.
 type resultFlags struct {
+	before string // recording of the condition found; "" for none
 	units  string
 	target string
 	json   string

@@ -25,7 +25,7 @@ type Config struct {
 	AimSI    float64          // setting to stop at, for one approach to a card's number; 0: what the plan needs
 	Cautions []string         // recorded as prompts before anything else; the caller shows them
 
-	// OnStatus draws. It is called from one goroutine, at most about twelve times
+	// OnStatus draws. It is called from one goroutine, at most about ten times
 	// a real second and at once when phase, cycle, alarm or next step change;
 	// while it works the capture waits. It may be nil.
 	OnStatus func(Status)

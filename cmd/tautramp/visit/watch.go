@@ -42,7 +42,7 @@ type source struct {
 
 // statusEvery is the shortest real time between two statuses that differ in
 // numbers only.
-const statusEvery = 80 * time.Millisecond
+const statusEvery = 100 * time.Millisecond
 
 func newWatch(cfg Config) (*watch, error) {
 	s, err := newSite(cfg.Header)
