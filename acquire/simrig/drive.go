@@ -149,6 +149,8 @@ func (r *driver) cycle(d Drive, c course, top float64, cycle int) error {
 	if c.mark == bySetting {
 		low = 0 // a loose screw has neither torque nor squeeze
 	}
+	// Steps are of one height, in exercise too; the odd step's half is left out.
+	steps = max(1, int(math.Ceil(float64(steps)*(top-low)/(c.top-low)-0.5)))
 	level := func(i int) float64 { return low + (top-low)*float64(i)/float64(steps) }
 	stepHold := orNone(d.StepHoldS, 6)
 	for i := 1; i <= steps; i++ {

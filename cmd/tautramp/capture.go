@@ -159,7 +159,7 @@ func (o *captureOptions) check() (mill.System, mill.Pressure, error) {
 
 // header fills in what the wire cannot say, and settles the file's name.
 func (o *captureOptions) header(s site, e env) (recording.Header, error) {
-	presses, err := o.presses(s.tensioner)
+	presses, err := o.presses(s.tensioner, o.plan)
 	if err != nil {
 		return recording.Header{}, err
 	}

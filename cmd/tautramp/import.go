@@ -39,7 +39,7 @@ func runImport(ctx context.Context, args []string, e env) error {
 	if err != nil {
 		return err
 	}
-	presses, err := press.presses(s.tensioner)
+	presses, err := press.presses(s.tensioner, plan)
 	if err != nil {
 		return err
 	}

@@ -32,14 +32,14 @@ func (p *pressFlags) add(fs *pflag.FlagSet) {
 }
 
 // presses is what the recording is to say of them.
-func (p *pressFlags) presses(t mill.Tensioner) (recording.Presses, error) {
+func (p *pressFlags) presses(t mill.Tensioner, plan recording.Plan) (recording.Presses, error) {
 	switch {
 	case p.dial != "" && p.step != "":
 		return recording.Presses{}, &usageError{"a press is either a mark of the --dial or a --step, not both"}
 	case p.dial != "":
 		return dialPresses(p.dial, t)
 	case p.step != "":
-		return steppedPresses(p.stepFlags, t)
+		return steppedPresses(p.stepFlags, t, plan)
 	case p.from != "" || p.top != "" || p.doubt != "":
 		return recording.Presses{}, &usageError{"--from, --top and --step-doubt go with --step"}
 	}
@@ -63,8 +63,9 @@ func dialPresses(list string, t mill.Tensioner) (recording.Presses, error) {
 const mostSteps = 200
 
 // steppedPresses is one cycle of steps: from the first to the top, and down to
-// the one before the first, from where it begins again.
-func steppedPresses(f stepFlags, t mill.Tensioner) (recording.Presses, error) {
+// the one before the first, from where it begins again. Exercise goes halfway
+// up only, and so all cycles are listed where there is any.
+func steppedPresses(f stepFlags, t mill.Tensioner, plan recording.Plan) (recording.Presses, error) {
 	p := recording.Presses{As: recording.PressStep, Doubt: f.doubt}
 	refuse := func(format string, args ...any) (recording.Presses, error) {
 		return recording.Presses{}, &usageError{fmt.Sprintf(format, args...)}
@@ -95,11 +96,31 @@ func steppedPresses(f stepFlags, t mill.Tensioner) (recording.Presses, error) {
 	case f.doubt != "" && !(q["step-doubt"].SI > 0):
 		return refuse("--step-doubt %s must be above zero", f.doubt)
 	}
-	for i := range 2 * int(n) {
-		up := math.Min(float64(i), 2*n-float64(i))
-		p.Marks = append(p.Marks, quantityText(from+up*step, unit.Name))
+	stairs := func(top int) {
+		for i := range 2 * top {
+			p.Marks = append(p.Marks, quantityText(from+float64(min(i, 2*top-i))*step, unit.Name))
+		}
+	}
+	for range plan.Exercise {
+		stairs(max(1, int(n)/2))
+	}
+	for range rampsListed(plan) {
+		stairs(int(n))
 	}
 	return p, nil
+}
+
+// rampsListed is how many ramps the presses are listed for: one, that begins
+// again and again, unless exercise comes first.
+func rampsListed(plan recording.Plan) int {
+	const manyRamps = 20 // where nobody said when to end
+	switch {
+	case plan.Exercise == 0:
+		return 1
+	case plan.Ramps == 0:
+		return manyRamps
+	}
+	return plan.Ramps
 }
 
 func orZero(text string) string {

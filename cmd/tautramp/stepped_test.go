@@ -3,6 +3,7 @@ package main
 import (
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 	"time"
 
@@ -51,7 +52,7 @@ func steppedRehearsal(t *testing.T, steps int, presses recording.Presses) string
 // alone: 724 psi rising and 621 falling for 9,500 psi of band stress, the
 // invented demo mill's.
 func TestASteppedSettingGivesTheTrueSettings(t *testing.T) {
-	presses, err := steppedPresses(stepFlags{step: "40 psi", from: "20 psi", top: "860 psi", doubt: "1 psi"}, mill.Tensioner{SetBy: mill.SetByPressure})
+	presses, err := steppedPresses(stepFlags{step: "40 psi", from: "20 psi", top: "860 psi", doubt: "1 psi"}, mill.Tensioner{SetBy: mill.SetByPressure}, recording.Plan{})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -62,6 +63,24 @@ func TestASteppedSettingGivesTheTrueSettings(t *testing.T) {
 	}
 	within(t, "rising setting", res.AtRising.TrueSI, 724*psi, 0.01)
 	within(t, "falling setting", res.AtFalling.TrueSI, 621*psi, 0.01)
+}
+
+// Exercise goes to about half, so its steps do too: else every later press
+// would stand for another step.
+func TestStepsOfExerciseGoHalfwayUp(t *testing.T) {
+	flags := stepFlags{step: "2 lbf ft", top: "10 lbf ft"}
+	screw := mill.Tensioner{SetBy: mill.SetByTorque}
+	p, err := steppedPresses(flags, screw, recording.Plan{Exercise: 2, Ramps: 1})
+	if err != nil {
+		t.Fatal(err)
+	}
+	want := "0 2 4 2 0 2 4 2 0 2 4 6 8 10 8 6 4 2"
+	if got := strings.ReplaceAll(strings.Join(p.Marks, " "), " lbf ft", ""); got != want {
+		t.Errorf("presses at %s, want %s", got, want)
+	}
+	if p, err = steppedPresses(flags, screw, recording.Plan{Exercise: 1}); err != nil || len(p.Marks) < 4+10*10 {
+		t.Errorf("without an end: %d presses, %v", len(p.Marks), err)
+	}
 }
 
 // TestDialMarksStandWhereTheyWerePressed wants each declared mark of the mill's
