@@ -14,7 +14,7 @@ type Sample struct{ T, ReferenceSI, IndicatedSI float64 }
 type Reversal struct {
 	AtSI    float64 // reference at the turn
 	InputSI float64 // size of the change that gave none
-	DoubtSI float64 // half of the step between two samples, and the count
+	DoubtSI float64 // half of the step between two samples, and of what counts as still; whoever knows of a lag adds it
 	FromUp  bool
 }
 
@@ -43,14 +43,22 @@ func FindReversal(trace []Sample, back, still float64) (r Reversal, ok bool) {
 	if !ok {
 		return r, false
 	}
-	top := trace[turn]
-	r = Reversal{AtSI: top.ReferenceSI, FromUp: from > 0}
+	return ReversalFrom(trace[turn], trace[turn:], from > 0, still)
+}
+
+// ReversalFrom is how far the reference went from a rest before the tested
+// instrument left it by more than still. ok is false where it never did.
+func ReversalFrom(rest Sample, trace []Sample, fromUp bool, still float64) (r Reversal, ok bool) {
+	sign := -1.0
+	if fromUp {
+		sign = 1
+	}
 	before := 0.0
-	for _, s := range trace[turn:] {
-		gone := from * (top.ReferenceSI - s.ReferenceSI)
-		if from*(top.IndicatedSI-s.IndicatedSI) > still {
-			r.InputSI, r.DoubtSI = math.Max(0, (before+gone)/2-still), math.Abs(gone-before)/2
-			return r, true
+	for _, s := range trace {
+		gone := sign * (rest.ReferenceSI - s.ReferenceSI)
+		if sign*(rest.IndicatedSI-s.IndicatedSI) > still {
+			return Reversal{AtSI: rest.ReferenceSI, FromUp: fromUp,
+				InputSI: math.Max(0, (before+gone)/2-still), DoubtSI: math.Hypot(gone-before, still) / 2}, true
 		}
 		before = math.Max(before, gone)
 	}

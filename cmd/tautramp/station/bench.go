@@ -41,7 +41,9 @@ type Bench struct {
 	approach approach
 	crossed  float64 // sweep: when the point was passed, s; NaN before
 	toldOff  bool    // the rest here was refused and told so
+	turned   bool    // the turn at the top was looked at
 
+	turns  []turn
 	points []gauge.Point
 	before []gauge.Zero
 	after  []gauge.Zero
@@ -234,7 +236,7 @@ func (b *Bench) step() step { return b.steps[b.at] }
 
 // advance goes to another step.
 func (b *Bench) advance(to int) {
-	b.at, b.begunAt, b.swung, b.crossed, b.toldOff = to, nan(), false, nan(), false
+	b.at, b.begunAt, b.swung, b.crossed, b.toldOff, b.turned = to, nan(), false, nan(), false, false
 	if b.step().kind == Done {
 		b.say(recording.PlanClosed, "")
 	}

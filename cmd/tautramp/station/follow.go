@@ -41,6 +41,7 @@ func (b *Bench) follow() {
 		b.holdTop(s, t, x)
 	case PointStep:
 		b.approach.follow(s, x)
+		b.watchTurn(s, x)
 		if b.byRest(s) {
 			b.pointByRest(s, t, x)
 		} else if b.plan.Found == gauge.BySweep {

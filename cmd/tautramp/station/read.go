@@ -51,7 +51,7 @@ const readParts = 5
 func (b *Bench) Test(seal string) gauge.Test {
 	tested := instrument(b.first.Parsed, b.about.Tested)
 	t := gauge.Test{
-		Plan: b.plan, Points: b.points, ZeroBefore: b.before, ZeroAfter: b.after, Seal: seal,
+		Plan: b.plan, Points: b.points, Reversals: b.reversals(), ZeroBefore: b.before, ZeroAfter: b.after, Seal: seal,
 		Instruments: gauge.Instruments{
 			Tested: tested, Reference: instrument(b.first.Parsed, b.about.Reference),
 			TestedCountSI: b.count(b.roles.tested), ReferenceCountSI: b.count(b.roles.reference),

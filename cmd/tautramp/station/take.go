@@ -98,6 +98,7 @@ func (b *Bench) undo() {
 func (b *Bench) restartSeries(why string) {
 	about := b.step().target
 	b.points = without(b.points, func(p gauge.Point) bool { return sameSeries(p.Target, about) })
+	b.turns = without(b.turns, func(t turn) bool { return sameSeries(t.target, about) })
 	zero := func(z gauge.Zero) bool {
 		return z.Series == about.Series && z.Run == about.Run && z.Repeat == about.Repeat
 	}

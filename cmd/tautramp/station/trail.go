@@ -2,6 +2,7 @@ package station
 
 import (
 	"math"
+	"slices"
 	"sort"
 
 	"tautramp/acquire/pairing"
@@ -138,6 +139,29 @@ func (l *trail) at(t float64) float64 {
 		return l.smooth[i]
 	}
 	return nan()
+}
+
+// between is the reading at t on the straight line between its neighbours; NaN
+// beyond them.
+func (l *trail) between(t float64) float64 {
+	i := l.since(t)
+	if i == 0 || i == len(l.t) {
+		return nan()
+	}
+	share := (t - l.t[i-1]) / (l.t[i] - l.t[i-1])
+	return l.v[i-1] + share*(l.v[i]-l.v[i-1])
+}
+
+// reaches tells that the readings begin at t or earlier.
+func (l *trail) reaches(t float64) bool { return len(l.t) > 0 && l.t[0] <= t }
+
+// highest is the highest smoothed reading that is kept.
+func (l *trail) highest() float64 { return slices.Max(l.smooth) }
+
+// speed is how fast it moves now, a second.
+func (l *trail) speed() float64 {
+	from := l.since(l.t[len(l.t)-1] - smoothS)
+	return math.Abs(slopeOf(l.t[from:], l.v[from:]))
 }
 
 func mean(v []float64) float64 {
