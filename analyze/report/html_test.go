@@ -105,14 +105,15 @@ func TestElementsClose(t *testing.T) {
 	}
 }
 
-// Prints the sheet where a Chromium is at hand: one page of either paper.
-func TestSheetPrintsOnOnePage(t *testing.T) {
+// Prints the sheet where a Chromium is at hand: on the two sides of one sheet of
+// either paper.
+func TestReportPrintsOnOneSheet(t *testing.T) {
 	browser := chromium(t)
 	m := t1Meta()
 	m.ClockFactor = 60
 	for paper, s := range map[string]mill.System{"A4": mill.SI, "Letter": mill.US} {
 		out := strings.Replace(htmlOf(t, t1(t), m, s), "@page {", "@page { size: "+paper+";", 1)
-		if n := printedPages(t, browser, out); n != 1 {
+		if n := printedPages(t, browser, out); n > 2 {
 			t.Errorf("%s, %s: %d pages", paper, s, n)
 		}
 	}

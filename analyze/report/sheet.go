@@ -34,6 +34,7 @@ type sheet struct {
 	Branches    []fact    // the two lines
 	Table       roundRows // both branches at round settings
 	Assumptions []fact
+	Instruments []fact
 	Fitted      []fact // in the text only
 	Warnings    []string
 	Unchecked   []string
@@ -67,6 +68,7 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		Branches:    []fact{branchFact(analyze.Rising, r.Rising, u), branchFact(analyze.Falling, r.Falling, u)},
 		Table:       rowsOf(r, u),
 		Assumptions: assumptions(r, u),
+		Instruments: instrumentFacts(r, u),
 		Fitted:      fitted(r, u),
 		Warnings:    warningTexts(r, m),
 		Unchecked:   unchecked(),

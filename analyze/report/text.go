@@ -38,6 +38,7 @@ func Text(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	}
 	p.heading("What this rests on")
 	p.facts(sh.Assumptions)
+	p.facts(sh.Instruments)
 	p.facts(sh.Fitted)
 	p.budget(sh)
 	p.list("Warnings", sh.Warnings)
