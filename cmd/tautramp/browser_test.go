@@ -54,7 +54,7 @@ func openBrowser(t *testing.T, width, height int64) *browser {
 		chromedp.ExecPath(path), chromedp.UserDataDir(t.TempDir()), chromedp.NoSandbox, chromedp.DisableGPU,
 		chromedp.WindowSize(int(width), int(height)),
 		chromedp.Flag("disable-quic", true), chromedp.Flag("disable-component-update", true), chromedp.Flag("autoplay-policy", "no-user-gesture-required"))
-	allocator, stopAllocator := chromedp.NewExecAllocator(t.Context(), flags...)
+	allocator, stopAllocator := chromedp.NewExecAllocator(context.Background(), flags...) // it outlives the test by its cleanup
 	ctx, stop := chromedp.NewContext(allocator)
 	b := &browser{t: t, ctx: ctx, dir: artefacts(t)}
 	t.Cleanup(func() {

@@ -25,14 +25,14 @@ function update() {
   byId("alarmNow").textContent = now.bench ? inUnit(now.now, now.unit) : show(now.setting, run.role);
   byId("alarmLimit").textContent = now.bench ? `${now.unit.name} now` : `${label(run.role)} now; limit ${withUnit(run.limit, run.role)}`;
   byId("alarmSays").textContent = now.alarmText;
-  if (box.hidden || box.classList.contains("check")) {
+  if (box.hidden || box.classList.contains("trial")) {
     open(false);
     sound.speak(`Stop. ${what || "Release slowly"}.`, true);
   }
 }
 
 function open(check) {
-  box.classList.toggle("check", check);
+  box.classList.toggle("trial", check);
   if (box.hidden) before = document.activeElement;
   box.hidden = false;
   box.focus();

@@ -30,6 +30,7 @@ function go() {
 }
 
 const narrow = matchMedia("(max-width: 640px)");
+narrow.addEventListener("change", () => switches());
 let running = false, papers = 0;
 
 on("desk", () => {
