@@ -14,6 +14,15 @@ type ramp struct {
 	zeroVar         float64       // of scatter, m2
 	reach           [2][2]float64 // settings fitted, low and high: rising, falling
 	opposed         bool          // the falling settings act the other way: loosening torques
+	lift            lift          // where the zero is the lines' own there; else none
+}
+
+// tied has the zero follow the lines where it is theirs at the slack lift.
+func (r ramp) tied() ramp {
+	if r.lift.known() {
+		r.zeroM = r.lift.zero(r)
+	}
+	return r
 }
 
 // covers is the range of setting that the ramp's line was fitted over.
@@ -138,10 +147,10 @@ func withinVar(f figure, r ramp, k constants) float64 {
 		half := (f(up, k) - f(down, k)) / 2
 		sum += half * half
 	}
-	add(func(r *ramp, sign float64) { r.rising = lifted(r.rising, sign) })
-	add(func(r *ramp, sign float64) { r.rising = tilted(r.rising, sign) })
-	add(func(r *ramp, sign float64) { r.falling = lifted(r.falling, sign) })
-	add(func(r *ramp, sign float64) { r.falling = tilted(r.falling, sign) })
+	add(func(r *ramp, sign float64) { r.rising = lifted(r.rising, sign); *r = r.tied() })
+	add(func(r *ramp, sign float64) { r.rising = tilted(r.rising, sign); *r = r.tied() })
+	add(func(r *ramp, sign float64) { r.falling = lifted(r.falling, sign); *r = r.tied() })
+	add(func(r *ramp, sign float64) { r.falling = tilted(r.falling, sign); *r = r.tied() })
 	if r.zeroVar > 0 {
 		add(func(r *ramp, sign float64) { r.zeroM += sign * math.Sqrt(r.zeroVar) })
 	}

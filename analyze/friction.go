@@ -15,6 +15,7 @@ type Friction struct {
 	AreaM2    estimate.Estimate // A*
 	AreaRatio estimate.Estimate // A* / geometry's
 	F0MuWN    estimate.Estimate // F0 + mu W, only together with its zero
+	F0Budget  []Term            // of F0N, in newtons
 }
 
 // balance is one ramp as setting on wheel pull, p = k F + a, both ways.
@@ -62,12 +63,14 @@ func (w *work) friction() {
 	f.AreaM2 = w.combine(of(balance.areaM2), "not a finite number")
 	f.WeightN = w.combine(of(balance.weightN), noZero)
 	f.F0MuWN = w.combine(of(balance.f0MuWN), noZero)
-	f.F0N = w.combine(func(r ramp, k constants) float64 {
+	f0 := func(r ramp, k constants) float64 {
 		if math.IsNaN(r.zeroM) { // any extension serves
 			r.zeroM = r.rising.A
 		}
 		return balanceOf(r, k).f0N()
-	}, "not a finite number")
+	}
+	f.F0N = w.combine(f0, "not a finite number")
+	f.F0Budget = w.ownTerms(f.F0N, f0)
 	if by == mill.SetBySpring { // A* is then a rate: see springs
 		f.AreaM2 = estimate.Unknown("set by spring length")
 	}

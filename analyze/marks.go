@@ -32,7 +32,8 @@ func (m zeroMarks) why() string {
 // zeroMarks is the marks that hold, and the tally of all.
 type zeroMarks struct {
 	ZeroMarks
-	holds []markedZero
+	holds []markedZero // that a zero was needed of
+	all   []markedZero // on a slack band, needed or not
 }
 
 type markedZero struct {
@@ -51,6 +52,9 @@ func (w *work) judgeMarks() {
 		}
 		w.marks.Given++
 		zero := w.extensionAbout(m.T)
+		if zero.Known() && zero.Value <= most {
+			w.marks.all = append(w.marks.all, markedZero{m.T, zero})
+		}
 		slack := w.nearestSlack(m.T, false)
 		switch {
 		case !zero.Known():
@@ -70,9 +74,14 @@ func (w *work) judgeMarks() {
 }
 
 // markedZero is the operator's zero nearest in time.
-func (w *work) markedZero(t float64) (zero estimate.Estimate) {
+func (w *work) markedZero(t float64) (zero estimate.Estimate) { return w.nearestMark(w.marks.holds, t) }
+
+// markedBy is markedZero of all marks on a slack band, needed or not.
+func (w *work) markedBy(t float64) (zero estimate.Estimate) { return w.nearestMark(w.marks.all, t) }
+
+func (w *work) nearestMark(marks []markedZero, t float64) (zero estimate.Estimate) {
 	gap := math.Inf(1)
-	for _, m := range w.marks.holds {
+	for _, m := range marks {
 		if math.Abs(m.t-t) < gap && !w.slipped(m.t, t) {
 			gap, zero = math.Abs(m.t-t), m.zero
 		}

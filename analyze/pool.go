@@ -38,6 +38,7 @@ func (w *work) figures() {
 	w.aim()
 	w.springs()
 	w.running()
+	w.zeros()
 }
 
 // keepRamps keeps the cycles that have both lines.
@@ -54,7 +55,9 @@ func (w *work) keepRamps() {
 		r.reach = [2][2]float64{{c.Rising.LowSI, c.Rising.HighSI}, {c.Falling.LowSI, c.Falling.HighSI}}
 		if c.Zero.Known() {
 			r.zeroM, r.zeroVar = c.Zero.Value, c.Zero.Random*c.Zero.Random
-			w.zeroFrom = c.ZeroFrom
+			if w.zeroFrom = c.ZeroFrom; w.zeroFrom == slackLift {
+				r.lift = w.lifts[i]
+			}
 		}
 		w.ramps, w.fitted = append(w.ramps, r), append(w.fitted, i)
 	}

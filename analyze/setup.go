@@ -28,6 +28,10 @@ type Setup struct {
 	ExtensionSd   float64           // m, from the instrument's limit; 0 and a warning when not given
 	ReversalSd    float64           // m, of how far the indicator reads rising and falling apart
 	ReversalFrom  string            // where ReversalSd comes from
+	WarmthStd     float64           // strain, from band and bar at other temperatures
+	WarmthFrom    string            // where it comes from
+	CosineStd     float64           // share of the stretch, from a bar that is not along the band
+	CurlSd        float64           // m, of curl on one face; 0 where both were measured
 	Bands         []mill.Band       // all on file
 	Overdue       []mill.Instrument // in use, and their check was due before the day
 	Used          []Used            // instruments that the figures rest on: of the setting, of the extension
@@ -64,6 +68,7 @@ func resolve(in Input) (Setup, error) {
 		GaugeM:    given(p.Rig.GaugeLength.SI, orElse(p.Rig.GaugeLengthStd.SI, p.Rig.GaugeLength.SI*assumedGaugeStd)),
 		TargetPa:  b.Target.SI, LimitSI: t.LimitSI(), GeometryM2: t.GeometryAreaM2(), Bands: p.Bands, Records: in.Records,
 	}
+	s.mounting()
 	if in.Target.Given() {
 		s.TargetPa = in.Target.SI
 	}

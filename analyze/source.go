@@ -31,7 +31,8 @@ type mover func(r ramp, k constants, by float64) (ramp, constants)
 // systematics lists what repeats.
 func (w *work) systematics() []source {
 	s := w.setup
-	return w.ofOther(append(w.rigSources(),
+	list := append(w.rigSources(), w.mountingSources()...)
+	return w.ofOther(append(list,
 		source{name: "modulus of the steel", from: s.ModulusPa.Method, enter: inTruth, moves: []mover{func(r ramp, k constants, by float64) (ramp, constants) {
 			k.modulusPa += by * s.ModulusPa.System
 			return r, k
@@ -45,6 +46,7 @@ func (w *work) systematics() []source {
 			return r, k
 		}}},
 		source{name: "setting gauge", from: limitOf("its error"), enter: inTruth, flat: true, moves: w.gaugeCurve()},
+		source{name: "vented zero of the setting gauge", from: "its least count / sqrt 12", enter: inTruth, flat: true, moves: []mover{shiftSetting(s.CountSI / math.Sqrt(12))}},
 		w.instantSource(),
 	))
 }
@@ -64,7 +66,9 @@ func (w *work) rigSources() []source {
 	s := w.setup
 	return []source{
 		{name: "stretch indicator", from: limitOf("its error"), flat: true, moves: w.indicatorCurve()},
+		{name: "steps of the indicator's display", from: "assumed a tenth of a count each, the same for every ramp", moves: w.stepMoves()},
 		{name: "indicator's own reversal", from: s.ReversalFrom, flat: true, moves: []mover{shiftExtension(s.ReversalSd/2, true)}},
+		{name: "drift between rising and falling", from: "return of the slack band, anywhere within half of it", flat: true, moves: []mover{shiftExtension(w.driftStdM()/2, true)}},
 		{name: "zero", from: w.zeroDoubt(), flat: true, moves: []mover{func(r ramp, k constants, by float64) (ramp, constants) {
 			r.zeroM += by * w.zeroStd
 			return r, k
@@ -75,6 +79,9 @@ func (w *work) rigSources() []source {
 func limitOf(what string) string { return "limit of " + what + " / sqrt 3" }
 
 func (w *work) zeroDoubt() string {
+	if w.zeroFrom == slackLift {
+		return "line carried down to the slack lift, 0.3 of the indicator's limit / sqrt 3"
+	}
 	return "least count of the stretch indicator, at the " + w.zeroFrom
 }
 
@@ -127,6 +134,38 @@ func (w *work) indicatorCurve() []mover {
 	return []mover{move(false), move(true)}
 }
 
+// stepMoves move the lines as the steps of the display do, each off its place
+// but the same for every ramp. Both branches pass the same steps; the falling one
+// passes fewer, and its slope is off by what it lacks besides: of nested fits the
+// variance of the difference is the difference of the variances.
+func (w *work) stepMoves() []mover {
+	low, high := w.reachM()
+	fall := 0.0
+	for _, r := range w.ramps {
+		from, to := r.covers(Falling)
+		fall += r.falling.B * (to - from) / float64(len(w.ramps))
+	}
+	count, span := w.setup.CountM, high-low
+	if !(count > 0) || !(span > count) || !(fall > count) {
+		return nil
+	}
+	tiltOf := func(span float64) float64 { return stepScatter * count * math.Sqrt(12*count/span) / span }
+	extra := math.Sqrt(math.Max(0, tiltOf(fall)*tiltOf(fall)-tiltOf(span)*tiltOf(span)))
+	tilt := func(rising, falling float64) mover {
+		return lineMover(func(r ramp, d Direction, by float64) estimate.Line {
+			l, share := r.line(d), rising
+			if d == Falling {
+				share = falling
+			}
+			share *= by
+			l.A += share * (l.A - (low+high)/2)
+			l.B += share * l.B
+			return l
+		})
+	}
+	return []mover{shiftExtension(stepScatter*count*math.Sqrt(count/span), false), tilt(tiltOf(span), tiltOf(span)), tilt(0, extra)}
+}
+
 // gaugeCurve moves the lines as the setting gauge's error curve does.
 func (w *work) gaugeCurve() []mover {
 	std := w.setup.SettingStd
@@ -152,6 +191,31 @@ func shiftExtension(std float64, apart bool) mover {
 		l.A += by * std * side(d, apart)
 		return l
 	})
+}
+
+// shiftSetting moves both lines by std in setting.
+func shiftSetting(std float64) mover {
+	return lineMover(func(r ramp, d Direction, by float64) estimate.Line {
+		l := r.line(d)
+		l.A += l.B * by * std
+		return l
+	})
+}
+
+// driftStdM is by how much the stretch may have drifted between the rising branch
+// and the falling one: half of what it did not come back, mean of the ramps, and
+// anywhere within that.
+func (w *work) driftStdM() float64 {
+	sum, n := 0.0, 0.0
+	for _, i := range w.fitted {
+		if r := w.res.Cycles[i].ReturnM; r.Known() {
+			sum, n = sum+r.Value, n+1
+		}
+	}
+	if n == 0 {
+		return 0
+	}
+	return math.Abs(sum/n) / 2 / math.Sqrt(3)
 }
 
 // late moves the rising line by the first in setting, and the falling one the
@@ -181,6 +245,6 @@ func lineMover(move func(r ramp, d Direction, by float64) estimate.Line) mover {
 		out := r
 		out.rising = move(r, Rising, by)
 		out.falling = move(r, Falling, by)
-		return out, k
+		return out.tied(), k
 	}
 }

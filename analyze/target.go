@@ -106,6 +106,15 @@ func (w *work) budget(f figure, t TargetSetting) []Term {
 	return append(lines, w.terms(f, inTruth)...)
 }
 
+// ownTerms is the budget of a figure that is not a setting: its own scatter, and
+// what repeats. StdSI is in the figure's unit.
+func (w *work) ownTerms(e estimate.Estimate, f figure) []Term {
+	if !e.Known() {
+		return nil
+	}
+	return append([]Term{{"scatter", e.Random, e.DoF, "A", e.Method}}, w.terms(f, inForces)...)
+}
+
 // terms has a line for every source that enters a figure up to a stage.
 func (w *work) terms(f figure, upTo stage) []Term {
 	var lines []Term

@@ -32,7 +32,7 @@ const (
 // the ordinary. Their order is fixed.
 func (w *work) warnings() {
 	for _, check := range []func(){
-		w.warnVisit, w.warnRamps, w.warnInstruments, w.warnBench, w.warnZero, w.warnMarks, w.warnReturn, w.warnTarget, w.warnShape, w.warnStop, w.warnOutliers, w.warnSteps, w.warnPace, w.warnArea, w.warnWeight, w.warnPredicted,
+		w.warnVisit, w.warnRamps, w.warnInstruments, w.warnBench, w.warnZero, w.warnZeros, w.warnMarks, w.warnReturn, w.warnTarget, w.warnShape, w.warnStop, w.warnOutliers, w.warnSteps, w.warnPace, w.warnArea, w.warnWeight, w.warnPredicted,
 	} {
 		check()
 	}
@@ -70,7 +70,7 @@ func (w *work) warnInstruments() {
 		w.warn("check-overdue", fmt.Sprintf("The check of %s was due %s, before this was measured: its error may be larger than the limit that the intervals rest on.", instrumentName(i), i.Due))
 	}
 	if w.setup.Rig.Faces < 2 {
-		w.warn("one-face", "Stretch was measured on one face only: curl of the band shows as stretch and is in no interval. Measure the other face too.")
+		w.warn("one-face", "Stretch was measured on one face only: curl of the band shows as stretch, and takes up much of the doubt. Measure the other face too.")
 	}
 	if !w.set.Extension.CutKnown() {
 		w.warn("display-unknown", "The stretch indicator does not say whether it rounds or cuts off its last digit: half a count is added to the doubt of the zero.")

@@ -13,6 +13,8 @@ type WidthAt struct {
 	StressPa float64           // NaN where the zero is unknown
 	RisingSI float64           // setting on the rising branch at that stretch
 	HalfSI   estimate.Estimate // setting units
+	Hidden   bool              // not distinguishable from the indicator: its interval holds none at all
+	Budget   []Term            // of HalfSI, of the working setting only
 }
 
 // Grade is the verdict on the half-width at the working setting.
@@ -24,6 +26,7 @@ const (
 	Good         Grade = "good"
 	Watch        Grade = "watch"
 	Service      Grade = "service"
+	Indistinct   Grade = "not distinguishable from the indicator"
 )
 
 // Below the first share of the working setting a half-width is good, above the
@@ -64,6 +67,7 @@ func (w *work) widths() {
 		}
 	}
 	w.res.Working = w.widthAt(working)
+	w.res.Working.Budget = w.ownTerms(w.res.Working.HalfSI, halfWidth(working))
 	w.res.WidthRatio = w.reaching(Rising, at(working)).combine(func(r ramp, k constants) float64 {
 		return halfWidth(working)(r, k) / working
 	}, "not a finite number")
@@ -76,6 +80,8 @@ func (w *work) widths() {
 func (w *work) widthAt(risingSI float64) WidthAt {
 	row := WidthAt{StressPa: math.NaN(), RisingSI: risingSI}
 	row.HalfSI = w.reaching(Rising, at(risingSI)).combine(halfWidth(risingSI), "not a finite number")
+	lo, hi := row.HalfSI.Interval95()
+	row.Hidden = lo <= 0 && hi >= 0
 	if w.zeroKnown() {
 		row.StressPa = w.stressAt(Rising, risingSI).Value
 	}
@@ -109,6 +115,10 @@ func (w *work) grade() {
 	lo, hi := w.res.WidthRatio.Interval95()
 	if w.turnedLoop() {
 		lo, hi = -hi, -lo
+	}
+	if w.res.Working.Hidden {
+		w.res.Grade = Indistinct
+		return
 	}
 	low, high := gradeOf(lo), gradeOf(hi)
 	if low == high {

@@ -32,6 +32,7 @@ type work struct {
 	sources  []source
 	zeroStd  float64 // m, of the zero, what repeats
 	zeroFrom string
+	lifts    []lift     // parallel to the cycles
 	marks    zeroMarks  // the operator's
 	timeStd  [2]float64 // of the setting, SI, from the time between the channels: rising, falling
 	early    int        // warnings raised before the figures

@@ -8,8 +8,9 @@ import (
 
 // The conventions of the zero.
 const (
-	slackBand     = "slack band"
-	operatorsMark = "operator's mark"
+	slackBand     = "slack band"      // the straight part is carried down to the slack band's stretch
+	slackLift     = "slack lift"      // or to the setting that moves the wheel with the band slack
+	operatorsMark = "operator's mark" // or to the stretch that the operator marked as slack
 )
 
 // zeroStdM is what a zero has in common with every other zero of the record:
@@ -17,6 +18,15 @@ const (
 // where the display's rounding is not known. A display that cuts its digits off
 // shows 0 over two counts, from below zero to above (protocol SPEC 6.4).
 func (w *work) zeroStdM() float64 {
+	return math.Hypot(w.zeroCountStdM(), stepScatter*w.setup.CountM)
+}
+
+// A step of a display lies off its place by this share of a count, standard.
+// Judgement: no display says so of itself.
+const stepScatter = 0.1
+
+// zeroCountStdM is what of it is rectangular.
+func (w *work) zeroCountStdM() float64 {
 	std := w.setup.CountM / math.Sqrt(12)
 	switch {
 	case !w.set.Extension.CutKnown():
@@ -48,29 +58,22 @@ func (w *work) findZeros() {
 	shared := 0.0
 	for i := range w.res.Cycles {
 		c := &w.res.Cycles[i]
-		before, after := w.lulls[i].level, w.lulls[i+1].level
-		c.ReturnM = w.returned(before, after)
-		begins := w.begins(c, &w.legs[i])
-		if w.slipped(w.lulls[i].t, begins) {
-			before = estimate.Unknown("the mount slipped")
-		}
-		if w.slipped(begins, w.lulls[i+1].t) {
-			after = estimate.Unknown("the mount slipped")
-		}
-		c.Zero, c.ZeroFrom = betweenZeros(before, after), slackBand
+		c.ReturnM = w.returned(w.lulls[i].level, w.lulls[i+1].level)
+		c.Zero, c.ZeroFrom = w.slackZero(i), slackBand
 		if c.Zero.Known() {
 			continue
 		}
-		c.Zero, c.ZeroFrom = w.borrowedZero(begins)
+		c.Zero, c.ZeroFrom = w.borrowedZero(w.begins(c, &w.legs[i]))
 		shared = math.Max(shared, c.Zero.Random)
 		c.Zero.Random, c.Zero.DoF = 0, math.Inf(1)
 	}
 	w.zeroStd = math.Hypot(w.zeroStdM(), shared)
 	for i := range w.res.Cycles {
 		if z := &w.res.Cycles[i].Zero; z.Known() {
-			z.System, z.Flat = w.zeroStd, w.zeroStd
+			z.System, z.Flat = w.zeroStd, w.zeroCountStdM()
 		}
 	}
+	w.liftZeros()
 }
 
 // begins is the time of the first pair of a cycle that is fitted.
@@ -79,6 +82,20 @@ func (w *work) begins(c *Cycle, l *legs) float64 {
 		return w.t[at[0]]
 	}
 	return w.t[c.First]
+}
+
+// slackZero is a cycle's own zero, by the slack band before and after it on the
+// same mounting.
+func (w *work) slackZero(cycle int) estimate.Estimate {
+	before, after := w.lulls[cycle], w.lulls[cycle+1]
+	begins := w.begins(&w.res.Cycles[cycle], &w.legs[cycle])
+	if w.slipped(before.t, begins) {
+		before.level = estimate.Unknown("the mount slipped")
+	}
+	if w.slipped(begins, after.t) {
+		after.level = estimate.Unknown("the mount slipped")
+	}
+	return betweenZeros(before.level, after.level)
 }
 
 // borrowedZero is the zero for a cycle about the time t that has no slack band

@@ -193,8 +193,9 @@ func TestUnknownDisplayAddsHalfACountToTheZero(t *testing.T) {
 		return analyzed(t, b.measure(cycles(smooth, 3, 0, 860))).Cycles[1].Zero.System
 	}
 	b := newBench(28)
-	near(t, "rounded", std(protocol.ShowsRounded), b.countM/math.Sqrt(12), 1e-12)
-	near(t, "unknown", std(protocol.ShowsUnknown), math.Hypot(b.countM/math.Sqrt(12), b.countM/2/math.Sqrt(3)), 1e-12)
+	steps := 0.1 * b.countM // of each step of the display
+	near(t, "rounded", std(protocol.ShowsRounded), math.Hypot(b.countM/math.Sqrt(12), steps), 1e-12)
+	near(t, "unknown", std(protocol.ShowsUnknown), math.Hypot(math.Hypot(b.countM/math.Sqrt(12), b.countM/2/math.Sqrt(3)), steps), 1e-12)
 }
 
 // A truncating display shows 0 from one count below zero to one above: SPEC 6.4.
@@ -220,7 +221,7 @@ func TestZeroOfATruncatingDisplayHoldsTheTruth(t *testing.T) {
 	}
 	b := newBench(400)
 	b.shows, b.zeroM = protocol.ShowsTruncated, 12.3*b.countM
-	near(t, "doubt away from 0", analyzed(t, b.measure(cycles(smooth, 3, 0, 860))).Cycles[1].Zero.System, b.countM/math.Sqrt(12), 1e-9)
+	near(t, "doubt away from 0", analyzed(t, b.measure(cycles(smooth, 3, 0, 860))).Cycles[1].Zero.System, math.Hypot(b.countM/math.Sqrt(12), 0.1*b.countM), 1e-9)
 	// A count of noise-free doubt on either side: 0.58 counts standard.
 	if hits < leastHits(rigs) || wide > 0 {
 		t.Errorf("the interval holds the zero in %d of %d, is too wide in %d", hits, rigs, wide)

@@ -208,6 +208,9 @@ func readRig(t *table) Rig {
 		GaugeLengthStd: Length{t.quantity("gauge_length_uncertainty", DimLength)},
 		Material:       t.text("material"),
 		Faces:          t.whole("faces", 1, 2),
+		WarmthLimit:    Warmth{t.orZero("temperature_difference", DimWarmth)},
+		Misalignment:   Angle{t.orZero("misalignment", DimAngle)},
+		Curl:           Length{t.orZero("curl", DimLength)},
 		Note:           t.text("note"),
 	}
 	if r.GaugeLength.Given() && r.GaugeLengthStd.SI >= r.GaugeLength.SI/2 {

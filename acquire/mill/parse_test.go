@@ -72,7 +72,7 @@ func TestParseRefusesWithLineAndKey(t *testing.T) {
 		{"number for a name", `"T-1"`, `1`, 4, "tensioner.name", "1 is not text"},
 		{"misspelt key", `thickness =`, `thicknes =`, 9, "band.thicknes", `did you mean "thickness"?`},
 		{"key in capitals", `thickness =`, `Thickness =`, 9, "band.Thickness", `did you mean "thickness"?`},
-		{"key of nothing like it", `[rig]`, "[rig]\nzzz = 1", 13, "rig.zzz", "known here: gauge_length, gauge_length_uncertainty, material, faces, note"},
+		{"key of nothing like it", `[rig]`, "[rig]\nzzz = 1", 13, "rig.zzz", "known here: gauge_length, gauge_length_uncertainty, material, faces, temperature_difference, misalignment, curl, note"},
 		{"unknown table", `[mill]`, "[milk]", 1, "milk", `did you mean "mill"?`},
 		{"width at the gross", `net_width = "5.25 in"`, `net_width = "5.25 in"` + "\n" + `gross_width = "5.25 in"`, 10, "band.net_width", "not less than the gross width"},
 		{"thicker than wide", `"0.058 in"`, `"5.8 in"`, 9, "band.thickness", "not less than the net width"},

@@ -108,6 +108,9 @@ type Rig struct {
 	GaugeLengthStd Length // gauge_length_uncertainty: standard; 0 means 0.25 % of GaugeLength
 	Material       string // of the bar; text for the report
 	Faces          int    // faces measured, 1 or 2; 0 means 1
+	WarmthLimit    Warmth // temperature_difference: by which band and bar may drift apart between zero and target; not given means 1 degF
+	Misalignment   Angle  // of the bar against the band, at most; not given means 2 deg
+	Curl           Length // stretch that a curl of the band may feign on one face; not given means 15 millionths of GaugeLength
 	Note           string // place and face on the band, for the report
 }
 

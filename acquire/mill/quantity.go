@@ -20,13 +20,14 @@ type Dim string
 
 // The dimensions that quantities may have, with their SI unit.
 const (
-	DimLength    Dim = "length"    // m
-	DimPressure  Dim = "pressure"  // Pa, gauge pressure and band stress
-	DimForce     Dim = "force"     // N
-	DimTorque    Dim = "torque"    // N.m
-	DimAngle     Dim = "angle"     // rad
-	DimStiffness Dim = "stiffness" // N/m
-	DimVolume    Dim = "volume"    // m3
+	DimLength    Dim = "length"                 // m
+	DimPressure  Dim = "pressure"               // Pa, gauge pressure and band stress
+	DimForce     Dim = "force"                  // N
+	DimTorque    Dim = "torque"                 // N.m
+	DimAngle     Dim = "angle"                  // rad
+	DimWarmth    Dim = "temperature difference" // K; never a temperature
+	DimStiffness Dim = "stiffness"              // N/m
+	DimVolume    Dim = "volume"                 // m3
 )
 
 // Length is a Quantity in metres.
@@ -34,6 +35,9 @@ type Length struct{ Quantity }
 
 // Pressure is a Quantity in pascals; stresses and moduli are pressures too.
 type Pressure struct{ Quantity }
+
+// Warmth is a Quantity of a temperature difference in kelvins.
+type Warmth struct{ Quantity }
 
 // Force is a Quantity in newtons.
 type Force struct{ Quantity }

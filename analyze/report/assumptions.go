@@ -18,8 +18,11 @@ func assumptions(r *analyze.Result, u units) []fact {
 		{"Net area", areaText(s.NetAreaM2, u.area) + ", " + lengthText(s.Band.Thickness, u.section) + " thick"},
 		{"Faces measured", facesText(s.Rig.Faces)},
 		{"Zero", zeroText(r)},
-		{"Least count", countText(s.CountM, u.extension) + " stretch, " + countText(s.CountSI, u.setting)},
 	}
+	facts = append(facts, otherZeros(r, u)...)
+	facts = append(facts, []fact{
+		{"Least count", countText(s.CountM, u.extension) + " stretch, " + countText(s.CountSI, u.setting)},
+	}...)
 	if s.GeometryM2 > 0 {
 		facts = append(facts, fact{"Area by geometry", areaText(s.GeometryM2, u.area)})
 	}
@@ -96,4 +99,18 @@ func unchecked() []string {
 		"Temperatures of band and rig: they are not used.",
 		"The other span, and other bands on this tensioner.",
 	}
+}
+
+// otherZeros are the settings by the conventions of the zero that are not in
+// use.
+func otherZeros(r *analyze.Result, u units) []fact {
+	var facts []fact
+	for _, z := range r.Zeros {
+		if z.Used || !z.Rising.Known() || !z.Falling.Known() {
+			continue
+		}
+		facts = append(facts, fact{"By the " + clean(z.Name, nameLength), fmt.Sprintf("%s rising, %s falling",
+			figureOf(z.Rising, u.setting).short(), figureOf(z.Falling, u.setting).short())})
+	}
+	return facts
 }

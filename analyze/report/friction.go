@@ -21,6 +21,8 @@ func verdictOf(r *analyze.Result) verdict {
 		v.Word, v.Says = "good", "friction takes little of the setting"
 	case analyze.Watch:
 		v.Word, v.Says = "watch", "friction takes a fair part of the setting; measure again before long"
+	case analyze.Indistinct:
+		v.Word, v.Says = "not told", "the loop is no wider than the indicator's own reversal and drift may make it: not distinguishable from the indicator"
 	case analyze.Service:
 		v.Word, v.Says = "service", "friction takes much of the setting; service by the maker's manual"
 	default:

@@ -45,6 +45,12 @@ func resultJSON(r *analyze.Result, m Meta) object {
 			{"given", r.Marks.Given}, {"used", r.Marks.Used}, {"agree", r.Marks.Agree},
 			{"differ", r.Marks.Differ}, {"loaded", r.Marks.Loaded}, {"unread", r.Marks.Unread},
 		}},
+		{"zeros", each(r.Zeros, func(z analyze.ZeroBy) object {
+			return object{
+				{"name", clean(z.Name, nameLength)}, {"used", z.Used}, {"zero_m", estimateJSON(z.ZeroM)},
+				{"rising", by.inSetting(estimateJSON(z.Rising))}, {"falling", by.inSetting(estimateJSON(z.Falling))},
+			}
+		})},
 		{"branches", object{{"rising", branchJSON(r.Rising, by)}, {"falling", branchJSON(r.Falling, by)}}},
 		{"target", object{
 			{"stress_pa", given(r.Setup.TargetPa)},
@@ -113,6 +119,8 @@ func outcomeJSON(outcome string) string {
 
 func gradeJSON(g analyze.Grade) string {
 	switch g {
+	case analyze.Indistinct:
+		return "indistinct"
 	case analyze.Good, analyze.Watch, analyze.Service:
 		return string(g)
 	}
@@ -214,6 +222,7 @@ func targetJSON(t analyze.TargetSetting, by setBy) object {
 		{"fitted_curve", by.inSetting(estimateJSON(t.SettingSI))},
 		{"next_setting", by.inSetting(estimateJSON(t.NextSI))},
 		{"true_stress", by.inSetting(estimateJSON(t.TrueSI))},
+		{"stress_at_setting_pa", estimateJSON(t.StressPa)},
 		{"true_stress_budget", each(t.Budget, func(b analyze.Term) object {
 			return object{
 				{"name", clean(b.Name, nameLength)}, {"std", by.inSetting(number(b.StdSI))}, {"dof", number(b.DoF)},
