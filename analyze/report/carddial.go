@@ -56,5 +56,9 @@ func readAt(d analyze.Dial, way analyze.Direction, e estimate.Estimate, u, v uni
 	if onDial := d.Read(way, e); onDial.Reading.Known() {
 		return dialFigure(onDial.Reading, d).short()
 	}
-	return figureOf(e, u.setting).short() + " (" + figureOf(e, v.setting).short() + ")"
+	text := figureOf(e, u.setting).short() + " (" + figureOf(e, v.setting).short() + ")"
+	if d.Rising.Line.N > 0 || d.Falling.Line.N > 0 { // the other number of the card is on the dial
+		text += " on the transducer"
+	}
+	return text
 }

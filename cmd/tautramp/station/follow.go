@@ -35,7 +35,7 @@ func (b *Bench) follow() {
 		b.swing(x)
 	case ZeroBefore, ZeroAfter:
 		if b.plan.Found != gauge.ByPress {
-			b.zeroByRest(t)
+			b.zeroByRest(b.heardBy(t))
 		}
 	case TopHold:
 		b.holdTop(s, t, x)
@@ -43,7 +43,8 @@ func (b *Bench) follow() {
 		b.approach.follow(s, x)
 		b.watchTurn(s, x)
 		if b.byRest(s) {
-			b.pointByRest(s, t, x)
+			to := b.heardBy(t)
+			b.pointByRest(s, to, l.at(to)-b.baseSI)
 		} else if b.plan.Found == gauge.BySweep {
 			b.pointBySweep(s, t, x)
 		}
@@ -90,8 +91,21 @@ func (b *Bench) restedEnough(t float64) bool {
 }
 
 func (b *Bench) zeroByRest(t float64) {
-	if b.restedEnough(t) && b.whyNoZero(t) == "" {
+	switch {
+	case !b.restedEnough(t) || b.whyNoZero(t) != "":
+	case b.testedRead(t-b.plan.WindowS, t):
 		b.takeZero(t)
+	default:
+		b.tellTestedGone()
+	}
+}
+
+// tellTestedGone says once that things wait for the tested instrument; nobody
+// presses, so nobody would be told.
+func (b *Bench) tellTestedGone() {
+	if b.testedGone() && !b.toldOff {
+		b.toldOff = true
+		b.refuse(noTested)
 	}
 }
 
@@ -111,6 +125,10 @@ func (b *Bench) pointByRest(s step, t, x float64) {
 			b.toldOff = true
 			b.refuse(why)
 		}
+		return
+	}
+	if !b.testedRead(t-b.plan.WindowS, t) {
+		b.tellTestedGone()
 		return
 	}
 	b.takePoint(t-b.plan.WindowS, t, false)
@@ -142,5 +160,12 @@ func (b *Bench) pointBySweep(s step, t, x float64) {
 			b.show(swept), seconds(b.plan.WindowS), b.show(back), s.target.Nominal.Entered))
 		return
 	}
-	b.takePoint(from, to, true)
+	switch {
+	case b.testedRead(from, to):
+		b.takePoint(from, to, true)
+	case b.testedGone():
+		back, _ := s.backTo()
+		b.crossed = nan()
+		b.refuse(fmt.Sprintf("%s; then go back beyond %s and pass %s again", noTested, b.show(back), s.target.Nominal.Entered))
+	}
 }

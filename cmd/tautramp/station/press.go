@@ -21,7 +21,7 @@ const (
 func (b *Bench) judgePending() {
 	for len(b.pending) > 0 && b.known {
 		t, l := b.pending[0], b.lead()
-		if (l == nil || !l.ready(t)) && b.now < t+lateS*b.factor {
+		if (l == nil || !l.ready(t) || !b.testedRead(t-b.plan.WindowS, t)) && b.now < t+lateS*b.factor {
 			return
 		}
 		b.pending = b.pending[1:]
@@ -87,6 +87,9 @@ func (b *Bench) whyNotNow(t float64) string {
 	}
 	if l := b.lead(); l == nil || !l.ready(t-b.plan.WindowS) || b.now-l.seenAt > lateS*b.factor+blindS {
 		return "there is no reading of " + b.leadName()
+	}
+	if b.step().kind != Mounting && !b.testedRead(t-b.plan.WindowS, t) {
+		return noTested
 	}
 	return ""
 }
