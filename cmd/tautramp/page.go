@@ -111,6 +111,8 @@ func (o *pageOptions) visit(ctx context.Context, order page.Order, e env) (page.
 	}
 	c := captureOptions{profileFlags: profileFlags{mill: o.mill, tensioner: order.Tensioner, band: order.Band},
 		ports: order.Ports, baud: o.baud, speed: o.speed, patience: o.patience, plan: order.Plan}
+	w := order.Presses
+	c.pressFlags = pressFlags{stepFlags{step: w.Step, from: w.From, top: w.Top, doubt: w.Doubt}, w.Dial}
 	s, err := c.load(e)
 	if err != nil {
 		return page.Papers{}, err

@@ -176,6 +176,12 @@ func (d *desk) find(id string) (filed, bool) {
 // say stays empty, and the capture will say why.
 func siteOf(deps Deps, o Order) siteView {
 	v := siteView{Kind: o.Kind, Tensioner: o.Tensioner, Band: o.Band, Role: mill.RolePressure, Limit: unknown(), Target: unknown(), Vent: o.Vent, Tested: o.Bench.Tested, Reference: o.Bench.Reference}
+	switch {
+	case o.Presses.Step != "":
+		v.Press = "step"
+	case o.Presses.Dial != "":
+		v.Press = "dial"
+	}
 	if deps.Mill == nil {
 		return v
 	}

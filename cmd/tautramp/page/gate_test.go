@@ -1,10 +1,14 @@
 package page
 
 import (
+	"io"
 	"net/http"
 	"net/http/httptest"
+	"strconv"
 	"strings"
 	"testing"
+
+	"tautramp/acquire/mill"
 )
 
 func TestOnlyThisComputerByItsOwnNames(t *testing.T) {
@@ -154,3 +158,46 @@ func TestTextFromOutsideIsEscapedAndOneLine(t *testing.T) {
 }
 
 const styleSum = "ngewhhP73WDIbgwseeu52VAAJgKdGUsu1IUQQsAm8m4="
+
+func TestCardOnlyAfterOneCheckAndWithTheRigOff(t *testing.T) {
+	s := serve(t, Access{})
+	var wishes []CardWish
+	s.Server.deps.Card = func(w io.Writer, of Papers, wish CardWish, _ mill.System) error {
+		wishes = append(wishes, wish)
+		_, err := io.WriteString(w, "<p>card of "+of.Name)
+		return err
+	}
+	file := func(k Kind, of string, rigOff bool) string {
+		p := papers(string(k) + ".ramp")
+		if k != Ramps {
+			p.Seal = "other"
+		}
+		p.RigOff = rigOff
+		s.desk.mu.Lock()
+		defer s.desk.mu.Unlock()
+		s.desk.keep(filed{p, k, of})
+		return strconv.Itoa(len(s.desk.papers))
+	}
+	main := file(Ramps, "", false)
+	for what, proof := range map[string]string{
+		"no check":               "",
+		"a check of another one": file(Verify, "elsewhere", true),
+		"another face":           file(Face, "5ea1", true),
+		"the rig still on":       file(Verify, "5ea1", false),
+	} {
+		if got := s.want(http.StatusConflict, s.ask("GET", "/papers/"+main+"/card?from=below&proof="+proof, "")); !strings.Contains(got, "no card yet") {
+			t.Errorf("%s: %q", what, got)
+		}
+	}
+	good := file(Verify, "5ea1", true)
+	s.want(http.StatusOK, s.ask("GET", "/papers/"+main+"/card?from=below&hold=locked&band=A&band=B&same=yes&proof="+good, ""))
+	if len(wishes) != 1 || wishes[0].From != "below" || wishes[0].Hold != "locked" || len(wishes[0].Bands) != 2 || !wishes[0].SameWheel || wishes[0].Proof.Name != "verify.ramp" {
+		t.Errorf("%+v", wishes)
+	}
+}
+
+func TestBrowserStartsNothingWhereOneVisitIsShown(t *testing.T) {
+	s := serve(t, Access{})
+	s.Server.deps.OneVisit = true
+	s.want(http.StatusBadRequest, s.ask("POST", "/start", order))
+}

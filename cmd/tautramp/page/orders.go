@@ -98,6 +98,7 @@ type wanted struct {
 	Continues string    `json:"continues"` // number of the papers that it goes on from
 	Confirmed []string  `json:"confirmed"` // before the start
 	Bench     BenchWish `json:"bench"`
+	Presses   PressWish `json:"presses"`
 }
 
 // problem says what is wrong with it, or "".
@@ -142,7 +143,7 @@ func (s *Server) start(w http.ResponseWriter, r *http.Request) {
 	}
 	run, ctx, err := s.desk.begin(Order{
 		Kind: o.Kind, Tensioner: o.Tensioner, Band: o.Band, Ports: o.Ports,
-		Plan: recording.Plan{Exercise: o.Exercise, Ramps: o.Ramps}, Vent: o.Vent, Before: before.Papers, Bench: o.Bench,
+		Plan: recording.Plan{Exercise: o.Exercise, Ramps: o.Ramps}, Vent: o.Vent, Before: before.Papers, Bench: o.Bench, Presses: o.Presses,
 	})
 	if err != nil {
 		http.Error(w, err.Error(), http.StatusConflict)

@@ -89,13 +89,23 @@ type Order struct {
 	Band      string
 	Ports     []string
 	Plan      recording.Plan
-	Vent      bool   // the setting's sensor will be vented for its zero: the page asks
+	Vent      bool // the setting's sensor will be vented for its zero: the page asks
+	Presses   PressWish
 	Before    Papers // of the recording that it goes on from; the zero value: none
 	Bench     BenchWish
 
 	Said      <-chan recording.Event          // what the operator presses and confirms
 	Show      func(visit.Status)              // to be called with every status
 	ShowBench func(station.Status, mill.Unit) // of a bench test, with the unit of its plan
+}
+
+// PressWish is what each press stands for, beside a plain mark: all as typed.
+type PressWish struct {
+	Dial  string `json:"dial"`  // marks of the mill's own gauge, one after the other: "600 psi, 700 psi"
+	Step  string `json:"step"`  // no sensor reads the setting: how far from press to press, such as "1/4 turn"
+	From  string `json:"from"`  // the first step; "" for zero
+	Top   string `json:"top"`   // the highest, from where the steps lead down again
+	Doubt string `json:"doubt"` // standard uncertainty of one step; "" for a twentieth of it
 }
 
 // BenchWish is a bench test as asked for.

@@ -111,6 +111,7 @@ type siteView struct {
 	Limit     number    `json:"limit"`   // of the setting
 	Target    number    `json:"target"`  // band stress
 	Screw     bool      `json:"screw"`   // a lower turn may have to be declared
+	Press     string    `json:"press"`   // what a press says: step, dial, or nothing but a mark
 	Shorter   bool      `json:"shorter"` // the setting is how much shorter a spring is than without a load
 	Vent      bool      `json:"vent"`
 	Tested    string    `json:"tested"` // of a bench test

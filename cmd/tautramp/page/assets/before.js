@@ -4,7 +4,7 @@ import { make, get, send, byId, fill } from "./store.js";
 import { portList } from "./boards.js";
 import { drawing } from "./drawings.js";
 
-const job = { kind: "ramps", continues: "", tensioner: "", band: "", confirmed: [], face: "outer", vent: "vent" };
+const job = { kind: "ramps", continues: "", tensioner: "", band: "", confirmed: [], face: "outer", vent: "vent", presses: {} };
 
 // again sets up an order that goes on from a recording.
 export function again(kind, papers, setup) {
@@ -103,6 +103,7 @@ export async function boards(box) {
   const says = make("p", { role: "alert" }), ports = portList();
   const plan = job.kind === "ramps" ? [1, 3] : job.kind === "face" ? [0, 1] : [0, 0];
   const number = (id, label, value, about) => make("label", {}, label, make("input", { type: "number", id, min: 0, max: 50, value, inputmode: "numeric" }), make("small", {}, about));
+  const press = (key, label, about, example) => make("label", {}, label, make("input", { type: "text", id: "press-" + key, value: job.presses[key] || "", placeholder: example && "such as " + example, autocomplete: "off", oninput: (e) => (job.presses[key] = e.target.value.trim()) }), make("small", {}, about));
   fill(box,
     make("h1", {}, "Find the boards"),
     make("p", {}, "One board with both sensors, or one each. Plug them in; what is found stands here."),
@@ -111,6 +112,12 @@ export async function boards(box) {
     job.kind === "ramps" && make("div", { class: "pick" },
       number("exercise", "Exercise cycles", plan[0], "first, to half of the target; never fitted"),
       number("ramps", "Ramps", plan[1], "three show how well a setting repeats")),
+    make("details", { open: Object.values(job.presses).some(Boolean) }, make("summary", {}, "What a press stands for, if it is more than a mark"),
+      make("div", { class: "pick" },
+        press("dial", "Marks of the mill's own gauge", "with the transducer on: a press each time the pointer stands on the next", "600 psi, 700 psi, 800 psi"),
+        press("step", "No sensor reads the setting: size of a step", "hold still, press, go on", "1/4 turn, or 2 lbf ft"),
+        press("top", "Highest step", "from there the steps lead down again", "16 lbf ft"),
+        press("doubt", "Doubt about a step", "left out: a twentieth of one", ""))),
     make("p", { class: "note" }, "Let the band go slack now, and keep still until the page says to pump."),
     make("p", {}, make("button", { class: "main", type: "button", id: "start", onclick: begin }, "Start")),
     says);
@@ -121,7 +128,7 @@ export async function boards(box) {
     const value = (id, otherwise) => (byId(id) ? Number(byId(id).value) : otherwise);
     try {
       await send("/start", { kind: job.kind, tensioner: job.tensioner, band: job.band, ports: ports.chosen(), exercise: value("exercise", plan[0]),
-        ramps: value("ramps", plan[1]), vent: job.vent === "vent", continues: job.continues, confirmed: job.confirmed, bench: {} });
+        ramps: value("ramps", plan[1]), vent: job.vent === "vent", continues: job.continues, confirmed: job.confirmed, bench: {}, presses: job.presses });
       job.kind = "ramps";
       job.continues = "";
     } catch (e) {

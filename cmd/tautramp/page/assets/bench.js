@@ -43,7 +43,7 @@ export async function bench(box) {
   async function begin() {
     says.textContent = "";
     try {
-      await send("/start", { kind: "bench", tensioner: "", band: "", ports: ports.chosen(), exercise: 0, ramps: 0, vent: false, continues: "", confirmed: [], bench: { ...wish } });
+      await send("/start", { kind: "bench", tensioner: "", band: "", ports: ports.chosen(), exercise: 0, ramps: 0, vent: false, continues: "", confirmed: [], bench: { ...wish }, presses: {} });
     } catch (e) {
       says.textContent = e.message;
     }

@@ -93,7 +93,7 @@ function asks(now, run) {
     return { word: "Check light and sound", says: `before ${now.exercise ? "the exercise cycle" : "this ramp"}: put your ear muffs on`, ask: true, act: flash };
   }
   if (run.screw && downward(now)) return { word: "Lower turn here", says: "closes the cycle where the screw stays under load", act: () => deed("turn") };
-  return { word: "Mark", says: "hold 1.5 s: undo \u00b7 4 s: abort", act: () => deed("mark") };
+  return { word: { step: "Step reached", dial: "Pointer on the mark" }[run.press] || "Mark", says: "hold 1.5 s: undo \u00b7 4 s: abort", act: () => deed("mark") };
 }
 
 const atRest = (now) => now.resting;
