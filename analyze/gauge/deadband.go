@@ -77,7 +77,11 @@ func (w *work) deadBand() {
 			Method: "change of the reference after a turn before the indication follows, the largest",
 		})
 	}
-	if r.DeadBand.Known() && r.UpDown.Known() {
+	switch {
+	case !r.DeadBand.Known() || !r.UpDown.Known():
+	case r.DeadBand.Expanded() > math.Abs(r.UpDown.Value):
+		r.Hysteresis = estimate.Unknown("the dead band is in more doubt than falling less rising is large: turn more slowly at the top")
+	default:
 		r.Hysteresis = estimate.Estimate{
 			Value: math.Max(0, math.Abs(r.UpDown.Value)-r.DeadBand.Value), Random: r.UpDown.Random, DoF: r.UpDown.DoF,
 			System: math.Hypot(r.UpDown.System, r.DeadBand.System), Method: "falling less rising, less the dead band",

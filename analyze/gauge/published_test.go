@@ -30,6 +30,14 @@ func TestATextbookPressureGauge(t *testing.T) {
 	near(t, "residual SD", r.Lines.All.ResidualSD, 0.208058066632633, digits)
 	near(t, "slope up", r.Lines.Rising.B, 1.08236363636364, 1e-11)
 	near(t, "slope down", r.Lines.Falling.B, 1.08227272727273, 1e-11)
+	// The course's variances have the divisor N; it prints 0.0002, 0.0063 and, of
+	// output and input, 0.0394 and 0.0336.
+	all := r.Lines.All
+	byN := float64(all.N-2) / float64(all.N)
+	near(t, "variance of the slope", all.VarB*byN, 0.00017887669045830196, 1e-11)
+	near(t, "variance of the intercept", all.VarA*byN, 0.006260684166040569, 1e-11)
+	near(t, "variance of the output", all.ResidualSD*all.ResidualSD*byN, 0.198375582924982*0.198375582924982, 1e-11)
+	near(t, "variance of the input", all.ResidualSD*all.ResidualSD*byN/all.B/all.B, 0.03359437172876885, 1e-11)
 	x, _ := r.Lines.All.InverseAt(4.32)
 	near(t, "pressure at a reading of 4.32", x, 4.77405400865146, digits)
 	near(t, "largest difference", r.UpDown.Value, 0.61, digits)

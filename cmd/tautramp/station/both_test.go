@@ -1,6 +1,7 @@
 package station_test
 
 import (
+	"errors"
 	"strings"
 	"testing"
 
@@ -23,5 +24,18 @@ func TestNothingIsTakenWithoutTheTestedInstrument(t *testing.T) {
 		if !strings.Contains(told, "no reading of the tested instrument") {
 			t.Errorf("by %s the operator was told: %q", way, told)
 		}
+	}
+}
+
+// Where two channels measure the plan's quantity and no serial number tells,
+// the first is not taken for the reference.
+func TestTheReferenceIsNotGuessed(t *testing.T) {
+	plan := dialPlan(t)
+	cfg := onBench(plan)
+	cfg.BothRead = true
+	cfg.Reference.Serial = "another"
+	s := run(t, plan, cfg, func(st station.Status) bool { return st.At.Seconds() < 60 })
+	if !errors.Is(s.err, station.ErrNoChannel) || !strings.Contains(s.err.Error(), "which of 1a, 1b is the reference?") {
+		t.Errorf("it went on: %v", s.err)
 	}
 }

@@ -59,13 +59,15 @@ func assign(p gauge.Plan, bench recording.Bench, profile *mill.Profile, declared
 	case p.ReferenceStreams() && p.IndicatedStreams():
 		return r, r.both(fit, bench, profile)
 	case p.ReferenceStreams():
-		r.reference = pointTo(pick(fit, serialOf(profile, bench.Reference)))
+		r.reference, err = only(fit, serialOf(profile, bench.Reference), "the reference? Write its serial number in mill.toml as its board declares it")
+		return r, err
 	case bench.Channel != "":
 		if r.tested = named(fit, bench.Channel); r.tested == nil {
 			return r, notThere(bench.Channel, fit)
 		}
 	default:
-		r.tested = pointTo(pick(fit, serialOf(profile, bench.Tested)))
+		r.tested, err = only(fit, serialOf(profile, bench.Tested), "the tested instrument? Name its board and channel, or write its serial number in mill.toml as its board declares it")
+		return r, err
 	}
 	return r, nil
 }
@@ -143,14 +145,15 @@ func bySerial(list []pairing.Channel, serial string) *pairing.Source {
 	return nil
 }
 
-// pick is the channel of that serial number, or else the first.
-func pick(list []pairing.Channel, serial string) pairing.Channel {
-	for _, c := range list {
-		if serial != "" && c.Spec.Serial == serial {
-			return c
-		}
+// only is the channel of that serial number, or else the only one there is.
+func only(list []pairing.Channel, serial, which string) (*pairing.Source, error) {
+	if found := bySerial(list, serial); found != nil {
+		return found, nil
 	}
-	return list[0]
+	if len(list) > 1 {
+		return nil, fmt.Errorf("%w: which of %s is %s", ErrNoChannel, namesOf(list), which)
+	}
+	return pointTo(list[0]), nil
 }
 
 // instrument is the one of that name in the profile.
