@@ -51,6 +51,7 @@ type Result struct {
 	Warnings   []Warning
 	Marks      ZeroMarks
 	Zeros      []ZeroBy    // by every convention that the data support
+	Tried      []Trial     // figures by Monte Carlo; nil unless Trials was asked
 	Predicted  *Prediction // how, where the figures are for another band than was measured; else nil
 	Simulated  bool        // a device said that what it measures is made up: nothing may be set by these figures
 	Ended      string      // how the visit ended, in words; "" where the recording does not say

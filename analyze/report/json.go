@@ -51,6 +51,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 				{"rising", by.inSetting(estimateJSON(z.Rising))}, {"falling", by.inSetting(estimateJSON(z.Falling))},
 			}
 		})},
+		{"trials", each(r.Tried, trialJSON)},
 		{"branches", object{{"rising", branchJSON(r.Rising, by)}, {"falling", branchJSON(r.Falling, by)}}},
 		{"target", object{
 			{"stress_pa", given(r.Setup.TargetPa)},

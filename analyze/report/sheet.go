@@ -69,7 +69,7 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		Table:       rowsOf(r, u),
 		Assumptions: assumptions(r, u),
 		Instruments: instrumentFacts(r, u),
-		Fitted:      fitted(r, u),
+		Fitted:      append(fitted(r, u), triedFacts(r, u)...),
 		Warnings:    warningTexts(r, m),
 		Unchecked:   unchecked(),
 		Cautions:    Cautions(),

@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"math/rand/v2"
 	"path/filepath"
 
 	"tautramp/acquire/mill"
@@ -12,16 +13,26 @@ import (
 	"tautramp/analyze/report"
 )
 
+// Fewer trials do not tell where an interval ends; more take minutes. The seed is
+// fixed, so that a result is the same every time.
+const (
+	leastTrials = 10_000
+	mostTrials  = 1_000_000
+	trialSeed   = 101
+)
+
 func runAnalyze(_ context.Context, args []string, e env) error {
 	var r resultFlags
 	var other otherBand
 	var schema bool
 	var before string
+	var trials int
 	fs := flags("analyze", "FILE.ramp", "Computes the result of a recording again, from its raw lines.", e)
 	r.add(fs)
 	other.add(fs)
 	fs.StringVar(&r.instruments, "instruments", "", instrumentsAbout)
 	fs.StringVar(&before, "before", "", "recording of the condition found, to compare this one with")
+	fs.IntVar(&trials, "trials", 0, "check the intervals by so many random trials, 10000 to 1000000, and tell where they differ")
 	fs.BoolVar(&schema, "schema", false, "print the JSON Schema of --json and stop")
 	if err := parse(fs, args, 0, 1); err != nil {
 		return err
@@ -40,7 +51,10 @@ func runAnalyze(_ context.Context, args []string, e env) error {
 	if err != nil {
 		return err
 	}
-	r.before = before
+	if trials != 0 && (trials < leastTrials || trials > mostTrials) {
+		return &usageError{fmt.Sprintf("--trials: %d is not between %d and %d", trials, leastTrials, mostTrials)}
+	}
+	r.before, r.trials = before, trials
 	return analyzeFile(fs.Arg(0), r, other, system, target, false, e)
 }
 
@@ -68,6 +82,11 @@ func analyzeFile(path string, r resultFlags, other otherBand, system mill.System
 	if r.before != "" {
 		if err := compareWith(r.before, res, &meta, target); err != nil {
 			return err
+		}
+	}
+	if r.trials > 0 {
+		if err := res.Trials(r.trials, rand.New(rand.NewPCG(trialSeed, uint64(r.trials)))); err != nil {
+			return fmt.Errorf("%s: %w", path, err)
 		}
 	}
 	meta.CautionsShown = cautionsShown

@@ -23,6 +23,7 @@ import (
 // share them, and share computeResult, so that both give the same bytes.
 type resultFlags struct {
 	before string // recording of the condition found; "" for none
+	trials int    // by which the intervals are checked; 0: not
 	units  string
 	target string
 	json   string
