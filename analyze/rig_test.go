@@ -92,7 +92,7 @@ func TestRehearsalRigByEveryWayOfPumping(t *testing.T) {
 			near(t, "A*", r.Friction.AreaM2.Value, truth.AreaM2, 0.01)
 			holds(t, "W", r.Friction.WeightN, truth.WeightN)
 			for _, w := range r.Warnings {
-				if w.Code != "one-face" {
+				if w.Code != "one-face" && w.Code != "instrument-uncorrected" { // both are true of the example mill
 					t.Errorf("warning of a healthy rig: %+v", w)
 				}
 			}
