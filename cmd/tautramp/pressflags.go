@@ -24,7 +24,7 @@ type pressFlags struct {
 }
 
 func (p *pressFlags) add(fs *pflag.FlagSet) {
-	fs.StringVar(&p.dial, "dial", "", "each press (foot switch, or m): the pointer of the mill's own gauge stands on the next of these marks, such as \"600 psi,700 psi,800 psi\"")
+	fs.StringVar(&p.dial, "dial", "", "each press (foot switch, or m): the pointer of the mill's own gauge stands on the next of these marks, up and down, such as \"600 psi,700 psi,800 psi,700 psi,600 psi\"")
 	fs.StringVar(&p.step, "step", "", "no sensor reads the setting: each press says that it has reached the next step, such as \"1/4 turn\" or \"10 lbf ft\"; hold still, press, go on")
 	fs.StringVar(&p.from, "from", "", "with --step: where the first press stands (default: zero)")
 	fs.StringVar(&p.top, "top", "", "with --step: the highest step, from where the steps lead down again")
