@@ -30,6 +30,7 @@ const (
 type Writer struct {
 	f      File
 	header Header
+	taken  bool // since the last tick that sealed
 	every  time.Duration
 
 	line    []byte // scratch
@@ -84,6 +85,7 @@ func (w *Writer) Write(e Entry) error {
 	w.line = appendEntry(w.line[:0], e)
 	w.add(w.line)
 	w.entries++
+	w.taken = w.taken || e.Event != nil && e.Event.Kind == Taken
 	if w.size >= blockBytes {
 		return w.seal()
 	}
@@ -93,10 +95,11 @@ func (w *Writer) Write(e Entry) error {
 	return nil
 }
 
-// Due reports whether Tick would seal a block at this time.
-func (w *Writer) Due(at time.Duration) bool { return at-w.sealed >= w.every }
+// Due reports whether Tick would seal a block at this time: the interval has
+// passed, or the operator was told that a point is taken, which must then last.
+func (w *Writer) Due(at time.Duration) bool { return w.taken || at-w.sealed >= w.every }
 
-// Tick seals and syncs the open block when the interval has passed, with the
+// Tick seals and syncs the open block when it is due, with the
 // wall clock as its last entry (WallEntry). Call it often, also when nothing
 // comes in.
 func (w *Writer) Tick(at time.Duration, wall time.Time) error {
@@ -109,7 +112,7 @@ func (w *Writer) Tick(at time.Duration, wall time.Time) error {
 	if err := w.Write(w.wallEntry(at, wall)); err != nil {
 		return err
 	}
-	w.sealed = at
+	w.sealed, w.taken = at, false
 	return w.seal()
 }
 

@@ -106,6 +106,30 @@ func TestTickLeavesNothingInMemory(t *testing.T) {
 	}
 }
 
+// A point that the operator was told is taken is on disk with the next tick,
+// and the interval begins again.
+func TestATakenPointWaitsForNoInterval(t *testing.T) {
+	var f memory
+	w, err := NewWriter(&f, testHeader(), time.Minute)
+	if err != nil {
+		t.Fatal(err)
+	}
+	taken := Entry{Device: -1, At: time.Second, HasAt: true, Event: &Event{Kind: Taken, Text: "point 1 of 2 taken"}}
+	if err := errors.Join(w.Write(wire(0, time.Second, "x")), w.Tick(time.Second, testStart)); err != nil || w.block != 1 {
+		t.Fatalf("sealed too early: block %d, %v", w.block, err)
+	}
+	if err := errors.Join(w.Write(taken), w.Tick(time.Second, testStart)); err != nil {
+		t.Fatal(err)
+	}
+	rec, err := Read(bytes.NewReader(f.Bytes()))
+	if err != nil || len(withoutWall(rec.Entries)) != 2 {
+		t.Errorf("%d entries are on disk, %v", len(rec.Entries), err)
+	}
+	if w.Due(2 * time.Second) {
+		t.Error("due again at once")
+	}
+}
+
 func TestLongBlocksAreSealedWithoutTick(t *testing.T) {
 	var f memory
 	w, err := NewWriter(&f, testHeader(), time.Hour)
