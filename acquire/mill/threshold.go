@@ -59,6 +59,8 @@ const (
 	GaugeSpan            ThresholdKey = "gauge_span"
 	SpanDiffer           ThresholdKey = "span_differ"
 	FirstRamp            ThresholdKey = "first_ramp"
+	ScrewLow             ThresholdKey = "screw_low"
+	GiveLow              ThresholdKey = "give_low"
 	AreaOff              ThresholdKey = "area_off"
 	LagWidth             ThresholdKey = "lag_width"
 	Saturated            ThresholdKey = "saturated"
@@ -98,12 +100,14 @@ func Thresholds() []Threshold {
 		{GaugeZero, 0.005, "", Judgement, "reading of the vented gauge, of the working setting"},
 		{GaugeSticky, 0.005, "", Judgement, "difference of the gauge between rising and falling on the bench, of its span"},
 		{GaugeCurve, 0.005, "", Judgement, "what is left of the gauge's error when a straight line is taken off, of its span"},
-		{WarmthLink, 0.8, "", Judgement, "correlation of the stretch's drift with the temperature"},
+		{WarmthLink, 0.7, "", Judgement, "correlation of the stretch's drift with the temperature"},
 		{WarmthShift, 0.01, "", Judgement, "drift of the stretch with the temperature, of the stretch at the working setting"},
 		{WarmthPerK, 3, "times", Derived, "drift for each degree over that of a steel bar: a bar of aluminium on a cold band makes 2"},
 		{GaugeSpan, 0.01, "", Judgement, "error of the gauge's span on the bench"},
 		{SpanDiffer, 0.03, "", Judgement, "difference of the slopes of the two spans"},
 		{FirstRamp, 0.01, "", Judgement, "slope of the later ramps beyond the first one's"},
+		{ScrewLow, 0.83, "", Derived, "efficiency of the screw, of what its usual friction gives: a torque a fifth higher for the same pull"},
+		{GiveLow, 0.7, "", Judgement, "stiffness of what gives beside the band, of the profile's"},
 		{AreaOff, 0.04, "", Judgement, "area that works, off what the geometry gives"},
 		{LagWidth, 0.003, "", Judgement, "half-width that the lag pretends, of the working setting"},
 		{Saturated, 0.5, "readings", Derived, "readings at the end of an instrument's range: one is too many"},

@@ -12,7 +12,6 @@ import (
 	"strings"
 	"testing"
 
-	"tautramp/acquire/mill"
 	"tautramp/analyze/findings"
 )
 
@@ -24,6 +23,7 @@ func TestMain(m *testing.M) {
 	flag.Int("rigs", 0, "rigs a cause; 0: a reduced run")
 	flag.String("stream", "table", "seeds: table or tuning")
 	flag.String("only", "", "one kind of fault")
+	flag.Bool("pilot", false, "find the usual doubts of the features anew, and print them")
 	flag.Bool("loud", false, "print what went wrong")
 	flag.Parse()
 	os.Exit(m.Run())
@@ -39,7 +39,6 @@ type tally struct {
 	twice          int // rigs at twice the noticeable severity or more
 	alone          int // of those, named first and alone
 	wrongHigh      int // a wrong cause with high certainty
-	separable      bool
 	firsts         map[string]int
 	aboveWatch     int
 	beyond, failed int // rigs that could not be planted or run
@@ -87,6 +86,19 @@ func (t *tally) count(rep *findings.Report, cause findings.Key, times float64) (
 		}
 	}
 	return passed, wrong
+}
+
+func (u doubts) print() {
+	for _, coarse := range []bool{false, true} {
+		var keys []string
+		for k := range u[coarse] {
+			keys = append(keys, string(k))
+		}
+		sort.Strings(keys)
+		for _, k := range keys {
+			fmt.Printf("%v: %q: %.2g,\n", coarse, k, u[coarse][findings.FeatureKey(k)])
+		}
+	}
 }
 
 // pilot finds the usual doubt of each feature.
@@ -137,7 +149,7 @@ func runKind(t *testing.T, p planting, u doubts, rigs int, stream uint64) *tally
 	t.Helper()
 	y := newTally(string(p.kind))
 	seed := uint64(0)
-	for y.rigs < rigs && seed < uint64(6*rigs+20) {
+	for y.rigs < rigs && seed < uint64(10*rigs+40) {
 		seed++
 		s, err := draw(seed, stream^hash(string(p.kind)))
 		if err != nil {
@@ -216,7 +228,11 @@ func TestConfusion(t *testing.T) {
 		rigs = 3
 	}
 	stream := streamOf()
-	u := pilot(t, stream, min(40, 10+rigs))
+	u := usualDoubts()
+	if flagText("pilot") == "true" {
+		u = pilot(t, tuningStream, 24)
+		u.print()
+	}
 	var out bytes.Buffer
 	fmt.Fprintf(&out, "%-30s %5s  %8s  %8s  %8s  %s\n", "planted", "rigs", "first", "alone", "wrong", "named first")
 	pass, all := 0, 0
@@ -235,10 +251,10 @@ func TestConfusion(t *testing.T) {
 		t.Errorf("%d of %d rigs named their cause first\n%s", pass, all, out.String())
 	}
 	if flagText("table") == "true" {
+		fmt.Fprintf(&out, "\n%s\n%s\n%s", runPairs(t, u, rigs, stream), runHealthy(t, 5*rigs, stream), runCalibration(t, u, 12*rigs, stream))
+		fmt.Print(out.String())
 		if err := os.WriteFile(filepath.Join("testdata", "confusion.txt"), out.Bytes(), 0o644); err != nil {
 			t.Fatal(err)
 		}
 	}
 }
-
-var _ = mill.SetByPressure

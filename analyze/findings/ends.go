@@ -183,6 +183,9 @@ func (d *data) flatTop() estimate.Estimate {
 	}
 	grown := 0.0
 	first, last := longestTop(d.set.Setting)
+	if last-first < leastFlatS {
+		return known(0, 1e-4, math.Inf(1), "the highest setting is never shown for long")
+	}
 	if last > first {
 		a, b := search(d.t, first), search(d.t, last)-1
 		if b > a && b < len(d.t) {
@@ -194,6 +197,9 @@ func (d *data) flatTop() estimate.Estimate {
 	}
 	return known(math.Max(0, grown)/d.workingM, d.noiseM/d.workingM, math.Inf(1), "longest run of the highest setting shown")
 }
+
+// A gauge at its end shows one value for longer than this, s. Judgement.
+const leastFlatS = 1.0
 
 // longestTop is the times between which a channel shows its highest value
 // without a change for longest.

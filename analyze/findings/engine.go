@@ -59,13 +59,15 @@ func (e engine) judge(r row) verdict {
 		}
 		v.evidence *= p
 	}
+	v.evidence = posterior(v.evidence)
 	for _, rv := range r.rivals {
 		p := 1.0
 		for _, t := range rv.tests {
 			p *= e.holds(t)
 		}
+		p = posterior(p)
 		switch {
-		case math.IsNaN(p) || len(rv.tests) == 0:
+		case math.IsNaN(p):
 			v.notRuled = append(v.notRuled, rv.says)
 			continue
 		case p < 0.1:
@@ -75,7 +77,9 @@ func (e engine) judge(r row) verdict {
 		}
 		v.evidence *= 1 - p
 	}
-	v.certainty = certainty(v.evidence)
+	if v.certainty = v.evidence; math.IsNaN(v.certainty) {
+		v.certainty = 0
+	}
 	return v
 }
 

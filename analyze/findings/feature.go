@@ -75,6 +75,10 @@ const (
 	fLagWidth     FeatureKey = "lag_width"
 	fSaturated    FeatureKey = "saturated"
 	fFlatTop      FeatureKey = "flat_top"
+	fScrew        FeatureKey = "screw_efficiency"
+	fIdle         FeatureKey = "turn_lost_idle"
+	fBound        FeatureKey = "springs_solid"
+	fGive         FeatureKey = "give_of_expected"
 	fRamps        FeatureKey = "ramps"
 	fFast         FeatureKey = "rate"
 	fRagged       FeatureKey = "largest_fall"
@@ -133,6 +137,10 @@ func features() []struct {
 		{fLagWidth, "half-width that the lag pretends", OfSetting, (*data).lagWidth},
 		{fSaturated, "readings at the end of an instrument's range", Count, (*data).saturated},
 		{fFlatTop, "rise of the stretch while the setting reads the same", OfStretch, (*data).flatTop},
+		{fScrew, "efficiency of the screw, of what its thread gives at its usual friction", Share, (*data).screw},
+		{fIdle, "turn lost between rising and falling with no pull", OfSetting, (*data).idleTurn},
+		{fBound, "range of setting above the knee at which the springs go solid", OfSetting, (*data).bound},
+		{fGive, "stiffness of what gives beside the band, of the profile's", Share, (*data).give},
 		{fRamps, "ramps up and down again", Count, (*data).ramps},
 		{fFast, "rate of the fastest ramp, of its top", PerSecond, (*data).fast},
 		{fRagged, "largest fall of setting within a rise, of the width that friction locks", Times, (*data).ragged},

@@ -4,10 +4,13 @@ import "tautramp/acquire/mill"
 
 // frictionRows are the causes that make the loop wide.
 func frictionRows(by mill.SetBy) []row {
-	if by != mill.SetByPressure {
-		return nil
+	if by == mill.SetByTorque || by == mill.SetByTurns {
+		return nil // a screw's friction has a row of its own; turns set no force
 	}
-	return []row{constantRow(), slideRow(), sealRow(), pinsRow(), bothRow(), wideRow()}
+	if by == mill.SetBySpring {
+		return []row{wideRow()}
+	}
+	return []row{constantRow(), slideRow(), sealRow(), pinsRow(), bothRow(), growingRow(), wideRow()}
 }
 
 func shownWidth() []FeatureKey { return []FeatureKey{fHalf, fConstant, fProportional, fOffLoad} }
@@ -81,6 +84,16 @@ func bothRow() row {
 			"If both parts stay, have the cylinder seals and rods looked at.",
 		},
 	}
+}
+
+// growingRow is for a constant part that lies on the limit between the two rows
+// above it.
+func growingRow() row {
+	r := bothRow()
+	r.key, r.name = "growing-drag", "Drag that grows with the load, perhaps with a constant part"
+	r.tests = []test{{fProportional, Above, mill.FrictionProportional}}
+	r.yields = []Key{Pins, "constant-and-growing-drag"}
+	return r
 }
 
 func wideRow() row {

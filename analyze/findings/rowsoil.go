@@ -14,11 +14,14 @@ func collapseTests() []test {
 	return []test{{fCollapse, Above, mill.StrokeLoss}, {fCollapseRate, Above, mill.StrokeRate}}
 }
 
+func fastTests() []test { return []test{{fFast, Above, mill.FastRamp}} }
+
 func airRow() row {
 	return row{
 		key: Air, name: "Air in the oil", causes: group(Air),
-		tests: []test{{fSoft, Above, mill.AirSoftness}},
-		level: Service, region: lowEnd,
+		tests:  []test{{fSoft, Above, mill.AirSoftness}},
+		rivals: []rival{{"a ramp so fast that the pump cannot keep up", fastTests()}},
+		level:  Service, region: lowEnd,
 		next:   "Bleed, then pump again and count the strokes: they should gain the same from the slack band up.",
 		advice: []string{"Bleed the cylinders and lines as the maker says. Block the wheel before a line is opened. Check the oil level and the suction side of the pump."},
 	}
@@ -30,6 +33,7 @@ func holdRivals() []rival {
 		{"oil, tyres and band still settling", []test{{fHoldCreeps, Above, mill.HoldFollow}}},
 		{"a transducer on the pump side of the check valve", collapseTests()},
 		{"drift with temperature", warmTests()},
+		{"a ramp so fast that oil and tyres still settle", fastTests()},
 	}
 }
 

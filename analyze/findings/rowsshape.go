@@ -5,8 +5,13 @@ import "tautramp/acquire/mill"
 // shapeRows are the causes that bend or break the lines.
 func shapeRows(by mill.SetBy) []row {
 	rows := []row{stickSlipRow(), toeRow(), endStopRow()}
-	if by != mill.SetByPressure {
-		rows = append(rows, playRow(), coilBindRow(), tyreRow())
+	switch by {
+	case mill.SetByTorque:
+		rows = append(rows, screwRow())
+	case mill.SetByTurns:
+		rows = append(rows, playRow(), boundRow(), coilBindRow(), tyreRow(), softTyreRow())
+	case mill.SetBySpring:
+		rows = append(rows, boundRow(), coilBindRow())
 	}
 	return rows
 }
@@ -66,7 +71,7 @@ func stopTests() []test {
 func playRow() row {
 	return row{
 		key: Play, name: "Play in pin, clevis or nut", causes: group(Play),
-		tests:  []test{{fPlay, Above, mill.PlayWidth}},
+		tests: []test{{fIdle, Above, mill.PlayWidth}}, shows: []FeatureKey{fIdle, fPlay},
 		rivals: []rival{{"lag between the instruments", []test{{fLagWidth, Above, mill.LagWidth}}}},
 		level:  Service, region: atTurn,
 		next:   "Turn round at half the load too: play is as wide there, friction is not.",
@@ -92,12 +97,47 @@ func tyreRow() row {
 	return row{
 		key: Tyre, name: "Wheel tyre that gives", causes: group(Tyre),
 		tests:  []test{{fFirst, Above, mill.FirstRamp}},
-		rivals: []rival{{"play that is taken up", []test{{fPlay, Above, mill.PlayWidth}}}},
+		rivals: []rival{{"play that is taken up", []test{{fIdle, Above, mill.PlayWidth}}}},
 		level:  Watch, region: bothLines,
 		next: "Exercise the band once more and ramp three times: a tyre that has settled gives the same slope each time.",
 		advice: []string{
 			"Exercise once before setting and wait a few minutes, then bring the number up again.",
 			"Look at the tyres: soft, loose or worn through.",
 		},
+	}
+}
+
+func screwRow() row {
+	return row{
+		key: Screw, name: "Dry screw, nut or collar", causes: group(Screw),
+		tests: []test{{fScrew, Below, mill.ScrewLow}}, shows: []FeatureKey{fScrew, fHalf, fConstant, fProportional},
+		rivals: []rival{{"lag between the instruments", []test{{fLagWidth, Above, mill.LagWidth}}}, {"stick-slip", jumpTests()}},
+		level:  Service, region: betweenLines,
+		next: "Check the torque wrench on its bench, then clean and lubricate screw, nut and collar as the maker says and ramp again: the torque for the same pull should fall.",
+		advice: []string{
+			"Do not use a card made on a greased screw: on a dry one the same torque gives far less pull.",
+			"Clean and lubricate screw, nut and collar as the maker says, ramp again, and make a new card.",
+		},
+	}
+}
+
+func boundRow() row {
+	return row{
+		key: "springs-solid", name: "The springs go solid below the top", causes: group(CoilBind),
+		tests: []test{{fBound, Above, mill.StopSpan}}, shows: []FeatureKey{fBound, fBind}, level: Service, region: topEnd,
+		next: "Measure the springs' length at the top and compare it with the length at which coils or discs touch.",
+		advice: []string{
+			"Set below the knee: above it a little more setting makes a lot of pull, or none that the setting shows.",
+			"Check that the springs are the right ones, whole, and not bottomed on a washer.",
+		},
+	}
+}
+
+func softTyreRow() row {
+	return row{
+		key: "soft-chain", name: "More gives than the profile says", causes: group(Tyre),
+		tests: []test{{fGive, Below, mill.GiveLow}}, shows: []FeatureKey{fGive, fFirst}, level: Watch, region: bothLines,
+		next:   "Push on tyres, frame and springs in turn with an indicator on each: see which of them gives.",
+		advice: []string{"Look at the tyres first: soft, loose or worn through; then at the frame's bolts and the springs."},
 	}
 }

@@ -2,6 +2,7 @@ package findings
 
 import (
 	"math"
+	"slices"
 
 	"tautramp/analyze"
 	"tautramp/analyze/estimate"
@@ -107,7 +108,7 @@ func (d *data) heldDips() []dip {
 const tautShare = 0.05
 
 // soft is how slowly the setting comes up with the band still slack, of the pace
-// of the ramp: the time from a tenth to nine tenths of the way from rest to the
+// of the ramp: the time from a tenth to seven tenths of the way from rest to the
 // slack lift, over what the ramp's pace would take. Oil needs no time for it,
 // air has to be squeezed first.
 func (d *data) soft() estimate.Estimate {
@@ -131,24 +132,25 @@ func (d *data) soft() estimate.Estimate {
 
 // pauseS is how long an operator may pause or a stroke take, s: so much of the
 // time up to the lift is no sign of air. Judgement.
-const pauseS = 1.5
+const pauseS = 2.5
 
 // softness is of one rise; wait is what a pause makes of it.
 func (d *data) softness(c analyze.Cycle) (ratio, wait float64, ok bool) {
 	p := d.follow.p
-	zero := d.zeroM()
+	rest := search(d.t, d.t[c.First]-3)
+	// The slack band's own reading: a zero found otherwise may lie a count off.
+	slack := estimate.Median(d.e[rest : min(len(d.e)-1, c.First+8)+1])
 	leaves := c.First
-	for leaves <= c.Peak && leaves < len(p) && d.e[leaves] <= zero+tautShare*d.workingM {
+	for leaves <= c.Peak && leaves < len(p) && d.e[leaves] <= slack+math.Max(tautShare*d.workingM, 1.2*d.countM) {
 		leaves++
 	}
-	rest := search(d.t, d.t[c.First]-3)
 	if leaves-rest < 16 {
 		return 0, 0, false
 	}
 	from := estimate.Quantile(p[rest:leaves], 0.05)
-	lift := math.Min((zero-d.up.a)/d.up.b, upperMedian(p[rest:leaves], (from+p[leaves-1])/2))
+	lift := standing(p[rest:leaves], from+0.15*(p[leaves-1]-from))
 	rise, rate := lift-from, d.meanRate(c)
-	if rise < 20*estimate.Noise(p) || !(rate > 0) {
+	if !(rise > 20*estimate.Noise(p)) || !(rate > 0) {
 		return 0, 0, false
 	}
 	begun, end := -1, -1
@@ -156,27 +158,39 @@ func (d *data) softness(c analyze.Cycle) (ratio, wait float64, ok bool) {
 		if p[i] < from+0.1*rise {
 			begun, end = i, -1
 		}
-		if end < 0 && p[i] > from+0.85*rise {
+		if end < 0 && p[i] > from+0.7*rise {
 			end = i
 		}
 	}
 	if begun < 0 || end <= begun {
 		return 0, 0, false
 	}
-	pace := rate / (0.75 * rise)
+	pace := rate / (0.6 * rise)
 	return (d.t[end] - d.t[begun]) * pace, pauseS * pace, true
 }
 
-// upperMedian is the median of the values above a level: where the wheel crosses
-// its slack the setting stands still for longest.
-func upperMedian(v []float64, level float64) float64 {
-	var above []float64
-	for _, x := range v {
-		if x > level {
-			above = append(above, x)
+// standing is the level above a bound at which a setting stands for longest: that
+// at which the wheel crosses its slack. The middle of the narrowest window with
+// half of the values.
+func standing(v []float64, above float64) float64 {
+	var x []float64
+	for _, p := range v {
+		if p > above {
+			x = append(x, p)
 		}
 	}
-	return estimate.Median(above)
+	if len(x) == 0 {
+		return math.NaN()
+	}
+	slices.Sort(x)
+	n := max(1, len(x)/2)
+	best, narrowest := x[len(x)/2], math.Inf(1)
+	for i := 0; i+n < len(x); i++ {
+		if w := x[i+n] - x[i]; w < narrowest {
+			best, narrowest = (x[i]+x[i+n])/2, w
+		}
+	}
+	return best
 }
 
 // meanRate is the pace of the middle half of a rise, rests and strokes included.

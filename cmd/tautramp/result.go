@@ -133,11 +133,21 @@ func resultBy(rec *recording.Recording, path string, target mill.Pressure, recor
 		Target: target, Set: set, Day: measuredOn(rec.Header), Records: records,
 	})
 	if err != nil {
-		return nil, report.Meta{}, fmt.Errorf("%s: %w", path, err)
+		return nil, report.Meta{}, fmt.Errorf("%s: %w%s", path, err, seenAnyway(rec.Header.Parsed, set))
 	}
 	meta := reportMeta(path, rec, set)
 	meta.Found = findings.Look(findings.Input{Profile: rec.Header.Parsed, Result: res, Set: res.Set()})
 	return res, meta, nil
+}
+
+// seenAnyway is what a recording shows of which no line could be fitted, to stand
+// behind the error; nothing where it shows nothing.
+func seenAnyway(p *mill.Profile, set *pairing.Set) string {
+	text := ""
+	for _, f := range findings.Look(findings.Input{Profile: p, Set: set}).Findings {
+		text += fmt.Sprintf("; seen in it: %s (%s certainty)", f.Name, f.Word)
+	}
+	return text
 }
 
 // measuredOn is the day of the measurement; a memory card carries none.

@@ -1,0 +1,131 @@
+package findings_test
+
+import (
+	"fmt"
+	"math"
+	"strings"
+	"testing"
+
+	"tautramp/acquire/simrig"
+	"tautramp/analyze/findings"
+)
+
+// inPairs is the kinds that are planted two at a time: those that leave enough of
+// the recording for another to be seen.
+func inPairs() []simrig.FaultKind {
+	return []simrig.FaultKind{simrig.ConstantFriction, simrig.LeakDown, simrig.MountCreep, simrig.WheelDrag, simrig.EndStop, simrig.StickyGauge, simrig.GaugeZero, simrig.RigWarming, simrig.TooFewCycles}
+}
+
+// excluded are pairs that one recording cannot hold apart: two drifts, and an area
+// that two spans put in doubt.
+func excluded(a, b simrig.FaultKind) bool {
+	drifts := map[simrig.FaultKind]bool{simrig.MountCreep: true, simrig.RigWarming: true}
+	few := a == simrig.TooFewCycles || b == simrig.TooFewCycles
+	return a == b || drifts[a] && drifts[b] || few && (drifts[a] || drifts[b])
+}
+
+func kindOf(k simrig.FaultKind) planting {
+	for _, p := range plantings() {
+		if p.kind == k {
+			return p
+		}
+	}
+	panic("no planting of " + string(k))
+}
+
+// runPairs plants two causes at once.
+func runPairs(t *testing.T, u doubts, rigs int, stream uint64) string {
+	t.Helper()
+	both, n := 0, 0
+	missed := map[string]int{}
+	for seed := uint64(0); n < rigs && seed < uint64(10*rigs); seed++ {
+		s, err := draw(seed, stream^0x9a1)
+		if err != nil {
+			t.Fatal(err)
+		}
+		kinds := inPairs()
+		a, b := kindOf(kinds[s.rng.IntN(len(kinds))]), kindOf(kinds[s.rng.IntN(len(kinds))])
+		if excluded(a.kind, b.kind) {
+			continue
+		}
+		okA, errA := a.plant(s, u, severity(s))
+		okB, errB := b.plant(s, u, severity(s))
+		if !okA || !okB || errA != nil || errB != nil {
+			continue
+		}
+		rep, err := look(s.c)
+		if err != nil {
+			continue
+		}
+		n++
+		seen := map[findings.Key]bool{}
+		for _, f := range rep.Findings {
+			for _, c := range f.Causes {
+				seen[c.Key] = true
+			}
+		}
+		if seen[a.cause] && seen[b.cause] {
+			both++
+			continue
+		}
+		missed[fmt.Sprintf("%s with %s", a.kind, b.kind)]++
+		if flagText("loud") == "true" {
+			fmt.Println("pair missed", seed, a.kind, b.kind, s.c.Drive.Shape, s.countM, seen)
+		}
+	}
+	return fmt.Sprintf("%d pairs of faults: both named in %s", n, share(both, n))
+}
+
+// class is the findings of one class of certainty.
+type class struct {
+	from, to   float64
+	said       float64 // sum of their certainties
+	n, correct int
+}
+
+// runCalibration looks at a mix: three rigs in ten healthy, the others with one
+// cause each, all kinds alike, at 0.2 to 6 times the noticeable severity.
+func runCalibration(t *testing.T, u doubts, rigs int, stream uint64) string {
+	t.Helper()
+	classes := []class{{from: 0.5, to: 0.85}, {from: 0.85, to: 0.95}, {from: 0.95, to: 1.01}}
+	all := plantings()
+	for seed := range rigs {
+		s, err := draw(uint64(seed), stream^0xca1)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var cause findings.Key
+		if s.rng.Float64() > 0.3 {
+			p := all[s.rng.IntN(len(all))]
+			ok, err := p.plant(s, u, 0.2*math.Exp(s.rng.Float64()*math.Log(30)))
+			if !ok || err != nil {
+				continue
+			}
+			cause = p.cause
+		}
+		rep, err := look(s.c)
+		if err != nil {
+			continue
+		}
+		for _, f := range rep.Findings {
+			for k := range classes {
+				c := &classes[k]
+				if f.Certainty >= c.from && f.Certainty < c.to {
+					c.n++
+					c.said += f.Certainty
+					if has(f, cause) {
+						c.correct++
+					} else if flagText("loud") == "true" {
+						fmt.Printf("mix seed %d planted %q: %s %.3f\n", seed, cause, f.Key, f.Certainty)
+					}
+				}
+			}
+		}
+	}
+	var out strings.Builder
+	fmt.Fprintf(&out, "certainty on a mix of %d rigs:\n", rigs)
+	for _, c := range classes {
+		fmt.Fprintf(&out, "  %.2f to %.2f: %d findings, said %.3f, right %s\n", c.from, math.Min(c.to, 1), c.n, c.said/math.Max(1, float64(c.n)), share(c.correct, c.n))
+	}
+	return out.String()
+}
