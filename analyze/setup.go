@@ -68,6 +68,9 @@ func resolve(in Input) (Setup, error) {
 		GaugeM:    given(p.Rig.GaugeLength.SI, orElse(p.Rig.GaugeLengthStd.SI, p.Rig.GaugeLength.SI*assumedGaugeStd)),
 		TargetPa:  b.Target.SI, LimitSI: t.LimitSI(), GeometryM2: t.GeometryAreaM2(), Bands: p.Bands, Records: in.Records,
 	}
+	if in.Set != nil && in.Set.BothFaces {
+		s.Rig.Faces = 2
+	}
 	s.mounting()
 	if in.Target.Given() {
 		s.TargetPa = in.Target.SI

@@ -35,6 +35,10 @@ func FromRecording(rec *recording.Recording) (*Set, error) {
 		Plan:      Plan{Exercise: rec.Header.Plan.Exercise, Ramps: rec.Header.Plan.Ramps},
 		Alarms:    in.telling.alarms, Ended: in.telling.ended, Simulated: in.simulated(),
 	}
+	if other, ok := in.otherFace(chosen.extension); ok {
+		set.BothFaces = true
+		set.Extension.meanFaces(in.channel(other, samples), float64(in.devices[other.device].here.TickHz))
+	}
 	if chosen.stepped {
 		set.Stepped, set.StepStd = true, chosen.steps.std
 		set.Setting = chosen.steps.channel(chosen.quantity, set.Marks)

@@ -44,7 +44,9 @@ func (in *intake) choose(h recording.Header) (choice, error) {
 	if c.stepped {
 		c.setting = c.extension // the same clock, and no channel of its own
 	}
-	c.warnings = append(c.warnings, several(extensions, "extension")...)
+	if _, both := in.otherFace(c.extension); !both || len(extensions) > 2 {
+		c.warnings = append(c.warnings, several(extensions, "extension")...)
+	}
 	return c, nil
 }
 

@@ -107,7 +107,8 @@ type Set struct {
 	Marks     []Mark
 	Clocks    []ClockFit
 	Counters  []Counters
-	Unpaired  int // good extension readings without a setting at their instant
+	BothFaces bool // Extension is the mean of two channels, one on each face of the band
+	Unpaired  int  // good extension readings without a setting at their instant
 	Plan      Plan
 	Alarms    []Mark  // raised during the visit, in the order of the recording
 	Ended     string  // how the visit ended, in words; "" where nothing says so
