@@ -35,6 +35,8 @@ func drawn(seed uint64) *bench {
 	b.reversalM = either(2e-6)
 	b.indicatorErr, b.gaugeErr = drawnWithin(b.rng, 3e-6), drawnWithin(b.rng, 3.75*psi)
 	b.zeroM += either(b.countM)
+	// Curl and warmth shift the loaded band's stretch against the slack one's.
+	b.tautM = either(assumedCurl*b.gaugeM) + either(assumedWarmthK*expansionPerK*b.gaugeM)
 	b.wander = 0.01
 	b.settingHz, b.extensionHz = 20, 5
 	return b
@@ -42,7 +44,7 @@ func drawn(seed uint64) *bench {
 
 // tally is how the truth lay against the estimates of many rigs.
 type tally struct {
-	hits, n, all   int
+	hits, n        int
 	sum            float64
 	errors, claims float64 // squares of truth less value, and of the standard uncertainty
 }
@@ -66,9 +68,6 @@ func (y *tally) judge(lo, hi, value, std, truth float64) {
 		y.hits++
 	}
 }
-
-// bias is the mean error over the claimed standard uncertainty.
-func (y *tally) bias() float64 { return y.sum / float64(y.n) / math.Sqrt(y.claims/float64(y.n)) }
 
 // score is the errors' root mean square over that of the standard uncertainties:
 // 1 for an honest budget, less for one that claims too much doubt.

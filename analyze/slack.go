@@ -103,25 +103,6 @@ func (w *work) lull(first, last int) lull {
 	return l
 }
 
-// lineLeft is whether the straight falling lines, carried on to the lowest setting,
-// leave the count that is still shown there: a taut band would have shown less.
-// The line knows the stretch far better than the count.
-func (w *work) lineLeft(r run) bool {
-	var below []float64
-	for i, c := range w.res.Cycles {
-		if w.legs[i].ok && c.Falling.Points > 0 {
-			at, std := c.Falling.Line.At(r.lowSI)
-			below = append(below, r.level-w.setup.CountM/2-at-3*std)
-		}
-	}
-	const steps = 0.3 // of a count, that a step of the display may lie elsewhere
-	return estimate.Median(below) > 3*w.noiseM+w.scaleBendM()+steps*w.setup.CountM && w.fellTo(r)
-}
-
-// fellTo is whether the setting came down to the run's lowest from above: at the
-// start of a record friction may hold a band up or down from before.
-func (w *work) fellTo(r run) bool { return finite(r.inSI) }
-
 // stillRun finds the run about the lowest extension.
 func (w *work) stillRun(first, last int) (run, bool) {
 	smooth := make([]float64, last-first+1)

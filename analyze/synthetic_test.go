@@ -83,7 +83,7 @@ func (b *bench) settle(pPa float64) float64 {
 		stress = b.stopPa + b.beyond*(stress-b.stopPa)
 	}
 	u := stress / (400 * psi)
-	e := b.zeroM + b.tautM + b.gaugeM/b.modulusPa*(stress-b.toePa*u*math.Exp(1-u)) + math.Min(1, stress/(1800*psi))*b.indicatorErr.at((stress/psi-1800)/10200)
+	e := b.zeroM + b.tautM*(1-math.Exp(-stress/(300*psi))) + b.gaugeM/b.modulusPa*(stress-b.toePa*u*math.Exp(1-u)) + math.Min(1, stress/(1800*psi))*b.indicatorErr.at((stress/psi-1800)/10200)
 	if b.loadN < was {
 		b.falling = true
 	} else if b.loadN > was {
