@@ -71,7 +71,7 @@ type OwnLimit struct {
 // Word is how certain a finding is, in words.
 type Word string
 
-// The words. High means at least 95 % on simulated rigs.
+// The words. METHOD.md says what they are worth.
 const (
 	High     Word = "high"
 	Likely   Word = "likely"
