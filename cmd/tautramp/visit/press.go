@@ -12,6 +12,7 @@ import (
 const (
 	longPress = 1500 * time.Millisecond // takes the last mark back, as recording SPEC 5.6 has it
 	heldPress = 4 * time.Second         // aborts: a foot or a hand that does not let go
+	heldReal  = time.Second             // and lasts as long in life: a fast rehearsal's board may be late to say that it was let go
 )
 
 // hold is a press on a board's own button. The wire tells its edges; it is a mark
@@ -54,7 +55,8 @@ func (w *watch) button(wire []byte) []recording.Event {
 
 // held aborts once when a button stays down.
 func (w *watch) held() []recording.Event {
-	if !w.press.down || w.press.spent || w.now-w.press.since < heldPress {
+	least := max(heldPress, time.Duration(float64(heldReal)*w.factor))
+	if !w.press.down || w.press.spent || w.now-w.press.since < least {
 		return nil
 	}
 	w.press.spent = true
