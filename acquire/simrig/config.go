@@ -12,6 +12,8 @@ import (
 var (
 	ErrNotRehearsable = errors.New("this tensioner cannot be rehearsed") // no rehearsal table
 	ErrOverLimit      = errors.New("the drive goes past the tensioner's setting limit")
+	// ErrNoEnd is found while a drive runs: a hand that loses as much as it gains.
+	ErrNoEnd = errors.New("the drive does not reach its end")
 )
 
 // Config is one rehearsal: what is pretended, what the operator does, and the

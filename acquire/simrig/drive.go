@@ -35,6 +35,8 @@ type Drive struct {
 	Ramps      int     // cycles to the top; 0 means 3, negative none
 	Repeat     bool    // start over when all boards are told to run after the drive has ended
 
+	MostS float64 // s that the drive may take where it is run flat out; 0 means 14,400 (4 h)
+
 	RestS    float64 // s at rest before the first rise; 0 means 10, negative none
 	HoldTopS float64 // s at the top; 0 means 5, negative none
 	HoldLowS float64 // s at the low end; 0 means 10, negative none

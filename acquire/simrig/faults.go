@@ -87,7 +87,8 @@ func (r FaultRow) Draw(rng *rand.Rand) Fault {
 
 // Plant puts a fault on top of what a configuration already has, so that
 // several can be planted one after the other. The profile stays as it is. Its
-// errors are New's, and ErrConfig for a kind that this tensioner cannot have.
+// errors are New's, ErrConfig for a kind that this tensioner cannot have, and
+// ErrNoEnd.
 func Plant(c *Config, f Fault) error {
 	for _, row := range Faults() {
 		if row.Kind != f.Kind {
@@ -257,10 +258,13 @@ func measuringFaults() []FaultRow {
 		{MountCreep, "m/s", "steady drift of the mount", 1e-9, 1e-7,
 			add(func(c *Config, f Fault, _ job) { c.Stretch.DriftMS += f.Size })},
 		{MountSlip, "m", "sudden step of the mount", 4e-6, 5e-5,
-			add(func(c *Config, f Fault, j job) {
+			func(c *Config, f Fault, j job) (err error) {
 				c.Stretch.SlipM += f.Size
-				c.Stretch.SlipAtS = orElse(f.AtS, j.midRiseS())
-			})},
+				if c.Stretch.SlipAtS = f.AtS; f.AtS == 0 {
+					c.Stretch.SlipAtS, err = j.midRiseS()
+				}
+				return err
+			}},
 		{GaugeZero, "Pa", "what the setting's gauge shows of nothing; N m, rad or m where it is no pressure", 5e3, 1e5,
 			add(func(c *Config, f Fault, j job) { c.gauge(j.tensioner.SetBy).OffsetSI += f.Size })},
 		{GaugeSpan, "", "error of the setting's span, part of it", 0.005, 0.05,
@@ -307,12 +311,15 @@ func otherFaults() []FaultRow {
 }
 
 // midRiseS is well up the rise of the middle cycle.
-func (j job) midRiseS() float64 {
+func (j job) midRiseS() (float64, error) {
 	w := newWorld(*j.rehearsal)
 	w.start(0)
 	middle := (cycles(j.Drive.Exercise, 1) + cycles(j.Drive.Ramps, 3)) / 2
 	from, to := math.NaN(), math.NaN()
 	for !w.drive.over() && w.drive.cycleNow() <= middle {
+		if err := j.inTime(w.now().t); err != nil {
+			return 0, err
+		}
 		w.advance(w.now().t + 0.2)
 		if w.drive.cycleNow() == middle && w.drive.rising() {
 			to = w.now().t
@@ -321,5 +328,5 @@ func (j job) midRiseS() float64 {
 			}
 		}
 	}
-	return from + 0.6*(to-from)
+	return from + 0.6*(to-from), nil
 }

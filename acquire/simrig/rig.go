@@ -143,7 +143,8 @@ const logTailS = 2
 // WriteLog runs the whole drive flat out, without a clock, and writes what one
 // board would have put on a memory card. The rig itself is left as it is, so
 // the same text comes each time. A rig of two boards or with a drive that
-// never ends has no such log: ErrConfig; nor has a bench.
+// never ends has no such log: ErrConfig; nor has a bench. One that does not get
+// to its end is ErrNoEnd.
 func (r *Rig) WriteLog(w io.Writer) error {
 	if r.bench != nil || len(r.boards) != 1 || r.conf.Drive.Shape == Still {
 		return fmt.Errorf("%w: a log needs a mill, one board and a drive that ends", ErrConfig)
@@ -181,5 +182,5 @@ func (r *Rig) Trace(everyS float64) ([]Moment, error) {
 	if r.bench != nil || !(everyS >= leastStepS) || r.conf.Drive.Shape == Still {
 		return nil, fmt.Errorf("%w: a trace every %g s of drive shape %q", ErrConfig, everyS, r.conf.Drive.Shape)
 	}
-	return newWorld(r.conf).trace(everyS), nil
+	return newWorld(r.conf).trace(everyS)
 }

@@ -3,6 +3,7 @@ package simrig
 import (
 	"errors"
 	"fmt"
+	"io"
 	"math"
 	"testing"
 
@@ -53,7 +54,29 @@ func TestSamplesOfTwoBoardsAndOfNoEnd(t *testing.T) {
 func traceBy(r *Rig, stepS float64) []Moment {
 	w := newWorld(r.conf)
 	w.stepS = stepS
-	return w.trace(0.05)
+	trace, _ := w.trace(0.05)
+	return trace
+}
+
+// A hand pump that squeezes air by less with a stroke than leaks back after it
+// never gets to its top.
+func TestDriveThatNeverEndsIsRefused(t *testing.T) {
+	c := quick(t)
+	c.Drive.Shape, c.Drive.SagPart, c.Oil.AirM3 = Strokes, 0.05, 5e-3
+	c.Drive.MostS = 600
+	r := mustNew(t, c)
+	if _, err := r.Samples(); !errors.Is(err, ErrNoEnd) {
+		t.Errorf("samples: %v", err)
+	}
+	if _, err := r.Trace(1); !errors.Is(err, ErrNoEnd) {
+		t.Errorf("trace: %v", err)
+	}
+	if err := r.WriteLog(io.Discard); !errors.Is(err, ErrNoEnd) {
+		t.Errorf("log: %v", err)
+	}
+	if err := Plant(&c, Fault{Kind: MountSlip, Size: 1e-5}); !errors.Is(err, ErrNoEnd) {
+		t.Errorf("planting: %v", err)
+	}
 }
 
 // The long steps are as good as forty times shorter ones: the same settings at

@@ -82,15 +82,18 @@ func (w *world) longest(c command) float64 {
 }
 
 // trace runs the drive from its start and notes what happens.
-func (w *world) trace(everyS float64) (list []Moment) {
+func (w *world) trace(everyS float64) (list []Moment, err error) {
 	w.start(0)
 	for i := 0; !w.drive.over(); i++ {
 		t := float64(i) * everyS
+		if err := w.conf.inTime(t); err != nil {
+			return nil, err
+		}
 		w.advance(t)
 		v := w.at(t)
 		list = append(list, Moment{v.driveS, v.pressurePa, v.pullN, v.extensionM[0], v.travelM, v.torqueNM, v.angleRad, v.springM})
 	}
-	return list
+	return list, nil
 }
 
 // sudden is the longest step that follows a wheel breaking loose.

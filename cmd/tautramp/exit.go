@@ -75,7 +75,7 @@ func exitTable() []exitRow {
 	return []exitRow{
 		{0, "done", "", func(err error) bool { return err == nil }},
 		{12, "an alarm was raised during the capture", "stop, release slowly, find the cause before ramping again; the recording is whole", as[*alarmError]()},
-		{2, "the command line cannot be obeyed", "tautramp help lists the commands, tautramp COMMAND --help explains one", anyOf(as[*usageError](), is(mill.ErrUnknownName, gauge.ErrKind))},
+		{2, "the command line cannot be obeyed", "tautramp help lists the commands, tautramp COMMAND --help explains one", anyOf(as[*usageError](), is(mill.ErrUnknownName, gauge.ErrKind, simrig.ErrNoEnd))},
 		{20, "a bench plan has a mistake", "mend what is named above; tautramp bench --plan dial --write-plan my-plan.toml writes a good example", as[*planError]()},
 		{3, "mill.toml has a mistake", "mend the line named above; tautramp profile writes a good example", anyOf(as[*mill.ProfileError](), is(simrig.ErrNotRehearsable))},
 		{14, "the stretch of the slack band is not known, and so no band stress", "let the setting down until the band is slack before and after each ramp, or press z when it is", is(analyze.ErrNoZero)},

@@ -11,6 +11,7 @@ import (
 	"tautramp/acquire/pairing"
 	"tautramp/acquire/port"
 	"tautramp/acquire/recording"
+	"tautramp/acquire/simrig"
 	"tautramp/analyze"
 	"tautramp/analyze/gauge"
 	"tautramp/cmd/tautramp/station"
@@ -26,7 +27,7 @@ func TestEachClassOfErrorHasItsExitCode(t *testing.T) {
 		{&usageError{"no"}, 2},
 		{&mill.ProfileError{Line: 3, Key: "band.net_width", Problem: "no unit"}, 3},
 		{mill.ErrUnknownName, 2},
-		{gauge.ErrKind, 2},
+		{gauge.ErrKind, 2}, {simrig.ErrNoEnd, 2},
 		{port.ErrNotFound, 4},
 		{port.ErrBusy, 4},
 		{port.ErrBadName, 4},
