@@ -89,6 +89,10 @@ func (w *work) stood(at []int, x, y []float64) (sx, sy []float64) {
 	}
 	each, top := (x[n]-x[0])/float64(n), estimate.Quantile(pick(w.e, at), 1)
 	high := estimate.Quantile(pick(w.x, at), 1)
+	// Steps at one and the same setting, or closer than the pairs: not a display's.
+	if !(each*float64(len(at)) > high-x[n]) {
+		return x, y
+	}
 	for next := x[n] + each; next < high-each; next += each {
 		x, y = append(x, next), append(y, top)
 	}
