@@ -82,7 +82,7 @@ func Thresholds() []Threshold {
 		{JumpNoise, 4, "times the noise", Judgement, "the same jump"},
 		{PlayWidth, 0.02, "", Judgement, "reversal beyond twice the half-width, of the working setting"},
 		{ToeReach, 0.2, "", Judgement, "stress up to which the rising readings leave their line by 1 % of the working stretch, of the target"},
-		{StopSlope, 0.2, "", Judgement, "slope at the top, of the slope below"},
+		{StopSlope, 0.4, "", Judgement, "slope at the top, of the slope below: a stop leaves none, and a coarse count hides some"},
 		{StopSpan, 0.03, "", Judgement, "range of setting over which that holds, of the top setting"},
 		{BindSlope, 1.1, "", Judgement, "slope of the upper third, of the slope of the lower third"},
 		{AirSoftness, 2, "times", Judgement, "time for the setting to reach the slack lift, of what the ramp's pace takes"},

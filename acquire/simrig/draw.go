@@ -111,7 +111,8 @@ hold = "maintained"
 `, cylinders, bore*1e3, weight) + d.hidden(within(rng, 0.003, 0.012)*d.pullN, within(rng, 0.004, 0.012), weight)
 }
 
-// screw is a tensioner with a greased trapezoidal screw and springs.
+// screw is a tensioner with a greased trapezoidal screw and springs; its profile
+// knows the frictions to two digits.
 func (d *drawn) screw(rng *rand.Rand, by mill.SetBy) string {
 	weight := within(rng, 0, 0.1) * d.pullN
 	size := math.Round(within(rng, 9, 13) * math.Sqrt(d.pullN/1e3/9) * 2) // mm, for a bearable load on the thread
@@ -133,11 +134,13 @@ diameter = "%.6g mm"
 lead = "%.6g mm"
 collar_radius = "%.6g mm"
 rest_torque = "%.4g N m"
+thread_friction = %.2g
+collar_friction = %.2g
 [tensioner.spring]
 under_load = "shorter"
 rate = "%.6g N/mm"
 free_length = "%.6g mm"
-`, weight, size, lead, 0.6*size, restNM, rate, free) +
+`, weight, size, lead, 0.6*size, restNM, thread, collar, rate, free) +
 		d.hidden(within(rng, 0.001, 0.004)*d.pullN, within(rng, 0.001, 0.005), weight) + fmt.Sprintf(`friction_thread = %.4g
 friction_collar = %.4g
 rest_torque = "%.4g N m"

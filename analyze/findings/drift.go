@@ -14,45 +14,64 @@ type stage struct {
 	kind  analyze.PhaseKind
 	t     float64 // s, its middle
 	restM float64
+	stdM  float64 // of restM: what the count hides of it
 	tempK float64
 }
 
-// stages averages over each run of one phase that is long enough.
+// stages averages over each rise, fall and rest that is long enough; what lies
+// between the points of one, a hold or a sag, is left out.
 func (d *data) stages() []stage {
 	var out []stage
 	zero := d.zeroM()
 	temp := d.thermometer()
-	for i := 0; i < len(d.t); {
-		k := i
-		for k+1 < len(d.t) && d.phase[k+1] == d.phase[i] && d.t[k+1]-d.t[k] < 5 {
-			k++
-		}
-		if s, ok := d.stage(i, k, zero, temp); ok {
+	var at []int
+	var kind analyze.PhaseKind
+	flush := func() {
+		if s, ok := d.stage(kind, at, zero, temp); ok {
 			out = append(out, s)
 		}
-		i = k + 1
+		at = at[:0]
 	}
+	for i, is := range d.phase {
+		switch is {
+		case analyze.SlackLift: // a slack band too
+			is = analyze.Resting
+		case analyze.Loading, analyze.Unloading:
+			if !d.follow.good[i] {
+				continue
+			}
+		case analyze.Resting:
+		default:
+			continue
+		}
+		if is != kind {
+			flush()
+			kind = is
+		}
+		at = append(at, i)
+	}
+	flush()
 	return out
 }
 
-func (d *data) stage(first, last int, zero float64, temp pairing.Channel) (stage, bool) {
-	s := stage{kind: d.phase[first], t: (d.t[first] + d.t[last]) / 2, tempK: math.NaN()}
-	var rest []float64
-	for i := first; i <= last; i++ {
-		switch {
-		case s.kind == analyze.Resting || s.kind == analyze.SlackLift:
-			rest = append(rest, d.e[i]-zero)
-		case d.follow.good[i] && (s.kind == analyze.Loading || s.kind == analyze.Unloading):
-			rest = append(rest, d.follow.rest[i])
+// stage is one of the points given.
+func (d *data) stage(kind analyze.PhaseKind, at []int, zero float64, temp pairing.Channel) (stage, bool) {
+	if len(at) < 10 {
+		return stage{}, false
+	}
+	first, last := at[0], at[len(at)-1]
+	s := stage{kind: kind, t: (d.t[first] + d.t[last]) / 2, tempK: math.NaN()}
+	rest, e := make([]float64, len(at)), make([]float64, len(at))
+	for k, i := range at {
+		e[k], rest[k] = d.e[i], d.follow.rest[i]
+		if kind == analyze.Resting {
+			rest[k] = d.e[i] - zero
 		}
 	}
-	if s.kind == analyze.SlackLift { // both are a slack band
-		s.kind = analyze.Resting
-	}
-	if len(rest) < 10 {
-		return s, false
-	}
-	s.restM = estimate.Median(rest)
+	s.restM, _ = estimate.Mean(rest)
+	// A still display hides a count; over a ramp its steps average out.
+	crossed := (estimate.Quantile(e, 1) - estimate.Quantile(e, 0)) / d.countM
+	s.stdM = math.Hypot(d.countM/math.Sqrt(12*math.Max(1, crossed)), d.noiseM/math.Sqrt(float64(len(at))))
 	var temps []float64
 	for _, r := range temp.Readings {
 		if r.Status.Ok() && r.T >= d.t[first]-2 && r.T <= d.t[last]+2 {
@@ -69,6 +88,9 @@ func (d *data) stage(first, last int, zero float64, temp pairing.Channel) (stage
 const (
 	temperature = "temperature"
 	extension   = "extension"
+	torque      = "torque"
+	angle       = "angle"
+	spring      = "spring"
 )
 
 // thermometer is the first channel of a temperature; without readings where there is none.
@@ -83,9 +105,12 @@ func (d *data) thermometer() pairing.Channel {
 	return pairing.Channel{}
 }
 
+// drifted is one stage about the mean of its kind.
+type drifted struct{ x, y, std float64 }
+
 // against is the stages' drift against time or temperature, each kind of stage
 // about its own mean.
-func against(all []stage, of func(stage) float64) (x, y []float64) {
+func against(all []stage, of func(stage) float64) []drifted {
 	kinds := map[analyze.PhaseKind][]stage{}
 	var order []analyze.PhaseKind
 	for _, s := range all {
@@ -97,6 +122,7 @@ func against(all []stage, of func(stage) float64) (x, y []float64) {
 		}
 		kinds[s.kind] = append(kinds[s.kind], s)
 	}
+	var out []drifted
 	for _, k := range order {
 		var mx, my float64
 		n := float64(len(kinds[k]))
@@ -108,46 +134,46 @@ func against(all []stage, of func(stage) float64) (x, y []float64) {
 			my += s.restM / n
 		}
 		for _, s := range kinds[k] {
-			x, y = append(x, of(s)-mx), append(y, s.restM-my)
+			out = append(out, drifted{of(s) - mx, s.restM - my, s.stdM})
 		}
 	}
-	return x, y
+	return out
 }
 
-// throughNought is the slope of a line through the origin, its doubt, and the
-// correlation.
-func throughNought(x, y []float64, floor float64) (slope, std, r float64, ok bool) {
+// throughNought is the slope of a line through the origin, each point weighted by
+// its doubt, the slope's own doubt, and the correlation.
+func throughNought(all []drifted) (slope, std, r float64, ok bool) {
 	var sxx, sxy, syy float64
-	for i := range x {
-		sxx += x[i] * x[i]
-		sxy += x[i] * y[i]
-		syy += y[i] * y[i]
+	for _, p := range all {
+		w := 1 / (p.std * p.std)
+		sxx += w * p.x * p.x
+		sxy += w * p.x * p.y
+		syy += w * p.y * p.y
 	}
-	if len(x) < 5 || !(sxx > 0) {
+	if len(all) < 5 || !(sxx > 0) || math.IsInf(sxx, 0) {
 		return 0, 0, 0, false
 	}
 	slope = sxy / sxx
-	rss := math.Max(0, syy-slope*sxy)
-	sd := math.Max(floor, math.Sqrt(rss/float64(len(x)-4)))
+	chi := math.Max(0, syy-slope*sxy) / float64(len(all)-4)
 	if syy > 0 {
 		r = sxy / math.Sqrt(sxx*syy)
 	}
-	return slope, sd / math.Sqrt(sxx), r, true
+	return slope, math.Sqrt(math.Max(1, chi) / sxx), r, true
 }
 
 const noTemperature = "no temperature was recorded: fit the sensor to the band"
 
 func (d *data) warmth() (slope, std, r, range_ float64, n int, ok bool) {
 	stages := d.stages()
-	x, y := against(stages, func(s stage) float64 { return s.tempK })
-	slope, std, r, ok = throughNought(x, y, d.countM/math.Sqrt(12)/3)
+	all := against(stages, func(s stage) float64 { return s.tempK })
+	slope, std, r, ok = throughNought(all)
 	low, high := math.Inf(1), math.Inf(-1)
 	for _, s := range stages {
 		if !math.IsNaN(s.tempK) {
 			low, high = math.Min(low, s.tempK), math.Max(high, s.tempK)
 		}
 	}
-	return slope, std, r, high - low, len(x), ok
+	return slope, std, r, high - low, len(all), ok
 }
 
 func (d *data) warmLink() estimate.Estimate {
@@ -183,12 +209,12 @@ func (d *data) mountCreep() estimate.Estimate {
 
 // drift is the same with its sign, m a minute.
 func (d *data) drift() estimate.Estimate {
-	x, y := against(d.stages(), func(s stage) float64 { return s.t / 60 })
-	slope, std, _, ok := throughNought(x, y, d.countM/math.Sqrt(12)/3)
+	all := against(d.stages(), func(s stage) float64 { return s.t / 60 })
+	slope, std, _, ok := throughNought(all)
 	if !ok {
 		return estimate.Unknown("too few ramps to see a drift")
 	}
-	return known(slope, std, float64(max(1, len(x)-4)), "means of each rise, fall and rest, over time")
+	return known(slope, std, float64(max(1, len(all)-4)), "means of each rise, fall and rest, over time")
 }
 
 // driftWidth is the half-width that a drift pretends, by a line in the setting:

@@ -47,6 +47,13 @@ type knee struct {
 	found      bool
 }
 
+// A knee is not found to the point: where the part above it is worth more than so
+// many counts, its slope is taken clear of it, from this share of it on. Judgement.
+const (
+	kneePart   = 0.3
+	kneeCounts = 3
+)
+
 // topKnee looks for a change of slope in the upper half of a rise.
 func (d *data) topKnee(c analyze.Cycle) (knee, bool) {
 	p, e := d.risingPairs(c)
@@ -64,14 +71,18 @@ func (d *data) topKnee(c analyze.Cycle) (knee, bool) {
 		return k, true
 	}
 	below, okB := fitPart(gp, ge, low, s.Break)
-	above, okA := fitPart(gp, ge, s.Break, high)
+	from := s.Break
+	if clear := s.Break + kneePart*(high-s.Break); below.B*(high-clear) > kneeCounts*d.countM {
+		from = clear
+	}
+	above, okA := fitPart(gp, ge, from, high)
 	if !okA || !okB || !(below.B > 0) {
 		return k, true
 	}
 	k.spanSI, k.fromSI, k.found = high-s.Break, s.Break, true
 	k.ratio = above.B / below.B
 	// A count hides as much at either end of the part as a whole one.
-	hidden := d.countM / math.Sqrt(6) / k.spanSI
+	hidden := d.countM / math.Sqrt(6) / (high - from)
 	k.std = math.Sqrt(above.VarB+hidden*hidden+k.ratio*k.ratio*below.VarB) / below.B
 	return k, true
 }
@@ -158,7 +169,10 @@ func (d *data) thirds(first, last int) (ratio, std float64, ok bool) {
 	if !okL || !okU || !(lower.B > 0) {
 		return 0, 0, false
 	}
-	hidden := d.countM / math.Sqrt(6) / ((high - low) / 3)
+	// A count hides as much at either end of a third as a whole one; the more of
+	// them it has, the better they average out.
+	third := (high - low) / 3
+	hidden := d.countM / math.Sqrt(6) / third / math.Sqrt(math.Max(1, lower.B*third/d.countM))
 	ratio = upper.B / lower.B
 	return ratio, math.Sqrt(upper.VarB+hidden*hidden+ratio*ratio*(lower.VarB+hidden*hidden)) / lower.B, true
 }
@@ -182,7 +196,7 @@ func (d *data) flatTop() estimate.Estimate {
 		return estimate.Unknown("the readings themselves are not at hand")
 	}
 	grown := 0.0
-	first, last := longestTop(d.set.Setting)
+	first, last := d.longestTop(d.set.Setting)
 	if last-first < leastFlatS {
 		return known(0, 1e-4, math.Inf(1), "the highest setting is never shown for long")
 	}
@@ -203,18 +217,19 @@ const leastFlatS = 1.0
 
 // longestTop is the times between which a channel shows its highest value
 // without a change for longest.
-func longestTop(c pairing.Channel) (first, last float64) {
+func (d *data) longestTop(c pairing.Channel) (first, last float64) {
 	top := math.Inf(-1)
+	rising := d.r.Setup.Tensioner.Rising
 	for _, r := range c.Readings {
 		if r.Status.Ok() {
-			top = math.Max(top, r.Value)
+			top = math.Max(top, rising(r.Value))
 		}
 	}
 	long := 0.0
 	begun := math.NaN()
 	for _, r := range c.Readings {
 		switch {
-		case !r.Status.Ok() || r.Value < top:
+		case !r.Status.Ok() || rising(r.Value) < top:
 			begun = math.NaN()
 		case math.IsNaN(begun):
 			begun = r.T

@@ -56,6 +56,7 @@ const (
 	fHoldCreeps   FeatureKey = "hold_slows_down"
 	fCollapse     FeatureKey = "stroke_fall"
 	fCollapseRate FeatureKey = "stroke_fall_rate"
+	fDipFollow    FeatureKey = "stroke_stretch_follows"
 	fMountCreep   FeatureKey = "stretch_creep"
 	fSlip         FeatureKey = "stretch_step"
 	fSlipCounts   FeatureKey = "stretch_step_counts"
@@ -116,8 +117,9 @@ func features() []struct {
 		{fHoldFreed, "loss of setting in the hold, of the width that friction locks", Times, (*data).holdFreed},
 		{fHoldFollow, "stretch lost, of what the loss of setting beyond friction asks for", Share, (*data).holdFollow},
 		{fHoldCreeps, "loss that slows down as creep does (1) or runs on as a leak does (0)", Count, (*data).holdCreeps},
-		{fCollapse, "dips of the setting while the stretch stays, of the width that friction locks", Times, (*data).collapse},
+		{fCollapse, "dips of the setting that come back, of the width that friction locks", Times, (*data).collapse},
 		{fCollapseRate, "pace of those dips", PerSecond, (*data).collapseRate},
+		{fDipFollow, "stretch that goes with those dips, of what they ask for beyond friction", Share, (*data).dipFollow},
 		{fMountCreep, "drift of the stretch while the setting holds", MetresMinute, (*data).mountCreep},
 		{fSlip, "largest lasting step of the stretch", OfStretch, (*data).slip},
 		{fSlipCounts, "the same step, in counts", Times, (*data).slipCounts},

@@ -106,7 +106,7 @@ func Look(in Input) *Report {
 	}
 	by := in.Result.Setup.Tensioner.SetBy
 	if by == "" {
-		by = mill.SetByPressure
+		by = measuredBy(in.Set)
 	}
 	d := newData(in)
 	rep := &Report{Features: measure(d), System: by, Advice: lockOut, Own: ownLimits(in.Profile)}
@@ -116,6 +116,22 @@ func Look(in Input) *Report {
 	}, data: d}
 	e.run(rowsFor(by), rep)
 	return rep
+}
+
+// measuredBy is what the tensioner is set by, by the channel of the setting.
+func measuredBy(set *pairing.Set) mill.SetBy {
+	if set == nil {
+		return mill.SetByPressure
+	}
+	switch set.Setting.Spec.Quantity {
+	case torque:
+		return mill.SetByTorque
+	case angle:
+		return mill.SetByTurns
+	case spring:
+		return mill.SetBySpring
+	}
+	return mill.SetByPressure
 }
 
 func ownLimits(p *mill.Profile) []OwnLimit {

@@ -3,6 +3,7 @@ package findings
 import (
 	"math"
 
+	"tautramp/acquire/mill"
 	"tautramp/analyze/estimate"
 )
 
@@ -77,11 +78,13 @@ func (d *data) zeroM() float64 {
 	return d.up.at(d.r.Rising.LowSI)
 }
 
-// smoothed is the setting at the points: the mean of its own readings from half
-// a point before to half a point after, so much earlier.
+// smoothed is the setting at the points, as one that rises with the load: the mean
+// of its own readings from half a point before to half a point after, so much
+// earlier. A torque is read off the points: its readings know of no pull while the
+// wrench is let go.
 func (d *data) smoothed(lateS float64) []float64 {
 	out := append([]float64(nil), d.p...)
-	if d.set == nil || len(d.set.Setting.Readings) <= len(d.t) {
+	if d.set == nil || len(d.set.Setting.Readings) <= len(d.t) || d.setBy(mill.SetByTorque) {
 		return out
 	}
 	readings := d.set.Setting.Readings
@@ -100,7 +103,7 @@ func (d *data) smoothed(lateS float64) []float64 {
 		sum, n := 0.0, 0.0
 		for k := from; k < len(readings) && readings[k].T <= d.t[i]-lateS+half; k++ {
 			if readings[k].Status.Ok() {
-				sum += readings[k].Value
+				sum += d.r.Setup.Tensioner.Rising(readings[k].Value)
 				n++
 			}
 		}

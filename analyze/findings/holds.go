@@ -217,6 +217,9 @@ func (d *data) holdFollow() estimate.Estimate {
 	if !ok {
 		return estimate.Unknown(noHold)
 	}
+	if late := d.lateFollow(h); late.Known() && late.Value > 3*late.Std() {
+		return late
+	}
 	half := d.r.Working.HalfSI
 	beyond := h.lostSI - d.lockAt(h.meanSI)
 	asks := d.down.b * beyond
@@ -225,6 +228,27 @@ func (d *data) holdFollow() estimate.Estimate {
 	}
 	v := h.lostM / asks
 	return known(v, math.Hypot(d.noiseM/asks, v*2*half.Std()/beyond), 10, "the hold that lost most")
+}
+
+// lateFollow is the same by the last third of the loss alone: a stretch that goes
+// with the setting there has been let go, however wide the loop is.
+func (d *data) lateFollow(h hold) estimate.Estimate {
+	last := h.last + 1
+	from := last
+	until := estimate.Median(d.follow.p[max(h.first, last-d.points(edgeS)):last]) + h.lostSI/3
+	for from > h.first && d.follow.p[from-1] < until {
+		from--
+	}
+	fell := until - d.follow.p[h.last]
+	if last-from < 16 || !(fell > 0) || !(d.down.b > 0) {
+		return estimate.Unknown("the hold is too short")
+	}
+	l, err := serialLine(d.follow.p[from:last], d.e[from:last])
+	if err != nil {
+		return estimate.Unknown("the hold is too short")
+	}
+	hidden := d.countM / math.Sqrt(6) / fell
+	return known(l.B/d.down.b, math.Hypot(math.Sqrt(l.VarB), hidden)/d.down.b, math.Max(2, l.DoF), "last third of the loss in the hold that lost most")
 }
 
 // holdCreeps is which law the longest hold's loss follows, where one can be told.

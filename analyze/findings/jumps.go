@@ -20,8 +20,8 @@ type jumps struct {
 type jump struct {
 	at   int     // first point after it
 	size float64 // m, positive where the stretch grew
+	read float64 // m, the change of the reading itself
 	kept float64 // m, of it still there some seconds later
-	pSI  float64 // change of the setting meanwhile
 }
 
 const (
@@ -107,10 +107,19 @@ func (d *data) peaks(change []float64, first, last, window int) []jump {
 			top = !bigger && !(k < i && math.Abs(change[k]) == math.Abs(change[i]))
 		}
 		if top {
-			out = append(out, jump{at: i, size: change[i], pSI: d.follow.p[min(len(d.t)-1, i+window)] - d.follow.p[max(0, i-window)]})
+			out = append(out, jump{at: i, size: change[i], read: d.moved(i, window)})
 		}
 	}
 	return out
+}
+
+// moved is the change of the reading itself, as the change of what is left.
+func (d *data) moved(at, window int) float64 {
+	sum := 0.0
+	for k := range window {
+		sum += d.e[at+k] - d.e[at-1-k]
+	}
+	return sum / float64(window)
 }
 
 // kept is the change at a place over some seconds on either side.
@@ -171,9 +180,9 @@ func (d *data) third() (sizeM float64, ok bool) {
 }
 
 // lasted is how much of a sudden change is still there some seconds later, and
-// was there at once.
+// was there at once; none where the setting jumped and the reading stood.
 func (j jump) lasted() float64 {
-	if math.IsNaN(j.kept) || j.kept*j.size <= 0 {
+	if math.IsNaN(j.kept) || j.kept*j.size <= 0 || j.read/j.size < 0.5 {
 		return 0
 	}
 	return math.Min(math.Abs(j.kept), 1.2*math.Abs(j.size))

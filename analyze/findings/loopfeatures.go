@@ -172,10 +172,19 @@ func (d *data) toeOf(c analyze.Cycle) (share float64, ok bool) {
 	return share, true
 }
 
+const noLoop = "the two lines are not those of one loop"
+
+// plausible is whether the slopes of the two lines can be those of one tensioner:
+// a friction that grows by half of the load and more is none.
+func (d *data) plausible() bool { return math.Abs(d.r.Friction.Mu.Value) < 0.5 }
+
 func (d *data) area() estimate.Estimate {
 	r := d.r.Friction.AreaRatio
 	if !r.Known() {
 		return r
+	}
+	if !d.plausible() {
+		return estimate.Unknown(noLoop)
 	}
 	// The section and the modulus enter forces: what they leave open is in System.
 	r.Value--
@@ -190,12 +199,45 @@ func (d *data) weight() estimate.Estimate {
 		return estimate.Unknown("mill.toml gives no lifted weight")
 	case !f.WeightN.Known() || !(f.AreaM2.Value > 0) || !(d.workingSI > 0):
 		return estimate.Unknown("the loop does not give the lifted weight: " + f.WeightN.Why)
+	case !d.plausible():
+		return estimate.Unknown(noLoop)
 	}
 	w := f.WeightN
 	w.Value -= given.SI
 	w.System = math.Hypot(w.System, weightDoubt*given.SI)
-	return size(w.Scale(1 / f.AreaM2.Value / d.workingSI))
+	w = w.Scale(1 / f.AreaM2.Value / d.workingSI)
+	if d.usable() {
+		w.System = math.Hypot(w.System, d.zeroDoubtM()/d.up.b/d.workingSI)
+	}
+	return size(w)
 }
+
+// zeroDoubtM is what the zero leaves open of the weight: one count of the display
+// either way (rectangular), and how far the zero that was used lies from the
+// stretch that the slack band showed.
+func (d *data) zeroDoubtM() float64 {
+	apart := 0.0
+	if slack := d.slackM(); !math.IsNaN(slack) {
+		apart = math.Abs(d.zeroM() - slack)
+	}
+	return math.Hypot(d.countM/math.Sqrt(3), apart)
+}
+
+// slackM is the lowest stretch that stayed for a while: the slack band's, however
+// the zero was found.
+func (d *data) slackM() float64 {
+	low := math.NaN()
+	n := d.points(slackS)
+	for i := 0; i+n <= len(d.e); i += n {
+		if e := estimate.Median(d.e[i : i+n]); !(e >= low) {
+			low = e
+		}
+	}
+	return low
+}
+
+// slackS is for how long, s.
+const slackS = 3.0
 
 // weightDoubt is how well a lifted weight is commonly known, relative. Judgement.
 const weightDoubt = 0.05
@@ -229,10 +271,15 @@ func (d *data) fast() estimate.Estimate {
 	if math.IsNaN(worst) {
 		return estimate.Unknown("the setting never rises")
 	}
-	return estimate.Exact(worst, "median rate on the branches")
+	return estimate.Estimate{Value: worst, System: rateStd * worst, DoF: math.Inf(1), Method: "median rate on the branches"}
 }
 
-// bareRate is the pace of the middle half of the fastest rise, of its top.
+// rateStd is how well the pace of a hand is told by one number, relative.
+// Judgement.
+const rateStd = 0.05
+
+// bareRate is the pace of the middle half of the fastest rise while the setting
+// moves, of its top.
 func (d *data) bareRate() float64 {
 	worst := math.NaN()
 	if len(d.p) < leastPoints {
@@ -241,9 +288,32 @@ func (d *data) bareRate() float64 {
 	turns := analyze.Turning(d.p, 0.5*(estimate.Quantile(d.p, 0.999)-estimate.Quantile(d.p, 0.001)))
 	for k := 1; k < len(turns); k++ {
 		c := analyze.Cycle{First: turns[k-1], Peak: turns[k], TopSI: d.p[turns[k]]}
-		if r := d.meanRate(c) / c.TopSI; c.TopSI > d.p[c.First] && !(r <= worst) {
+		if r := d.movingRate(c) / c.TopSI; c.TopSI > d.p[c.First] && !(r <= worst) {
 			worst = r
 		}
 	}
 	return worst
+}
+
+// moveS is over how long it is judged whether the setting moves, s: the gap
+// between strokes is shorter, the hold of a step longer. Judgement.
+const moveS = 1.5
+
+// movingRate is meanRate without the holds of a staircase.
+func (d *data) movingRate(c analyze.Cycle) float64 {
+	gain := func(i int) float64 {
+		before, after := d.around(d.t[i], moveS)
+		return d.p[after] - d.p[before]
+	}
+	most, still := 0.0, 0
+	for i := c.First; i <= c.Peak; i++ {
+		most = math.Max(most, gain(i))
+	}
+	for i := c.First; i <= c.Peak; i++ {
+		if gain(i) < 0.1*most {
+			still++
+		}
+	}
+	moving := 1 - float64(still)/float64(c.Peak-c.First+1)
+	return d.meanRate(c) / math.Max(moving, 0.1)
 }

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/rand/v2"
+	"slices"
 
 	"tautramp/acquire/mill"
 	"tautramp/acquire/pairing"
@@ -24,30 +25,39 @@ const (
 type subject struct {
 	c       simrig.Config
 	truth   simrig.Truth
-	workPa  float64 // setting at the target
+	workPa  float64 // setting at the target, SI, as one that rises with the load
 	workM   float64 // stretch there
 	countM  float64
 	seconds float64 // how long the visit takes, about
 	rng     *rand.Rand
 }
 
-// draw makes up a healthy mill. The sensors are read less often than in life: it
+// draw makes up a healthy mill set by pressure.
+func draw(seed, stream uint64) (*subject, error) { return drawSetBy(seed, stream, mill.SetByPressure) }
+
+// drawSetBy makes up a healthy mill. The sensors are read less often than in life: it
 // costs a third of the time and changes no physics.
-func draw(seed, stream uint64) (*subject, error) {
+func drawSetBy(seed, stream uint64, by mill.SetBy) (*subject, error) {
 	rng := rand.New(rand.NewPCG(seed, stream))
-	c, err := simrig.Draw(rng)
+	c, err := simrig.DrawSetBy(rng, by)
 	if err != nil {
 		return nil, err
 	}
 	c.Thermometer = true
-	c.Pressure.PerSecond, c.Indicator.PerSecond = 16, 4
+	if by == mill.SetByPressure { // a wrench's grips are short
+		c.Pressure.PerSecond, c.Indicator.PerSecond = 16, 4
+	}
 	rig, err := simrig.New(c)
 	if err != nil {
 		return nil, err
 	}
+	if by != mill.SetByPressure { // as slow as the pressure of the others
+		band, _ := c.Profile.FindBand(c.Band)
+		c.Drive.TurnRadS = rig.Truth().TurnRad(1.22*band.Target.SI, true) / (150 + 150*rng.Float64())
+	}
 	s := &subject{c: c, truth: rig.Truth(), rng: rng}
 	band, _ := c.Profile.FindBand(c.Band)
-	s.workPa = s.truth.RisingPa(band.Target.SI)
+	s.workPa = rig.Tensioner().Rising(s.truth.Setting(band.Target.SI, true))
 	s.workM = s.truth.ExtensionM(band.Target.SI)
 	s.countM = 0.00005 * 0.0254
 	if c.Indicator.Count.Exponent == -4 {
@@ -78,68 +88,219 @@ func lookAt(p *mill.Profile, set *pairing.Set) *findings.Report {
 // planting says how a cause is planted at a severity: the size at which its
 // feature shows so much.
 type planting struct {
+	name    string     // "": as the kind
+	by      mill.SetBy // "": pressure
 	kind    simrig.FaultKind
 	cause   findings.Key
 	feature findings.FeatureKey
 	limit   mill.ThresholdKey
+	// grouped is for a recording that lacks what would tell the cause from others of
+	// its declared group; fine only, for one that lacks it where the count is coarse.
+	grouped, fine bool
+	// least that the feature must show on a rig whose own doubt is known beforehand:
+	// its limit and three standard uncertainties; nil: the usual doubts tell.
+	least func(s *subject) float64
 	// size of the fault for its feature to be x beyond what a healthy rig shows.
-	size func(s *subject, x float64) float64
-	most float64                        // largest size that is planted: what is beyond is met in no mill
-	also func(s *subject, size float64) // the rest of it: a bench record
-	// where it can be planted; nil: on any rig. A drive that loses more to a sag
-	// than a stroke gains never reaches its top.
-	fits func(s *subject) bool
+	size   func(s *subject, x float64) float64
+	fewest float64                        // smallest and
+	most   float64                        // largest size that is planted: what is beyond is met in no mill
+	also   func(s *subject, size float64) // the rest of it: a bench record, a longer hold
+	fits   func(s *subject) bool          // where it can be planted; nil: on any rig
+}
+
+func (p planting) title() string {
+	if p.name != "" {
+		return p.name
+	}
+	return string(p.kind)
+}
+
+func (p planting) setBy() mill.SetBy {
+	if p.by != "" {
+		return p.by
+	}
+	return mill.SetByPressure
 }
 
 func plantings() []planting {
-	share := func(_ *subject, x float64) float64 { return x }
+	return slices.Concat(frictionPlantings(), oilPlantings(), rigPlantings(), screwPlantings())
+}
+
+func asIs(_ *subject, x float64) float64 { return x }
+
+func ofSetting(s *subject, x float64) float64 { return x * s.workPa }
+
+func frictionPlantings() []planting {
+	slide := planting{kind: simrig.ConstantFriction, cause: findings.Slide, feature: "half_width_constant", limit: mill.FrictionConstant, grouped: true,
+		size: func(s *subject, x float64) float64 { return x * s.truth.AreaM2 * s.workPa }, most: 2e4}
+	seal := planting{kind: simrig.SealDrag, cause: findings.Seal, feature: "half_width", limit: mill.FrictionWide, grouped: true, size: asIs, most: 0.2}
+	offSlide, offSeal := slide, seal
+	offSlide.name, offSlide.grouped, offSlide.also = "constant friction, off-load test", false, func(s *subject, _ float64) { s.offLoad(0.2 * s.truth.F0N) }
+	offSeal.name, offSeal.grouped, offSeal.also = "seal drag, off-load test", false, func(s *subject, size float64) { s.offLoad(0.2*s.truth.F0N + size/2*s.truth.AreaM2*s.workPa) }
 	return []planting{
-		{kind: simrig.ProportionalFriction, cause: findings.Pins, feature: "half_width_proportional", limit: mill.FrictionProportional, size: share, most: 0.16},
-		{kind: simrig.ConstantFriction, cause: findings.Slide, feature: "half_width_constant", limit: mill.FrictionConstant,
-			size: func(s *subject, x float64) float64 { return x * s.truth.AreaM2 * s.workPa }, most: 2e4},
-		{kind: simrig.SealDrag, cause: findings.Seal, feature: "half_width", limit: mill.FrictionWide, size: share, most: 0.2},
+		{kind: simrig.ProportionalFriction, cause: findings.Pins, feature: "half_width_proportional", limit: mill.FrictionProportional, size: asIs, most: 0.16},
+		slide, offSlide, seal, offSeal,
 		{kind: simrig.StickSlip, cause: findings.StickSlip, feature: "third_jump", limit: mill.JumpSize,
-			size: func(s *subject, x float64) float64 { return (x + s.countM/s.workM) / 0.35 }, most: 0.12},
-		{kind: simrig.SlackToe, cause: findings.Toe, feature: "toe_end", limit: mill.ToeReach,
-			size: toeSize, most: 2e7},
-		{kind: simrig.EndStop, cause: findings.EndStop, feature: "top_span", limit: mill.StopSpan,
-			size: func(s *subject, x float64) float64 { return 1 - 0.8*x }, most: 1},
-		{kind: simrig.AirInOil, cause: findings.Air, feature: "low_strokes", limit: mill.AirSoftness, size: airSize, most: 3e-4,
+			size: func(s *subject, x float64) float64 { return (x + s.countM/s.workM) / 0.35 }, most: 0.2},
+		{kind: simrig.SlackToe, cause: findings.Toe, feature: "toe_end", limit: mill.ToeReach, grouped: true, size: toeSize, most: 1.5e7},
+		{kind: simrig.EndStop, cause: findings.EndStop, feature: "top_span", limit: mill.StopSpan, least: stopSpan,
+			size: stopSize, fewest: 0.6, most: 1},
+	}
+}
+
+func stopSize(_ *subject, x float64) float64 { return 1 - 0.8*x }
+
+func oilPlantings() []planting {
+	leak := planting{kind: simrig.LeakDown, cause: findings.Leak, feature: "hold_setting_loss", limit: mill.HoldLoss, grouped: true, size: perSecond, most: 0.005}
+	gauge := planting{kind: simrig.GaugeLeak, cause: findings.GaugeLeak, feature: "hold_setting_loss", limit: mill.HoldLoss, grouped: true, size: perSecond, most: 0.004}
+	longLeak, longGauge := leak, gauge
+	longLeak.name, longLeak.grouped, longLeak.fine, longLeak.also = "leak-down, held for long", false, true, (*subject).holdFor
+	longGauge.name, longGauge.grouped, longGauge.fine, longGauge.also = "gauge-side leak, held for long", false, true, (*subject).holdFor
+	return []planting{
+		{kind: simrig.AirInOil, cause: findings.Air, feature: "low_strokes", limit: mill.AirSoftness, least: softness, size: airSize, most: 3e-4,
+			// A drive that loses more to a sag than a stroke gains never reaches its top.
 			fits: func(s *subject) bool { return s.c.Drive.Shape != simrig.Strokes || s.c.Drive.SagPart < 0.006 }},
-		{kind: simrig.LeakDown, cause: findings.Leak, feature: "hold_setting_loss", limit: mill.HoldLoss, size: perSecond, most: 0.005},
-		{kind: simrig.GaugeLeak, cause: findings.GaugeLeak, feature: "hold_setting_loss", limit: mill.HoldLoss, size: perSecond, most: 0.004},
+		leak, longLeak, gauge, longGauge,
 		{kind: simrig.PumpSideGauge, cause: findings.PumpSide, feature: "stroke_fall", limit: mill.StrokeLoss,
 			size: func(s *subject, x float64) float64 { return 0.04 * x / 1.2 }, most: 2},
 		{kind: simrig.OilWarming, cause: findings.Warmth, feature: "hold_setting_rise", limit: mill.HoldRise,
 			size: func(s *subject, x float64) float64 { return x / 0.7 }, most: 0.1},
-		{kind: simrig.Saturation, cause: findings.Saturation, feature: "flat_top", limit: mill.FlatTop,
-			size: func(s *subject, x float64) float64 { return 1 - 0.8*x }, most: 1},
+		{kind: simrig.Saturation, cause: findings.Saturation, feature: "flat_top", limit: mill.FlatTop, size: stopSize, most: 1},
+	}
+}
+
+func rigPlantings() []planting {
+	span := planting{kind: simrig.GaugeSpan, cause: findings.GaugeSpan, feature: "area_off", limit: mill.AreaOff, grouped: true, size: asIs, most: 0.4}
+	section := planting{kind: simrig.WrongSection, cause: findings.Section, feature: "area_off", limit: mill.AreaOff, grouped: true, size: asIs, most: 0.4}
+	benchedSpan, benchedSection := span, section
+	benchedSpan.name, benchedSpan.grouped, benchedSpan.also = "gauge span error, bench test", false, func(s *subject, size float64) {
+		off := func(share float64) float64 { return -size / (1 + size) * share * benchSpanPa }
+		s.bench(off, off)
+	}
+	benchedSection.name, benchedSection.grouped, benchedSection.also = "wrong section, bench test", false, func(s *subject, _ float64) {
+		none := func(float64) float64 { return 0 }
+		s.bench(none, none)
+	}
+	return []planting{
 		{kind: simrig.MountCreep, cause: findings.MountCreep, feature: "stretch_creep", limit: mill.MountCreep, size: perSecond, most: 1e-6},
 		{kind: simrig.MountSlip, cause: findings.MountSlip, feature: "stretch_step", limit: mill.MountSlip,
 			size: func(s *subject, x float64) float64 { return math.Max(x*s.workM, 7*s.countM) }, most: 1.2e-4},
-		{kind: simrig.GaugeZero, cause: findings.GaugeZero, feature: "weight_off", limit: mill.WeightOff,
-			size: func(s *subject, x float64) float64 { return x * s.workPa }, most: 1e6},
-		{kind: simrig.GaugeSpan, cause: findings.GaugeSpan, feature: "area_off", limit: mill.AreaOff, size: share, most: 0.4},
+		{kind: simrig.GaugeZero, cause: findings.GaugeZero, feature: "weight_off", limit: mill.WeightOff, grouped: true, size: ofSetting, most: 1e6},
+		span, benchedSpan,
 		{kind: simrig.StickyGauge, cause: findings.Gauge, feature: "gauge_sticks", limit: mill.GaugeSticky,
 			size: func(s *subject, x float64) float64 { return x * benchSpanPa / 2 }, most: 3e5, also: benchSticky},
 		{kind: simrig.BentGauge, cause: findings.Gauge, feature: "gauge_curve", limit: mill.GaugeCurve,
 			size: func(s *subject, x float64) float64 { return x * benchSpanPa / 0.6 }, most: 5e5, also: benchBent},
-		{kind: simrig.BandWarming, cause: findings.Warmth, feature: "warmth_shift", limit: mill.WarmthShift,
-			size: func(s *subject, x float64) float64 { return x * s.workM / (11.5e-6 * s.truth.GaugeM * s.seconds) }, most: 0.02},
-		{kind: simrig.RigWarming, cause: findings.Warmth, feature: "warmth_shift", limit: mill.WarmthShift,
-			size: func(s *subject, x float64) float64 { return x * s.workM / (11.5e-6 * s.truth.GaugeM * s.seconds) }, most: 0.02},
-		{kind: simrig.WheelDrag, cause: findings.Drag, feature: "spans_differ", limit: mill.SpanDiffer, size: share, most: 0.5},
-		{kind: simrig.TyreCreep, cause: findings.Tyre, feature: "hold_setting_loss", limit: mill.HoldLoss,
+		{kind: simrig.BandWarming, cause: findings.Warmth, feature: "warmth_shift", limit: mill.WarmthShift, size: warmSize, most: 0.02},
+		{kind: simrig.RigWarming, cause: findings.Warmth, feature: "warmth_shift", limit: mill.WarmthShift, size: warmSize, most: 0.02},
+		{kind: simrig.WheelDrag, cause: findings.Drag, feature: "spans_differ", limit: mill.SpanDiffer, size: asIs, most: 0.5},
+		{kind: simrig.TyreCreep, cause: findings.Tyre, feature: "hold_setting_loss", limit: mill.HoldLoss, grouped: true,
 			size: func(s *subject, x float64) float64 { return x / 0.025 }, most: 0.6},
-		{kind: simrig.WrongSection, cause: findings.Section, feature: "area_off", limit: mill.AreaOff, size: share, most: 0.4},
-		{kind: simrig.WrongArea, cause: findings.Section, feature: "area_off", limit: mill.AreaOff, size: share, most: 0.4},
+		section, benchedSection,
+		{kind: simrig.WrongArea, cause: findings.Section, feature: "area_off", limit: mill.AreaOff, grouped: true, size: asIs, most: 0.4},
 		{kind: simrig.ChannelLag, cause: findings.Lag, feature: "lag_width", limit: mill.LagWidth,
 			size: func(s *subject, x float64) float64 { return x * s.workPa / s.c.Drive.RatePaS }, most: 3},
 		{kind: simrig.TooFewCycles, cause: findings.FewRamps, feature: "ramps",
 			size: func(s *subject, x float64) float64 { return float64(1 + s.rng.IntN(2)) }, most: 2},
 		{kind: simrig.TooFast, cause: findings.Fast, feature: "rate", limit: mill.FastRamp,
 			size: func(s *subject, x float64) float64 { return x * 1.22 * s.workPa / s.c.Drive.RatePaS }, most: 20},
+		{kind: simrig.TooRagged, cause: findings.Ragged, feature: "largest_fall", limit: mill.RaggedRamp, size: raggedSize, most: 25},
 	}
+}
+
+// screwPlantings are on tensioners set by torque, turns and spring length: what
+// differs there from those set by pressure.
+func screwPlantings() []planting {
+	return []planting{
+		{name: "torque: dry screw", by: mill.SetByTorque, kind: simrig.DryScrew, cause: findings.Screw, feature: "screw_efficiency",
+			least: dryLeast, size: drySize(func(t *simrig.Truth, mu float64) { t.Screw.ThreadMu += mu }), most: 0.2},
+		{name: "torque: dry collar", by: mill.SetByTorque, kind: simrig.DryCollar, cause: findings.Screw, feature: "screw_efficiency",
+			least: dryLeast, size: drySize(func(t *simrig.Truth, mu float64) { t.Screw.CollarMu += mu }), most: 0.15},
+		{name: "turns: play", by: mill.SetByTurns, kind: simrig.ScrewPlay, cause: findings.Play, feature: "turn_lost_idle", limit: mill.PlayWidth, size: ofSetting, most: 12},
+		{name: "turns: coil bind", by: mill.SetByTurns, kind: simrig.CoilBind, cause: findings.CoilBind, feature: "springs_solid", limit: mill.StopSpan, size: stopSize, fewest: 0.5, most: 1},
+		{name: "turns: tyre compression", by: mill.SetByTurns, kind: simrig.TyreCompression, cause: findings.Tyre, feature: "toe_end", limit: mill.ToeReach, grouped: true,
+			size: tyreSize, most: 3e-3},
+		{name: "turns: end stop", by: mill.SetByTurns, kind: simrig.EndStop, cause: findings.EndStop, feature: "top_span", limit: mill.StopSpan, least: stopSpan, size: stopSize, fewest: 0.6, most: 1},
+		{name: "spring: coil bind", by: mill.SetBySpring, kind: simrig.CoilBind, cause: findings.CoilBind, feature: "springs_solid", limit: mill.StopSpan, size: stopSize, fewest: 0.5, most: 1},
+		{name: "spring: constant friction", by: mill.SetBySpring, kind: simrig.ConstantFriction, cause: findings.Slide, feature: "half_width_constant", limit: mill.FrictionConstant,
+			size: func(s *subject, x float64) float64 { return x * s.truth.PullN(targetPa(s)) }, most: 2e4},
+		{name: "spring: mount slip", by: mill.SetBySpring, kind: simrig.MountSlip, cause: findings.MountSlip, feature: "stretch_step", limit: mill.MountSlip,
+			size: func(s *subject, x float64) float64 { return math.Max(x*s.workM, 7*s.countM) }, most: 1.2e-4},
+	}
+}
+
+// tyreSize is the travel that the tyres take for a hundredth of the whole way to
+// be left of it at x of the target: all but 1/e of it is taken at 0.4 of the pull.
+func tyreSize(s *subject, x float64) float64 {
+	if x > 0.7 { // no straight part would be left
+		return 0
+	}
+	way := s.truth.PullN(targetPa(s)) * (s.truth.Screw.GiveMN + 1/s.truth.Screw.SpringNM)
+	return 0.01 * way * math.Exp(x/0.4)
+}
+
+// dryLeast is the torque beyond the expected one, as a share, at the limit of the
+// efficiency and three standard uncertainties.
+func dryLeast(*subject) float64 {
+	limit, _ := (*mill.Profile)(nil).Threshold(mill.ScrewLow)
+	return 1/(limit-3*dryDoubt) - 1
+}
+
+// dryDoubt is the usual standard uncertainty of the efficiency.
+const dryDoubt = 0.04
+
+// drySize is the friction added that takes x more torque for the target.
+func drySize(dry func(*simrig.Truth, float64)) func(*subject, float64) float64 {
+	return func(s *subject, x float64) float64 {
+		torque := func(mu float64) float64 {
+			t := s.truth
+			dry(&t, mu)
+			return t.TorqueNM(targetPa(s), true)
+		}
+		low, high := 0.0, 1.0
+		for range 50 {
+			if mid := (low + high) / 2; torque(mid) < (1+x)*torque(0) {
+				low = mid
+			} else {
+				high = mid
+			}
+		}
+		return low
+	}
+}
+
+// raggedSize is the swing of the rate that takes the setting back by x times what
+// friction locks, or by x times a twentieth of the setting: two swings of 2.3 and
+// 3.7 s, half of the swing each.
+func raggedSize(s *subject, x float64) float64 {
+	fall := x * math.Max(0.05, 2*s.truth.F0N/s.truth.AreaM2/s.workPa+2*s.truth.Mu) * s.workPa
+	return (fall/s.c.Drive.RatePaS + 1.2) * 2 * math.Pi / (2.3 + 3.7)
+}
+
+func warmSize(s *subject, x float64) float64 {
+	return x * s.workM / (11.5e-6 * s.truth.GaugeM * s.seconds)
+}
+
+// profile is a copy of the rig's, to be changed.
+func (s *subject) profile() *mill.Profile {
+	p := *s.c.Profile
+	p.Tensioners = slices.Clone(p.Tensioners)
+	p.Instruments = slices.Clone(p.Instruments)
+	s.c.Profile = &p
+	return &p
+}
+
+// offLoad notes an off-load test of the cylinders that found a drag, good to 10 %.
+func (s *subject) offLoad(dragN float64) {
+	drag := dragN / s.truth.AreaM2 * (1 + 0.1*s.rng.NormFloat64())
+	s.profile().Tensioners[0].OffLoadDrag = mill.Pressure(setting(drag))
+}
+
+// holdFor holds until a leak of a size has taken twice what friction locks, and
+// for ten minutes at most.
+func (s *subject) holdFor(size float64) {
+	lock := 2 * (s.truth.F0N/s.truth.AreaM2/s.workPa + s.truth.Mu)
+	s.c.Drive.HoldTopS = math.Max(60, math.Min(600, 4*lock/size))
 }
 
 func targetPa(s *subject) float64 {
@@ -174,8 +335,7 @@ const psi = 6894.757293168361 // Pa
 // each with an error of the test's own.
 func (s *subject) bench(rising, falling func(share float64) float64) {
 	const u = 0.0005 * benchSpanPa // standard
-	p := *s.c.Profile
-	p.Instruments = append([]mill.Instrument(nil), p.Instruments...)
+	p := s.profile()
 	in := func(si float64) mill.Setting { return setting(si) }
 	for i := range p.Instruments {
 		if p.Instruments[i].Measures != mill.MeasuresSetting {
@@ -193,7 +353,6 @@ func (s *subject) bench(rising, falling func(share float64) float64) {
 		p.Instruments[i].Bench = b
 		p.Instruments[i].High = in(benchSpanPa)
 	}
-	s.c.Profile = &p
 }
 
 func setting(pa float64) mill.Setting {
@@ -207,117 +366,4 @@ func benchSticky(s *subject, size float64) {
 func benchBent(s *subject, size float64) {
 	bow := func(share float64) float64 { return -size * 4 * share * (1 - share) }
 	s.bench(bow, bow)
-}
-
-// noticeable is the least that a cause's feature must show: its limit, and three
-// standard uncertainties beyond it.
-func noticeable(p planting, u doubts, s *subject) float64 {
-	limit, _ := (*mill.Profile)(nil).Threshold(p.limit)
-	if p.limit == "" {
-		return 1
-	}
-	return limit + 3*u.of(p.feature, s)
-}
-
-// doubts is the usual standard uncertainty of each feature on healthy rigs, by
-// how finely the indicator counts.
-type doubts map[bool]map[findings.FeatureKey]float64
-
-func (u doubts) of(k findings.FeatureKey, s *subject) float64 { return u[s.coarse()][k] }
-
-func (s *subject) coarse() bool { return s.countM > 5e-6 }
-
-// plant puts a cause on a rig at so many times the noticeable severity. ok is
-// false where that is beyond what is met in mills.
-func (p planting) plant(s *subject, u doubts, times float64) (ok bool, err error) {
-	size := p.size(s, times*noticeable(p, u, s))
-	if p.fits != nil && !p.fits(s) {
-		return false, nil
-	}
-	if !(size > 0) || size > p.most {
-		return false, nil
-	}
-	if p.kind == simrig.WrongSection && s.rng.IntN(2) == 0 || p.kind == simrig.WrongArea && s.rng.IntN(2) == 0 {
-		size = -size / (1 + size)
-	}
-	if p.also != nil {
-		p.also(s, size)
-	}
-	return true, simrig.Plant(&s.c, simrig.Fault{Kind: p.kind, Size: size})
-}
-
-// usualDoubts is as a pilot run of 24 healthy rigs found it, on seeds of their
-// own: go test ./analyze/findings -run Confusion -pilot -only none.
-func usualDoubts() doubts {
-	return doubts{
-		false: {
-			"area_off":                 0.018,
-			"first_ramp":               0.001,
-			"flat_top":                 0.0027,
-			"gauge_curve":              0.0005,
-			"gauge_sticks":             0.0007,
-			"half_width":               0.0041,
-			"half_width_constant":      0.0041,
-			"half_width_proportional":  0.00043,
-			"hold_reversals":           0.02,
-			"hold_setting_loss":        0.00025,
-			"hold_setting_rise":        0.00025,
-			"hold_stretch_loss":        0.003,
-			"lag":                      0.23,
-			"lag_width":                0.0024,
-			"low_strokes":              0.65,
-			"reversal_beyond_friction": 0.0012,
-			"spans_differ":             0.02,
-			"stretch_creep":            4e-09,
-			"stretch_step":             0.0022,
-			"stretch_step_alone":       0.68,
-			"stretch_step_counts":      0.24,
-			"stroke_fall":              0.2,
-			"stroke_fall_rate":         0.0001,
-			"third_jump":               0.0022,
-			"third_jump_noise":         1,
-			"toe_end":                  0.012,
-			"top_slope":                0.29,
-			"top_span":                 0.021,
-			"upper_over_lower_slope":   0.0068,
-			"warmth_link":              0.16,
-			"warmth_per_degree":        0.049,
-			"warmth_shift":             0.0006,
-			"weight_off":               0.014,
-		},
-		true: {
-			"area_off":                 0.019,
-			"first_ramp":               0.0032,
-			"flat_top":                 0.025,
-			"gauge_curve":              0.0005,
-			"gauge_sticks":             0.0007,
-			"half_width":               0.0038,
-			"half_width_constant":      0.0038,
-			"half_width_proportional":  0.00066,
-			"hold_reversals":           0.023,
-			"hold_setting_loss":        0.00022,
-			"hold_setting_rise":        0.00022,
-			"hold_stretch_loss":        0.031,
-			"lag":                      2.4,
-			"lag_width":                0.019,
-			"low_strokes":              0.3,
-			"reversal_beyond_friction": 0.0013,
-			"spans_differ":             0.02,
-			"stretch_creep":            7.9e-08,
-			"stretch_step":             0.02,
-			"stretch_step_alone":       0.56,
-			"stretch_step_counts":      0.24,
-			"stroke_fall":              0.2,
-			"stroke_fall_rate":         0.0001,
-			"third_jump":               0.02,
-			"third_jump_noise":         1,
-			"toe_end":                  0.012,
-			"top_span":                 0.024,
-			"upper_over_lower_slope":   0.088,
-			"warmth_link":              0.15,
-			"warmth_per_degree":        0.84,
-			"warmth_shift":             0.011,
-			"weight_off":               0.039,
-		},
-	}
 }

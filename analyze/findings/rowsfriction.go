@@ -1,6 +1,11 @@
 package findings
 
-import "tautramp/acquire/mill"
+import (
+	"slices"
+	"strings"
+
+	"tautramp/acquire/mill"
+)
 
 // frictionRows are the causes that make the loop wide.
 func frictionRows(by mill.SetBy) []row {
@@ -8,9 +13,19 @@ func frictionRows(by mill.SetBy) []row {
 		return nil // a screw's friction has a row of its own; turns set no force
 	}
 	if by == mill.SetBySpring {
-		return []row{wideRow()}
+		return sealless(constantRow(), pinsRow(), bothRow(), growingRow(), wideRow())
 	}
 	return []row{constantRow(), slideRow(), sealRow(), pinsRow(), bothRow(), growingRow(), wideRow()}
+}
+
+// sealless is the rows of a tensioner without cylinders.
+func sealless(rows ...row) []row {
+	for i := range rows {
+		rows[i].causes = slices.DeleteFunc(rows[i].causes, func(c Cause) bool { return c.Key == Seal })
+		rows[i].advice = slices.DeleteFunc(rows[i].advice, func(s string) bool { return strings.Contains(s, "cylinder seals") })
+		rows[i].next = "Clean and lubricate slide and pins as the maker says, ramp again, and see which part of the half-width fell."
+	}
+	return rows
 }
 
 func shownWidth() []FeatureKey { return []FeatureKey{fHalf, fConstant, fProportional, fOffLoad} }
@@ -19,7 +34,8 @@ func constantRow() row {
 	return row{
 		key: "constant-drag", name: "Drag that is there whatever the load",
 		causes: group(Slide, Seal),
-		tests:  []test{{fConstant, Above, mill.FrictionConstant}, {fProportional, Below, mill.FrictionProportional}, {fOffLoad, Missing, ""}},
+		tests:  []test{{fConstant, Above, mill.FrictionConstant}, {fProportional, Below, mill.FrictionProportional}},
+		yields: []Key{Slide, Seal},
 		shows:  shownWidth(), rivals: widthRivals(), level: Service, region: betweenLines,
 		next: "Slide and seal drag the same in one loop. Where the maker allows it, test the cylinders with nothing on them and write the pressure that just moves them into mill.toml as off_load_drag; then analyze again.",
 		advice: []string{

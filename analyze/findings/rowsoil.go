@@ -11,7 +11,7 @@ func oilRows(by mill.SetBy) []row {
 }
 
 func collapseTests() []test {
-	return []test{{fCollapse, Above, mill.StrokeLoss}, {fCollapseRate, Above, mill.StrokeRate}}
+	return []test{{fCollapse, Above, mill.StrokeLoss}, {fCollapseRate, Above, mill.StrokeRate}, {fDipFollow, Below, mill.HoldFollow}}
 }
 
 func fastTests() []test { return []test{{fFast, Above, mill.FastRamp}} }
@@ -80,8 +80,8 @@ func gaugeLeakRow() row {
 func lockedLeakRow() row {
 	return row{
 		key: "hold-falls", name: "The setting falls in the hold while friction may be holding the band",
-		causes: group(Leak, GaugeLeak, Tyre), yields: []Key{"tyre-gives"},
-		tests: []test{{fHoldSetting, Above, mill.HoldLoss}, {fHoldFollow, Missing, ""}},
+		causes: group(Leak, GaugeLeak, Tyre), yields: []Key{Leak, GaugeLeak, "tyre-gives"},
+		tests: []test{{fHoldSetting, Above, mill.HoldLoss}},
 		shows: shownHold(), rivals: holdRivals(), level: Service, region: atHold,
 		next: "Hold until the setting has fallen by more than twice the half-width of the loop: if the stretch then falls with it, the oil leaks; if not, only the gauge's side does.",
 		advice: []string{
@@ -151,7 +151,7 @@ func areaRivals() []rival {
 func areaRow() row {
 	r := sectionRow()
 	r.key, r.name, r.causes = "area-off", "The area that works is not what the profile says", group(Section, GaugeSpan)
-	r.tests = []test{{fArea, Above, mill.AreaOff}, {fGaugeSpan, Missing, ""}}
+	r.tests, r.yields = []test{{fArea, Above, mill.AreaOff}}, []Key{Section, GaugeSpan}
 	return r
 }
 

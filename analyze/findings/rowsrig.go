@@ -142,7 +142,7 @@ func rampRows() []row {
 			key: Ragged, name: "Ramp too ragged", causes: group(Ragged),
 			tests: []test{{fRagged, Above, mill.RaggedRamp}}, level: Again, region: risingLine,
 			rivals: []rival{
-				{"a transducer on the pump side of the check valve", []test{{fCollapse, Above, mill.StrokeLoss}, {fCollapseRate, Above, mill.StrokeRate}}},
+				{"a transducer on the pump side of the check valve", collapseTests()},
 				{"a leak", []test{{fHoldSetting, Above, mill.HoldLoss}}},
 			},
 			next: "Ramp again steadily, without letting the setting down on the way up.", advice: []string{"Come up in one direction: a fall beyond what friction holds takes the band off the rising line."},

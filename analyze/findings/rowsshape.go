@@ -4,7 +4,7 @@ import "tautramp/acquire/mill"
 
 // shapeRows are the causes that bend or break the lines.
 func shapeRows(by mill.SetBy) []row {
-	rows := []row{stickSlipRow(), toeRow(), endStopRow()}
+	rows := []row{stickSlipRow(), toeRow(by), endStopRow()}
 	switch by {
 	case mill.SetByTorque:
 		rows = append(rows, screwRow())
@@ -22,6 +22,8 @@ func stickSlipRow() row {
 		tests: jumpTests(),
 		rivals: []rival{
 			{"a gauge that sticks", []test{{fSticky, Above, mill.GaugeSticky}}},
+			{"springs that go solid", boundTests()},
+			{"an end stop", stopTests()},
 		},
 		level: Service, region: risingLine,
 		next: "Ramp once more at half the pace and once smoothly with a power pump: stick-slip grows when it is slower, strokes of a hand pump do not matter to it.",
@@ -36,11 +38,17 @@ func jumpTests() []test {
 	return []test{{fThirdJump, Above, mill.JumpSize}, {fJumpNoise, Above, mill.JumpNoise}}
 }
 
-func toeRow() row {
+// toeRow is for slack and curl; where the setting is a way, for tyres that are
+// pressed together too.
+func toeRow(by mill.SetBy) row {
+	causes := group(Toe, Curl)
+	if by == mill.SetByTurns {
+		causes = group(Toe, Tyre, Curl)
+	}
 	return row{
-		key: Toe, name: "The foot of the loop is bent high up", causes: group(Toe, Curl),
+		key: Toe, name: "The foot of the loop is bent high up", causes: causes,
 		tests:  []test{{fToe, Above, mill.ToeReach}},
-		rivals: []rival{{"air in the oil", []test{{fSoft, Above, mill.AirSoftness}}}, {"stick-slip", jumpTests()}, {"an end stop", stopTests()}, {"a gauge that does not read straight", []test{{fCurve, Above, mill.GaugeCurve}}}, {"a mount that slipped", slipTests()}},
+		rivals: []rival{{"springs that go solid", boundTests()}, {"air in the oil", []test{{fSoft, Above, mill.AirSoftness}}}, {"stick-slip", jumpTests()}, {"an end stop", stopTests()}, {"a gauge that does not read straight", []test{{fCurve, Above, mill.GaugeCurve}}}, {"a mount that slipped", slipTests()}},
 		level:  Watch, region: lowEnd,
 		next: "Measure the other face of the band too: a band that flattens shows the other sign there, slack shows the same.",
 		advice: []string{
@@ -72,7 +80,7 @@ func playRow() row {
 	return row{
 		key: Play, name: "Play in pin, clevis or nut", causes: group(Play),
 		tests: []test{{fIdle, Above, mill.PlayWidth}}, shows: []FeatureKey{fIdle, fPlay},
-		rivals: []rival{{"lag between the instruments", []test{{fLagWidth, Above, mill.LagWidth}}}},
+		rivals: []rival{{"lag between the instruments", []test{{fLagWidth, Above, mill.LagWidth}}}, {"an end stop", stopTests()}},
 		level:  Service, region: atTurn,
 		next:   "Turn round at half the load too: play is as wide there, friction is not.",
 		advice: []string{"Look for wear in pins, clevis, screw and nut: move them by hand with the band slack and all locked out."},
@@ -124,7 +132,7 @@ func screwRow() row {
 func boundRow() row {
 	return row{
 		key: "springs-solid", name: "The springs go solid below the top", causes: group(CoilBind),
-		tests: []test{{fBound, Above, mill.StopSpan}}, shows: []FeatureKey{fBound, fBind}, level: Service, region: topEnd,
+		tests: boundTests(), shows: []FeatureKey{fBound, fBind}, level: Service, region: topEnd,
 		next: "Measure the springs' length at the top and compare it with the length at which coils or discs touch.",
 		advice: []string{
 			"Set below the knee: above it a little more setting makes a lot of pull, or none that the setting shows.",
@@ -132,6 +140,8 @@ func boundRow() row {
 		},
 	}
 }
+
+func boundTests() []test { return []test{{fBound, Above, mill.StopSpan}} }
 
 func softTyreRow() row {
 	return row{

@@ -14,7 +14,8 @@ type dip struct {
 	share float64 // of the setting before it
 	rate  float64 // the same a second
 	level float64 // SI, before it
-	held  bool    // the stretch stayed
+	fell  float64 // SI
+	backM float64 // m, by which the stretch went back meanwhile
 }
 
 const (
@@ -23,16 +24,13 @@ const (
 	leastDip = 0.04
 	// Fewer dips are an accident. Judgement.
 	leastDips = 3
-	// A stretch that moves by less than this share of what the dip asks for, had
-	// it followed in proportion, has stayed.
-	heldPart = 0.25
 )
 
 // dips looks for falls that come back, by the turning points of the setting
 // alone: it needs no fitted line.
 func (d *data) dips() []dip {
 	p, e := d.p, d.e
-	top, span := estimate.Quantile(p, 0.999), estimate.Quantile(e, 0.999)-estimate.Quantile(e, 0.01)
+	top := estimate.Quantile(p, 0.999)
 	noise := estimate.Noise(p)
 	turns := analyze.Turning(p, math.Max(0.02*top, 6*noise))
 	var out []dip
@@ -42,25 +40,50 @@ func (d *data) dips() []dip {
 		if fall < leastDip*p[from] || back < 0.8*fall || p[from] < 0.15*top {
 			continue
 		}
-		x := dip{share: fall / p[from], level: p[from]}
+		x := dip{share: fall / p[from], level: p[from], fell: fall, backM: e[from] - e[low]}
 		// The fall itself, a pause after it left out: to nine tenths.
 		end := from
 		for end < low && p[end] > p[from]-0.9*fall {
 			end++
 		}
 		x.rate = 0.9 * x.share / math.Max(d.t[end]-d.t[from], 0.05)
-		asks := fall / top * span
-		x.held = math.Abs(e[low]-e[from]) < heldPart*asks+2*d.countM
 		out = append(out, x)
 	}
 	return out
 }
 
-// collapse is how far the setting falls and comes back while the stretch stays,
+// dipFollow is how much the stretch goes with those dips, of what they ask for
+// beyond what friction locks: nothing where the setting is read before the check
+// valve.
+func (d *data) dipFollow() estimate.Estimate {
+	all := d.dips()
+	if len(all) < leastDips {
+		return estimate.Unknown("the setting did not dip")
+	}
+	perSI := d.down.b
+	if !d.usable() {
+		perSI = (estimate.Quantile(d.e, 0.999) - estimate.Quantile(d.e, 0.01)) / estimate.Quantile(d.p, 0.999)
+	}
+	went, asked := 0.0, 0.0
+	for _, x := range all {
+		beyond := x.fell
+		if d.usable() {
+			beyond = math.Max(0, x.fell-d.lockAt(x.level))
+		}
+		went, asked = went+x.backM, asked+beyond*perSI
+	}
+	each := math.Hypot(d.countM/math.Sqrt(6), math.Sqrt2*d.noiseM)
+	if !(asked > 0) {
+		return estimate.Unknown("no dip goes beyond what friction locks")
+	}
+	return known(went/asked, each*math.Sqrt(float64(len(all)))/asked, float64(len(all)), "all dips together")
+}
+
+// collapse is how far the setting falls and comes back,
 // in widths that friction locks, and those no narrower than the sag of any hand
 // pump: the median of the dips.
 func (d *data) collapse() estimate.Estimate {
-	held := d.heldDips()
+	held := d.dips()
 	if len(d.p) < leastPoints {
 		return estimate.Unknown("too little was recorded")
 	}
@@ -81,7 +104,7 @@ func (d *data) collapse() estimate.Estimate {
 
 // collapseRate is how fast it falls.
 func (d *data) collapseRate() estimate.Estimate {
-	held := d.heldDips()
+	held := d.dips()
 	if len(held) < leastDips {
 		return known(0, 1e-4, math.Inf(1), "no such dips")
 	}
@@ -91,16 +114,6 @@ func (d *data) collapseRate() estimate.Estimate {
 	}
 	v := estimate.Median(rates)
 	return known(v, 0.1*v, 10, "median of the dips")
-}
-
-func (d *data) heldDips() []dip {
-	var held []dip
-	for _, x := range d.dips() {
-		if x.held {
-			held = append(held, x)
-		}
-	}
-	return held
 }
 
 // tautShare is the part of the working stretch above which the band is taut
