@@ -149,7 +149,7 @@ give_stiffness = "%.6g N/mm"
 spring_rate = "%.6g N/mm"
 spring_free = "%.6g mm"
 spring_bind = "%.6g mm"
-`, thread, collar, restNM, within(rng, 0, 20), d.pullN/within(rng, 0.5, 1.5), rate, free, free-2*squeeze)
+`, thread, collar, restNM, within(rng, 0, 8), d.pullN/within(rng, 0.5, 1.5), rate, free, free-2*squeeze)
 }
 
 // rest is the band, the measuring rig and the instruments.

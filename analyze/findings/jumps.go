@@ -107,10 +107,27 @@ func (d *data) peaks(change []float64, first, last, window int) []jump {
 			top = !bigger && !(k < i && math.Abs(change[k]) == math.Abs(change[i]))
 		}
 		if top {
-			out = append(out, jump{at: i, size: change[i], read: d.moved(i, window)})
+			out = append(out, jump{at: i, size: change[i] - usual(change, i, window), read: d.moved(i, window)})
 		}
 	}
 	return out
+}
+
+// usual is the change that goes on about a place anyway, where the lines do not
+// fit: the median of those near it, not so near that it would be in them.
+func usual(change []float64, at, window int) float64 {
+	var near []float64
+	for k := 2 * window; k <= 5*window; k++ {
+		for _, i := range []int{at - k, at + k} {
+			if i >= 0 && i < len(change) && !math.IsNaN(change[i]) {
+				near = append(near, change[i])
+			}
+		}
+	}
+	if len(near) < window {
+		return 0
+	}
+	return estimate.Median(near)
 }
 
 // moved is the change of the reading itself, as the change of what is left.

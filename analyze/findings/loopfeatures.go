@@ -213,14 +213,18 @@ func (d *data) weight() estimate.Estimate {
 }
 
 // zeroDoubtM is what the zero leaves open of the weight: one count of the display
-// either way (rectangular), and how far the zero that was used lies from the
-// stretch that the slack band showed.
+// either way (rectangular), how far the zero that was used lies from the stretch
+// that the slack band showed, and a quarter of what the stretch drifts in a cycle.
 func (d *data) zeroDoubtM() float64 {
 	apart := 0.0
 	if slack := d.slackM(); !math.IsNaN(slack) {
 		apart = math.Abs(d.zeroM() - slack)
 	}
-	return math.Hypot(d.countM/math.Sqrt(3), apart)
+	drifts := 0.0
+	if drift := d.drift(); drift.Known() && len(d.r.Cycles) > 0 {
+		drifts = math.Abs(drift.Value) / 60 * (d.t[len(d.t)-1] - d.t[0]) / float64(len(d.r.Cycles)) / 4
+	}
+	return math.Hypot(math.Hypot(d.countM/math.Sqrt(3), apart), drifts)
 }
 
 // slackM is the lowest stretch that stayed for a while: the slack band's, however
@@ -278,8 +282,11 @@ func (d *data) fast() estimate.Estimate {
 // Judgement.
 const rateStd = 0.05
 
-// bareRate is the pace of the middle half of the fastest rise while the setting
-// moves, of its top.
+// paceS is over how long the pace is taken where no branch was fitted, s: longer
+// than two strokes. Judgement.
+const paceS = 4.5
+
+// bareRate is the fastest pace of the setting's highest so far, of its top.
 func (d *data) bareRate() float64 {
 	worst := math.NaN()
 	if len(d.p) < leastPoints {
@@ -287,33 +294,24 @@ func (d *data) bareRate() float64 {
 	}
 	turns := analyze.Turning(d.p, 0.5*(estimate.Quantile(d.p, 0.999)-estimate.Quantile(d.p, 0.001)))
 	for k := 1; k < len(turns); k++ {
-		c := analyze.Cycle{First: turns[k-1], Peak: turns[k], TopSI: d.p[turns[k]]}
-		if r := d.movingRate(c) / c.TopSI; c.TopSI > d.p[c.First] && !(r <= worst) {
-			worst = r
+		first, peak := turns[k-1], turns[k]
+		top, best := d.p[peak], d.p[first]
+		if !(top > best) {
+			continue
+		}
+		lead := make([]float64, peak-first+1)
+		for i := range lead {
+			best = math.Max(best, d.p[first+i])
+			lead[i] = best
+		}
+		for i, from := first, first; i <= peak; i++ {
+			for d.t[from] < d.t[i]-paceS {
+				from++
+			}
+			if r := (lead[i-first] - lead[from-first]) / paceS / top; !(r <= worst) {
+				worst = r
+			}
 		}
 	}
 	return worst
-}
-
-// moveS is over how long it is judged whether the setting moves, s: the gap
-// between strokes is shorter, the hold of a step longer. Judgement.
-const moveS = 1.5
-
-// movingRate is meanRate without the holds of a staircase.
-func (d *data) movingRate(c analyze.Cycle) float64 {
-	gain := func(i int) float64 {
-		before, after := d.around(d.t[i], moveS)
-		return d.p[after] - d.p[before]
-	}
-	most, still := 0.0, 0
-	for i := c.First; i <= c.Peak; i++ {
-		most = math.Max(most, gain(i))
-	}
-	for i := c.First; i <= c.Peak; i++ {
-		if gain(i) < 0.1*most {
-			still++
-		}
-	}
-	moving := 1 - float64(still)/float64(c.Peak-c.First+1)
-	return d.meanRate(c) / math.Max(moving, 0.1)
 }

@@ -35,8 +35,8 @@ type subject struct {
 // draw makes up a healthy mill set by pressure.
 func draw(seed, stream uint64) (*subject, error) { return drawSetBy(seed, stream, mill.SetByPressure) }
 
-// drawSetBy makes up a healthy mill. The sensors are read less often than in life: it
-// costs a third of the time and changes no physics.
+// drawSetBy makes up a healthy mill. The sensors of a tensioner set by pressure are
+// read less often than in life: it costs a third of the time and changes no physics.
 func drawSetBy(seed, stream uint64, by mill.SetBy) (*subject, error) {
 	rng := rand.New(rand.NewPCG(seed, stream))
 	c, err := simrig.DrawSetBy(rng, by)
@@ -46,6 +46,9 @@ func drawSetBy(seed, stream uint64, by mill.SetBy) (*subject, error) {
 	c.Thermometer = true
 	if by == mill.SetByPressure { // a wrench's grips are short
 		c.Pressure.PerSecond, c.Indicator.PerSecond = 16, 4
+		if c.Drive.Shape == simrig.Strokes { // a hand pump presses for half a second
+			c.Indicator.PerSecond = 8
+		}
 	}
 	rig, err := simrig.New(c)
 	if err != nil {

@@ -32,7 +32,6 @@ func holdRivals() []rival {
 	return []rival{
 		{"oil, tyres and band still settling", []test{{fHoldCreeps, Above, mill.HoldFollow}}},
 		{"a transducer on the pump side of the check valve", collapseTests()},
-		{"drift with temperature", warmTests()},
 		{"a ramp so fast that oil and tyres still settle", fastTests()},
 	}
 }
@@ -129,7 +128,7 @@ func weightRow() row {
 	return row{
 		key: "weight-or-zero", name: "The lifted weight is not what the profile says, or the gauge is off its zero", causes: group(GaugeZero, Weight, Curl),
 		tests: []test{{fWeight, Above, mill.WeightOff}}, yields: []Key{GaugeZero},
-		rivals: []rival{{"slack taken up late", []test{{fToe, Above, mill.ToeReach}}}, {"a mount that slipped", slipTests()}, {"a stretch that drifts", []test{{fMountCreep, Above, mill.MountCreep}}}, {"a gauge that does not read straight", []test{{fCurve, Above, mill.GaugeCurve}}}},
+		rivals: []rival{{"slack taken up late", []test{{fToe, Above, mill.ToeReach}}}, {"a mount that slipped", slipTests()}, {"a gauge that does not read straight", []test{{fCurve, Above, mill.GaugeCurve}}}},
 		level:  Watch, region: lowEnd,
 		next:   "Vent the gauge and read it; measure the other face of the band; weigh or reckon again what the cylinders lift.",
 		advice: []string{"Vent the gauge and set or note its zero. If it reads none, check lifted_weight in mill.toml, and measure the other face: curl of the band moves the zero."},

@@ -86,6 +86,8 @@ func lagRow() row {
 		tests: []test{{fLagWidth, Above, mill.LagWidth}}, shows: []FeatureKey{fLagWidth, fLag},
 		rivals: []rival{
 			{"stick-slip", jumpTests()}, {"a mount that slipped", slipTests()},
+			{"springs that go solid", boundTests()},
+			{"a gauge at the end of its range", []test{{fFlatTop, Above, mill.FlatTop}}},
 			{"a gauge that does not read straight", []test{{fCurve, Above, mill.GaugeCurve}}},
 		},
 		level: Again, region: betweenLines,
