@@ -56,6 +56,7 @@ const (
 	WarmthLink           ThresholdKey = "warmth_link"
 	WarmthShift          ThresholdKey = "warmth_shift"
 	WarmthPerK           ThresholdKey = "warmth_per_degree"
+	WarmthAgrees         ThresholdKey = "warmth_agrees"
 	GaugeSpan            ThresholdKey = "gauge_span"
 	SpanDiffer           ThresholdKey = "span_differ"
 	FirstRamp            ThresholdKey = "first_ramp"
@@ -103,6 +104,7 @@ func Thresholds() []Threshold {
 		{WarmthLink, 0.7, "", Judgement, "correlation of the stretch's drift with the temperature"},
 		{WarmthShift, 0.01, "", Judgement, "drift of the stretch with the temperature, of the stretch at the working setting"},
 		{WarmthPerK, 3, "times", Derived, "drift for each degree over that of a steel bar: a bar of aluminium on a cold band makes 2"},
+		{WarmthAgrees, 1.6, "times", Derived, "the same drift, for it to be laid to warmth: a warmer band on a steel bar makes 1, an aluminium bar as warm as the band 1"},
 		{GaugeSpan, 0.01, "", Judgement, "error of the gauge's span on the bench"},
 		{SpanDiffer, 0.03, "", Judgement, "difference of the slopes of the two spans"},
 		{FirstRamp, 0.01, "", Judgement, "slope of the later ramps beyond the first one's"},

@@ -3,6 +3,25 @@ package findings
 // leastCertain is below what nothing is named.
 const leastCertain = 0.5
 
+// counted is what certainty is worth: how often findings of a mix of simulated
+// rigs were right, by what was reckoned for them. A line that never falls, fitted on
+// the seeds for tuning (METHOD.md).
+func counted() [][2]float64 {
+	return [][2]float64{{0, 0}, {0.02, 0.03}, {0.05, 0.15}, {0.1, 0.38}, {0.2, 0.62}, {0.3, 0.78},
+		{0.5, 0.88}, {0.7, 0.93}, {0.85, 0.955}, {0.95, 0.97}, {0.99, 0.98}, {1, 0.99}}
+}
+
+// calibrated is the certainty that counting gives what was reckoned.
+func calibrated(reckoned float64) float64 {
+	line := counted()
+	for k := 1; k < len(line); k++ {
+		if a, b := line[k-1], line[k]; reckoned <= b[0] {
+			return a[1] + (b[1]-a[1])*(reckoned-a[0])/(b[0]-a[0])
+		}
+	}
+	return line[len(line)-1][1]
+}
+
 // priorOdds is for a cause against its absence, before anything is measured: one
 // rig in twenty has it. The mix is stated, not found: see METHOD.md.
 const priorOdds = 0.05

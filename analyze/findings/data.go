@@ -26,6 +26,7 @@ type data struct {
 	lockSI    float64 // setting that friction locks at the working setting: twice the half-width
 	follow    follow  // what the band would do, and what is left
 	holds     []hold
+	stages    []stage // rises, falls and rests, for drifts
 	jumps     jumps
 	late      estimate.Estimate // s
 }
@@ -59,6 +60,7 @@ func newData(in Input) *data {
 	d.jumps = d.findJumps()
 	d.correctLag()
 	d.holds = d.findHolds()
+	d.stages = d.findStages()
 	return d
 }
 

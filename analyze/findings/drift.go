@@ -18,9 +18,9 @@ type stage struct {
 	tempK float64
 }
 
-// stages averages over each rise, fall and rest that is long enough; what lies
+// findStages averages over each rise, fall and rest that is long enough; what lies
 // between the points of one, a hold or a sag, is left out.
-func (d *data) stages() []stage {
+func (d *data) findStages() []stage {
 	var out []stage
 	zero := d.zeroM()
 	temp := d.thermometer()
@@ -164,7 +164,7 @@ func throughNought(all []drifted) (slope, std, r float64, ok bool) {
 const noTemperature = "no temperature was recorded: fit the sensor to the band"
 
 func (d *data) warmth() (slope, std, r, range_ float64, n int, ok bool) {
-	stages := d.stages()
+	stages := d.stages
 	all := against(stages, func(s stage) float64 { return s.tempK })
 	slope, std, r, ok = throughNought(all)
 	low, high := math.Inf(1), math.Inf(-1)
@@ -209,7 +209,7 @@ func (d *data) mountCreep() estimate.Estimate {
 
 // drift is the same with its sign, m a minute.
 func (d *data) drift() estimate.Estimate {
-	all := against(d.stages(), func(s stage) float64 { return s.t / 60 })
+	all := against(d.stages, func(s stage) float64 { return s.t / 60 })
 	slope, std, _, ok := throughNought(all)
 	if !ok {
 		return estimate.Unknown("too few ramps to see a drift")

@@ -14,7 +14,7 @@ import (
 func (d *data) leads(c analyze.Cycle) []int {
 	var at []int
 	zero := d.zeroM()
-	slack := 2 * estimate.Noise(d.follow.p)
+	slack := 2 * d.follow.noise
 	best := math.Inf(-1)
 	for i := c.First; i <= c.Peak && i < len(d.t); i++ {
 		if d.follow.p[i] < best-slack {

@@ -77,8 +77,8 @@ func (e engine) judge(r row) verdict {
 		}
 		v.evidence *= 1 - p
 	}
-	if v.certainty = v.evidence; math.IsNaN(v.certainty) {
-		v.certainty = 0
+	if !math.IsNaN(v.evidence) {
+		v.certainty = calibrated(v.evidence)
 	}
 	return v
 }

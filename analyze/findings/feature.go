@@ -51,6 +51,7 @@ const (
 	fHoldSetting  FeatureKey = "hold_setting_loss"
 	fHoldRise     FeatureKey = "hold_setting_rise"
 	fHoldStretch  FeatureKey = "hold_stretch_loss"
+	fHoldBeyond   FeatureKey = "hold_loss_beyond_warmth"
 	fHoldFreed    FeatureKey = "hold_reversals"
 	fHoldFollow   FeatureKey = "hold_stretch_follows"
 	fHoldCreeps   FeatureKey = "hold_slows_down"
@@ -114,6 +115,7 @@ func features() []struct {
 		{fHoldSetting, "loss of setting in the hold", PerMinute, (*data).holdSetting},
 		{fHoldRise, "rise of setting in the hold", PerMinute, (*data).holdRise},
 		{fHoldStretch, "loss of stretch in the hold", PerMinute, (*data).holdStretch},
+		{fHoldBeyond, "the same loss, less what a band that warms would make", PerMinute, (*data).holdBeyond},
 		{fHoldFreed, "loss of setting in the hold, of the width that friction locks", Times, (*data).holdFreed},
 		{fHoldFollow, "stretch lost, of what the loss of setting beyond friction asks for", Share, (*data).holdFollow},
 		{fHoldCreeps, "loss that slows down as creep does (1) or runs on as a leak does (0)", Count, (*data).holdCreeps},

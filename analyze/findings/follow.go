@@ -10,10 +10,11 @@ import (
 // follow is what the stretch would be if the band followed the setting by the
 // two lines and held still between them, and what is left of the readings.
 type follow struct {
-	p    []float64 // setting at the points, smoothed over the time between two of them
-	is   []float64 // m, by the two lines
-	rest []float64 // m, read less expected
-	good []bool    // where the two lines speak: not in the toe, nor with a slack band
+	p     []float64 // setting at the points, smoothed over the time between two of them
+	is    []float64 // m, by the two lines
+	rest  []float64 // m, read less expected
+	noise float64   // standard deviation of p
+	good  []bool    // where the two lines speak: not in the toe, nor with a slack band
 }
 
 // play is the play operator, generalised to two curves: what it follows may
@@ -31,6 +32,7 @@ const (
 func (d *data) newFollow(lateS float64) follow {
 	n := len(d.t)
 	f := follow{p: d.smoothed(lateS), is: make([]float64, n), rest: make([]float64, n), good: make([]bool, n)}
+	f.noise = estimate.Noise(f.p)
 	zero := d.zeroM()
 	seated := d.seatedM(zero)
 	now := zero

@@ -170,6 +170,22 @@ func (d *data) holdSetting() estimate.Estimate {
 
 func (d *data) holdRise() estimate.Estimate { return d.holdSetting().Scale(-1) }
 
+// holdBeyond is the loss of setting less that of a band whose drift is its own
+// warmth: shut in, the pull goes by the same share of itself as the stretch drifts.
+func (d *data) holdBeyond() estimate.Estimate {
+	loss := d.holdSetting()
+	drift := estimate.Unknown("no drift was told")
+	if loss.Known() {
+		drift = d.drift()
+	}
+	if !loss.Known() || !drift.Known() {
+		return loss
+	}
+	loss.Value -= math.Abs(drift.Value) / d.workingM
+	loss.Random = math.Hypot(loss.Random, drift.Random/d.workingM)
+	return loss
+}
+
 func (d *data) holdStretch() estimate.Estimate {
 	return d.pooled(func(h hold) (float64, float64) {
 		return -60 * h.rateM.Value / h.meanM, 60 * h.rateM.Random / h.meanM
@@ -207,7 +223,7 @@ func (d *data) holdFreed() estimate.Estimate {
 
 // lossStd is the doubt of a difference of two edges, SI of setting.
 func (d *data) lossStd() float64 {
-	return estimate.Noise(d.follow.p) * math.Sqrt(2/float64(d.points(edgeS)))
+	return d.follow.noise * math.Sqrt(2/float64(d.points(edgeS)))
 }
 
 // holdFollow is how much of the stretch went with the setting once the setting

@@ -286,7 +286,16 @@ const rateStd = 0.05
 // than two strokes. Judgement.
 const paceS = 4.5
 
-// bareRate is the fastest pace of the setting's highest so far, of its top.
+// strokeS is longer than one stroke of a pump, s: a rise that takes no longer is none
+// of the ramp. Judgement.
+const strokeS = 2.0
+
+// paceShare is the part of a rise that is slower than its pace: the holds of a
+// staircase. Judgement.
+const paceShare = 0.8
+
+// bareRate is the pace of the setting's highest so far in the fastest rise, of its
+// top.
 func (d *data) bareRate() float64 {
 	worst := math.NaN()
 	if len(d.p) < leastPoints {
@@ -296,7 +305,7 @@ func (d *data) bareRate() float64 {
 	for k := 1; k < len(turns); k++ {
 		first, peak := turns[k-1], turns[k]
 		top, best := d.p[peak], d.p[first]
-		if !(top > best) {
+		if !(top > best) || d.t[peak]-d.t[first] < strokeS {
 			continue
 		}
 		lead := make([]float64, peak-first+1)
@@ -304,13 +313,15 @@ func (d *data) bareRate() float64 {
 			best = math.Max(best, d.p[first+i])
 			lead[i] = best
 		}
+		var paces []float64
 		for i, from := first, first; i <= peak; i++ {
 			for d.t[from] < d.t[i]-paceS {
 				from++
 			}
-			if r := (lead[i-first] - lead[from-first]) / paceS / top; !(r <= worst) {
-				worst = r
-			}
+			paces = append(paces, (lead[i-first]-lead[from-first])/paceS/top)
+		}
+		if r := estimate.Quantile(paces, paceShare); !(r <= worst) {
+			worst = r
 		}
 	}
 	return worst

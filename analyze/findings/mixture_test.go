@@ -93,8 +93,8 @@ type class struct {
 	n, correct int
 }
 
-// mixed is one rig of the mix: three in ten healthy, the others with one cause each,
-// all kinds alike, at 0.1 to 2 times the noticeable severity: faults that are hardly
+// mixed is one rig of the mix: one in five healthy, the others with one cause each,
+// all kinds alike, at 0.3 to 1.5 times the noticeable severity: faults that are hardly
 // seen, which certainty is for.
 func mixed(t *testing.T, u doubts, seed int, stream uint64) (s *subject, cause findings.Key, ok bool) {
 	t.Helper()
@@ -105,10 +105,10 @@ func mixed(t *testing.T, u doubts, seed int, stream uint64) (s *subject, cause f
 	if err != nil {
 		t.Fatal(err)
 	}
-	if pick.Float64() < 0.3 {
+	if pick.Float64() < 0.2 {
 		return s, "", true
 	}
-	ok, err = p.plant(s, u, 0.1*math.Exp(s.rng.Float64()*math.Log(20)))
+	ok, err = p.plant(s, u, 0.3*math.Exp(s.rng.Float64()*math.Log(5)))
 	return s, p.cause, ok && err == nil
 }
 
@@ -119,6 +119,9 @@ func runCalibration(t *testing.T, u doubts, rigs int, stream uint64) string {
 	classes := []class{{from: 0.5, to: 0.85}, {from: 0.85, to: 0.95}, {from: 0.95, to: 1.01}}
 	loud := flagText("loud") == "true"
 	for seed := range rigs {
+		if seed > 0 && seed%500 == 0 {
+			fmt.Println("so far:", calibration(seed, classes))
+		}
 		s, cause, ok := mixed(t, u, seed, stream)
 		if !ok {
 			continue
@@ -143,6 +146,10 @@ func runCalibration(t *testing.T, u doubts, rigs int, stream uint64) string {
 			}
 		}
 	}
+	return calibration(rigs, classes)
+}
+
+func calibration(rigs int, classes []class) string {
 	var out strings.Builder
 	fmt.Fprintf(&out, "certainty on a mix of %d rigs:\n", rigs)
 	for _, c := range classes {
@@ -152,13 +159,13 @@ func runCalibration(t *testing.T, u doubts, rigs int, stream uint64) string {
 }
 
 // TestMixture counts the classes of certainty alone; -rigs as for TestConfusion,
-// twelve of them for each.
+// twenty of them for each.
 func TestMixture(t *testing.T) {
 	rigs := 0
 	fmt.Sscan(flagText("rigs"), &rigs)
 	if rigs == 0 {
 		t.Skip("-rigs N counts the classes of certainty")
 	}
-	fmt.Println(runCalibration(t, usualDoubts(), 12*rigs, streamOf()))
+	fmt.Println(runCalibration(t, usualDoubts(), 20*rigs, streamOf()))
 	fmt.Println(runPairs(t, usualDoubts(), rigs, streamOf()))
 }

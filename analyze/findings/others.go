@@ -19,7 +19,7 @@ func (d *data) vent() estimate.Estimate {
 	for _, p := range d.follow.p {
 		low = math.Min(low, p)
 	}
-	noise := estimate.Noise(d.follow.p)
+	noise := d.follow.noise
 	if low < -4*noise { // no gauge pressure is below none
 		return known(-low/d.workingSI, 2*noise/d.workingSI, math.Inf(1), "lowest reading: below none")
 	}
@@ -84,7 +84,14 @@ func (d *data) first() estimate.Estimate {
 	return known(later/slopes[0]-1, math.Hypot(sd, stds[0])/slopes[0], 5, "slopes of the rising lines")
 }
 
-func (d *data) lag() estimate.Estimate { return d.late }
+// lag is not told where the gauge stood at its end: the stretch that goes on there
+// would pass for one that is late.
+func (d *data) lag() estimate.Estimate {
+	if flat := d.flatTop(); flat.Known() && flat.Value > 3*flat.Std() {
+		return estimate.Unknown("the setting stood at its highest reading while the stretch went on")
+	}
+	return d.late
+}
 
 // findLag is by how much the stretch is late on the setting.
 func (d *data) findLag() estimate.Estimate {
@@ -151,7 +158,7 @@ func (d *data) goodRun(first, last int) (from, to int, ok bool) {
 
 // lagWidth is the half-width that the lag pretends: lag x rate.
 func (d *data) lagWidth() estimate.Estimate {
-	lag := d.late
+	lag := d.lag()
 	rate := d.rampRate()
 	if !lag.Known() {
 		return lag

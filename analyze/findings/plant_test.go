@@ -35,8 +35,8 @@ type subject struct {
 // draw makes up a healthy mill set by pressure.
 func draw(seed, stream uint64) (*subject, error) { return drawSetBy(seed, stream, mill.SetByPressure) }
 
-// drawSetBy makes up a healthy mill. The sensors of a tensioner set by pressure are
-// read less often than in life: it costs a third of the time and changes no physics.
+// drawSetBy makes up a healthy mill. The sensors are read
+// less often than in life: it costs a third of the time and changes no physics.
 func drawSetBy(seed, stream uint64, by mill.SetBy) (*subject, error) {
 	rng := rand.New(rand.NewPCG(seed, stream))
 	c, err := simrig.DrawSetBy(rng, by)
@@ -44,10 +44,13 @@ func drawSetBy(seed, stream uint64, by mill.SetBy) (*subject, error) {
 		return nil, err
 	}
 	c.Thermometer = true
-	if by == mill.SetByPressure { // a wrench's grips are short
-		c.Pressure.PerSecond, c.Indicator.PerSecond = 16, 4
-		if c.Drive.Shape == simrig.Strokes { // a hand pump presses for half a second
-			c.Indicator.PerSecond = 8
+	for _, of := range []*simrig.Sensor{&c.Pressure, &c.Torque, &c.Turns, &c.Spring} {
+		of.PerSecond = 16
+	}
+	if c.Indicator.PerSecond = 4; c.Drive.Shape == simrig.Strokes { // a hand presses for half a second
+		c.Indicator.PerSecond = 8
+		if by == mill.SetByTurns {
+			c.Indicator.PerSecond, c.Turns.PerSecond = 12, 25
 		}
 	}
 	rig, err := simrig.New(c)
@@ -160,7 +163,7 @@ func oilPlantings() []planting {
 	longLeak.name, longLeak.grouped, longLeak.fine, longLeak.also = "leak-down, held for long", false, true, (*subject).holdFor
 	longGauge.name, longGauge.grouped, longGauge.fine, longGauge.also = "gauge-side leak, held for long", false, true, (*subject).holdFor
 	return []planting{
-		{kind: simrig.AirInOil, cause: findings.Air, feature: "low_strokes", limit: mill.AirSoftness, least: softness, size: airSize, most: 3e-4,
+		{kind: simrig.AirInOil, cause: findings.Air, feature: "low_strokes", limit: mill.AirSoftness, least: softness, size: airSize, most: 1e-3,
 			// A drive that loses more to a sag than a stroke gains never reaches its top.
 			fits: func(s *subject) bool { return s.c.Drive.Shape != simrig.Strokes || s.c.Drive.SagPart < 0.006 }},
 		leak, longLeak, gauge, longGauge,
@@ -232,14 +235,15 @@ func screwPlantings() []planting {
 	}
 }
 
-// tyreSize is the travel that the tyres take for a hundredth of the whole way to
-// be left of it at x of the target: all but 1/e of it is taken at 0.4 of the pull.
+// tyreSize is the travel that the tyres take for a hundredth of the whole way, and
+// what the display hides, to be left of it at x of the target, of which the line
+// through the upper part takes half: all but 1/e of it is taken at 0.4 of the pull.
 func tyreSize(s *subject, x float64) float64 {
 	if x > 0.7 { // no straight part would be left
 		return 0
 	}
 	way := s.truth.PullN(targetPa(s)) * (s.truth.Screw.GiveMN + 1/s.truth.Screw.SpringNM)
-	return 0.01 * way * math.Exp(x/0.4)
+	return 2 * math.Max(0.01, 2*s.countM/s.workM) * way * math.Exp(x/0.4)
 }
 
 // dryLeast is the torque beyond the expected one, as a share, at the limit of the
@@ -304,6 +308,7 @@ func (s *subject) offLoad(dragN float64) {
 func (s *subject) holdFor(size float64) {
 	lock := 2 * (s.truth.F0N/s.truth.AreaM2/s.workPa + s.truth.Mu)
 	s.c.Drive.HoldTopS = math.Max(60, math.Min(600, 4*lock/size))
+	s.c.Pressure.PerSecond, s.c.Indicator.PerSecond = 8, s.c.Indicator.PerSecond/2
 }
 
 func targetPa(s *subject) float64 {

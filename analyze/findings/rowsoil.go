@@ -32,6 +32,7 @@ func holdRivals() []rival {
 	return []rival{
 		{"oil, tyres and band still settling", []test{{fHoldCreeps, Above, mill.HoldFollow}}},
 		{"a transducer on the pump side of the check valve", collapseTests()},
+		{"a band that warms in the hold", append(warmTests(), test{fHoldBeyond, Below, mill.HoldLoss})},
 		{"a ramp so fast that oil and tyres still settle", fastTests()},
 	}
 }

@@ -14,8 +14,9 @@ func slipTests() []test {
 func mountSlipRow() row {
 	return row{
 		key: MountSlip, name: "The mount of the rig slipped", causes: group(MountSlip),
-		tests: slipTests(),
-		level: Again, region: atStep,
+		tests:  slipTests(),
+		rivals: []rival{{"stick-slip", jumpTests()}},
+		level:  Again, region: atStep,
 		next:   "Re-clamp, tap the rig with the band slack and see that the zero stays, then ramp again.",
 		advice: []string{"Discard the ramp with the step and all after it. Clean paint and oil from under the clamps, re-clamp, zero, and measure again."},
 	}
@@ -37,7 +38,7 @@ func mountCreepRow() row {
 }
 
 func warmTests() []test {
-	return []test{{fWarmShift, Above, mill.WarmthShift}, {fWarmLink, Above, mill.WarmthLink}, {fWarmPerK, Below, mill.WarmthPerK}}
+	return []test{{fWarmShift, Above, mill.WarmthShift}, {fWarmLink, Above, mill.WarmthLink}, {fWarmPerK, Below, mill.WarmthAgrees}}
 }
 
 func warmthRow() row {
@@ -53,7 +54,8 @@ func warmthRow() row {
 func driftRow() row {
 	return row{
 		key: "drift", name: "The stretch drifts whatever the setting does", causes: group(MountCreep, Warmth),
-		tests:  []test{{fMountCreep, Above, mill.MountCreep}, {fWarmLink, Missing, ""}},
+		tests:  []test{{fMountCreep, Above, mill.MountCreep}},
+		yields: []Key{MountCreep, Warmth},
 		rivals: creepRivals(), shows: []FeatureKey{fMountCreep}, level: Again, region: nowhere,
 		next:   "Fit the temperature sensor to the band and measure again: a drift that follows it is warmth, one that does not is the mount.",
 		advice: []string{"Re-clamp on clean bare steel, shade band and rig, wait until both have settled, and measure again."},

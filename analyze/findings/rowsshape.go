@@ -23,7 +23,6 @@ func stickSlipRow() row {
 		rivals: []rival{
 			{"a gauge that sticks", []test{{fSticky, Above, mill.GaugeSticky}}},
 			{"springs that go solid", boundTests()},
-			{"an end stop", stopTests()},
 		},
 		level: Service, region: risingLine,
 		next: "Ramp once more at half the pace and once smoothly with a power pump: stick-slip grows when it is slower, strokes of a hand pump do not matter to it.",
@@ -62,7 +61,7 @@ func endStopRow() row {
 	return row{
 		key: EndStop, name: "End stop: the setting rises and the stretch does not follow", causes: group(EndStop),
 		tests:  stopTests(),
-		rivals: []rival{{"an instrument at the end of its range", []test{{fSaturated, Above, mill.Saturated}}}},
+		rivals: []rival{{"an instrument at the end of its range", []test{{fSaturated, Above, mill.Saturated}}}, {"stick-slip", jumpTests()}},
 		level:  Stop, region: topEnd,
 		next: "None under more pressure. With the band slack and all locked out, look at how much stroke is left.",
 		advice: []string{

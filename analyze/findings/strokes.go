@@ -163,7 +163,7 @@ func (d *data) softness(c analyze.Cycle) (ratio, wait float64, ok bool) {
 	from := estimate.Quantile(p[rest:leaves], 0.05)
 	lift := standing(p[rest:leaves], from+0.15*(p[leaves-1]-from))
 	rise, rate := lift-from, d.meanRate(c)
-	if !(rise > 20*estimate.Noise(p)) || !(rate > 0) {
+	if !(rise > 20*d.follow.noise) || !(rate > 0) {
 		return 0, 0, false
 	}
 	begun, end := -1, -1
