@@ -295,16 +295,20 @@ func chosen() []planting {
 	return slices.DeleteFunc(plantings(), func(p planting) bool { return !slices.Contains(strings.Split(only, ";"), p.title()) })
 }
 
-// reduced is a few rigs of each cause: a detector that broke would show.
+// reduced is one rig of each cause: a detector that broke would show.
 func reduced(t *testing.T, u doubts, stream uint64) {
 	if testing.Short() {
 		t.Skip("runs many simulated rigs")
 	}
-	const rigs = 1
 	all := newTally("all together")
 	var lines []string
+	seen := map[findings.Key]bool{}
 	for _, p := range plantings() {
-		y := runKind(t, p, u, rigs, stream)
+		if seen[p.cause] {
+			continue
+		}
+		seen[p.cause] = true
+		y := runKind(t, p, u, 1, stream)
 		all.add(y)
 		lines = append(lines, y.line())
 	}

@@ -19,8 +19,8 @@ func TestHealthyRigs(t *testing.T) {
 		fmt.Println(runHealthy(t, 5*rigs, streamOf()))
 		return
 	}
-	alarms, line := healthy(t, 12, streamOf())
-	// At 1 in 200, twelve rigs raise two or more in 1 of 600 runs.
+	alarms, line := healthy(t, 8, streamOf())
+	// At 1 in 200, eight rigs raise two or more in 1 of 1,400 runs.
 	if alarms > 1 {
 		t.Error(line)
 	}
