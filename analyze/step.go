@@ -61,6 +61,7 @@ func (w *work) findSteps() {
 		w.res.Steps = append(w.res.Steps, Step{Pair: s.Index, T: w.t[s.Index], Cycle: w.cycleOf(s.Index), SizeM: s.Size, Kind: MountStep})
 	}
 	w.tellStickSlip()
+	w.tellSags()
 	w.tellUndone()
 }
 
@@ -93,6 +94,24 @@ func (w *work) isCut() bool {
 func (w *work) beforeRise(s Step) bool {
 	c := w.res.Cycles[s.Cycle]
 	return s.Pair < c.Peak && w.x[s.Pair]-w.x[c.First] < lowEnd*(w.x[c.Peak]-w.x[c.First])
+}
+
+// tellSags marks the steps against the motion of a cycle whose low ends stay where
+// they were: the band goes with the sag after a stroke.
+func (w *work) tellSags() {
+	sum := map[int]float64{}
+	sags := func(s Step) bool { return s.Kind == MountStep && s.Cycle >= 0 && !w.withMotion(s) }
+	for _, s := range w.res.Steps {
+		if sags(s) {
+			sum[s.Cycle] += s.SizeM.Value
+		}
+	}
+	for k := range w.res.Steps {
+		s := &w.res.Steps[k]
+		if n := s.Cycle; sags(*s) && math.Abs(w.lowMoved(n)) < undoneShare*math.Abs(sum[n]) {
+			s.Kind = Undone
+		}
+	}
 }
 
 // tellUndone marks the steps on the way up that one on the way down takes back,
@@ -198,16 +217,20 @@ func (w *work) catchesUp(s Step) bool {
 // lasts is whether the extension at the low end after the cycle differs from
 // that before it by as much as a step gave.
 func (w *work) lasts(s Step) bool {
+	return math.Abs(w.lowMoved(s.Cycle)-s.SizeM.Value) < undoneShare*math.Abs(s.SizeM.Value)
+}
+
+// lowMoved is the extension at the low end after a cycle less that before it.
+func (w *work) lowMoved(cycle int) float64 {
 	from, to := 0, len(w.t)-1
-	if s.Cycle > 0 {
-		from = w.res.Cycles[s.Cycle-1].Peak
+	if cycle > 0 {
+		from = w.res.Cycles[cycle-1].Peak
 	}
-	if s.Cycle+1 < len(w.res.Cycles) {
-		to = w.res.Cycles[s.Cycle+1].Peak
+	if cycle+1 < len(w.res.Cycles) {
+		to = w.res.Cycles[cycle+1].Peak
 	}
-	peak := w.res.Cycles[s.Cycle].Peak
-	moved := w.lowestM(peak, to) - w.lowestM(from, peak)
-	return math.Abs(moved-s.SizeM.Value) < undoneShare*math.Abs(s.SizeM.Value)
+	peak := w.res.Cycles[cycle].Peak
+	return w.lowestM(peak, to) - w.lowestM(from, peak)
 }
 
 // slopeM is the extension's slope on the setting, from the tops of the cycles.

@@ -6,6 +6,8 @@ import (
 	"os"
 	"strconv"
 	"testing"
+
+	"tautramp/analyze/estimate"
 )
 
 // trials is how many rigs a statistical test draws: few by default, as many as
@@ -138,6 +140,35 @@ func TestStickSlipIsNotTakenForTheMount(t *testing.T) {
 		}
 		if b.jumpN > 200*lbf && (stuck < 12 || !warned(r, "stick-slip")) {
 			t.Errorf("%.0f lbf at rest: %d jumps", b.jumpN/lbf, stuck)
+		}
+	}
+}
+
+// Steps back on the way up that the low ends know nothing of are the sag of a hand
+// pump: the band goes with it. Where the low end has moved too, the mount slipped.
+func TestSagIsNoSlipOfTheMount(t *testing.T) {
+	for _, c := range []struct {
+		name  string
+		after float64 // m, low end after the cycle
+		kind  StepKind
+	}{{"low ends stay", 0, Undone}, {"low end moves by as much", -10e-6, MountStep}} {
+		w := &work{res: &Result{}, x: make([]float64, 41), t: make([]float64, 41), e: make([]float64, 41)}
+		for i := range w.e {
+			w.t[i] = float64(i)
+			w.e[i] = 1e-4 * (1 - math.Abs(float64(i-20))/20)
+			if i > 20 {
+				w.e[i] += c.after
+			}
+		}
+		w.res.Cycles = []Cycle{{Role: Ramp, First: 0, Peak: 20, Last: 40}}
+		for _, at := range []int{8, 14} {
+			w.res.Steps = append(w.res.Steps, Step{Pair: at, Kind: MountStep, SizeM: estimate.Estimate{Value: -5e-6}})
+		}
+		w.tellSags()
+		for _, s := range w.res.Steps {
+			if s.Kind != c.kind {
+				t.Errorf("%s: a step is %q, want %q", c.name, s.Kind, c.kind)
+			}
 		}
 	}
 }
