@@ -75,6 +75,9 @@ func drawnFor(c coverCase, seed uint64) *bench {
 	b.reversalM = either(c.limitM() * 2 / 3)
 	b.gaugeErr = drawnWithin(r, 3.75*psi)
 	b.zeroM += either(b.countM)
+	// What the mounting does to a loaded band: curl, warmth, and a bar aslant.
+	b.tautM = either(assumedCurl*b.gaugeM) + either(assumedWarmthK*expansionPerK*b.gaugeM)
+	b.gaugeM *= 1 - either((1+poisson)*assumedTilt*assumedTilt)
 	b.timeStdS = 0.02
 	b.lateS = pathStepS * math.Round(b.timeStdS*r.NormFloat64()/pathStepS)
 	b.wander = 0.03
@@ -169,7 +172,7 @@ func (s scene) judge(r *Result, take func(figure string, e estimate.Estimate, tr
 		next := *b
 		next.f0N = s.nextN
 		take(string(d)+", next setting", at.NextSI, b.gaugeShows(next.settingAt(d, asSeenPa), b.noiseSI*b.rng.NormFloat64()))
-		take(string(d)+", true stress", at.StressPa, next.stressAt(d, at.TrueSI.Value))
+		take(string(d)+", true stress", at.StressPa, next.stressAt(d, at.TrueSI.Value+b.noiseSI*b.rng.NormFloat64()))
 	}
 	take("rising slope", r.Rising.Slope, b.slope(Rising))
 	take("falling slope", r.Falling.Slope, b.slope(Falling))

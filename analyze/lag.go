@@ -18,8 +18,10 @@ type Lag struct {
 }
 
 const (
-	// The delay is taken out where it is so many times its standard uncertainty.
-	toldFromNone = 2
+	// The delay is taken out where it is so many times what it may be by chance: its
+	// standard uncertainty and that of the pairs' instants together. Twice would take
+	// out a delay that is not there in one analysis of twenty.
+	toldFromNone = 3
 	// By so much of the window over which the setting is smoothed the beginnings of
 	// holds and strokes are in doubt, see TestLagIsFoundInStrokesAndStairs.
 	blurShare = 0.2
@@ -57,7 +59,7 @@ func (w *work) findLag() (lateS float64, told bool) {
 		if d.Alone.Known() { // smoothing blurs when a hold or stroke begins
 			lag.LateS.System = blurShare * w.delayWindow(runs)
 		}
-		lag.Corrected = math.Abs(d.Late.Value) > toldFromNone*lag.LateS.Std()
+		lag.Corrected = math.Abs(d.Late.Value) > toldFromNone*math.Hypot(lag.LateS.Std(), w.statedS())
 	}
 	if lag.Corrected {
 		lateS = lag.LateS.Value
@@ -251,13 +253,31 @@ func (w *work) byRate(rates []float64) (static, perRate estimate.Estimate) {
 	return static, perRate
 }
 
-// lagStdS is what is not known of the delay.
-func (w *work) lagStdS() float64 {
-	late := w.res.Lag.LateS
-	if !late.Known() {
+// instantStdS is the standard uncertainty of which instant of the setting a pair's
+// stretch answers to: of the delay that was found, where it is taken out, else what
+// the pairs state of their clocks. What a delay that is not told from none could
+// make stands beside the figures: CouldBeSI.
+func (w *work) instantStdS() float64 {
+	if w.res.Lag.Corrected {
+		return w.res.Lag.LateS.Std()
+	}
+	return w.statedS()
+}
+
+// statedS is the standard uncertainty of the pairs' instants, as they state it in
+// setting at the rate about each.
+func (w *work) statedS() float64 {
+	const around = 0.5 // s to either side, by which the pairs know the rate
+	var late []float64
+	for i, q := range w.set.Pairs {
+		if rate := math.Abs(w.trace.gain(w.t[i], around)) / around; rate > w.rate/2 {
+			late = append(late, q.SettingStd/rate)
+		}
+	}
+	if len(late) == 0 {
 		return 0
 	}
-	return math.Hypot(late.Std(), late.Value-w.lateS)
+	return estimate.Median(late)
 }
 
 // branchRate is the rate of the setting where the branches were fitted, the mean

@@ -71,22 +71,16 @@ func (w *work) keepRamps() {
 func (w *work) zeroKnown() bool { return w.zeroFrom != "" }
 
 // alignment is what the time between the channels leaves open of the setting,
-// rising and falling: the instants' own doubt times the rate on the branch. The
-// pairs state it with the mean rate about them, which strokes of a pump are
-// shorter than.
+// rising and falling: the instants' own doubt times the rate on the branch, which in
+// the strokes of a pump is far above the ramp's.
 func (w *work) alignment() (stdSI [2]float64) {
 	if w.set.Stepped {
 		return [2]float64{w.set.StepStd, w.set.StepStd}
 	}
-	const around = 0.5 // s to either side, by which the pairs know the rate
-	var late []float64
 	var rates [2][]float64
 	for i, pt := range w.res.Points {
 		if !pt.Fitted {
 			continue
-		}
-		if rate := math.Abs(w.trace.gain(w.t[i], around)) / around; rate > 0 {
-			late = append(late, w.set.Pairs[i].SettingStd/rate)
 		}
 		way := 0
 		if pt.Phase == Unloading {
@@ -95,7 +89,7 @@ func (w *work) alignment() (stdSI [2]float64) {
 		rates[way] = append(rates[way], math.Abs(w.trace.gain(w.t[i], w.trace.windowS))/w.trace.windowS)
 	}
 	for way := range stdSI {
-		stdSI[way] = math.Hypot(estimate.Median(late), w.lagStdS()) * estimate.Median(rates[way])
+		stdSI[way] = w.instantStdS() * estimate.Median(rates[way])
 	}
 	return stdSI
 }

@@ -86,6 +86,9 @@ func (w *work) readingStd() float64 { return w.trace.noise }
 // trueStress is the band's true stress at the setting for a stress: the stress
 // itself, doubted as the setting is.
 func (w *work) trueStress(d Direction, stressPa float64, setting estimate.Estimate) estimate.Estimate {
+	if !setting.Known() {
+		return setting
+	}
 	slope := w.repeat(func(r ramp, k constants) float64 { return r.line(d).B * k.paPerM() }).Mean
 	e := setting.Scale(slope.Value)
 	e.Value = stressPa
@@ -152,7 +155,7 @@ func (w *work) aim() {
 func (w *work) targetOn(d Direction) TargetSetting {
 	unknown := func(why string) TargetSetting {
 		e := estimate.Unknown(why)
-		return TargetSetting{SettingSI: e, NextSI: e, TrueSI: e}
+		return TargetSetting{SettingSI: e, NextSI: e, TrueSI: e, StressPa: e}
 	}
 	if w.setup.TargetPa <= 0 {
 		return unknown("no target is given")

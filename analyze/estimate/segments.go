@@ -5,7 +5,9 @@ import (
 	"slices"
 	"sort"
 
-	"gonum.org/v1/gonum/mat"
+	"gonum.org/v1/gonum/blas"
+	"gonum.org/v1/gonum/blas/blas64"
+	"gonum.org/v1/gonum/lapack/lapack64"
 )
 
 // Segments is one to three straight lines joined at breaks, in rising x.
@@ -179,22 +181,24 @@ func (s *stickSums) hinges(t1, t2 float64) (hinge, bool) {
 	all := s.sum[n]
 	m1, m2 := all.minus(s.sum[k1]), all.minus(s.sum[k2])
 	cross := func(m moments, t, u float64) float64 { return m.xx - (t+u)*m.x + m.n*t*u }
-	sums := mat.NewSymDense(4, []float64{
+	sums := blas64.Symmetric{N: 4, Stride: 4, Uplo: blas.Upper, Data: []float64{
 		all.n, all.x, m1.x - m1.n*t1, m2.x - m2.n*t2,
 		0, all.xx, m1.xx - t1*m1.x, m2.xx - t2*m2.x,
 		0, 0, cross(m1, t1, t1), cross(m2, t1, t2),
 		0, 0, 0, cross(m2, t2, t2),
-	})
-	right := mat.NewVecDense(4, []float64{all.y, all.xy, m1.xy - t1*m1.y, m2.xy - t2*m2.y})
-	var chol mat.Cholesky
-	var c mat.VecDense
-	if !chol.Factorize(sums) || chol.SolveVecTo(&c, right) != nil {
+	}}
+	right := [4]float64{all.y, all.xy, m1.xy - t1*m1.y, m2.xy - t2*m2.y}
+	c := right
+	factor, ok := lapack64.Potrf(sums)
+	if !ok {
 		return hinge{}, false
 	}
-	return hinge{
-		t1: t1, t2: t2, a: c.AtVec(0), b: c.AtVec(1), c1: c.AtVec(2), c2: c.AtVec(3),
-		rss: math.Max(0, all.yy-mat.Dot(&c, right)),
-	}, true
+	lapack64.Potrs(factor, blas64.General{Rows: 4, Cols: 1, Stride: 1, Data: c[:]})
+	rss := all.yy
+	for i, r := range right {
+		rss -= c[i] * r
+	}
+	return hinge{t1: t1, t2: t2, a: c[0], b: c[1], c1: c[2], c2: c[3], rss: math.Max(0, rss)}, true
 }
 
 func (h hinge) segments(s *stickSums) Segments {

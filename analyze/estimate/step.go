@@ -21,8 +21,8 @@ type StepSearch struct {
 }
 
 // FindSteps looks for steps in readings in time order, display and noise
-// allowed for: within a window about every place that changes by half of Least,
-// y less the series' slope times x is fitted as a straight line in time with a
+// allowed for: within a window about every place at which y changes by half of
+// Least more than x explains, y less the series' slope times x is fitted as a straight line in time with a
 // step and without, through the readings' intervals. A step is told where the
 // log likelihood gains so much that noise alone would do it anywhere in the
 // series with at most the chance FalseAlarm (a normal tail shared over the
@@ -50,11 +50,12 @@ func FindSteps(r Readings, s StepSearch) ([]Step, error) {
 type stepFinder struct {
 	StepSearch
 	lo, hi, mid []float64
-	count       float64 // in y
-	least       float64 // in counts
-	sd          float64 // of the noise, in counts
-	tau         float64 // its memory
-	enough      float64 // gain of log likelihood
+	y, follows  []float64 // y itself, and the slope times x
+	count       float64   // in y
+	least       float64   // in counts
+	sd          float64   // of the noise, in counts
+	tau         float64   // its memory
+	enough      float64   // gain of log likelihood
 	seen        map[[3]int]tried
 }
 
@@ -82,6 +83,7 @@ func newStepFinder(r Readings, s StepSearch) (*stepFinder, error) {
 		f.lo = append(f.lo, (r.Lo[i]-b*x)/f.count)
 		f.hi = append(f.hi, (r.Hi[i]-b*x)/f.count)
 		f.mid = append(f.mid, (y[i]-b*x)/f.count)
+		f.y, f.follows = append(f.y, y[i]/f.count), append(f.follows, b*x/f.count)
 	}
 	f.tau = math.Max(1, 2.0/3*float64(r.Memory))
 	if f.Window == 0 {
@@ -140,12 +142,20 @@ func (f *stepFinder) search(from, to int, steps *[]Step) {
 	f.search(at, to, steps)
 }
 
-// changes is whether the readings about a place change by half of what is
-// looked for.
+// changes is whether y changes about a place by half of what is looked for more
+// than x explains there. Friction lets y follow x or stand, so x explains anything
+// from nothing to all that it did among the readings: a stroke of a pump after
+// which x sags leaves y where the highest x brought it.
 func (f *stepFinder) changes(from, k, to int) bool {
 	const few = 5
-	before, after := Median(f.mid[max(from, k-few):k]), Median(f.mid[k:min(to, k+few)])
-	return math.Abs(after-before) >= f.least/2
+	first, last := max(from, k-few), min(to, k+few)
+	moved := Median(f.y[k:last]) - Median(f.y[first:k])
+	was := Median(f.follows[first:k])
+	down, up := 0.0, 0.0
+	for _, v := range f.follows[first:last] {
+		down, up = math.Min(down, v-was), math.Max(up, v-was)
+	}
+	return math.Max(moved-up, down-moved) >= f.least/2
 }
 
 func (f *stepFinder) gainOnce(from, k, to int) (size Estimate, gain float64) {
