@@ -15,7 +15,7 @@ func (w *work) pool() error {
 		return fmt.Errorf("analyze: no closed cycle has two straight branches: %w", ErrNoCycle)
 	}
 	w.markPoints()
-	w.timeStd = w.alignment()
+	w.rates = w.alignment()
 	w.early = len(w.res.Warnings)
 	w.figures()
 	w.warnings()
@@ -70,14 +70,11 @@ func (w *work) keepRamps() {
 
 func (w *work) zeroKnown() bool { return w.zeroFrom != "" }
 
-// alignment is what the time between the channels leaves open of the setting,
-// rising and falling: the instants' own doubt times the rate on the branch, which in
-// the strokes of a pump is far above the ramp's.
-func (w *work) alignment() (stdSI [2]float64) {
-	if w.set.Stepped {
-		return [2]float64{w.set.StepStd, w.set.StepStd}
-	}
-	var rates [2][]float64
+// alignment is the rate of the setting along each branch, rising and falling, SI/s
+// on SI: in the strokes of a pump it is far above the ramp's, and grows with what
+// each stroke has to win back.
+func (w *work) alignment() (rates [2]estimate.Line) {
+	var x, rate [2][]float64
 	for i, pt := range w.res.Points {
 		if !pt.Fitted {
 			continue
@@ -86,12 +83,16 @@ func (w *work) alignment() (stdSI [2]float64) {
 		if pt.Phase == Unloading {
 			way = 1
 		}
-		rates[way] = append(rates[way], math.Abs(w.trace.gain(w.t[i], w.trace.windowS))/w.trace.windowS)
+		x[way], rate[way] = append(x[way], w.x[i]), append(rate[way], w.trace.gain(w.own(i), w.trace.windowS)/w.trace.windowS)
 	}
-	for way := range stdSI {
-		stdSI[way] = w.instantStdS() * estimate.Median(rates[way])
+	for way := range rates {
+		line, err := estimate.FitLine(x[way], rate[way])
+		if err != nil { // too few for a slope
+			line = estimate.Line{A: estimate.Median(rate[way])}
+		}
+		rates[way] = line
 	}
-	return stdSI
+	return rates
 }
 
 // captured is the range of setting that at least two ramps cover, or the only

@@ -75,7 +75,7 @@ func (b *bench) gaugeShows(pPa, noise float64) float64 {
 
 // gaugeTrue is what the transducer would show without noise and count.
 func (b *bench) gaugeTrue(pPa float64) float64 {
-	return pPa + between(b.settingErrSI, pPa/(900*psi)) + b.gaugeErr.at((pPa/psi-200)/660)
+	return pPa + between(b.settingErrSI, pPa/(900*psi)) + b.gaugeErr.at((pPa/psi-100)/800)
 }
 
 // noise is normal, and where the bench's noise remembers it dies away.

@@ -54,11 +54,16 @@ func (w *work) systematics() []source {
 // instantSource is the doubt about which setting belongs to a reading of the
 // stretch.
 func (w *work) instantSource() source {
-	s := source{name: "time alignment", from: "time between the channels x rate of the setting", enter: inTruth, moves: []mover{late(w.timeStd)}}
 	if w.set.Stepped {
-		s.name, s.from = "step reached", "how near each step is met, as declared or a twentieth of a step"
+		return source{
+			name: "step reached", from: "how near each step is met, as declared or a twentieth of a step",
+			enter: inTruth, moves: []mover{apart(w.set.StepStd)},
+		}
 	}
-	return s
+	return source{
+		name: "time alignment", from: "time between the channels x rate of the setting",
+		enter: inTruth, moves: []mover{w.late(w.instantStdS())},
+	}
 }
 
 // rigSources is what the measuring of the stretch repeats.
@@ -218,16 +223,25 @@ func (w *work) driftStdM() float64 {
 	return math.Abs(sum/n) / 2 / math.Sqrt(3)
 }
 
-// late moves the rising line by the first in setting, and the falling one the
-// other way by the second.
-func late(stdSI [2]float64) mover {
+// late moves the lines as a delay of so long does, at the rate that each branch had
+// at each setting.
+func (w *work) late(stdS float64) mover {
+	return lineMover(func(r ramp, d Direction, by float64) estimate.Line {
+		l, rate := r.line(d), w.rates[0]
+		if d == Falling {
+			rate = w.rates[1]
+		}
+		l.A -= l.B * by * stdS * rate.A
+		l.B -= l.B * by * stdS * rate.B
+		return l
+	})
+}
+
+// apart moves the rising line by std in setting, and the falling one the other way.
+func apart(stdSI float64) mover {
 	return lineMover(func(r ramp, d Direction, by float64) estimate.Line {
 		l := r.line(d)
-		std := stdSI[0]
-		if d == Falling {
-			std = stdSI[1]
-		}
-		l.A += l.B * by * std * side(d, true)
+		l.A += l.B * by * stdSI * side(d, true)
 		return l
 	})
 }

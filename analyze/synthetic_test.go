@@ -33,8 +33,8 @@ type bench struct {
 	countSI, noiseSI         float64
 	settingHz, extensionHz   float64
 	settingErrSI             [2]float64 // of the transducer at nothing and at 900 psi, straight between
-	gaugeErr                 errorOver  // and besides: of the transducer, Pa, over 200 to 860 psi
-	indicatorErr             errorOver  // of the indicator with the band taut, m, over 1.8 to 12 ksi of band stress
+	gaugeErr                 errorOver  // and besides: of the transducer, Pa, over 100 to 900 psi
+	indicatorErr             errorOver  // of the indicator with the band taut, m, over 0.6 to 12 ksi of band stress
 	tautM                    float64    // read too much with the band taut: curl, cosine, a warmer band
 	reversalM                float64    // by which it reads more while the extension falls
 	codeScatter              float64    // standard deviation of where each step of the display lies, counts
@@ -83,7 +83,8 @@ func (b *bench) settle(pPa float64) float64 {
 		stress = b.stopPa + b.beyond*(stress-b.stopPa)
 	}
 	u := stress / (400 * psi)
-	e := b.zeroM + b.tautM*(1-math.Exp(-stress/(300*psi))) + b.gaugeM/b.modulusPa*(stress-b.toePa*u*math.Exp(1-u)) + math.Min(1, stress/(1800*psi))*b.indicatorErr.at((stress/psi-1800)/10200)
+	taut := 1 - math.Exp(-stress/(300*psi))
+	e := b.zeroM + taut*(b.tautM+b.indicatorErr.at((stress/psi-600)/11400)) + b.gaugeM/b.modulusPa*(stress-b.toePa*u*math.Exp(1-u))
 	if b.loadN < was {
 		b.falling = true
 	} else if b.loadN > was {

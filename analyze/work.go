@@ -32,11 +32,11 @@ type work struct {
 	sources  []source
 	zeroStd  float64 // m, of the zero, what repeats
 	zeroFrom string
-	lifts    []lift     // parallel to the cycles
-	marks    zeroMarks  // the operator's
-	timeStd  [2]float64 // of the setting, SI, from the time between the channels: rising, falling
-	early    int        // warnings raised before the figures
-	wrench   *wrench    // of a tensioner set by torque; else nil
+	lifts    []lift           // parallel to the cycles
+	marks    zeroMarks        // the operator's
+	rates    [2]estimate.Line // of the setting along the branches, SI/s on SI: rising, falling
+	early    int              // warnings raised before the figures
+	wrench   *wrench          // of a tensioner set by torque; else nil
 }
 
 // Set is the pairs that the result was made from, their settings rising and

@@ -1,6 +1,7 @@
 package estimate
 
 import (
+	"errors"
 	"fmt"
 	"math"
 )
@@ -27,6 +28,12 @@ type Region struct {
 	Bend Estimate
 }
 
+const (
+	mostCut    = 2.0 / 3 // of the range at either end
+	mostSpared = 0.2     // of it at the low end, for bends that are not worth more
+	sparing    = 1.0     // penalty of a break there: to spare it without cause costs little
+)
+
 // worthTelling is the bend that matters, as a share of the range of y.
 const worthTelling = 0.005
 
@@ -37,8 +44,9 @@ const worthTelling = 0.005
 // FitStick.
 //
 // worth is how far the instrument's own scale may leave a line, in y's unit:
-// nothing is cut for less, and no region is called curved for less. 0: no such
-// error is allowed for.
+// nothing is cut for less, but in the lowest fifth of the region, which is soon
+// spared and where a toe is most likely; and no region is called curved for less.
+// 0: no such error is allowed for.
 func StraightWithin(x, y []float64, worth float64) (Region, error) {
 	found, err := fitSegments(x, y, worth)
 	if err != nil {
@@ -49,7 +57,7 @@ func StraightWithin(x, y []float64, worth float64) (Region, error) {
 	_, r.To = found.ends(i, r.From, r.To)
 	if i > 0 {
 		bx, by := between(x, y, r.From, r.To)
-		if r.From, _, err = straightAbove(bx, by, worth); err != nil {
+		if r.From, _, err = straightAbove(bx, by, cutting{worth, breakPenalty, mostCut}); err != nil {
 			return Region{}, err
 		}
 	}
@@ -58,13 +66,23 @@ func StraightWithin(x, y []float64, worth float64) (Region, error) {
 		for k := range bx {
 			bx[k] = -bx[k]
 		}
-		low, _, err := straightAbove(bx, by, worth)
+		low, _, err := straightAbove(bx, by, cutting{worth, breakPenalty, mostCut})
 		if err != nil {
 			return Region{}, err
 		}
 		r.To = -low
 	}
 	bx, by := between(x, y, r.From, r.To)
+	if worth > 0 {
+		low, _, err := straightAbove(bx, by, cutting{penalty: sparing, share: mostSpared})
+		if err != nil && !errors.Is(err, ErrTooFew) && !errors.Is(err, ErrNoSpread) {
+			return Region{}, err
+		}
+		if err == nil {
+			r.From = low
+			bx, by = between(x, y, r.From, r.To)
+		}
+	}
 	r.Shape, r.Bend, err = ShapeOf(bx, by, worth)
 	return r, err
 }

@@ -100,7 +100,7 @@ func (s Segments) leaves(line [2]float64, low, high float64) float64 {
 // cheapest chooses by the penalised likelihood. What a series is worth is taken
 // from the residuals of the model with most breaks.
 func cheapest(all []Segments, x, y []float64) Segments {
-	const perBreak, rounding = 3.0, 1e-9
+	const rounding = 1e-9
 	last := all[len(all)-1]
 	rest := make([]float64, len(x))
 	for i := range x {
@@ -111,7 +111,7 @@ func cheapest(all []Segments, x, y []float64) Segments {
 	least *= least * float64(len(x))
 	best, cost := all[0], math.Inf(1)
 	for _, s := range all {
-		c := n/2*math.Log(math.Max(s.RSS, least)) + perBreak*math.Log(n)*float64(len(s.Breaks))
+		c := n/2*math.Log(math.Max(s.RSS, least)) + breakPenalty*math.Log(n)*float64(len(s.Breaks))
 		if c < cost {
 			best, cost = s, c
 		}

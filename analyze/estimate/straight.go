@@ -15,22 +15,27 @@ import (
 //
 // x and y are in the order in which they were read. Errors as FitStick.
 func StraightAbove(x, y []float64) (from float64, ok bool, err error) {
-	return straightAbove(x, y, 0)
+	return straightAbove(x, y, cutting{penalty: breakPenalty, share: mostCut})
 }
 
-// straightAbove is StraightAbove that cuts nothing where the broken line leaves
-// the one line through all by less than worth.
-func straightAbove(x, y []float64, worth float64) (from float64, ok bool, err error) {
+// cutting says what is cut: nothing where the broken line leaves the one line
+// through all by less than worth, or gains less than penalty ln n in log likelihood,
+// and at most a share of the range.
+type cutting struct{ worth, penalty, share float64 }
+
+// What a break costs in log likelihood, in ln n: it was looked for everywhere.
+const breakPenalty = 3.0
+
+func straightAbove(x, y []float64, c cutting) (from float64, ok bool, err error) {
 	const (
 		worthCutting = 0.002
-		leastLeft    = 1.0 / 3
 		mostCuts     = 12
 	)
 	if err := checkPoints(x, y, nil); err != nil {
 		return 0, false, err
 	}
 	from = Quantile(x, 0)
-	highest := Quantile(x, 1) - leastLeft*(Quantile(x, 1)-from)
+	highest := from + c.share*(Quantile(x, 1)-from)
 	rangeY := Quantile(y, 1) - Quantile(y, 0)
 	for cuts := 0; ; cuts++ {
 		s, err := fitStickBelow(x, y, highest)
@@ -41,7 +46,7 @@ func straightAbove(x, y []float64, worth float64) (from float64, ok bool, err er
 			return from, cuts > 0, err
 		}
 		gap := math.Abs(s.Left(from) - s.Right(from))
-		if gap < worthCutting*rangeY || s.leaves(x, y) < worth || !s.betterThanLine(x, y) {
+		if gap < worthCutting*rangeY || s.leaves(x, y) < c.worth || !s.betterThanLine(x, y, c.penalty) {
 			return from, !bent(x, y), nil
 		}
 		if cuts == mostCuts {
@@ -62,7 +67,7 @@ func bent(x, y []float64) bool {
 	}
 	low, high := Quantile(x, 0), Quantile(x, 1)
 	leaves := math.Abs(s.BR-s.BL) * (s.Break - low) * (high - s.Break) / (high - low)
-	return leaves > bendShare*(Quantile(y, 1)-Quantile(y, 0)) && s.betterThanLine(x, y)
+	return leaves > bendShare*(Quantile(y, 1)-Quantile(y, 0)) && s.betterThanLine(x, y, breakPenalty)
 }
 
 // leaves is how far the stick leaves the line through all at most.
@@ -78,7 +83,7 @@ func (s Stick) leaves(x, y []float64) float64 {
 
 // betterThanLine reports whether the stick's gain over one line is beyond
 // chance.
-func (s Stick) betterThanLine(x, y []float64) bool {
+func (s Stick) betterThanLine(x, y []float64, penalty float64) bool {
 	l, err := FitLine(x, y)
 	if err != nil {
 		return false
@@ -94,7 +99,7 @@ func (s Stick) betterThanLine(x, y []float64) bool {
 	n := float64(len(x)) / Dependence(rest)
 	one := l.ResidualSD * l.ResidualSD * l.DoF
 	gain := n / 2 * math.Log(one/s.RSS)
-	return gain > 3*math.Log(math.Max(n, 3))
+	return gain > penalty*math.Log(math.Max(n, 3))
 }
 
 func above(x, y []float64, from float64) (ax, ay []float64) {
