@@ -71,6 +71,7 @@ func drawnFor(c coverCase, seed uint64) *bench {
 	b.netM2 *= 1 + 0.01*r.NormFloat64()
 	b.countM = c.countM
 	b.codeScatter = 0.1
+	b.noiseM = 2e-8 // less than any count by far: a display that dithers knows its zero better than it claims
 	b.indicatorErr = drawnWithin(r, c.limitM())
 	b.reversalM = either(c.limitM() * 2 / 3)
 	b.gaugeErr = drawnWithin(r, 3.75*psi)

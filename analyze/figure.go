@@ -108,19 +108,23 @@ func (w *work) doubted(e estimate.Estimate, f figure, upTo stage, why string) es
 
 // follow is the standard uncertainty that a source gives a figure: it is moved
 // up and down by its own, and the mean of the ramps watched (JCGM 100, 5.1.3
-// note 2).
+// note 2), of those that give the figure.
 func (w *work) follow(f figure, s source) float64 {
 	sum := 0.0
 	for _, move := range s.moves {
-		moved, size := 0.0, 0.0
+		moved, size, n := 0.0, 0.0, 0.0
 		for _, r := range w.ramps {
+			if !finite(f(r, w.k)) {
+				continue
+			}
+			n++
 			up, kUp := move(r, w.k, +1)
 			down, kDown := move(r, w.k, -1)
 			high, low := f(up, kUp), f(down, kDown)
 			moved += (high - low) / 2
 			size += math.Abs(high) + math.Abs(low)
 		}
-		by := unlessRounding(math.Abs(moved), size) / float64(len(w.ramps))
+		by := unlessRounding(math.Abs(moved), size) / math.Max(1, n)
 		sum += by * by
 	}
 	return math.Sqrt(sum)

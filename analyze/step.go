@@ -3,6 +3,7 @@ package analyze
 import (
 	"fmt"
 	"math"
+	"sort"
 
 	"tautramp/analyze/estimate"
 )
@@ -36,6 +37,9 @@ const (
 	stepReach = 30
 	// A step that another one takes back does so to within this share. Judgement.
 	undoneShare = 0.4
+	// Low ends before and after a step differ by less than this share of one that did
+	// not last.
+	returnedShare = 0.3
 	// A step so low on the way up, as a share of the rise, happened before it.
 	// Judgement.
 	lowEnd = 0.05
@@ -63,6 +67,30 @@ func (w *work) findSteps() {
 	w.tellStickSlip()
 	w.tellSags()
 	w.tellUndone()
+	w.tellReturned()
+}
+
+// tellReturned marks the steps after which the low end is where it was: a mount
+// that slipped would have moved it too.
+func (w *work) tellReturned() {
+	var peaks []int
+	for _, c := range w.res.Cycles {
+		peaks = append(peaks, c.Peak)
+	}
+	for k := range w.res.Steps {
+		s := &w.res.Steps[k]
+		n := sort.SearchInts(peaks, s.Pair)
+		from, to := 0, len(w.t)-1
+		if n >= 2 {
+			from = peaks[n-2]
+		}
+		if n+1 < len(peaks) {
+			to = peaks[n+1]
+		}
+		if moved := w.lowestM(s.Pair, to) - w.lowestM(from, s.Pair-1); s.Kind == MountStep && math.Abs(moved) < returnedShare*math.Abs(s.SizeM.Value) {
+			s.Kind = Undone
+		}
+	}
 }
 
 // cut marks in each cycle where the mount slipped.

@@ -21,7 +21,7 @@ type StepSearch struct {
 }
 
 // FindSteps looks for steps in readings in time order, display and noise
-// allowed for: within a window about every place at which y changes by half of
+// allowed for: within a window about every place at which y changes by most of
 // Least more than x explains, y less the series' slope times x is fitted as a straight line in time with a
 // step and without, through the readings' intervals. A step is told where the
 // log likelihood gains so much that noise alone would do it anywhere in the
@@ -142,20 +142,26 @@ func (f *stepFinder) search(from, to int, steps *[]Step) {
 	f.search(at, to, steps)
 }
 
-// changes is whether y changes about a place by half of what is looked for more
-// than x explains there. Friction lets y follow x or stand, so x explains anything
-// from nothing to all that it did among the readings: a stroke of a pump after
-// which x sags leaves y where the highest x brought it.
+// changes is whether y changes about a place by most of what is looked for more
+// than x explains there. Friction lets y follow x or stand, so x explains of what y
+// did between two readings anything up to the farthest that x went meanwhile: a
+// stroke of a pump after which x sags leaves y where the highest x brought it.
 func (f *stepFinder) changes(from, k, to int) bool {
-	const few = 5
-	first, last := max(from, k-few), min(to, k+few)
-	moved := Median(f.y[k:last]) - Median(f.y[first:k])
-	was := Median(f.follows[first:k])
-	down, up := 0.0, 0.0
-	for _, v := range f.follows[first:last] {
-		down, up = math.Min(down, v-was), math.Max(up, v-was)
+	const few, most = 5, 0.7
+	var beyond []float64
+	for i := max(from, k-few); i < k; i++ {
+		j := i + few
+		if j < k || j >= to {
+			continue
+		}
+		down, up := 0.0, 0.0
+		for _, v := range f.follows[i : j+1] {
+			down, up = math.Min(down, v-f.follows[i]), math.Max(up, v-f.follows[i])
+		}
+		moved := f.y[j] - f.y[i]
+		beyond = append(beyond, math.Max(0, moved-up)+math.Min(0, moved-down))
 	}
-	return math.Max(moved-up, down-moved) >= f.least/2
+	return len(beyond) > 0 && math.Abs(Median(beyond)) >= most*f.least
 }
 
 func (f *stepFinder) gainOnce(from, k, to int) (size Estimate, gain float64) {
