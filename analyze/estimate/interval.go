@@ -35,11 +35,7 @@ const (
 //
 // floor is the least noise, in y's unit, block the fewest readings a block.
 func fitIntervals(r Readings, floor float64, start Line) (Branch, error) {
-	f := &intervalFit{frame: frameOf(r.X, r.Lo, r.Hi), kept: ones(len(r.X)), one: ones(len(r.X))}
-	f.floor, f.stated = math.Max(floor/f.perY, leastNoise), floor > 0
-	f.b = start.B * f.perX / f.perY
-	f.a = (start.A + start.B*f.atX - f.atY) / f.perY
-	f.crossings = math.Max(1, math.Abs(f.b)*(Quantile(f.x, 1)-Quantile(f.x, 0)))
+	f := newIntervalFit(r, floor, start)
 	polygon, exact := f.feasible()
 	if !exact {
 		if err := f.climb(start.ResidualSD / f.perY); err != nil {
@@ -70,6 +66,14 @@ func fitIntervals(r Readings, floor float64, start Line) (Branch, error) {
 	}
 	out.Line.N = len(r.X) - out.Outliers
 	return out, nil
+}
+
+func newIntervalFit(r Readings, floor float64, start Line) *intervalFit {
+	f := &intervalFit{frame: frameOf(r.X, r.Lo, r.Hi), kept: ones(len(r.X)), one: ones(len(r.X))}
+	f.floor, f.stated = math.Max(floor/f.perY, leastNoise), floor > 0
+	f.a, f.b = f.framed(start)
+	f.crossings = math.Max(1, math.Abs(f.b)*(Quantile(f.x, 1)-Quantile(f.x, 0)))
+	return f
 }
 
 const (
