@@ -157,6 +157,15 @@ func coverFigures() []string {
 	}
 }
 
+// zeroM is the true stretch at no wheel pull by the convention that was used: of
+// the slack band, or of the loaded one with its curl and warmth.
+func (s scene) zeroM(r *Result) float64 {
+	if r.work.zeroFrom == slackLift {
+		return s.b.zeroM + s.b.tautM
+	}
+	return s.b.zeroM
+}
+
 // judge sets each figure against its own truth.
 func (s scene) judge(r *Result, take func(figure string, e estimate.Estimate, truth float64)) {
 	b, target := s.b, r.Setup.TargetPa
@@ -168,7 +177,7 @@ func (s scene) judge(r *Result, take func(figure string, e estimate.Estimate, tr
 		// What the indicator has to show, without its own error, by the constants
 		// that the analysis was told.
 		stretchM := target * r.Setup.GaugeM.Value / r.Setup.ModulusPa.Value
-		asSeenPa := (stretchM - b.tautM) * b.modulusPa / b.gaugeM
+		asSeenPa := (stretchM + s.zeroM(r) - b.zeroM - b.tautM) * b.modulusPa / b.gaugeM
 		take(string(d)+", curve", at.SettingSI, b.gaugeTrue(b.settingAt(d, asSeenPa)))
 		next := *b
 		next.f0N = s.nextN
@@ -184,7 +193,7 @@ func (s scene) judge(r *Result, take func(figure string, e estimate.Estimate, tr
 			break
 		}
 	}
-	take("zero", zero, b.zeroM)
+	take("zero", zero, s.zeroM(r))
 	take("mu", r.Friction.Mu, b.mu)
 	take("F0", r.Friction.F0N, b.f0N)
 	take("half-width", r.Working.HalfSI, b.halfAt(r.Working.RisingSI))

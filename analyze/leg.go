@@ -215,8 +215,8 @@ func (w *work) unloads(l *legs, i int) bool {
 // topSI is the highest setting of a cycle, its noise smoothed.
 func (w *work) topSI(c *Cycle) float64 {
 	if w.wrench != nil { // just behind it stands the loosening torque
-		if before, _ := w.trace.sides(w.own(c.Peak), w.trace.windowS); finite(before) {
-			return before
+		if before, _ := w.trace.sides(w.own(c.Peak), w.trace.windowS); finite(before.p) {
+			return before.p
 		}
 	}
 	return w.x[c.Peak]

@@ -103,18 +103,26 @@ func (w *work) lull(first, last int) lull {
 	return l
 }
 
-// stillRun finds the run about the lowest extension.
+// stillRun finds the run about the lowest extension; about the one at the lowest
+// setting where that is clearly another: a curled band reads less where it begins to
+// be taut than slack.
 func (w *work) stillRun(first, last int) (run, bool) {
 	smooth := make([]float64, last-first+1)
-	lowest := 0
+	lowest, lowSI := 0, math.Inf(1)
 	for k := range smooth {
 		i := first + k
 		smooth[k] = estimate.Median(w.e[max(first, i-2) : min(last, i+2)+1])
 		if smooth[k] < smooth[lowest] {
 			lowest = k
 		}
+		lowSI = math.Min(lowSI, w.x[i])
 	}
-	still := func(k int) bool { return k >= 0 && k < len(smooth) && smooth[k]-smooth[lowest] <= w.stillM() }
+	if at := w.resting(first, last, lowSI); w.wrench == nil && smooth[at-first]-smooth[lowest] > w.stillM() {
+		lowest = at - first
+	}
+	still := func(k int) bool {
+		return k >= 0 && k < len(smooth) && math.Abs(smooth[k]-smooth[lowest]) <= w.stillM()
+	}
 	a, b := lowest, lowest
 	for still(a - 1) {
 		a--
@@ -137,6 +145,18 @@ func (w *work) stillRun(first, last int) (run, bool) {
 		r.outSI = w.x[r.last]
 	}
 	return r, true
+}
+
+// resting is the middle one of the pairs that have the lowest setting, noise allowed
+// for.
+func (w *work) resting(first, last int, lowSI float64) int {
+	var at []int
+	for i := first; i <= last; i++ {
+		if w.x[i] <= lowSI+3*w.trace.doubt(w.trace.windowS) {
+			at = append(at, i)
+		}
+	}
+	return at[len(at)/2]
 }
 
 // loopAt is the falling branch's slope (m per SI of setting) and the reversal

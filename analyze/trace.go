@@ -144,19 +144,22 @@ func (tr *trace) rests(t, windowS float64) bool {
 	return math.Abs(tr.gain(t, windowS)) < alike*math.Sqrt2*tr.doubt(windowS)
 }
 
-// sides is the means over a window before t and after it. NaN at the ends.
-func (tr *trace) sides(t, window float64) (before, after float64) {
+// flank is the mean over a window, and the mean of the times that it has values for.
+type flank struct{ p, t float64 }
+
+// sides is the windows before t and after it. NaN at the ends.
+func (tr *trace) sides(t, window float64) (before, after flank) {
 	const apart = 1e-9 // s; t itself belongs to neither side
-	before, _ = tr.mean(t-window, t-apart)
-	after, _ = tr.mean(t+apart, t+window)
+	before.p, before.t = tr.mean(t-window, t-apart)
+	after.p, after.t = tr.mean(t+apart, t+window)
 	return before, after
 }
 
 // gain is how much the setting changes about t: from the window before it to
-// the window after it. NaN at the ends.
+// the window after it, wherever in them the values lie. NaN at the ends.
 func (tr *trace) gain(t, window float64) float64 {
 	before, after := tr.sides(t, window)
-	return after - before
+	return (after.p - before.p) / (after.t - before.t) * window
 }
 
 // turns is whether the setting changes its rate within a window of t by more
@@ -165,9 +168,10 @@ func (tr *trace) gain(t, window float64) float64 {
 func (tr *trace) turns(t float64) bool {
 	const beyond = 2.0
 	before, after := tr.sides(t, tr.windowS)
+	straight := before.p + (after.p-before.p)*(t-before.t)/(after.t-before.t)
 	// Three means, the middle one made of halves of the others but for t itself.
 	own := math.Min(1, tr.stepS/tr.windowS)
-	return math.Abs(before+after-2*tr.about(t)) > beyond*math.Sqrt(2+4*own)*tr.doubt(tr.windowS)
+	return 2*math.Abs(straight-tr.about(t)) > beyond*math.Sqrt(2+4*own)*tr.doubt(tr.windowS)
 }
 
 // doubt is the standard deviation of a mean over a window.
