@@ -20,7 +20,8 @@ type Lag struct {
 const (
 	// The delay is taken out where it is so many times what it may be by chance: its
 	// standard uncertainty and that of the pairs' instants together. Twice would take
-	// out a delay that is not there in one analysis of twenty.
+	// out a delay that is not there in one analysis of twenty and more, for where one
+	// hold a ramp is all that tells of it, it strays by half again what is said.
 	toldFromNone = 3
 	// By so much of the window over which the setting is smoothed the beginnings of
 	// holds and strokes are in doubt, see TestLagIsFoundInStrokesAndStairs.

@@ -28,7 +28,44 @@ func (f *delayFit) find(of offsets) Estimate {
 	if at < f.Least+coarse || at > f.Most-coarse {
 		return Unknown("no delay within what was searched fits best")
 	}
-	return f.uncertain(of, at)
+	return f.uncertain(of, f.closer(at))
+}
+
+// closer goes on from the lowest point found by the secants that the uncertainty is
+// reckoned by: the residuals dip in steps, as noise sets the setting's extreme in
+// holds, and their very lowest point is one of many.
+func (f *delayFit) closer(late float64) float64 {
+	const steps, most = 4, 0.1 // s
+	for range steps {
+		c, ok := f.changeAbout(late)
+		if !ok {
+			return late
+		}
+		move := floats.Dot(c.alone, c.rest) / sumSquares(c.alone)
+		late += math.Max(-most, math.Min(most, move))
+	}
+	return late
+}
+
+// change is what a delay does about one: y's residuals there, their change for each
+// second with the fit done anew, and the setting's extreme for each second.
+type change struct{ rest, alone, rate []float64 }
+
+func (f *delayFit) changeAbout(late float64) (c change, ok bool) {
+	const half = 0.25 // s; shorter, and noise would look like changes of rate
+	soon, later := f.extreme(late-half), f.extreme(late+half)
+	rest, ok := project(f.design(f.extreme(late)), f.y)
+	before, okB := project(f.design(soon), f.y)
+	after, okA := project(f.design(later), f.y)
+	if !ok || !okB || !okA {
+		return change{}, false
+	}
+	c = change{rest, make([]float64, len(rest)), make([]float64, len(rest))}
+	for i := range rest {
+		c.rate[i] = (soon[i] - later[i]) / (2 * half)
+		c.alone[i] = (before[i] - after[i]) / (2 * half)
+	}
+	return c, true
 }
 
 // lowest is the dip of the residuals on a grid that lies nearest to no delay
@@ -99,26 +136,17 @@ const leastApart = 0.02
 // uncertain is the delay with its uncertainty: y's change with the delay, less
 // what the constants and slopes can imitate of it, against the residuals.
 func (f *delayFit) uncertain(of offsets, late float64) Estimate {
-	const half = 0.25 // s; shorter, and noise would look like changes of rate
 	x := f.design(f.extreme(late))
-	soon, later := f.extreme(late-half), f.extreme(late+half)
-	rest, ok := project(x, f.y)
-	before, okB := project(f.design(soon), f.y)
-	after, okA := project(f.design(later), f.y)
-	if !ok || !okB || !okA {
+	c, ok := f.changeAbout(late)
+	if !ok {
 		return Unknown("the runs cannot be fitted")
 	}
-	rate, alone := make([]float64, len(rest)), make([]float64, len(rest))
-	for i := range rate {
-		rate[i] = (soon[i] - later[i]) / (2 * half)
-		alone[i] = (before[i] - after[i]) / (2 * half)
-	}
-	if apart, ok := project(x, rate); !ok || sumSquares(apart) < leastApart*sumSquares(rate) {
+	if apart, ok := project(x, c.rate); !ok || sumSquares(apart) < leastApart*sumSquares(c.rate) {
 		return Unknown("one rate all along: no hold, stroke, step or ramp at another rate")
 	}
-	parts := append(f.scatter(alone, rest, len(x)+1), f.roundingOfHolds(alone, f.extreme(late)))
+	parts := append(f.scatter(c.alone, c.rest, len(x)+1), f.roundingOfHolds(c.alone, f.extreme(late)))
 	if of == offsetsOfCycles {
-		parts = append(parts, f.betweenRuns(alone, rest))
+		parts = append(parts, f.betweenRuns(c.alone, c.rest))
 	}
 	if !(parts[0].DoF >= 3) {
 		return Unknown("too few readings to tell how well it is known")
