@@ -15,6 +15,7 @@ type ramp struct {
 	reach           [2][2]float64 // settings fitted, low and high: rising, falling
 	opposed         bool          // the falling settings act the other way: loosening torques
 	lift            lift          // where the zero is the lines' own there; else none
+	cycle           int           // index into the result's
 }
 
 // tied has the zero follow the lines where it is theirs at the slack lift.

@@ -51,7 +51,7 @@ func (w *work) keepRamps() {
 			w.warn("branch-not-fitted", fmt.Sprintf("Cycle %d has no straight stretch on both branches and is not fitted.", i+1))
 			continue
 		}
-		r := ramp{rising: c.Rising.Line, falling: c.Falling.Line, zeroM: math.NaN(), opposed: w.opposed()}
+		r := ramp{rising: c.Rising.Line, falling: c.Falling.Line, zeroM: math.NaN(), opposed: w.opposed(), cycle: i}
 		r.reach = [2][2]float64{{c.Rising.LowSI, c.Rising.HighSI}, {c.Falling.LowSI, c.Falling.HighSI}}
 		if c.Zero.Known() {
 			r.zeroM, r.zeroVar = c.Zero.Value, c.Zero.Random*c.Zero.Random

@@ -44,7 +44,7 @@ func (w *work) settingAt(d Direction, stressPa float64) TargetSetting {
 	f := settingFigure(d, stressPa)
 	w = w.reaching(d, f)
 	const why = "not a finite number"
-	again := w.repeat(f)
+	again := w.inverse(d, stressPa)
 	t := TargetSetting{
 		SettingSI: w.doubted(again.Mean, f, inCurve, why),
 		NextSI:    w.doubted(w.read(again.Next), f, inCurve, "one ramp only: how well the next setting repeats is not known"),

@@ -89,7 +89,8 @@ func TestOnlyRampsThatReachASettingSpeakForIt(t *testing.T) {
 		}
 		near(t, "stress by the ramps that reach it", e.Value, mean(c.d, c.psi*psi, r.work.ramps[c.from:]), 1e-12)
 	}
-	near(t, "setting for the target", r.AtRising.SettingSI.Value, mean2(r, Rising, 9500*psi), 1e-12)
+	// Of the mean line, which differs from the mean of the ramps in the second order.
+	near(t, "setting for the target", r.AtRising.SettingSI.Value, mean2(r, Rising, 9500*psi), 1e-6)
 	if r.AtRising.Budget[1].DoF != 1 {
 		t.Errorf("%v degrees of freedom of two ramps", r.AtRising.Budget[1].DoF)
 	}

@@ -132,7 +132,7 @@ func (w *work) targetBy(d Direction) estimate.Estimate {
 		return estimate.Unknown("no target of the measured band")
 	}
 	f := settingFigure(d, w.setup.TargetPa)
-	return w.doubted(w.repeat(f).Mean, f, inCurve, "not a finite number")
+	return w.doubted(w.inverse(d, w.setup.TargetPa).Mean, f, inCurve, "not a finite number")
 }
 
 // warnZeros says where two conventions differ by more than their doubt.
