@@ -20,12 +20,13 @@ type Lag struct {
 const (
 	// The delay is taken out where it is so many times what it may be by chance: its
 	// standard uncertainty and that of the pairs' instants together. Twice would take
-	// out a delay that is not there in one analysis of twenty and more, for where one
-	// hold a ramp is all that tells of it, it strays by half again what is said.
+	// out a delay that is not there in one analysis of twenty.
 	toldFromNone = 3
 	// By so much of the window over which the setting is smoothed the beginnings of
-	// holds and strokes are in doubt, see TestLagIsFoundInStrokesAndStairs.
-	blurShare = 0.2
+	// holds and strokes are in doubt, all alike and each by chance: the highest setting
+	// of a hold is noise's in part. From simulated visits with 4 to 140 of them, see
+	// TestLagIsFoundInStrokesAndStairs.
+	blurAlways, blurOfOne = 0.05, 0.6
 	// Half-widths of one tensioner differ by this share from ramp to ramp, where
 	// there are too few ramps to see it. Judgement.
 	widthWander = 0.02
@@ -58,7 +59,7 @@ func (w *work) findLag() (lateS float64, told bool) {
 	default:
 		lag.LateS = d.Late
 		if d.Alone.Known() { // smoothing blurs when a hold or stroke begins
-			lag.LateS.System = blurShare * w.delayWindow(runs)
+			lag.LateS.System = (blurAlways + blurOfOne/math.Sqrt(math.Max(1, float64(d.Stands)))) * w.delayWindow(runs)
 		}
 		lag.Corrected = math.Abs(d.Late.Value) > toldFromNone*math.Hypot(lag.LateS.Std(), w.statedS())
 	}

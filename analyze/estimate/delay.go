@@ -26,6 +26,7 @@ type Delay struct {
 	// Alone is the same from changes of rate within runs alone, and Across from
 	// runs of different rate as well; Late is the better known of the two.
 	Alone, Across Estimate
+	Stands        int // times that the setting stopped rising or falling within a run
 }
 
 // DelaySearch bounds the search. Zero fields take what their comment says.
@@ -61,6 +62,9 @@ func FindDelay(setting, y Trace, runs []Run, s DelaySearch) (Delay, error) {
 		d.Late = d.Across
 	default:
 		d.Late = best
+	}
+	if d.Late.Known() {
+		d.Stands = f.stands(d.Late.Value)
 	}
 	if d.Late.Known() && !(d.Late.Random <= f.Enough) {
 		d.Late = Unknown(fmt.Sprintf("the runs leave it open by %.2g s", d.Late.Random))
@@ -140,6 +144,24 @@ func (f *delayFit) extreme(late float64) []float64 {
 		out[i] = e.until(f.t[i] - late)
 	}
 	return out
+}
+
+// stands is how often the setting's extreme stops within a run, for three readings at
+// least.
+func (f *delayFit) stands(late float64) int {
+	const few = 3
+	n, standing := 0, 0
+	m := f.extreme(late)
+	for i := 1; i < len(m); i++ {
+		if f.run[i] != f.run[i-1] || m[i] != m[i-1] {
+			standing = 0
+			continue
+		}
+		if standing++; standing == few-1 {
+			n++
+		}
+	}
+	return n
 }
 
 // follower walks along a trace and keeps its extreme.
