@@ -69,7 +69,7 @@ func TestTextSaysWhatMatters(t *testing.T) {
 	for _, want := range []string{
 		"REHEARSAL: the clock was scaled, 60 recorded seconds", "end missing: the last 511 bytes carry no seal and were not used", "The end of the recording is missing: 511 bytes after the last good seal are not used, and ramps after that are not in this result.",
 		"RISING: come up to it from below", "FALLING: come down to it from above", "this visit's curve", "next time you set it",
-		"Overshot while rising: drop to 5", "never above 950 gauge psi", "service", "F0, friction that is 209 +/- 49 lbf always there", "mu, friction in proportion 0.0453 +/- 0.0011 to load", "W, lifted weight",
+		"Overshot while rising: drop to 5", "never above 950 gauge psi", "service", "F0, friction that is 209 +/- 34 lbf always there", "mu, friction in proportion 0.0454 +/- 0.0010 to load", "W, lifted weight",
 		"A*, working area", "is not added to them", "Set rising, may drift by 0 to +1,7", "at the target", "5.25 in net (back to gullet bottom)", "9,500 band psi",
 		t1Meta().Seal[:48], "slack band", "3 fitted, 1 to exercise (not fitted)", "3 lines lost", "NOT CHECKED", "CAUTIONS",
 	} {
