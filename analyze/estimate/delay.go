@@ -2,6 +2,7 @@ package estimate
 
 import (
 	"fmt"
+	"math"
 	"sort"
 )
 
@@ -32,7 +33,7 @@ type Delay struct {
 // DelaySearch bounds the search. Zero fields take what their comment says.
 type DelaySearch struct {
 	Least, Most float64 // s; both 0: -1 to 3
-	Enough      float64 // largest standard uncertainty that counts as identifiable, s; 0: 0.25
+	Enough      float64 // largest standard uncertainty that counts as identifiable, s; 0: 0.2
 	Count       float64 // of the display that shows y: in a hold it errs by the same part of it all along; 0: none
 	RunStd      float64 // standard deviation of y from ramp to ramp at a setting; 0: from the runs where they tell it
 }
@@ -102,7 +103,7 @@ func newDelayFit(setting, y Trace, runs []Run, s DelaySearch) (*delayFit, error)
 		s.Least, s.Most = -1, 3
 	}
 	if s.Enough == 0 {
-		s.Enough = 0.25
+		s.Enough = 0.2
 	}
 	f := &delayFit{DelaySearch: s, setting: setting, runs: runs}
 	for k, r := range runs {
@@ -146,18 +147,35 @@ func (f *delayFit) extreme(late float64) []float64 {
 	return out
 }
 
+// standing is at which readings the setting's extreme stands: it moves by less than
+// a fifth of its mean over the run, for noise makes it creep on in a hold.
+func (f *delayFit) standing(extreme []float64) []bool {
+	const share = 0.2
+	out := make([]bool, len(extreme))
+	for first := 0; first < len(extreme); {
+		next := first
+		for next < len(extreme) && f.run[next] == f.run[first] {
+			next++
+		}
+		each := math.Abs(extreme[next-1]-extreme[first]) / float64(next-first)
+		for i := first + 1; i < next; i++ {
+			out[i] = math.Abs(extreme[i]-extreme[i-1]) <= share*each
+		}
+		first = next
+	}
+	return out
+}
+
 // stands is how often the setting's extreme stops within a run, for three readings at
 // least.
 func (f *delayFit) stands(late float64) int {
 	const few = 3
-	n, standing := 0, 0
-	m := f.extreme(late)
-	for i := 1; i < len(m); i++ {
-		if f.run[i] != f.run[i-1] || m[i] != m[i-1] {
-			standing = 0
-			continue
+	n, long := 0, 0
+	for _, yes := range f.standing(f.extreme(late)) {
+		if long++; !yes {
+			long = 0
 		}
-		if standing++; standing == few-1 {
+		if long == few-1 {
 			n++
 		}
 	}

@@ -199,8 +199,8 @@ func (f *delayFit) scatter(alone, rest []float64, parameters int) []Component {
 // wherever it is shown.
 func (f *delayFit) roundingOfHolds(alone, extreme []float64) Component {
 	shown := map[float64]float64{}
-	for i := 1; i < len(alone); i++ {
-		if f.run[i] == f.run[i-1] && extreme[i] == extreme[i-1] {
+	for i, yes := range f.standing(extreme) {
+		if yes {
 			shown[f.y[i]] += alone[i]
 		}
 	}
