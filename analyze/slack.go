@@ -117,7 +117,7 @@ func (w *work) stillRun(first, last int) (run, bool) {
 		}
 		lowSI = math.Min(lowSI, w.x[i])
 	}
-	if at := w.resting(first, last, lowSI); w.wrench == nil && smooth[at-first]-smooth[lowest] > w.stillM() {
+	if at, ok := w.resting(first, last, lowSI); ok && w.wrench == nil && smooth[at-first]-smooth[lowest] > w.stillM() {
 		lowest = at - first
 	}
 	still := func(k int) bool {
@@ -148,15 +148,18 @@ func (w *work) stillRun(first, last int) (run, bool) {
 }
 
 // resting is the middle one of the pairs that have the lowest setting, noise allowed
-// for.
-func (w *work) resting(first, last int, lowSI float64) int {
-	var at []int
+// for; ok is false where the setting is so wild that no number bounds it.
+func (w *work) resting(first, last int, lowSI float64) (at int, ok bool) {
+	var low []int
 	for i := first; i <= last; i++ {
 		if w.x[i] <= lowSI+3*w.trace.doubt(w.trace.windowS) {
-			at = append(at, i)
+			low = append(low, i)
 		}
 	}
-	return at[len(at)/2]
+	if len(low) == 0 {
+		return 0, false
+	}
+	return low[len(low)/2], true
 }
 
 // loopAt is the falling branch's slope (m per SI of setting) and the reversal
