@@ -129,6 +129,7 @@ func (w *work) chooseWindow() {
 		}
 	}
 	w.noiseM = w.stillNoise()
+	w.clockS = w.stated()
 }
 
 // meanRate is a cycle's rise over the time it took, rests left out: the middle

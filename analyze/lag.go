@@ -61,7 +61,7 @@ func (w *work) findLag() (lateS float64, told bool) {
 		if d.Alone.Known() { // smoothing blurs when a hold or stroke begins
 			lag.LateS.System = (blurAlways + blurOfOne/math.Sqrt(math.Max(1, float64(d.Stands)))) * w.delayWindow(runs)
 		}
-		lag.Corrected = math.Abs(d.Late.Value) > toldFromNone*math.Hypot(lag.LateS.Std(), w.statedS())
+		lag.Corrected = math.Abs(d.Late.Value) > toldFromNone*math.Hypot(lag.LateS.Std(), w.clockS)
 	}
 	if lag.Corrected {
 		lateS = lag.LateS.Value
@@ -263,12 +263,12 @@ func (w *work) instantStdS() float64 {
 	if w.res.Lag.Corrected {
 		return w.res.Lag.LateS.Std()
 	}
-	return w.statedS()
+	return w.clockS
 }
 
-// statedS is the standard uncertainty of the pairs' instants, as they state it in
+// stated is the standard uncertainty of the pairs' instants, as they state it in
 // setting at the rate about each.
-func (w *work) statedS() float64 {
+func (w *work) stated() float64 {
 	const around = 0.5 // s to either side, by which the pairs know the rate
 	var late []float64
 	for i, q := range w.set.Pairs {

@@ -18,6 +18,7 @@ type trace struct {
 	base    float64
 	noise   float64 // standard deviation of one value
 	stepS   float64 // median time between values
+	perS    float64 // values a second, mean
 	windowS float64 // over which the setting is smoothed
 }
 
@@ -49,6 +50,9 @@ func newTrace(set *pairing.Set, countSI float64) *trace {
 		}
 	}
 	tr.stepS = estimate.Median(steps)
+	if span := tr.t[len(tr.t)-1] - tr.t[0]; span > 0 {
+		tr.perS = float64(len(tr.t)-1) / span
+	}
 	tr.noise = math.Max(estimate.Noise(tr.p), countSI/math.Sqrt(12))
 	if set.Stepped {
 		tr.noise = set.StepStd
@@ -72,13 +76,33 @@ func (tr *trace) smoothFor(rate float64) {
 
 // at is the index of the last value at or before t; -1 before the first.
 func (tr *trace) at(t float64) int {
-	return sort.Search(len(tr.t), func(i int) bool { return tr.t[i] > t }) - 1
+	return tr.first(t, true) - 1
+}
+
+// first is the index of the first value at or after t, or after it where past is
+// set. It is looked for about where an even rate of reading would have it.
+func (tr *trace) first(t float64, past bool) int {
+	const near = 8
+	is := func(i int) bool { return tr.t[i] > t || !past && tr.t[i] == t }
+	n := len(tr.t)
+	guess := (t - tr.t[0]) * tr.perS
+	if !(guess >= 0) {
+		guess = 0
+	}
+	low := min(n, max(0, int(math.Min(guess, float64(n)))-near))
+	high := min(n, low+2*near)
+	if low > 0 && is(low-1) {
+		low, high = 0, low
+	} else if high < n && !is(high) {
+		low, high = high, n
+	}
+	return low + sort.Search(high-low, func(i int) bool { return is(low + i) })
 }
 
 // mean is the mean over the times from a to b, both included, and the mean of
 // the times that it has values for; NaN where there is none.
 func (tr *trace) mean(a, b float64) (m, t float64) {
-	i := sort.Search(len(tr.t), func(i int) bool { return tr.t[i] >= a })
+	i := tr.first(a, false)
 	j := tr.at(b) + 1
 	if j <= i {
 		return math.NaN(), math.NaN()

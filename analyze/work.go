@@ -19,6 +19,7 @@ type work struct {
 	trace     *trace
 	pairStepS float64 // median time between pairs
 	lateS     float64 // by which the extension is late on the setting
+	clockS    float64 // standard uncertainty of the pairs' instants, as they state it
 	noiseM    float64 // standard deviation of one extension reading, m
 	rate      float64 // of the fitted rises, mean, SI/s
 

@@ -90,6 +90,8 @@ type delayFit struct {
 	runs    []Run
 	starts  []float64   // time of each run's first reading
 	fixed   [][]float64 // the constants' columns
+	// Of the setting at each delay tried; both fits try the same ones first.
+	extremes map[float64][]float64
 }
 
 func newDelayFit(setting, y Trace, runs []Run, s DelaySearch) (*delayFit, error) {
@@ -105,7 +107,7 @@ func newDelayFit(setting, y Trace, runs []Run, s DelaySearch) (*delayFit, error)
 	if s.Enough == 0 {
 		s.Enough = 0.2
 	}
-	f := &delayFit{DelaySearch: s, setting: setting, runs: runs}
+	f := &delayFit{DelaySearch: s, setting: setting, runs: runs, extremes: map[float64][]float64{}}
 	for k, r := range runs {
 		if r.First < 0 || r.Last >= len(y.T) || r.Last-r.First < 3 || r.Sign*r.Sign != 1 {
 			return nil, fmt.Errorf("find a delay: run %d, readings %d to %d of %d: %w", k, r.First, r.Last, len(y.T), ErrTooFew)

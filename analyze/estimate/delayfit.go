@@ -89,11 +89,21 @@ func (f *delayFit) lowest(step float64) (at, rss float64, ok bool) {
 }
 
 func (f *delayFit) rss(late float64) float64 {
-	rest, ok := project(f.design(f.extreme(late)), f.y)
+	rest, ok := project(f.design(f.seen(late)), f.y)
 	if !ok {
 		return math.Inf(1)
 	}
 	return sumSquares(rest)
+}
+
+// seen is extreme, kept for the next fit.
+func (f *delayFit) seen(late float64) []float64 {
+	m, ok := f.extremes[late]
+	if !ok {
+		m = f.extreme(late)
+		f.extremes[late] = m
+	}
+	return m
 }
 
 // design is all columns, for settings m.
