@@ -137,14 +137,21 @@ func coverPath(s shape, r *rand.Rand) *path {
 	return h
 }
 
-// ofFirst is the result from the first n ramps alone, their lines being those of
-// the whole visit.
+// ofFirst is the figures that are judged, from the first n ramps alone, their lines
+// being those of the whole visit.
 func (r *Result) ofFirst(n int) *Result {
 	w, out := *r.work, *r
 	out.work, w.res = &w, &out
 	w.ramps, w.fitted = w.ramps[:n], w.fitted[:n]
 	out.Widths = nil
-	w.figures()
+	w.captured(&out.Rising)
+	w.captured(&out.Falling)
+	w.sources = w.benchFrom(w.systematics())
+	w.branch(&out.Rising)
+	w.branch(&out.Falling)
+	w.friction()
+	w.widths()
+	w.aim()
 	return &out
 }
 
