@@ -8,6 +8,7 @@ import (
 	"testing"
 
 	"tautramp/acquire/mill"
+	"tautramp/analyze"
 	"tautramp/analyze/estimate"
 	"tautramp/analyze/findings"
 )
@@ -70,5 +71,21 @@ func TestFindingsFollowTheSchema(t *testing.T) {
 	c, root := newChecker(t)
 	if err := c.check("result", root, v); err != nil {
 		t.Error(err)
+	}
+}
+
+func TestDialFollowsTheSchema(t *testing.T) {
+	r := t1(t)
+	r.Dial = comparedDial()
+	r.Dial.AtRising = r.Dial.Read(analyze.Rising, r.AtRising.TrueSI)
+	r.Dial.Falling.Line.N = 0
+	v := decoded(t, r, t1Meta())
+	c, root := newChecker(t)
+	if err := c.check("result", root, v); err != nil {
+		t.Error(err)
+	}
+	dial := v["dial"].(map[string]any)
+	if dial["name"] != "panel dial" || dial["rising"] == nil || dial["falling"] != nil {
+		t.Errorf("%v", dial)
 	}
 }

@@ -37,3 +37,34 @@ func instrumentFacts(r *analyze.Result, u units) []fact {
 	}
 	return facts
 }
+
+// usedJSON is one instrument that the figures rest on.
+func usedJSON(i analyze.Used) object {
+	var day, verdict any
+	if i.Bench != nil {
+		day, verdict = clean(i.Bench.Checked, nameLength), clean(i.Bench.Verdict, textLength)
+	}
+	return object{
+		{"name", clean(i.Name, nameLength)}, {"serial", clean(i.Serial, nameLength)}, {"measures", clean(i.Measures, nameLength)},
+		{"limit_si", given(i.Limit.SI)}, {"std_si", given(i.StdSI)}, {"corrected", i.Corrected},
+		{"bench_day", day}, {"bench_verdict", verdict}, {"next_check", clean(i.Due, nameLength)},
+	}
+}
+
+// dialJSON is the mill's own dial; nil where none was compared.
+func dialJSON(r *analyze.Result) any {
+	d := r.Dial
+	if d.Unit == "" {
+		return nil
+	}
+	at := func(l analyze.DialLine, s analyze.DialSetting) any {
+		if l.Line.N == 0 {
+			return nil
+		}
+		return object{{"reading", estimateJSON(s.Reading)}, {"exact", number(s.Exact)}}
+	}
+	return object{
+		{"name", clean(d.Name, nameLength)}, {"unit", clean(d.Unit, nameLength)}, {"graduation", given(d.Graduation)},
+		{"presses", len(d.Presses)}, {"rising", at(d.Rising, d.AtRising)}, {"falling", at(d.Falling, d.AtFalling)},
+	}
+}

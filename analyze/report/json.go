@@ -65,6 +65,7 @@ func resultJSON(r *analyze.Result, m Meta) object {
 			return object{{"stress_pa", number(w.StressPa)}, {"rising", by.inSetting(number(w.RisingSI))}, {"half_width", by.inSetting(estimateJSON(w.HalfSI))}}
 		})},
 		{"half_width_ratio", estimateJSON(r.WidthRatio)},
+		{"half_width_budget", budgetJSON(r.Working.Budget, func(std float64) any { return by.inSetting(number(std)) })},
 		{"grade", gradeJSON(r.Grade)},
 		{"grade_says", v.Says},
 		{"findings", foundJSON(m.Found, by)},
@@ -72,6 +73,8 @@ func resultJSON(r *analyze.Result, m Meta) object {
 		{"running_band", runningJSON(r.Running)},
 		{"table", tableJSON(r, by)},
 		{"bands", reachJSON(r, by)},
+		{"instruments", each(r.Setup.Used, usedJSON)},
+		{"dial", dialJSON(r)},
 		{"warnings", each(allWarnings(r, m), func(w analyze.Warning) object {
 			return object{{"code", clean(w.Code, nameLength)}, {"text", clean(w.Text, textLength)}}
 		})},
@@ -224,13 +227,19 @@ func targetJSON(t analyze.TargetSetting, by setBy) object {
 		{"next_setting", by.inSetting(estimateJSON(t.NextSI))},
 		{"true_stress", by.inSetting(estimateJSON(t.TrueSI))},
 		{"stress_at_setting_pa", estimateJSON(t.StressPa)},
-		{"true_stress_budget", each(t.Budget, func(b analyze.Term) object {
-			return object{
-				{"name", clean(b.Name, nameLength)}, {"std", by.inSetting(number(b.StdSI))}, {"dof", number(b.DoF)},
-				{"type", clean(b.Type, nameLength)}, {"from", clean(b.From, textLength)},
-			}
-		})},
+		{"true_stress_budget", budgetJSON(t.Budget, func(std float64) any { return by.inSetting(number(std)) })},
 	}
+}
+
+// budgetJSON is the lines of a budget, their standard uncertainties as std writes
+// them.
+func budgetJSON(terms []analyze.Term, std func(float64) any) []object {
+	return each(terms, func(t analyze.Term) object {
+		return object{
+			{"name", clean(t.Name, nameLength)}, {"std", std(t.StdSI)}, {"dof", number(t.DoF)},
+			{"type", clean(t.Type, nameLength)}, {"from", clean(t.From, textLength)},
+		}
+	})
 }
 
 func frictionJSON(r *analyze.Result) object {
@@ -243,7 +252,7 @@ func frictionJSON(r *analyze.Result) object {
 	return object{
 		{"f0_n", estimateJSON(f.F0N)}, {"mu", estimateJSON(f.Mu)}, {"weight_n", estimateJSON(f.WeightN)},
 		{"f0_plus_mu_weight_n", estimateJSON(f.F0MuWN)}, {"area_m2", estimateJSON(area)},
-		{"area_ratio", estimateJSON(ratio)},
+		{"area_ratio", estimateJSON(ratio)}, {"f0_budget", budgetJSON(f.F0Budget, number)},
 	}
 }
 

@@ -22,6 +22,8 @@ type sheet struct {
 	NoTarget    string // why there is no setting in either direction; "" where there is one
 	Targets     []aim  // rising, falling
 	Budget      []budgetLine
+	HalfBudget  []budgetLine // of the half-width, in the text only
+	F0Budget    []budgetLine // of F0, in the text only
 	Overshoot   string  // what to do after passing the number
 	Friction    []fact  // friction and half-width
 	Verdict     verdict // on the half-width
@@ -55,6 +57,8 @@ func newSheet(r *analyze.Result, m Meta, s mill.System) sheet {
 		NoTarget:    noTarget(r, rising, falling, s),
 		Targets:     []aim{rising, falling},
 		Budget:      rising.Budget,
+		HalfBudget:  budgetOf(r.Working.Budget, u.setting),
+		F0Budget:    budgetOf(r.Friction.F0Budget, u.force),
 		Limit:       limitText(r, u),
 		Overshoot:   overshootText(r, u),
 		Friction:    frictionFacts(r, u),

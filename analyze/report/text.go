@@ -40,7 +40,9 @@ func Text(w io.Writer, r *analyze.Result, m Meta, s mill.System) error {
 	p.facts(sh.Assumptions)
 	p.facts(sh.Instruments)
 	p.facts(sh.Fitted)
-	p.budget(sh)
+	p.budget("Doubt in the rising setting, standard", sh.Budget)
+	p.budget("Doubt in the half-width, standard", sh.HalfBudget)
+	p.budget("Doubt in F0, standard", sh.F0Budget)
 	p.list("Warnings", sh.Warnings)
 	p.list("Not checked", sh.Unchecked)
 	if m.CautionsShown {
@@ -178,13 +180,13 @@ func (p *printer) friction(sh sheet) {
 	p.facts(sh.Branches)
 }
 
-// budget lists what makes the true stress of the rising setting doubtful.
-func (p *printer) budget(sh sheet) {
-	if len(sh.Budget) == 0 {
+// budget lists what makes a figure doubtful; nothing where it is unknown.
+func (p *printer) budget(heading string, lines []budgetLine) {
+	if len(lines) == 0 {
 		return
 	}
-	p.heading("Doubt in the rising setting, standard")
-	for _, b := range sh.Budget {
+	p.heading(heading)
+	for _, b := range lines {
 		p.facts([]fact{{b.Name, strings.TrimSuffix(b.Std+", "+b.From, ", ")}})
 	}
 }
