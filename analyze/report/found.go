@@ -36,7 +36,7 @@ type foundSheet struct {
 
 // certaintyNote says what the words of certainty are worth.
 func certaintyNote() string {
-	return "High, likely and possible are reckoned with the doubt of the figures, for simulated rigs. They are no chances on a real mill."
+	return "High, likely and possible were counted on simulated rigs with planted faults. They are no chances on a real mill."
 }
 
 func foundOf(rep *findings.Report, u units) foundSheet {
