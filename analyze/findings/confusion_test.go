@@ -252,7 +252,7 @@ func TestConfusion(t *testing.T) {
 	if out.file != "" {
 		out.say(runPairs(t, u, rigs, stream))
 		out.say(runHealthy(t, 5*rigs, stream))
-		out.say(runCalibration(t, u, 20*rigs, stream))
+		out.say(runCalibration(t, u, 35*rigs, stream))
 		out.done()
 	}
 }

@@ -159,13 +159,13 @@ func calibration(rigs int, classes []class) string {
 }
 
 // TestMixture counts the classes of certainty alone; -rigs as for TestConfusion,
-// twenty of them for each.
+// thirty-five of them for each.
 func TestMixture(t *testing.T) {
 	rigs := 0
 	fmt.Sscan(flagText("rigs"), &rigs)
 	if rigs == 0 {
 		t.Skip("-rigs N counts the classes of certainty")
 	}
-	fmt.Println(runCalibration(t, usualDoubts(), 20*rigs, streamOf()))
+	fmt.Println(runCalibration(t, usualDoubts(), 35*rigs, streamOf()))
 	fmt.Println(runPairs(t, usualDoubts(), rigs, streamOf()))
 }
