@@ -114,6 +114,30 @@ func TestLagThatTheDataDoNotTellIsNotIdentifiable(t *testing.T) {
 	}
 }
 
+// One rate and one hold a ramp, a fine display and a setting that is late by chance:
+// what is not told from none is not taken out, and is in no interval.
+func TestLagByChanceIsLeftAlone(t *testing.T) {
+	wrong, n := 0, trials(24)
+	for seed := range uint64(n) {
+		r := analyzed(t, coverCases()[0].scene(seed+9500).set)
+		if r.Lag.Corrected {
+			wrong++
+		}
+		half := 0.0
+		for _, l := range r.Working.Budget {
+			if l.Name == "time alignment" {
+				half = l.StdSI
+			}
+		}
+		if !r.Lag.Corrected {
+			near(t, "time alignment, psi", half/psi, 16*0.02, 0.25)
+		}
+	}
+	if wrong > 1+n/20 {
+		t.Errorf("%d of %d delays taken out that are not there", wrong, n)
+	}
+}
+
 func TestLagAndASlipAreToldApart(t *testing.T) {
 	b := cleanedLate(9401, 0.3)
 	h := cycles(pumped, 4, 20, 860)

@@ -56,7 +56,7 @@ func (r *Result) Trials(trials int, random *rand.Rand) error {
 		tolerance := estimate.NumericalTolerance(p.Std, 1)
 		t := Trial{Name: d.name, Role: d.role, Own: d.own, Drawn: p, Agree: math.Abs(lo-p.Low) <= tolerance && math.Abs(hi-p.High) <= tolerance}
 		if !t.Agree {
-			w.warn("trials-differ", fmt.Sprintf("The interval of the %s by %d trials is another than the one printed, by more than one significant digit of its uncertainty: trust the wider.", d.name, trials))
+			w.warn("trials-differ", fmt.Sprintf("By %d trials the interval is another than the one printed, by more than one significant digit of its uncertainty: %s. Trust the wider.", trials, d.name))
 		}
 		r.Tried = append(r.Tried, t)
 	}
