@@ -199,7 +199,7 @@ func TestTheCheckerRefuses(t *testing.T) {
 // estimate, by the member that holds it.
 func TestEveryNumberNamesItsUnit(t *testing.T) {
 	_, root := newChecker(t)
-	units := []string{"N per m", " Pa", " m.", " m;", " m2", " N.", " N;", " N,", " N m", " J.", " rad", "count", "bare number", "same unit", "unit of the member", "SI unit", "of setting."}
+	units := []string{"N per m", " Pa", " m.", " m;", " m2", " N.", " N;", " N,", " N m", " J.", " rad", "count", "bare number", "same unit", "unit of the member", "unit of the dial", "SI unit", "of setting."}
 	var walk func(at string, v any)
 	numbers := 0
 	walk = func(at string, v any) {
