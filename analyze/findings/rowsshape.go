@@ -23,6 +23,7 @@ func stickSlipRow() row {
 		rivals: []rival{
 			{"a gauge that sticks", []test{{fSticky, Above, mill.GaugeSticky}}},
 			{"springs that go solid", boundTests()},
+			{"a ramp too ragged", []test{{fRagged, Above, mill.RaggedRamp}}},
 		},
 		level: Service, region: risingLine,
 		next: "Ramp once more at half the pace and once smoothly with a power pump: stick-slip grows when it is slower, strokes of a hand pump do not matter to it.",
