@@ -7,8 +7,8 @@ const leastCertain = 0.5
 // rigs were right, by what was reckoned for them. A line that never falls, fitted on
 // the seeds for tuning (METHOD.md).
 func counted() [][2]float64 {
-	return [][2]float64{{0, 0}, {0.02, 0.03}, {0.05, 0.15}, {0.1, 0.38}, {0.2, 0.62}, {0.3, 0.78},
-		{0.5, 0.88}, {0.7, 0.93}, {0.85, 0.955}, {0.95, 0.97}, {0.99, 0.98}, {1, 0.99}}
+	return [][2]float64{{0, 0}, {0.02, 0.03}, {0.05, 0.15}, {0.1, 0.38}, {0.2, 0.62}, {0.3, 0.79},
+		{0.36, 0.85}, {0.5, 0.91}, {0.66, 0.95}, {0.85, 0.965}, {0.95, 0.975}, {0.99, 0.985}, {1, 0.99}}
 }
 
 // calibrated is the certainty that counting gives what was reckoned.
