@@ -31,7 +31,10 @@ type Region struct {
 const (
 	mostCut    = 2.0 / 3 // of the range at either end
 	mostSpared = 0.2     // of it at the low end, for bends that are not worth more
-	sparing    = 1.0     // penalty of a break there: to spare it without cause costs little
+	// A region that is less than this share of all x, a large toe being cut off, has
+	// nothing to spare.
+	leastToSpare = 0.5
+	sparing      = 1.0 // penalty of a break there: to spare it without cause costs little
 )
 
 // worthTelling is the bend that matters, as a share of the range of y.
@@ -73,7 +76,7 @@ func StraightWithin(x, y []float64, worth float64) (Region, error) {
 		r.To = -low
 	}
 	bx, by := between(x, y, r.From, r.To)
-	if worth > 0 {
+	if all := Quantile(x, 1) - Quantile(x, 0); worth > 0 && r.To-r.From >= leastToSpare*all {
 		low, _, err := straightAbove(bx, by, cutting{penalty: sparing, share: mostSpared})
 		if err != nil && !errors.Is(err, ErrTooFew) && !errors.Is(err, ErrNoSpread) {
 			return Region{}, err
