@@ -24,9 +24,9 @@ type sheet struct {
 	Budget      []budgetLine
 	HalfBudget  []budgetLine // of the half-width, in the text only
 	F0Budget    []budgetLine // of F0, in the text only
-	Overshoot   string  // what to do after passing the number
-	Friction    []fact  // friction and half-width
-	Verdict     verdict // on the half-width
+	Overshoot   string       // what to do after passing the number
+	Friction    []fact       // friction and half-width
+	Verdict     verdict      // on the half-width
 	Drivetrain  drivetrain
 	Bands       []fact // on file: whether this tensioner can bring them to their target
 	Found       foundSheet
