@@ -204,3 +204,21 @@ func TestDelayRefusesBadTraces(t *testing.T) {
 		t.Errorf("five readings: %+v, %v", d.Late, err)
 	}
 }
+
+// Two rests at different settings, nothing moving near them: no delay changes
+// anything, and none is named.
+func TestDelayOfRestsAloneIsUnknown(t *testing.T) {
+	var setting, y Trace
+	for i := range 400 {
+		at, v := float64(i)/10, 1.0
+		if i >= 200 {
+			v = 2
+		}
+		setting.T, setting.V = append(setting.T, at), append(setting.V, v)
+		y.T, y.V = append(y.T, at), append(y.V, 3*v+1e-3*math.Sin(float64(i*i)))
+	}
+	d, err := FindDelay(setting, y, []Run{{First: 100, Last: 150, Sign: 1}, {First: 250, Last: 300, Sign: 1}}, DelaySearch{})
+	if err != nil || d.Late.Known() {
+		t.Errorf("%+v, %v", d.Late, err)
+	}
+}

@@ -38,7 +38,7 @@ func (f *delayFit) closer(late float64) float64 {
 	const steps, most = 4, 0.1 // s
 	for range steps {
 		c, ok := f.changeAbout(late)
-		if !ok {
+		if !ok || !(sumSquares(c.alone) > 0) { // a setting that stands says nothing
 			return late
 		}
 		move := floats.Dot(c.alone, c.rest) / sumSquares(c.alone)

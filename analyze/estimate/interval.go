@@ -33,7 +33,7 @@ const (
 //   - None: the same, and the lines of any likelihood to speak of are those that
 //     pass through every reading; Feasible has that polygon.
 //
-// floor is the least noise, in y's unit, block the fewest readings a block.
+// floor is the least noise, in y's unit.
 func fitIntervals(r Readings, floor float64, start Line) (Branch, error) {
 	f := newIntervalFit(r, floor, start)
 	polygon, exact := f.feasible()
